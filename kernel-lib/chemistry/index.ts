@@ -1,0 +1,4 @@
+/** chemistry/: the ground. Symbols, formulas and units; pure functions, no files. */
+export * from './analytes';
+export * from './formula';
+export * from './units';

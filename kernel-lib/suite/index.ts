@@ -1,0 +1,7 @@
+/** suite/: the table of analyses: columns with cell states, labels, lineage; expressions over columns; data frames. */
+export * from './column';
+export * from './expression';
+export * from './frame';
+export * from './lineage';
+export * from './resolve';
+export * from './suite';
