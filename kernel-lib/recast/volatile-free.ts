@@ -62,14 +62,16 @@ export function volatileFree(suite: Suite, options: { readonly iron?: IronBasis 
   }
   const recast = [...parts.values()].map((part) => recastColumn(part, sum, parts));
   const sums = column({ symbol: 'SumAsGiven', values: sum, unit: 'wt%', states: sum.reduce((states, value, i) => ((states[i] = Number.isFinite(value) ? cellState.derived : cellState.missing), states), new Uint8Array(size)) });
-  const kept = [...suite.columns.values()].filter(({ symbol }) => !['FeOT', 'Fe2O3T', 'FeO', 'Fe2O3'].includes(symbol));
+  const columns = new Map(suite.columns);
+  for (const symbol of ['FeOT', 'Fe2O3T', 'FeO', 'Fe2O3']) columns.delete(symbol);
+  for (const entry of [...recast, sums]) columns.set(entry.symbol, entry);
   const notRecast = size - sum.reduce((count, value) => count + (Number.isFinite(value) ? 1 : 0), 0);
   const because = step(
     'volatileFree',
     { iron, ironFound: { ...counts }, rows: size, notRecast, incompleteSums: incomplete },
     { sources: ['le_maitre_2002'], tables: ['atomic-weights.csv'] },
   );
-  return suiteOf({ columns: [...kept, ...recast, sums], labels: suite.labels, lineage: [...suite.lineage, because] });
+  return suiteOf({ columns: columns.values(), labels: suite.labels, lineage: [...suite.lineage, because] });
 }
 
 function ironColumns(suite: Suite, allIron: Column, iron: IronBasis): readonly (readonly [string, Column])[] {

@@ -35,7 +35,8 @@ const signedSymbols: readonly (readonly [RegExp, string])[] = [
 const hyphenated = knownAnalytes.map(({ symbol }) => symbol).filter((symbol) => /[a-z]-[A-Z]/.test(symbol));
 
 /** Replaces `(…)N` by `normalised(…)`: the trailing N that means "divided by the reference composition". */
-function readNormalisation(text: string): string {
+function readNormalisation(written: string): string {
+  let text = written;
   for (;;) {
     const end = /\)_?N(?![A-Za-z0-9_])/.exec(text);
     if (end === null) return text;
@@ -45,7 +46,7 @@ function readNormalisation(text: string): string {
       if (text[start] === ')') depth++;
       if (text[start] === '(' && --depth === 0) break;
     }
-    if (start < 0) throw new ExpressionError(`"${text}": the bracket that ends in ")N" is never opened.`);
+    if (start < 0) throw new ExpressionError(`"${written}" is not a readable expression: a bracket that ends in ")N" is never opened.`);
     text = `${text.slice(0, start)}normalised${text.slice(start, end.index + 1)}${text.slice(end.index + end[0].length)}`;
   }
 }
@@ -113,6 +114,8 @@ function build(node: jsep.Expression, normalised: boolean, from: { text: string;
       const { operator, left, right } = node as jsep.BinaryExpression;
       const sign = operator === '**' ? '^' : operator;
       if (sign !== '+' && sign !== '-' && sign !== '*' && sign !== '/' && sign !== '^') return fail(`the operator ${operator} has no meaning here`);
+      // The parser does not tell −x^2 from (−x)^2, so neither is guessed.
+      if (sign === '^' && left.type === 'UnaryExpression') return fail('a signed base of a power can be read in two ways; write -(x^2), or multiply by hand');
       return { kind: 'binary', operator: sign, left: build(left, normalised, from), right: build(right, normalised, from) };
     }
     case 'CallExpression': {

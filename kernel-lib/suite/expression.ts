@@ -92,7 +92,7 @@ function bind(node: ExpressionNode, context: BindContext): Bound {
       return boundAs(node, '', 0);
     case 'column': {
       const { unit } = context.operands.get(node.symbol)!;
-      if (!node.normalised) return boundAs(node, unit, 1);
+      if (!node.normalised) return boundAs(node, unit, unit === '' ? 0 : 1);
       const reference = context.reference?.(node.symbol);
       if (reference === undefined || Number.isNaN(reference)) {
         throw new ExpressionError(`"${context.text}": ${node.symbol} is to be normalised, but the reference composition${context.reference === undefined ? ' is not given' : ` has no ${node.symbol}`}.`);

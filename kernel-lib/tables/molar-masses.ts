@@ -52,13 +52,13 @@ export function cationsPerFormula(oxide: string): number {
  * @example massFactor('Ti', 'TiO2') // 1.6685
  */
 export function massFactor(from: string, to: string): number {
-  const cation = (symbol: string) => elementOfOxide(symbol) ?? symbol;
-  const element = cation(from);
-  const target = parseFormula(formulaOf(to)).get(element);
-  if (element !== cation(to) || target === undefined) throw new RangeError(`${from} cannot be expressed as ${to}: they do not share a cation.`);
-  const perFrom = parseFormula(formulaOf(from)).get(element)! / molarMass(from);
-  const perTo = target / molarMass(to);
-  return perFrom / perTo;
+  const source = parseFormula(formulaOf(from));
+  const target = parseFormula(formulaOf(to));
+  // The cation stands first in a formula, as the trade writes oxides.
+  const [cation, inSource] = [...source][0];
+  const inTarget = target.get(cation);
+  if (inTarget === undefined || [...target][0][0] !== cation) throw new RangeError(`${from} cannot be expressed as ${to}: they do not share a cation.`);
+  return inSource / molarMass(from) / (inTarget / molarMass(to));
 }
 
 /**
