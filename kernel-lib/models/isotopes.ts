@@ -1,0 +1,12 @@
+import { findAnalyte } from '../chemistry';
+
+/**
+ * The element whose isotopes a ratio compares (`87Sr/86Sr` → Sr, `epsilon-Nd` → Nd); undefined for anything else, and for
+ * parent–daughter ratios such as `87Rb/86Sr`, which crystallisation does change. Mixing is linear in these when weighted by the element.
+ */
+export function isotopeElement(symbol: string): string | undefined {
+  const epsilon = /^epsilon-([A-Z][a-z]?)$/.exec(symbol);
+  if (epsilon !== null) return epsilon[1];
+  const ratio = /^\d+([A-Z][a-z]?)\/\d+([A-Z][a-z]?)$/.exec(symbol);
+  return ratio !== null && ratio[1] === ratio[2] && findAnalyte(ratio[1]) !== undefined ? ratio[1] : undefined;
+}
