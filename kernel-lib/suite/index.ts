@@ -2,6 +2,7 @@
 export * from './column';
 export * from './expression';
 export * from './frame';
+export * from './inputs';
 export * from './lineage';
 export * from './resolve';
 export * from './suite';
