@@ -28,5 +28,7 @@ export function withMagnesiumNumber(suite: Suite, options: { readonly iron?: 'to
     // d(Mg#) = Mg#·(1 − Mg#/100)·(dMg/Mg − dFe/Fe)
     sigma = values.map((value, i) => value * (1 - value / 100) * Math.hypot(magnesium.sigma![i] / magnesium.values[i], ferrous.sigma![i] / ferrous.values[i]));
   }
-  return suite.with([derivedColumn('Mg-number', values, '', sigma)], step('withMagnesiumNumber', { iron }, { tables: ['atomic-weights.csv'] }));
+  const says = `Mg-number is 100 Mg/(Mg + Fe2+), molar, with ${iron === 'total' ? 'all iron as Fe2+' : 'measured FeO'}.`;
+  const because = step('withMagnesiumNumber', { iron }, { tables: ['atomic-weights.csv'], says });
+  return suite.with([derivedColumn('Mg-number', values, '', sigma)], because);
 }

@@ -5,6 +5,12 @@ import { totalIron } from './total-iron';
 /** How iron enters the volatile-free sum. */
 export type IronBasis = 'total-as-FeO' | 'total-as-Fe2O3' | 'measured';
 
+const ironInWords: Readonly<Record<IronBasis, string>> = {
+  'total-as-FeO': 'total iron as FeO',
+  'total-as-Fe2O3': 'total iron as Fe2O3',
+  measured: 'FeO and Fe2O3 as measured where both were, else total iron as FeO',
+};
+
 /** The oxides of the sum besides iron. All but silica may be missing: a missing one adds nothing, and the row is counted as incomplete. */
 const sumOxides = ['SiO2', 'TiO2', 'Al2O3', 'MnO', 'MgO', 'CaO', 'Na2O', 'K2O', 'P2O5'] as const;
 
@@ -69,7 +75,11 @@ export function volatileFree(suite: Suite, options: { readonly iron?: IronBasis 
   const because = step(
     'volatileFree',
     { iron, ironFound: { ...counts }, rows: size, notRecast, incompleteSums: incomplete },
-    { sources: ['le_maitre_2002'], tables: ['atomic-weights.csv'] },
+    {
+      sources: ['le_maitre_2002'],
+      tables: ['atomic-weights.csv'],
+      says: `Major oxides were recast to 100 % free of volatiles, with ${ironInWords[iron]}.`,
+    },
   );
   return suiteOf({ columns: columns.values(), labels: suite.labels, lineage: [...suite.lineage, because] });
 }

@@ -5,4 +5,5 @@ export * from './frame';
 export * from './inputs';
 export * from './lineage';
 export * from './resolve';
+export * from './sources';
 export * from './suite';

@@ -1,5 +1,6 @@
 /** tables/: loads and validates reference-tables/, and hands out values with their source and standing. */
 export * from './bibliography';
+export * from './bibtex';
 export * from './constants';
 export * from './element-orders';
 export * from './locate';
