@@ -1,1 +1,6 @@
-export {};
+/** classify/: one engine, many schemes; schemes are data. Verdicts with distance, probability and reasons. */
+export { schemes, findScheme, schemeNeeds, type SchemeList } from './catalogue';
+export { classify, type ClassifyOptions } from './classify';
+export type { FieldProbabilities, ProbabilityMethod, Uncertainty } from './probability';
+export * from './scheme';
+export { probabilityText, verdictOf, type CriterionOutcome, type SchemeVerdict, type Verdicts } from './verdicts';
