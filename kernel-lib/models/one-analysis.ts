@@ -22,10 +22,9 @@ export function oneAnalysis(from: Composition, who: string, argument: string): S
   const entries = Object.entries(from).filter(([, value]) => value !== undefined);
   if (entries.length === 0) throw new RangeError(`${who}: ${argument} holds no analyte.`);
   for (const [symbol, value] of entries) {
-    if (typeof value !== 'number' || !Number.isFinite(value) || value < 0) {
-      if (!(findAnalyte(symbol) === undefined && Number.isFinite(value))) {
-        throw new RangeError(`${who}: ${argument}.${symbol} is ${String(value)}; give a number of zero or more (oxides in wt %, elements in ppm).`);
-      }
+    const kind = findAnalyte(symbol)?.kind ?? 'quantity';
+    if (typeof value !== 'number' || !Number.isFinite(value) || (kind !== 'quantity' && value < 0)) {
+      throw new RangeError(`${who}: ${argument}.${symbol} is ${String(value)}; give a number of zero or more (oxides in wt %, elements in ppm).`);
     }
   }
   return suiteOf({
