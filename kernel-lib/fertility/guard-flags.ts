@@ -23,7 +23,7 @@ export interface Guarding {
 }
 
 /** Texts that a sheet uses to say that a rock is not altered. */
-const saysFresh = /^\s*(none|no|fresh|unaltered|least[- ]altered|-)?\s*$/i;
+const saysFresh = /^\s*(none|no|fresh|unaltered|least[- ]altered|false|0|-)?\s*$/i;
 
 const reasonOf = { alteration: fertilityReason.altered, weathering: fertilityReason.weathered, cumulate: fertilityReason.cumulate, total: fertilityReason.total } as const;
 

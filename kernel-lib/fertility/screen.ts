@@ -1,5 +1,6 @@
 import { showAs, type Showable } from '../display';
 import { step, type Step, type Suite } from '../suite';
+import { shortSource } from '../tables';
 import type { IndicatorAnswers } from './answers';
 import { calibrateFertility, type FertilityCalibration } from './calibration';
 import { cautionsOf } from './cautions';
@@ -145,7 +146,7 @@ function weigh(evidence: Evidence, settings: Settings, options: ScreenOptions): 
     group: grouping.label, basis: settings.basis, cut, interval: interval.method, confidence: interval.confidence, rankBy, weights: { ...weights }, seed: variation.seed,
     draws: variation.draws, spread: variation.spread, samples: grouping.of.length, groups: groups.length,
     supported: groups.filter(({ verdict }) => verdict === 'supported').length, calibration: calibration.statement,
-  }, { sources, tables: [...fertilityTables, 'fertility/labelled-districts.csv', 'reservoirs.csv'] });
+  }, { sources, tables: [...fertilityTables, 'fertility/labelled-districts.csv', 'reservoirs.csv', 'named-quantities.csv'], fromMemory: limitsFromMemory(answers), says: methodsText(evidence, settings) });
   const content: Omit<FertilityScreen, keyof Showable> = {
     label: grouping.label, suite: grounds.suite, groups, answers, guards: guarding.guards, weights, calibration, sources,
     cautions: [...cautionsOf(evidence, weights), calibration.statement], lineage: [...grounds.suite.lineage, because],
@@ -153,6 +154,18 @@ function weigh(evidence: Evidence, settings: Settings, options: ScreenOptions): 
   const screen: FertilityScreen = showAs(content, () => screenView(screen));
   evidenceOf.set(screen, { evidence, settings, options });
   return screen;
+}
+
+/** The limits that were recalled and not seen, each in words. */
+function limitsFromMemory(answers: readonly IndicatorAnswers[]): string[] {
+  return answers
+    .filter(({ indicator }) => indicator.kind === 'criterion' && indicator.standing === 'from memory')
+    .map(({ indicator }) => `${indicator.name}: ${indicator.conditions.map(({ expression, is, limit }) => `${expression} ${is} ${limit}`).join(', ')} (${shortSource(indicator.source)})`);
+}
+
+function methodsText({ criteria }: Evidence, { weights, cut, interval, basis }: Settings): string {
+  const used = criteria.filter(({ indicator }) => weights[indicator.key] > 0).map(({ indicator }) => `${indicator.name} (${shortSource(indicator.source)}; weight ${weights[indicator.key]})`);
+  return `Groups were ranked by the weighted share of samples that meet ${used.join(', ')}, on ${basis === 'as given' ? 'oxides as given' : 'volatile-free oxides'}, with ${interval.method === 'wilson' ? 'Wilson' : 'Clopper–Pearson'} ${Math.round(100 * interval.confidence)} % intervals and a cut of ${cut}; samples flagged as altered, weathered or cumulate, or with a total out of range, were not counted.`;
 }
 
 function count(flags: Uint8Array, rows: Int32Array): number {

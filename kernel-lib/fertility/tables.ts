@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { once, readJsonTable, standings, type Standing } from '../tables';
+import { quantityFormula } from '../tracers';
 
 /** The comparison of a condition. */
 export type FertilityComparison = '>' | '>=' | '<' | '<=';
@@ -87,7 +88,7 @@ const indicatorSchema = z.strictObject({
   if ((value.kind === 'trend') !== (value.against !== undefined)) issues.push({ code: 'custom', input: value, message: `${value.key}: a trend has "against", and nothing else has` });
 });
 
-const indicatorsSchema = z.strictObject({ about: text, named: z.record(z.string(), text), reference: text, indicators: z.array(indicatorSchema) });
+const indicatorsSchema = z.strictObject({ about: text, reference: text, indicators: z.array(indicatorSchema) });
 
 const guardsSchema = z.strictObject({
   about: text,
@@ -108,9 +109,11 @@ const weightTable = once(() => readJsonTable(fertilityTables[2], weightsSchema))
 
 /** @internal Named expressions and the reference composition that the tables use. */
 export function indicatorLanguage(): { readonly named: Readonly<Record<string, string>>; readonly reference: string } {
-  const { named, reference } = indicatorTable();
-  return { named, reference };
+  return language();
 }
+
+// One object for good, so that expressions are parsed once.
+const language = once(() => ({ named: { 'Eu/Eu*': quantityFormula('Eu/Eu*').formula }, reference: indicatorTable().reference }));
 
 /**
  * The screening indicators, in the table's order: published whole-rock criteria with their silica window, source, standing and limits of
