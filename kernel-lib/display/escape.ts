@@ -9,3 +9,8 @@ export function escapeHtml(text: string): string {
 export function escapeMarkdown(text: string): string {
   return escapeHtml(text).replace(/[\\`*_{}[\]()#+!|~]/g, '\\$&').replace(/\s*\r?\n\s*/g, ' ');
 }
+
+/** Text made safe to stand in a spreadsheet cell: what would be read as a formula (`=`, `+`, `-`, `@`, a tab or a return in front) gets an apostrophe. */
+export function escapeSpreadsheet(text: string): string {
+  return /^\s*[=+\-@\t\r]/.test(text) ? `'${text}` : text;
+}

@@ -3,3 +3,4 @@ export * from './escape';
 export * from './mime';
 export * from './table';
 export * from './show-as';
+export * from './write-whole';
