@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { bibliography, bibtex, column, joinLineages, lineage, sources, step, suiteOf, volatileFree, withMagnesiumNumber } from 'wedgework';
+import { bibliography, bibtex, column, type MimeBundle, joinLineages, lineage, sources, step, suiteOf, volatileFree, withMagnesiumNumber } from 'wedgework';
 
 const wet = suiteOf({
   columns: Object.entries({ SiO2: 50, TiO2: 1, Al2O3: 16, FeOT: 9, MnO: 0.2, MgO: 8, CaO: 11, Na2O: 2, K2O: 0.5, P2O5: 0.1 }).map(([symbol, value]) => column({ symbol, values: [value] })),
@@ -11,7 +11,7 @@ describe('lineage', () => {
   it('lists the steps in order, readably', () => {
     const list = lineage(withMagnesiumNumber(volatileFree(wet)));
     expect(list.steps.map(({ what }) => what)).toEqual(['readAssays', 'volatileFree', 'withMagnesiumNumber']);
-    expect(String(list.toMimeBundle()['text/plain'])).toContain('iron: total-as-FeO');
+    expect(String((list.toMimeBundle() as MimeBundle)['text/plain'])).toContain('iron: total-as-FeO');
   });
 
   it('refuses something without a lineage', () => {
