@@ -15,8 +15,8 @@ export interface FurtherMeasurement {
   readonly on: 'samples in hand' | 'new samples';
   /** How many samples in hand lack just this. */
   readonly available: number;
-  readonly ifAllMet: GroupVerdict;
-  readonly ifNoneMet: GroupVerdict;
+  /** The verdicts that would follow. A criterion that was asked before is taken to come out as so far; a new one at its two extremes. */
+  readonly outcomes: readonly { readonly if: 'as so far' | 'all met' | 'none met'; readonly verdict: GroupVerdict }[];
   readonly text: string;
 }
 
@@ -90,22 +90,21 @@ function settle(
   weighted: readonly Weighted[],
   { cut, interval }: { readonly cut: number; readonly interval: IntervalChoice },
 ): FurtherMeasurement | undefined {
+  const tally = tallies[k];
   const verdictWith = (met: number, notMet: number): GroupVerdict => {
-    const tally = tallies[k];
     const changed = { ...tally, ...shareOf(tally.met + met, tally.near, tally.notMet + notMet, interval) };
     return scoreGroup(tallies.map((each, j) => (j === k ? changed : each)), weighted, cut).verdict;
   };
-  const settled = (verdict: GroupVerdict) => verdict === 'supported' || verdict === 'not supported';
   for (let n = 1; n <= most; n++) {
-    const ifAllMet = verdictWith(n, 0);
-    const ifNoneMet = verdictWith(0, n);
-    if (!settled(ifAllMet) && !settled(ifNoneMet)) continue;
+    const soFar = Math.round(n * tally.share);
+    const outcomes: FurtherMeasurement['outcomes'] = tally.asked > 0
+      ? [{ if: 'as so far', verdict: verdictWith(soFar, n - soFar) }]
+      : [{ if: 'all met', verdict: verdictWith(n, 0) }, { if: 'none met', verdict: verdictWith(0, n) }];
+    if (!outcomes.some(({ verdict }) => verdict === 'supported' || verdict === 'not supported')) continue;
     const what = analytes.length > 1 ? `${analytes.slice(0, -1).join(', ')} and ${analytes.at(-1)}` : analytes[0];
     const where = on === 'samples in hand' ? `${n} of ${available} samples that lack ${analytes.length > 1 ? 'them' : 'it'}` : `${n} new fresh sample${n === 1 ? '' : 's'} in the silica window`;
-    return {
-      indicator: weighted[k].indicator.key, analytes, samples: n, on, available, ifAllMet, ifNoneMet,
-      text: `${what} on ${where} (${weighted[k].indicator.name}: all met → ${ifAllMet}; none met → ${ifNoneMet})`,
-    };
+    const { name, key } = weighted[k].indicator;
+    return { indicator: key, analytes, samples: n, on, available, outcomes, text: `${what} on ${where} (${name}: ${outcomes.map((each) => `${each.if} → ${each.verdict}`).join('; ')})` };
   }
   return undefined;
 }

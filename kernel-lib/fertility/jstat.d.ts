@@ -1,6 +1,7 @@
 /** The parts of jstat that are used here; the package ships no types. */
 declare module 'jstat' {
   export const jStat: {
+    readonly chisquare: { inv(p: number, degreesOfFreedom: number): number };
     readonly beta: { inv(p: number, alpha: number, beta: number): number };
     readonly normal: { inv(p: number, mean: number, sd: number): number };
   };

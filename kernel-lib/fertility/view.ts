@@ -22,6 +22,11 @@ export function ranksText({ ranks }: GroupEvidence): string {
   return ranks.best === ranks.worst ? String(ranks.best) : `${ranks.best}–${ranks.worst}`;
 }
 
+/** @internal The smallest further measurement, or why there is none. */
+export function furtherText({ verdict, further }: GroupEvidence): string {
+  return further?.text ?? (verdict === 'undecided' ? 'none: more of the same would not settle it' : '');
+}
+
 const two = (value: number): number => Math.round(value * 100) / 100;
 
 /** @internal The ranked table, with the cautions under it. */
@@ -33,7 +38,7 @@ export function screenView(screen: FertilityScreen): TableView {
       'rank if weights vary', 'smallest further measurement'],
     rows: screen.groups.map((group) => [
       group.rank, group.group, group.verdict, two(group.score), two(group.low), two(group.high), group.samples, group.asked, group.struckOut, group.leftOut,
-      ...criteria.map(({ at }) => shareText(group, at)), group.agreement, ranksText(group), group.further?.text ?? '',
+      ...criteria.map(({ at }) => shareText(group, at)), group.agreement, ranksText(group), furtherText(group),
     ]),
     notes: screen.cautions,
   };
