@@ -2,4 +2,5 @@
 export * from './analytes';
 export * from './formula';
 export * from './melt-laws';
+export * from './random';
 export * from './units';
