@@ -11,12 +11,21 @@ export interface InputFile {
   readonly bytes: number;
 }
 
-const read = new Map<string, InputFile>();
+// On the global object, because the library that a notebook imports need not be the copy that its kernel was started from.
+const key = Symbol.for('wedgework.inputs');
+const shared = globalThis as { [key]?: Map<string, InputFile> };
+const read = (shared[key] ??= new Map());
 
-/** Notes that a file was read as input, for the record of a run. Every reader of a user's file calls this with the bytes that it used. */
-export function noteInput(path: string, content: Uint8Array): InputFile {
+/**
+ * Notes that a file was read as input, for the record of a run. Every reader of a user's file calls this with the bytes that it used.
+ *
+ * @param path as the user gave it
+ * @param content what was read
+ * @param sha256 of the content, where the caller has it already
+ */
+export function noteInput(path: string, content: Uint8Array, sha256 = createHash('sha256').update(content).digest('hex')): InputFile {
   const absolute = resolve(path);
-  const input: InputFile = { path: absolute, name: basename(path), sha256: createHash('sha256').update(content).digest('hex'), bytes: content.byteLength };
+  const input: InputFile = { path: absolute, name: basename(path), sha256, bytes: content.byteLength };
   read.set(absolute, input);
   return input;
 }

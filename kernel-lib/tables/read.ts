@@ -20,7 +20,10 @@ export const field = {
   standing: z.enum(standings),
 };
 
-const versions = new Map<string, string>();
+// On the global object, because the library that a notebook imports need not be the copy that its kernel was started from.
+const key = Symbol.for('wedgework.tables');
+const shared = globalThis as { [key]?: Map<string, string> };
+const versions = (shared[key] ??= new Map<string, string>());
 
 /** SHA-256 of every reference file read so far, by its path inside reference-tables/. Part of a run's record. */
 export function referenceVersions(): ReadonlyMap<string, string> {
