@@ -3,4 +3,5 @@ export { schemes, findScheme, schemeNeeds, type SchemeList } from './catalogue';
 export { classify, type ClassifyOptions } from './classify';
 export type { FieldProbabilities, ProbabilityMethod, Uncertainty } from './probability';
 export * from './scheme';
+export { schemeColumns } from './scheme-columns';
 export { probabilityText, verdictOf, type CriterionOutcome, type SchemeVerdict, type Verdicts } from './verdicts';
