@@ -1,6 +1,7 @@
 import { inspect } from 'node:util';
 import { isShowable, jupyterDisplay, tableBundle, type MimeBundle, type TableCell } from '../display';
 import { isFrame, type FrameLike } from '../suite';
+import { noteShown } from './record/shown-steps';
 
 /** A value made ready for a front end. */
 export interface RichValue {
@@ -35,6 +36,7 @@ interface DisplayConvention {
 const hasPicture = (value: unknown): boolean => isShowable(value) || isFrame(value) || typeof (value as DisplayConvention | null)?.[jupyterDisplay] === 'function';
 
 async function bundleOf(value: unknown): Promise<MimeBundle> {
+  noteShown(value);
   if (isShowable(value)) return value.toMimeBundle();
   const convention = (value as DisplayConvention | null)?.[jupyterDisplay];
   if (typeof convention === 'function') return convention.call(value);

@@ -3,6 +3,7 @@ import { existsSync } from 'node:fs';
 import { join } from 'node:path';
 import type { Writable } from 'node:stream';
 import type { CellOutput } from '../output';
+import type { RunFacts } from '../record/run-facts';
 import type { CellReply, CompleteReply, EngineOptions, EngineReport, EngineRequest, InspectReply, IsCompleteReply } from './messages';
 
 type Ask<Kind extends EngineRequest['ask']> = Omit<Extract<EngineRequest, { ask: Kind }>, 'id' | 'ask'>;
@@ -107,6 +108,11 @@ export class EngineProcess {
 
   isComplete(request: Ask<'isComplete'>): Promise<IsCompleteReply> {
     return this.ask<IsCompleteReply>({ ask: 'isComplete', id: ++this.last, ...request });
+  }
+
+  /** What the process has read and what ran it. */
+  facts(): Promise<RunFacts> {
+    return this.ask<RunFacts>({ ask: 'facts', id: ++this.last });
   }
 
   /** Stops the running cell, if one runs. */

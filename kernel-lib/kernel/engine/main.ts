@@ -3,6 +3,7 @@ import { createRequire } from 'node:module';
 import { join } from 'node:path';
 import { Worker } from 'node:worker_threads';
 import type { EngineOptions, EngineReport, EngineRequest } from './messages';
+import { runFacts } from '../record/run-facts';
 import { Session } from './session';
 import { cellCompilerVersion } from './tslab-contract';
 
@@ -35,6 +36,8 @@ async function main(): Promise<void> {
           return void tell({ tell: 'answer', id, answer: session.inspect(request.code, request.cursor) });
         case 'isComplete':
           return void tell({ tell: 'answer', id, answer: session.isComplete(request.code) });
+        case 'facts':
+          return void tell({ tell: 'answer', id, answer: runFacts() });
       }
     });
   });

@@ -1,11 +1,14 @@
 import type { CellOutput } from '../output';
+import type { RunFacts } from '../record/run-facts';
+import type { SymbolInfo } from './tslab-contract';
 
 /** What the engine's process is asked. Every request but `open` carries a number that its answer repeats. */
 export type EngineRequest =
   | { readonly ask: 'execute'; readonly id: number; readonly code: string; readonly label: string }
   | { readonly ask: 'complete'; readonly id: number; readonly code: string; readonly cursor: number }
   | { readonly ask: 'inspect'; readonly id: number; readonly code: string; readonly cursor: number }
-  | { readonly ask: 'isComplete'; readonly id: number; readonly code: string };
+  | { readonly ask: 'isComplete'; readonly id: number; readonly code: string }
+  | { readonly ask: 'facts'; readonly id: number };
 
 /** How a cell ended. */
 export interface CellReply {
@@ -24,7 +27,7 @@ export interface CompleteReply {
 }
 
 export interface InspectReply {
-  readonly text: string | null;
+  readonly found: SymbolInfo | null;
 }
 
 export interface IsCompleteReply {
@@ -36,7 +39,7 @@ export interface IsCompleteReply {
 export type EngineReport =
   | { readonly tell: 'ready'; readonly compiler: string; readonly warning?: string }
   | { readonly tell: 'output'; readonly id: number; readonly output: CellOutput }
-  | { readonly tell: 'answer'; readonly id: number; readonly answer: CellReply | CompleteReply | InspectReply | IsCompleteReply };
+  | { readonly tell: 'answer'; readonly id: number; readonly answer: CellReply | CompleteReply | InspectReply | IsCompleteReply | RunFacts };
 
 /** What the engine needs to start, handed over in its first argument as JSON. */
 export interface EngineOptions {
