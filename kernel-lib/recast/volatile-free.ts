@@ -1,4 +1,4 @@
-import { cellState, column, resolveColumn, step, suiteOf, type Column, type Suite } from '../suite';
+import { cellState, column, derivedColumn, resolveColumn, step, suiteOf, type Column, type Suite } from '../suite';
 import { massFactor } from '../tables';
 import { totalIron } from './total-iron';
 
@@ -28,7 +28,7 @@ const neededOxides = new Set<string>(['SiO2', 'Al2O3', 'MgO', 'CaO', 'Na2O', 'K2
  * @param suite n samples with major oxides in wt %
  * @param options `iron`: `total-as-FeO` (default), `total-as-Fe2O3`, or `measured` (FeO and Fe2O3 kept where both are measured, else
  *   total as FeO)
- * @returns the suite with recast oxides (wt %, sum 100) and `SumAsGiven` (wt %: the sum before recasting)
+ * @returns the suite with recast oxides (wt %, sum 100) and `SumAsGiven` (wt %: the sum before recasting, with its 1σ)
  * @throws RangeError for an unknown option
  * @source Le Maitre et al. 2002 (recalculation to 100 % free of H2O and CO2)
  * @example volatileFree(suite, { iron: 'total-as-FeO' }).values('SiO2')
@@ -67,7 +67,7 @@ export function volatileFree(suite: Suite, options: { readonly iron?: IronBasis 
     else incomplete += gaps[i];
   }
   const recast = [...parts.values()].map((part) => recastColumn(part, sum, parts));
-  const sums = column({ symbol: 'SumAsGiven', values: sum, unit: 'wt%', states: sum.reduce((states, value, i) => ((states[i] = Number.isFinite(value) ? cellState.derived : cellState.missing), states), new Uint8Array(size)) });
+  const sums = derivedColumn('SumAsGiven', sum, 'wt%', sumSigma(parts.values(), sum));
   const columns = new Map(suite.columns);
   for (const symbol of ['FeOT', 'Fe2O3T', 'FeO', 'Fe2O3']) columns.delete(symbol);
   for (const entry of [...recast, sums]) columns.set(entry.symbol, entry);
@@ -102,6 +102,17 @@ function ironColumns(suite: Suite, allIron: Column, iron: IronBasis): readonly (
   const total: readonly [string, Column] = ['FeOT', where(allIron, 'FeOT', (i) => !both(i))];
   if (ferrous === undefined || ferric === undefined) return [total];
   return [['FeO', where(ferrous, 'FeO', both)], ['Fe2O3', where(ferric, 'Fe2O3', both)], total];
+}
+
+/** 1σ of the sum: oxides are measured apart, so their errors add in squares; an oxide without one adds none. */
+function sumSigma(parts: Iterable<Column>, sum: Float64Array): Float64Array | undefined {
+  let variance: Float64Array | undefined;
+  for (const { values, sigma } of parts) {
+    if (sigma === undefined) continue;
+    variance ??= new Float64Array(sum.length);
+    for (let i = 0; i < sum.length; i++) if (Number.isFinite(values[i]) && sigma[i] > 0) variance[i] += sigma[i] ** 2;
+  }
+  return variance?.map((each, i) => (Number.isFinite(sum[i]) ? Math.sqrt(each) : NaN));
 }
 
 /** value × 100 / sum for every cell, with limits likewise and 1σ propagated through the sum. */
