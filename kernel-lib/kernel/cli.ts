@@ -1,24 +1,13 @@
 #!/usr/bin/env node
-import { readFileSync } from 'node:fs';
-import { join } from 'node:path';
 import { Command } from 'commander';
+import { installCommand, listCommand, removeCommand, startKernel } from './command/kernel';
 import { runCommand, type RunCommand } from './command/run';
 import { startCommand } from './command/start';
+import type { Place } from './protocol/kernelspec';
+import { libraryVersion } from './version';
 
 /** Exit status for a command that could not begin: a bad option, a file that is not there. */
 const badUse = 2;
-
-function version(): string {
-  for (const up of ['..', join('..', '..')]) {
-    try {
-      const content = JSON.parse(readFileSync(join(__dirname, up, 'package.json'), 'utf8')) as { name?: string; version: string };
-      if (content.name === 'wedgework') return content.version;
-    } catch {
-      // Not at this height: the sources and the build lie at different ones.
-    }
-  }
-  return 'unknown';
-}
 
 const finish = (work: Promise<number>): Promise<void> =>
   work.then(
@@ -31,7 +20,7 @@ const finish = (work: Promise<number>): Promise<void> =>
 
 const program = new Command('wedgework')
   .description('Arc-lava geochemistry in TypeScript notebooks: from assay sheets to named rocks, series, sources, models and evidence.')
-  .version(version())
+  .version(libraryVersion())
   .showHelpAfterError()
   .exitOverride((error) => process.exit(error.exitCode === 0 ? 0 : badUse));
 
@@ -53,5 +42,21 @@ program
   .option('-k, --keep-going', 'run on after a cell that failed')
   .option('-q, --quiet', 'no progress lines, no summary')
   .action((notebook: string, options: RunCommand) => finish(runCommand(notebook, options)));
+
+const kernel = program.command('kernel').description('install, list or remove the Jupyter kernel');
+const placed = (command: Command): Command =>
+  command
+    .option('--user', "among the user's own kernels (the default)")
+    .option('--prefix <folder>', 'under a folder such as /usr/local')
+    .option('--venv [folder]', 'in a Python virtual environment: the active one, or the named one');
+/** The work starts inside the promise, so that a fault is told like any other. */
+const later = (work: () => number): Promise<void> => finish(Promise.resolve().then(work));
+placed(kernel.command('install').description('make the kernel known to Jupyter front ends; needs no Python')).action((options: Place) => later(() => installCommand(options)));
+placed(kernel.command('list').description('where the kernel is installed')).action((options: Place) => later(() => listCommand(options)));
+placed(kernel.command('remove').description('take the kernel away again')).action((options: Place) => later(() => removeCommand(options)));
+kernel
+  .command('start', { hidden: true })
+  .requiredOption('--connection-file <file>')
+  .action((options: { connectionFile: string }) => finish(startKernel(options.connectionFile)));
 
 void program.parseAsync();

@@ -33,7 +33,7 @@ export async function startCommand(sheet: string | undefined, options: { readonl
     progress.line(`From ${relative(process.cwd(), path)} to named rocks and diagrams`);
     // Relative to the notebook, so that the same run in another place gives the same file.
     const set = { sheet: slashes(relative(folder, path)), results: slashes(relative(folder, results)) };
-    const name = basename(mainNotebook, '.ipynb').replace(/^\d+-/, '');
+    const name = basename(mainNotebook, '.ipynb');
     const run = await runNotebook(join(folder, mainNotebook), {
       set,
       out: join(results, `${name}.ipynb`),

@@ -1,6 +1,7 @@
 import type { CellOutput, ErrorOutput } from '../output';
 import { richValues } from '../rich-value';
 import { openSessionLink } from '../session-link';
+import { callBefore } from './call-before';
 import { compilerError, scriptName, thrownError, type CompiledCell } from './cell-error';
 import type { CellReply, CompleteReply, InspectReply, IsCompleteReply } from './messages';
 import { StreamGate } from './stream-gate';
@@ -153,7 +154,11 @@ export class Session {
   }
 
   inspect(code: string, cursor: number): InspectReply {
-    return { text: this.executor.inspect(code, cursor) ?? null };
+    const found = this.executor.inspect(code, cursor);
+    if (found !== undefined) return { found };
+    // Inside the brackets of a call the question is about the function.
+    const call = callBefore(code, cursor);
+    return { found: (call === undefined ? undefined : this.executor.inspect(code, call)) ?? null };
   }
 
   isComplete(code: string): IsCompleteReply {

@@ -18,8 +18,12 @@ interface Conversion {
   lastExpressionVar?: string;
 }
 
+type TextParts = readonly { readonly text: string }[];
+
 interface QuickInfo {
-  readonly displayParts?: readonly { readonly text: string }[];
+  readonly displayParts?: TextParts;
+  readonly documentation?: TextParts;
+  readonly tags?: readonly { readonly name: string; readonly text?: TextParts }[];
 }
 
 interface Converter {
@@ -56,7 +60,6 @@ const tslabExecutor = require('tslab/dist/executor') as {
     console: { log(value: unknown): void; error(...values: unknown[]): void },
   ): Executor;
 };
-const tslabInspect = require('tslab/dist/inspect') as { printQuickInfo(info: QuickInfo): string };
 const tslabJupyter = require('tslab/dist/jupyter') as { lastWriteDisplayData: unknown };
 
 interface CompilerSystem {
@@ -95,12 +98,21 @@ export interface CellExecutor {
   /** Resolves to true when the cell ran to its end. Never settles when its run is terminated from another thread. */
   execute(source: string): Promise<boolean>;
   complete(source: string, position: number): { start: number; end: number; matches: { text: string; kind: string }[] };
-  inspect(source: string, position: number): string | undefined;
+  inspect(source: string, position: number): SymbolInfo | undefined;
   isComplete(source: string): { complete: boolean; indent: string };
   /** Rejects the await that the running cell hangs in. */
   interrupt(): void;
   close(): void;
 }
+
+/** What the compiler knows of a name in a cell. */
+export interface SymbolInfo {
+  readonly signature: string;
+  readonly documentation: string;
+  readonly tags: readonly { readonly name: string; readonly text: string }[];
+}
+
+const joinParts = (parts: TextParts | undefined): string => (parts ?? []).map(({ text }) => text).join('');
 
 /** Packages that a cell can import by name wherever its notebook lies, through the library's own installation. */
 const sharedPackages = ['wedgework', 'danfojs-node', 'tslab'];
@@ -146,7 +158,9 @@ export function openExecutor(folder: string, libraryRequire: NodeJS.Require, eve
     },
     inspect: (source, position) => {
       const info = executor.inspect(source, position);
-      return info && tslabInspect.printQuickInfo(info);
+      if (info === undefined) return undefined;
+      const tags = (info.tags ?? []).map(({ name, text }) => ({ name, text: joinParts(text) }));
+      return { signature: joinParts(info.displayParts), documentation: joinParts(info.documentation), tags };
     },
     isComplete: (source) => {
       const { completed, indent } = tslabConverter.isCompleteCode(source);

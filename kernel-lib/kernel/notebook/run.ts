@@ -1,5 +1,6 @@
 import { existsSync, readFileSync, statSync } from 'node:fs';
 import { basename, dirname, resolve } from 'node:path';
+import { writeWhole } from '../../display';
 import { EngineGone, EngineProcess } from '../engine/engine-process';
 import type { CellReply } from '../engine/messages';
 import type { CellOutput, ErrorOutput } from '../output';
@@ -9,7 +10,6 @@ import { OutputStore } from './cell-outputs';
 import { formatNotebook, NotebookFormatError, parseNotebook, type Notebook, type NotebookCell } from './document';
 import { notebookHtml } from './html';
 import { withParameters, type ParameterValue } from './parameters';
-import { writeWhole } from './write-whole';
 
 /** What a run tells while it goes on. */
 export type RunEvent =
