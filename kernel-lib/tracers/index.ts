@@ -1,7 +1,13 @@
 /** tracers/: ratios, normalised patterns, anomalies, slab contributions, isotopes. */
 export * from './anomalies';
+export { fluxedWedgeMelt, wedgeParameterNames, type FluxedWedgeOptions, type WedgeMelt, type WedgeMeltingStyle, type WedgeParameterName, type WedgeParameters } from './fluxed-wedge';
+export * from './ionic-radii';
 export * from './named-quantities';
 export * from './pattern';
 export * from './ratios';
 export * from './reference';
+export * from './slab-partitioning';
 export * from './usual-ratios';
+export * from './wedge-end-members';
+export * from './wedge-fit';
+export type { OneWedgeFit, WedgeEstimate, WedgeStatus } from './wedge-fit-one';
