@@ -1,12 +1,15 @@
 /** tracers/: ratios, normalised patterns, anomalies, slab contributions, isotopes. */
 export * from './anomalies';
+export { basaltFilter, type SampleFilter } from './basalt-filter';
 export { fluxedWedgeMelt, wedgeParameterNames, type FluxedWedgeOptions, type WedgeMelt, type WedgeMeltingStyle, type WedgeParameterName, type WedgeParameters } from './fluxed-wedge';
 export * from './ionic-radii';
+export { mantleArray, type ArrayLine, type ArrayOptions } from './mantle-array';
 export * from './named-quantities';
 export * from './pattern';
 export * from './ratios';
 export * from './reference';
 export * from './slab-partitioning';
+export * from './slab-share';
 export * from './usual-ratios';
 export * from './wedge-end-members';
 export * from './wedge-fit';
