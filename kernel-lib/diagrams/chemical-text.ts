@@ -48,6 +48,13 @@ export function expressionText(expression: string): string {
   return written.replace(/\u0001(.)/gu, (_, code: string) => kept[code.charCodeAt(0) - 0xe000]);
 }
 
+const oxidePattern = new RegExp(`(?<![A-Za-z0-9_])(?:${escaped.filter((symbol) => /\d|FeOT/.test(symbol)).join('|')})(?![A-Za-z0-9])`, 'g');
+
+/** A sentence with its oxides and isotope ratios set as print sets them; everything else is left alone. */
+export function dressText(sentence: string): string {
+  return sentence.replace(oxidePattern, symbolText);
+}
+
 /** A unit as print sets it. */
 export function unitText(unit: string): string {
   return unit === 'wt%' ? 'wt %' : unit;

@@ -26,8 +26,6 @@ export interface Diagram extends Showable {
   readonly description: string;
   /** `application/vnd.vegalite.v5+json`, `image/png` (base64, two pixels to one of the page) and `text/plain`. */
   toMimeBundle(): Promise<MimeBundle>;
-  /** Notebook metadata by MIME type: width and height of the PNG in pixels of the page. */
-  toMimeMetadata(): Promise<Readonly<Record<string, unknown>>>;
   /** The picture as SVG text. */
   svg(): Promise<string>;
   /** The picture as PNG bytes; `scale` is the number of pixels to one of the page (default 2). */
@@ -56,10 +54,6 @@ export function diagramOf(parts: Pick<Diagram, 'name' | 'spec' | 'lineage' | 'co
       const { bytes } = await paint();
       const small = JSON.stringify(parts.spec).length <= mostSpecBytes;
       return { ...(small ? { [vegaLiteType]: parts.spec } : {}), 'image/png': Buffer.from(bytes).toString('base64'), 'text/plain': parts.description };
-    },
-    async toMimeMetadata() {
-      const { width, height } = await paint();
-      return { 'image/png': { width, height } };
     },
   };
   const diagram = { ...parts };

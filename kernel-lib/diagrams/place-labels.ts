@@ -126,8 +126,9 @@ export class LabelPlacer {
    *
    * @param polygon the visible part of the field, in pixels
    * @param ways texts as lines, best first
+   * @param preferred where it would stand best
    */
-  placeInside(polygon: readonly Point[], ways: readonly (readonly string[])[], style: TextStyle): PlacedLabel | undefined {
+  placeInside(polygon: readonly Point[], ways: readonly (readonly string[])[], style: TextStyle, preferred?: Point): PlacedLabel | undefined {
     if (polygon.length < 3) return undefined;
     const xs = polygon.map(([x]) => x);
     const ys = polygon.map(([, y]) => y);
@@ -136,20 +137,24 @@ export class LabelPlacer {
     ways.forEach((lines, rank) => {
       const { width, height } = textBlock(lines, style);
       const step = Math.max(4, Math.min(12, (bounds.right - bounds.left) / 40));
-      const middleX = (bounds.left + bounds.right) / 2;
-      const middleY = (bounds.top + bounds.bottom) / 2;
+      const middle = preferred !== undefined && isInside(preferred, polygon) ? preferred : ([(bounds.left + bounds.right) / 2, (bounds.top + bounds.bottom) / 2] as const);
+      const consider = (x: number, y: number): void => {
+        const box = { left: x - width / 2, right: x + width / 2, top: y - height / 2, bottom: y + height / 2 };
+        const away = Math.hypot((x - middle[0]) / (bounds.right - bounds.left), (y - middle[1]) / (bounds.bottom - bounds.top));
+        const score = 4 * this.pointsUnder(box) + 3 * away + 2.5 * rank;
+        if (best !== undefined && score >= best.score) return;
+        if (!isInside([x, y], polygon) || !this.isFree(box) || crosses(polygon, box)) return;
+        best = { label: { x, y, lines, box }, score };
+      };
+      consider(...middle);
       for (let y = bounds.top + height / 2; y <= bounds.bottom - height / 2; y += step) {
-        for (let x = bounds.left + width / 2; x <= bounds.right - width / 2; x += step) {
-          const box = { left: x - width / 2, right: x + width / 2, top: y - height / 2, bottom: y + height / 2 };
-          const covered = this.pointsUnder(box);
-          const away = Math.hypot((x - middleX) / (bounds.right - bounds.left), (y - middleY) / (bounds.bottom - bounds.top));
-          const score = 4 * covered + 3 * away + 2.5 * rank;
-          if (best !== undefined && score >= best.score) continue;
-          if (!isInside([x, y], polygon) || !this.isFree(box) || crosses(polygon, box)) continue;
-          best = { label: { x, y, lines, box }, score };
-        }
+        for (let x = bounds.left + width / 2; x <= bounds.right - width / 2; x += step) consider(x, y);
       }
     });
+    return this.take(best);
+  }
+
+  private take(best: { readonly label: PlacedLabel } | undefined): PlacedLabel | undefined {
     if (best !== undefined) this.taken.push(best.label.box);
     return best?.label;
   }
@@ -173,8 +178,7 @@ export class LabelPlacer {
         if ((best === undefined || score < best.score) && this.isFree(box)) best = { label: { x: cx, y: cy, lines, box }, score };
       });
     });
-    if (best !== undefined) this.taken.push(best.label.box);
-    return best?.label;
+    return this.take(best);
   }
 }
 

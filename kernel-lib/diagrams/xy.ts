@@ -4,8 +4,10 @@ import type { Diagram } from './diagram';
 import { figure } from './figure';
 import { windowAround, type Axis, type Frame, type WindowHints } from './frame';
 import { linesLayer, type LineShape } from './layers/lines';
-import { markersLayer, pathsLayer, type MarkerShape, type PathShape } from './layers/markers';
+import { markersLayer, pathsLayer, type MarkerShape } from './layers/markers';
+import { namesLayer } from './layers/names';
 import { samplesLayer } from './layers/samples';
+import { pathShapes, type PathInput } from './model-paths';
 import { samplePoints, type SampleOptions } from './sample-points';
 
 /** What the diagram of any two quantities takes, besides what all diagrams take. */
@@ -18,7 +20,8 @@ export interface XyOptions extends SampleOptions {
   readonly reference?: (symbol: string) => number;
   /** Words on the axes instead of the expressions. */
   readonly axisTitles?: { readonly x?: string; readonly y?: string };
-  readonly paths?: readonly PathShape[];
+  /** Paths of models, or of points in the units of the axes. */
+  readonly paths?: readonly PathInput[];
   readonly reservoirs?: readonly MarkerShape[];
   readonly lines?: readonly LineShape[];
   /** Sentences for the caption. */
@@ -35,12 +38,15 @@ export interface XyOptions extends SampleOptions {
  * @example diagrams.xy(suite, 'SiO2', 'Ba/Th', { group: 'volcano' })
  */
 export function xy(suite: Suite, x: string, y: string, options: XyOptions = {}): Diagram {
-  const { scale = 'linear', named, reference, axisTitles = {}, paths = [], reservoirs = [], lines = [] } = options;
+  const { scale = 'linear', named, reference, axisTitles = {}, reservoirs = [], lines = [] } = options;
   const scales = typeof scale === 'string' ? { x: scale, y: scale } : { x: scale.x ?? 'linear', y: scale.y ?? 'linear' };
   for (const [axis, kind] of Object.entries(scales)) {
     if (kind !== 'linear' && kind !== 'log') throw new RangeError(`xy: the scale of ${axis} must be "linear" or "log", not "${String(kind)}".`);
   }
   const set = samplePoints('xy', suite, { x, y, named, reference, axisTitles: [axisTitles.x ?? axisTitle(x), axisTitles.y ?? axisTitle(y)] }, options);
+  const { shapes: paths, notes } = pathShapes('xy', options.paths, (liquid) => ({
+    x: evaluate(liquid, x, { named, reference, sigma: false }).values, y: evaluate(liquid, y, { named, reference, sigma: false }).values,
+  }));
   const units = [x, y].map((text) => evaluate(suite, text, { named, reference, sigma: false }).unit);
   const extra = (at: 0 | 1) => [...paths, ...lines].map(({ points }) => points.map((point) => point[at]));
   const axis = (side: 'x' | 'y', values: Float64Array): Axis => {
@@ -54,8 +60,8 @@ export function xy(suite: Suite, x: string, y: string, options: XyOptions = {}):
   return figure({
     name: `${frame.y.title} against ${frame.x.title}`,
     title: options.title,
-    panels: [{ frame, layers: [linesLayer(lines), samplesLayer(set.points, options), pathsLayer(paths), markersLayer(reservoirs)] }],
-    caption: [...(options.caption ?? []), ...set.notes],
+    panels: [{ frame, layers: [linesLayer(lines), samplesLayer(set.points, options), ...(options.names === undefined ? [] : [namesLayer(set.points, suite.samples, options.names)]), pathsLayer(paths), markersLayer(reservoirs)] }],
+    caption: [...(options.caption ?? []), ...notes, ...set.notes],
     counts: set.counts(frame),
     legendWidth: set.legendWidth,
     lineage: [...suite.lineage, step('diagrams.xy', { x, y, scale: scales })],

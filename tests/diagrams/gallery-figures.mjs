@@ -8,7 +8,27 @@ export function figures(ww) {
   const oneGroup = madeSuite(ww, { samples: 60, groups: 1 });
   const single = five.rows([3]);
   const none = five.rows([]);
+  const missing = ww.suiteOf({ columns: [...five.columns.values()].map((each) => ww.column({ symbol: each.symbol, unit: each.unit, values: new Float64Array(five.size).fill(NaN) })), labels: five.labels });
+  const wide = madeSuite(ww, { samples: 1000, groups: 5, seed: 3 });
   return {
+    'tas-five': () => diagrams.tas(five, { group: 'volcano' }),
+    'tas-whole': () => diagrams.tas(five, { group: 'volcano', window: 'whole', also: ['alkalinity'] }),
+    'tas-one': () => diagrams.tas(oneGroup),
+    'tas-twelve': () => diagrams.tas(twelve, { group: 'volcano' }),
+    'tas-single': () => diagrams.tas(single, { group: 'volcano', names: 'all' }),
+    'tas-none': () => diagrams.tas(none, { group: 'volcano' }),
+    'tas-missing': () => diagrams.tas(missing, { group: 'volcano' }),
+    'tas-thousand': () => diagrams.tas(wide, { group: 'volcano' }),
+    'tas-errors': () => diagrams.tas(five.where({ volcano: ['Ketu', 'Halvo'] }), { group: 'volcano', errors: 'ellipses', window: { x: [52, 64], y: [2, 7] } }),
+    'tas-small': () => diagrams.tas(five, { group: 'volcano', width: 260, height: 200 }),
+    'tas-names': () => diagrams.tas(five.where({ volcano: 'Halvo' }), { names: 'all' }),
+    'ks-five': () => diagrams.potassiumSilica(five, { group: 'volcano' }),
+    'ks-whole': () => diagrams.potassiumSilica(twelve, { group: 'volcano', window: 'whole' }),
+    'miyashiro-five': () => diagrams.ironEnrichment(five, { group: 'volcano' }),
+    'afm-five': () => diagrams.afm(five, { group: 'volcano' }),
+    'afm-twelve': () => diagrams.afm(twelve, { group: 'volcano' }),
+    'afm-none': () => diagrams.afm(none),
+    'afm-many': () => diagrams.afm(madeSuite(ww, { samples: 8000, groups: 5 })),
     'xy-plain': () => diagrams.xy(oneGroup, 'SiO2', 'MgO'),
     'xy-five': () => diagrams.xy(five, 'SiO2', 'K2O', { group: 'volcano', errors: 'bars', title: 'Oruvai Arc' }),
     'xy-ellipses': () => diagrams.xy(five, 'SiO2', 'K2O', { group: 'volcano', errors: 'ellipses' }),
@@ -20,5 +40,18 @@ export function figures(ww) {
     'xy-single': () => diagrams.xy(single, 'SiO2', 'MgO', { group: 'volcano' }),
     'xy-none': () => diagrams.xy(none, 'SiO2', 'MgO', { group: 'volcano' }),
     'xy-many': () => diagrams.xy(madeSuite(ww, { samples: 10000, groups: 5 }), 'SiO2', 'MgO', { group: 'volcano' }),
+    ...Object.fromEntries(ww.schemes.list().schemes.map(({ key }) => [`scheme-${key}`, () => diagrams.scheme(five, key, { group: 'volcano', window: 'whole' })])),
+    'tas-path': () => diagrams.tas(five, { group: 'volcano', paths: [crystallisation(ww, five)] }),
+    'xy-path': () => diagrams.xy(five, 'Yb', 'Sr', { group: 'volcano', paths: [crystallisation(ww, five)] }),
   };
+}
+
+/** A simple path: a parent from which minerals are taken away. */
+function crystallisation(ww, suite) {
+  const steps = Array.from({ length: 41 }, (_, i) => 1 - 0.015 * i);
+  const F = Float64Array.from(steps);
+  const along = (start, D) => Float64Array.from(steps, (f) => start * f ** (D - 1));
+  const made = { SiO2: [50, 0.72], TiO2: [1, 1], Al2O3: [17.5, 1.1], FeOT: [10, 1.3], MgO: [7.8, 2.6], CaO: [10.8, 1.4], Na2O: [2.3, 0.4], K2O: [0.7, 0.05], P2O5: [0.15, 0.1], Yb: [2, 0.2], Sr: [360, 1.3] };
+  const liquid = ww.suiteOf({ columns: Object.entries(made).map(([symbol, [start, D]]) => ww.column({ symbol, values: along(start, D) })), labels: { sample: steps.map((f) => `F ${f}`) } });
+  return { process: 'Rayleigh crystallisation', F, meaning: 'liquid left', liquid, coefficients: [], notes: [], lineage: [] };
 }

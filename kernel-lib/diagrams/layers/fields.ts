@@ -11,6 +11,8 @@ export interface FieldShape {
   readonly symbol?: string;
   /** Corners in data coordinates. */
   readonly polygon: readonly Point[];
+  /** Where the name stands best (data coordinates), and how it is broken there. */
+  readonly label?: { readonly x: number; readonly y: number; readonly text: readonly string[] };
 }
 
 export interface FieldsOptions {
@@ -59,7 +61,10 @@ function placeNames({ frame, placer }: Canvas, fields: readonly FieldShape[]): P
   visible.sort((a, b) => polygonArea(a.polygon) - polygonArea(b.polygon));
   const names: PlacedLabel[] = [];
   for (const { field, polygon } of visible) {
-    const placed = placer.placeInside(polygon, waysToBreak(field.name, style), style)
+    const { label } = field;
+    const ways = [...(label === undefined ? [] : [label.text]), ...waysToBreak(field.name, style)];
+    const best = label === undefined ? undefined : toPixels(frame, [label.x, label.y]);
+    const placed = placer.placeInside(polygon, ways, style, best)
       ?? (field.symbol === undefined ? undefined : placer.placeInside(polygon, [[field.symbol]], style));
     if (placed !== undefined) names.push(placed);
   }

@@ -32,6 +32,8 @@ export interface SamplesOptions {
   readonly binAbove?: number;
   /** Whether this layer carries the legend and the filter that goes with it (default true); one panel of a figure does. */
   readonly legend?: boolean;
+  /** Zoom and pan by mouse (default true); triangles have none, because their ticks and corners stand outside the frame. */
+  readonly zoom?: boolean;
 }
 
 const mostEllipses = 600;
@@ -92,12 +94,16 @@ function drawMarkers({ frame, panel }: Canvas, points: SamplePoints, options: Sa
       tooltip,
     }),
     params: [
-      { name: `zoom${panel}`, select: 'interval', bind: 'scales' },
+      ...zoomParam(panel, options),
       ...(filter === undefined ? [] : [{ name: filter, select: { type: 'point', fields: ['g'] }, bind: 'legend' }]),
     ],
   };
   const errors = options.errors === undefined || options.errors === 'none' ? [] : [errorUnit(frame, points, options.errors, opacity)];
   return [...errors, ...(bounded.length === 0 ? [] : boundedUnits(frame, bounded, area, tooltip, opacity)), markers];
+}
+
+function zoomParam(panel: number, { zoom = true }: SamplesOptions): VegaSpec[] {
+  return zoom ? [{ name: `zoom${panel}`, select: 'interval', bind: 'scales' }] : [];
 }
 
 /** A bar at the limit, and an arrow away from it to where the value lies. */
@@ -173,6 +179,6 @@ function drawBins({ frame, panel }: Canvas, { x, y }: SamplePoints, options: Sam
       color: { field: 'n', type: 'quantitative', scale: { type: 'log', scheme: 'viridis', reverse: true, domain: [1, Math.max(2, most)] }, legend },
       tooltip: [{ field: 'n', type: 'quantitative', title: 'samples' }],
     },
-    params: [{ name: `zoom${panel}`, select: 'interval', bind: 'scales' }],
+    params: zoomParam(panel, options),
   }];
 }
