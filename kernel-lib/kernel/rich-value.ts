@@ -13,7 +13,6 @@ export interface RichValue {
 const mostEntry = 8_000_000;
 const mostPlainText = 20_000;
 const shownRows = 60;
-const vegaLite = 'application/vnd.vegalite.v5+json';
 
 /**
  * What to show for a value: its own bundle if it has one, a table for a data frame, text for anything else. Promises are waited for.
@@ -24,9 +23,15 @@ export async function richValues(value: unknown): Promise<readonly RichValue[]> 
   const settled: unknown = await value;
   if (settled === undefined) return [];
   if (Array.isArray(settled) && settled.length > 0 && settled.length <= 20 && settled.every(hasPicture)) {
-    return Promise.all(settled.map(async (entry) => finish(await bundleOf(entry))));
+    return Promise.all(settled.map(richValue));
   }
-  return [finish(await bundleOf(settled))];
+  return [await richValue(settled)];
+}
+
+async function richValue(value: unknown): Promise<RichValue> {
+  const { toMimeMetadata } = (value ?? {}) as { toMimeMetadata?: () => RichValue['metadata'] | Promise<RichValue['metadata']> };
+  const data = finish(await bundleOf(value));
+  return { data, metadata: typeof toMimeMetadata === 'function' ? await toMimeMetadata.call(value) : {} };
 }
 
 interface DisplayConvention {
@@ -76,8 +81,8 @@ function seriesView(value: unknown) {
   return { columns: ['', name], rows: values.slice(0, shownRows).map((entry, i) => [cell(index[i]), cell(entry)]), totalRows: values.length };
 }
 
-/** The bundle as it may travel: plain JSON, nothing too large, and the size at which a double-density picture is to be drawn. */
-function finish(bundle: MimeBundle): RichValue {
+/** The bundle as it may travel: plain JSON, and nothing too large. */
+function finish(bundle: MimeBundle): RichValue['data'] {
   if (typeof bundle !== 'object' || bundle === null) throw new TypeError('toMimeBundle() must give an object from MIME type to content.');
   const data: Record<string, unknown> = {};
   const left: string[] = [];
@@ -92,13 +97,7 @@ function finish(bundle: MimeBundle): RichValue {
     const text = `Not shown, too large for a notebook: ${left.join(', ')}. Show fewer samples, or save it to a file.`;
     data['text/plain'] = typeof data['text/plain'] === 'string' ? `${data['text/plain']}\n${text}` : text;
   }
-  const png = data['image/png'];
-  const metadata: Record<string, unknown> = {};
-  if (typeof png === 'string' && (vegaLite in bundle)) {
-    const size = pngSize(png);
-    if (size !== undefined) metadata['image/png'] = { width: Math.round(size.width / 2), height: Math.round(size.height / 2) };
-  }
-  return { data, metadata };
+  return data;
 }
 
 /** Width and height from a PNG's first chunk. */

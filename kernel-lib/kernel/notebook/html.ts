@@ -113,7 +113,7 @@ function pictureHtml(address: string, text: string, width: number | undefined): 
   return `<figure><img src="${address}" alt="${escapeHtml(described.slice(0, 500))}"${width === undefined ? '' : ` width="${width}"`}></figure>`;
 }
 
-/** The width to draw at: what the output says, or half of the pixels of a double-density picture. */
+/** The width to draw at: what the output says, or the picture's own. */
 function pictureWidth(output: NotebookOutput, type: string, base64: string): number | undefined {
   const metadata = output.metadata as Record<string, { width?: unknown } | undefined> | undefined;
   const width = metadata?.[type]?.width;
