@@ -1,10 +1,13 @@
 /** models/: how a magma changed: forward paths, and inverse fits that test them. */
 export { assimilate, type AssimilateOptions } from './assimilate';
+export type { BalanceErrors, BalanceMinerals, BalanceOptions, MineralRange } from './balance-input';
 export { crystalliseInSitu, refillChamber, refineByZones, type InSituOptions, type RefilledChamberOptions, type ZoneRefiningOptions } from './chambers';
 export { MissingCoefficientsError, type Assemblage, type MissingCoefficient, type OwnCoefficient, type OwnCoefficients, type UsedCoefficient } from './coefficients';
 export { crystallise, type CrystalliseOptions } from './crystallise';
 export { isotopeElement } from './isotopes';
+export { massBalance, type BalanceEstimate, type BalancePhase, type BalanceResidual, type MassBalance, type MassBalanceOptions } from './mass-balance';
 export { melt, type MeltingFacies, type MeltOptions } from './melt';
+export { mineralOf, solidSolution, type ChosenMineral, type MineralChoice } from './minerals';
 export { mix, mixingHyperbola, type MixingEnd, type MixingHyperbola, type MixOptions } from './mix';
 export type { Composition } from './one-analysis';
 export type { ModelPath } from './path';
