@@ -1,1 +1,6 @@
-export {};
+/** assay/: spreadsheets in (layout, headers, units, detection limits), the import report, and sheets out again. */
+export { AssayError } from './errors';
+export type { ColumnSetting } from './plan-columns';
+export { readAssays, type Assays, type ReadAssaysOptions } from './read-assays';
+export type { ImportedColumn, ImportReport, SheetSummary } from './report';
+export * from './sheet-grids';

@@ -1,5 +1,5 @@
 import { open, stat } from 'node:fs/promises';
-import { basename, extname } from 'node:path';
+import { basename } from 'node:path';
 import { noteInput } from '../suite';
 import { DelimitedGrid, guessDelimiter } from './delimited';
 import { decodeText } from './encoding';

@@ -1,0 +1,256 @@
+import { cellLook, TurnedGrid, type Grid } from './grid';
+import { readHeading, type Heading } from './heading';
+import { plainSigns, spellingKey, vocabulary } from './spellings';
+
+/** Where things stand in a sheet. Rows and columns are counted from 0 in `grid`, which is turned where the samples stand in columns. */
+export interface Layout {
+  readonly grid: Grid;
+  readonly samplesIn: 'rows' | 'columns';
+  /** Rows of the header block, by what they hold. */
+  readonly header: { readonly analyte: number; readonly unit?: number; readonly method?: number; readonly limit?: number; readonly upperLimit?: number };
+  /** The head of each column as written. */
+  readonly heads: readonly string[];
+  /** Unit and method written beside the head in rows of their own ('' where none), and the detection limits. */
+  readonly units: readonly string[];
+  readonly methods: readonly string[];
+  /** Rows that hold samples. */
+  readonly body: Uint32Array;
+  /** Rows left out, with the reason. */
+  readonly skipped: readonly { readonly row: number; readonly why: string; readonly text: string }[];
+  /** All text that stands outside the table: titles above, footnotes below. */
+  readonly prose: readonly string[];
+  /** The head row is in capitals throughout. */
+  readonly upperCase: boolean;
+}
+
+const searchRows = 60;
+const searchColumns = 600;
+
+/** Headings are read once for each text: a sheet repeats them. */
+class HeadingReader {
+  private readonly known = new Map<string, Heading>();
+
+  read(text: string, upperCase = false): Heading {
+    const key = upperCase ? `^${text}` : text;
+    let heading = this.known.get(key);
+    if (heading === undefined) this.known.set(key, (heading = readHeading(text, upperCase)));
+    return heading;
+  }
+}
+
+interface HeadRow {
+  readonly row: number;
+  readonly analytes: number;
+  readonly upperCase: boolean;
+}
+
+/**
+ * Finds the table in a sheet: the head row is the row (or column, where the samples stand side by side) that names the most analytes.
+ *
+ * @returns undefined when no row and no column names an analyte
+ */
+export function findLayout(sheet: Grid, options: { readonly samplesIn?: 'rows' | 'columns'; readonly headerRow?: number } = {}): Layout | undefined {
+  const reader = new HeadingReader();
+  const turned = new TurnedGrid(sheet);
+  const inRows = options.samplesIn === 'columns' ? undefined : bestHeadRow(sheet, reader, options.headerRow);
+  const inColumns = options.samplesIn === 'rows' || options.headerRow !== undefined ? undefined : bestHeadRow(turned, reader);
+  if (inRows === undefined && inColumns === undefined) return undefined;
+  // Sample names can look like analytes (`B`, `V-51`), so a column must name clearly more of them than any row does.
+  if (inColumns !== undefined && inColumns.analytes > 1.5 * (inRows?.analytes ?? 0)) return layOut(turned, inColumns, reader, 'columns');
+  return layOut(sheet, inRows!, reader, 'rows');
+}
+
+function bestHeadRow(grid: Grid, reader: HeadingReader, only?: number): HeadRow | undefined {
+  let best: HeadRow | undefined;
+  const columns = Math.min(grid.columns, searchColumns);
+  for (let row = only ?? 0; row < Math.min(grid.rows, only === undefined ? searchRows : only + 1); row++) {
+    const texts: string[] = [];
+    for (let column = 0; column < columns; column++) {
+      const look = grid.look(row, column);
+      if (look === cellLook.text) texts.push(grid.text(row, column));
+    }
+    const lettered = texts.filter((text) => /\p{L}{2}/u.test(text));
+    const upperCase = lettered.length >= 3 && lettered.every((text) => !/\p{Ll}/u.test(text.replace(/\b(wt|ppm|ppb|pct)\b/gi, '')));
+    const analytes = new Set<string>();
+    let labels = 0;
+    for (const text of texts) {
+      const heading = reader.read(text, upperCase);
+      if (heading.role === 'analyte') analytes.add(heading.symbol);
+      else if (heading.role === 'label' || heading.role === 'quantity') labels++;
+    }
+    const count = analytes.size + (analytes.size > 0 && labels > 0 ? 0.5 : 0);
+    if (count > 0 && count > (best?.analytes ?? 0)) best = { row, analytes: count, upperCase };
+  }
+  return best;
+}
+
+function layOut(grid: Grid, head: HeadRow, reader: HeadingReader, samplesIn: 'rows' | 'columns'): Layout {
+  const columns = grid.columns;
+  const words = vocabulary();
+  const rowTexts = (row: number) => Array.from({ length: columns }, (_, column) => grid.text(row, column));
+  const heads = rowTexts(head.row);
+  const isAnalyte = heads.map((text) => reader.read(text, head.upperCase).role === 'analyte');
+  const kindOf = (row: number) => headerKind(grid, row, isAnalyte, words);
+  const header: { analyte: number; unit?: number; method?: number; limit?: number; upperLimit?: number } = { analyte: head.row };
+  let top = head.row;
+  for (let row = head.row - 1; row >= 0 && row >= head.row - 4; row--) {
+    const kind = kindOf(row);
+    if (kind === undefined || header[kind] !== undefined) break;
+    header[kind] = row;
+    top = row;
+  }
+  let bottom = head.row;
+  for (let row = head.row + 1; row < Math.min(grid.rows, head.row + 5); row++) {
+    const kind = kindOf(row);
+    if (kind === undefined) {
+      if (isBlank(grid, row)) continue;
+      break;
+    }
+    if (header[kind] !== undefined) break;
+    header[kind] = row;
+    bottom = row;
+  }
+  const unitTexts = header.unit === undefined ? [] : filled(rowTexts(header.unit), isAnalyte);
+  const methodTexts = header.method === undefined ? [] : filled(rowTexts(header.method), isAnalyte);
+  // A label's name may stand in another row of the header block than the analytes.
+  for (let column = 0; column < columns; column++) {
+    if (heads[column] !== '' && words.headerRows.get(spellingKey(heads[column])) === undefined) continue;
+    for (const row of [header.unit, header.method, header.limit]) {
+      const text = row === undefined ? '' : grid.text(row, column);
+      const key = spellingKey(text);
+      if (heads[column] === '' || words.headerRows.has(spellingKey(heads[column]))) {
+        if (text !== '' && grid.look(row!, column) === cellLook.text && !words.headerRows.has(key) && !words.units.has(key) && !words.methods.has(key)) heads[column] = text;
+      }
+    }
+  }
+  const prose: string[] = [];
+  for (let row = 0; row < top; row++) for (const text of rowTexts(row)) if (text !== '') prose.push(text);
+  const { body, skipped, limit, upperLimit } = findBody(grid, bottom + 1, heads, isAnalyte, words);
+  for (const { why, text } of skipped) if (why === 'no analysis in it') prose.push(text);
+  return {
+    grid, samplesIn, heads, body, skipped, prose, upperCase: head.upperCase,
+    header: { ...header, limit: header.limit ?? limit, upperLimit: header.upperLimit ?? upperLimit },
+    units: heads.map((_, column) => unitTexts[column] ?? ''),
+    methods: heads.map((_, column) => methodTexts[column] ?? ''),
+  };
+}
+
+type Words = ReturnType<typeof vocabulary>;
+
+function isBlank(grid: Grid, row: number): boolean {
+  for (let column = 0; column < grid.width(row); column++) if (grid.look(row, column) !== cellLook.empty) return false;
+  return true;
+}
+
+/** What a row beside the head row holds, by its first word or by what stands under the analytes. */
+function headerKind(grid: Grid, row: number, isAnalyte: readonly boolean[], words: Words): 'unit' | 'method' | 'limit' | 'upperLimit' | undefined {
+  let named: 'unit' | 'method' | 'limit' | 'upperLimit' | undefined;
+  let filledCells = 0;
+  let units = 0;
+  let methods = 0;
+  let numbers = 0;
+  for (let column = 0; column < isAnalyte.length; column++) {
+    const look = grid.look(row, column);
+    if (look === cellLook.empty) continue;
+    if (look === cellLook.text) {
+      const text = grid.text(row, column);
+      const key = spellingKey(text);
+      if (!isAnalyte[column]) {
+        const kind = words.headerRows.get(key);
+        if (kind !== undefined && kind !== 'analyte') named ??= kind;
+        continue;
+      }
+      filledCells++;
+      if (words.units.has(unitKey(text))) units++;
+      else if (words.methods.has(key) || /^(?=.*\d)[A-Z0-9]+([-/][A-Z0-9]+)*$/.test(text) || /^[A-Z]{2,}([-/ ][A-Z0-9]+)*$/.test(text)) methods++;
+    } else if (isAnalyte[column]) {
+      filledCells++;
+      numbers++;
+    }
+  }
+  if (named !== undefined && filledCells > 0) return named;
+  if (filledCells === 0 || numbers > 0) return undefined;
+  if (units >= 0.6 * filledCells) return 'unit';
+  // A row of detection limits or of missing values must not pass for a row of methods.
+  return methods >= 0.6 * filledCells ? 'method' : undefined;
+}
+
+/** The key of a unit that may stand in brackets of its own. */
+export function unitKey(text: string): string {
+  return spellingKey(plainSigns(text).replace(/^[([]\s*|\s*[)\]]$/g, '').replace(/^in /i, ''));
+}
+
+/** A row of units or methods in which a merged cell stands for those to its right: filled to the right where few cells are written. */
+function filled(texts: readonly string[], isAnalyte: readonly boolean[]): string[] {
+  const written = texts.filter((text, column) => text !== '' && isAnalyte[column]).length;
+  const wanted = isAnalyte.filter(Boolean).length;
+  if (written * 2 > wanted) return [...texts];
+  let last = '';
+  return texts.map((text, column) => {
+    if (text !== '') last = text;
+    else if (!isAnalyte[column]) last = '';
+    return text !== '' ? text : isAnalyte[column] ? last : '';
+  });
+}
+
+function findBody(grid: Grid, from: number, heads: readonly string[], isAnalyte: readonly boolean[], words: Words) {
+  const body: number[] = [];
+  const skipped: { row: number; why: string; text: string }[] = [];
+  let limit: number | undefined;
+  let upperLimit: number | undefined;
+  const columns = heads.length;
+  const analyteColumns = heads.flatMap((_, column) => (isAnalyte[column] ? [column] : []));
+  const labelColumns = heads.flatMap((_, column) => (isAnalyte[column] ? [] : [column]));
+  for (let row = from; row < grid.rows; row++) {
+    let numbers = 0;
+    for (const column of analyteColumns) {
+      const look = grid.look(row, column);
+      if (look === cellLook.number || look === cellLook.below) {
+        numbers++;
+        break;
+      }
+    }
+    const first = firstText(grid, row, labelColumns);
+    if (numbers > 0) {
+      const kind = first === '' ? undefined : words.headerRows.get(spellingKey(first));
+      if (kind === 'limit' || kind === 'upperLimit') {
+        if (kind === 'limit') limit ??= row;
+        else upperLimit ??= row;
+        skipped.push({ row, why: kind === 'limit' ? 'detection limits' : 'upper limits', text: first });
+      } else body.push(row);
+      continue;
+    }
+    let texts = 0;
+    let same = 0;
+    let unitCells = 0;
+    for (const column of analyteColumns) {
+      const text = grid.text(row, column);
+      if (text === '') continue;
+      texts++;
+      if (text === heads[column]) same++;
+      if (words.units.has(unitKey(text))) unitCells++;
+    }
+    let labels = 0;
+    let longText = '';
+    for (const column of labelColumns) {
+      const text = grid.text(row, column);
+      if (text === '') continue;
+      labels++;
+      longText = longText === '' ? text : `${longText} ${text}`;
+    }
+    if (texts === 0 && labels === 0) continue;
+    if (texts > 0 && same >= 0.5 * texts && same > 0) skipped.push({ row, why: 'the head row again', text: longText });
+    else if (texts > 0 && unitCells >= 0.6 * texts) skipped.push({ row, why: 'the units again', text: longText });
+    else if (texts > 0 || labels > 1 || (labels === 1 && labelColumns.length === 1 && !/\s/.test(longText) && longText.length <= 24)) body.push(row);
+    else skipped.push({ row, why: 'no analysis in it', text: longText || grid.text(row, 0) });
+  }
+  void columns;
+  return { body: Uint32Array.from(body), skipped, limit, upperLimit };
+}
+
+function firstText(grid: Grid, row: number, columns: readonly number[]): string {
+  for (const column of columns) {
+    if (grid.look(row, column) === cellLook.text) return grid.text(row, column);
+  }
+  return '';
+}

@@ -1,0 +1,380 @@
+import { findAnalyte, isMassUnit, massUnitFactor, type MassUnit } from '../chemistry';
+import { massFactor } from '../tables';
+import { AssayError } from './errors';
+import { cellLook, columnLetters } from './grid';
+import { ownTag, readHeading, type Heading } from './heading';
+import type { Layout } from './layout';
+import { unitKey } from './layout';
+import { plausibleRanges, spellingKey, vocabulary, type SpelledUnit } from './spellings';
+
+/** What the user settles for one column: a symbol, `label`, `ignore`, or a symbol with its unit and method. */
+export type ColumnSetting =
+  | string
+  | { readonly as?: string; readonly unit?: string; readonly label?: string; readonly quantity?: string; readonly ignore?: boolean };
+
+/** One column of the sheet and what it shall become. */
+export interface PlannedColumn {
+  readonly index: number;
+  readonly head: string;
+  readonly role: 'analyte' | 'quantity' | 'label' | 'uncertainty' | 'states' | 'ignored';
+  readonly name: string;
+  readonly unit: string;
+  readonly sheetUnit: string;
+  readonly factor: number;
+  readonly method: string;
+  readonly sigmas: number;
+  readonly relative: boolean;
+  readonly mayBeNegative: boolean;
+  /** Largest size a coordinate may have. */
+  readonly limit: number;
+  readonly note: string;
+}
+
+/** What planning has to say besides the columns. */
+export interface PlanNotes {
+  readonly inferred: string[];
+  readonly ignored: string[];
+  readonly pleaseCheck: string[];
+}
+
+export interface PlanOptions {
+  readonly columns: Readonly<Record<string, ColumnSetting>>;
+  readonly prefer: Readonly<Record<string, string>>;
+  readonly unknown: 'labels' | 'quantities';
+}
+
+const mayBeNegative = new Set(['LOI', 'epsilon-Nd', 'epsilon-Hf', 'latitude', 'longitude']);
+
+type Draft = { -readonly [Key in keyof PlannedColumn]: PlannedColumn[Key] } & { knownUnit: boolean; rank: number; settled: boolean };
+
+/**
+ * Decides what every column of a laid-out sheet becomes.
+ *
+ * @throws AssayError for a setting that names no column, or an unknown symbol or unit
+ */
+export function planColumns(layout: Layout, options: PlanOptions): { columns: PlannedColumn[]; notes: PlanNotes } {
+  const notes: PlanNotes = { inferred: [], ignored: [], pleaseCheck: [] };
+  const used = new Set<string>();
+  const drafts: Draft[] = [];
+  let sectionUnit: SpelledUnit | undefined;
+  layout.heads.forEach((head, index) => {
+    const place = columnPlace(layout, index);
+    const setting = settingFor(options.columns, head, place, used);
+    const filled = columnHas(layout, index);
+    if (head === '' && !filled && setting === undefined) return;
+    if (layout.samplesIn === 'columns' && !filled && head !== '' && setting === undefined) {
+      const unit = unitWithin(head);
+      if (unit !== undefined || readHeading(head).role !== 'analyte') {
+        sectionUnit = unit;
+        notes.ignored.push(`${place} "${head}" has no values${unit === undefined ? '' : '; its unit holds for the rows below it'}`);
+        return;
+      }
+    }
+    drafts.push(draft(layout, index, head, place, setting, sectionUnit, notes));
+  });
+  for (const name of Object.keys(options.columns)) {
+    if (!used.has(name)) throw new AssayError(`columns: no column is headed "${name}". The heads are: ${layout.heads.filter(Boolean).slice(0, 40).join(' | ')}.`);
+  }
+  chooseSampleLabel(drafts, notes);
+  demoteText(layout, drafts, notes);
+  attachUncertainty(drafts, notes);
+  inferUnits(layout, drafts, notes);
+  ironAsTotal(drafts, notes);
+  keepApart(drafts, options.prefer, notes);
+  uniqueLabels(drafts);
+  if (options.unknown === 'quantities') promoteNumbers(layout, drafts);
+  return { columns: drafts, notes };
+}
+
+/** Name of a column in the report: letters, or the row number where the samples stand in columns. */
+export function columnPlace(layout: Layout, index: number): string {
+  return layout.samplesIn === 'rows' ? columnLetters(index) : `row ${index + 1}`;
+}
+
+const headKey = (text: string) => text.replace(/\s+/g, ' ').trim();
+
+function settingFor(settings: Readonly<Record<string, ColumnSetting>>, head: string, place: string, used: Set<string>): ColumnSetting | undefined {
+  for (const key of [`column ${place}`, place.startsWith('row ') ? place : '', headKey(head)]) {
+    if (key !== '' && Object.hasOwn(settings, key)) {
+      used.add(key);
+      return settings[key];
+    }
+  }
+  return undefined;
+}
+
+function columnHas(layout: Layout, index: number): boolean {
+  for (const row of layout.body) if (layout.grid.look(row, index) !== cellLook.empty) return true;
+  return false;
+}
+
+/** A unit named anywhere in a section head: `Trace elements (ppm)`, `wt. %`. */
+function unitWithin(text: string): SpelledUnit | undefined {
+  const { units } = vocabulary();
+  const whole = units.get(unitKey(text));
+  if (whole !== undefined) return whole;
+  for (const match of text.matchAll(/[([]([^()[\]]*)[)\]]/g)) {
+    const unit = units.get(spellingKey(match[1]));
+    if (unit !== undefined) return unit;
+  }
+  const words = text.split(/[\s,:;]+/);
+  for (let count = 2; count >= 1; count--) {
+    const unit = words.length > count ? (units.get(spellingKey(words.slice(-count).join(' '))) ?? units.get(spellingKey(words.slice(0, count).join(' ')))) : undefined;
+    if (unit !== undefined) return unit;
+  }
+  return undefined;
+}
+
+function blankDraft(index: number, head: string): Draft {
+  return {
+    index, head, role: 'label', name: headKey(head), unit: '', sheetUnit: '', factor: 1, method: '', sigmas: 1, relative: false, mayBeNegative: false,
+    limit: Infinity, note: '', knownUnit: true, rank: Infinity, settled: false,
+  };
+}
+
+function draft(layout: Layout, index: number, head: string, place: string, setting: ColumnSetting | undefined, sectionUnit: SpelledUnit | undefined, notes: PlanNotes): Draft {
+  const made = blankDraft(index, head);
+  if (head === '') made.name = layout.samplesIn === 'rows' ? `column ${place}` : place;
+  if (setting !== undefined) return settle(made, setting, head === '' ? `column ${place}` : head, layout);
+  const tag = ownTag.exec(head);
+  if (tag !== null) return tagged(made, tag[1], tag[2] ?? '', tag[3]);
+  const unitText = layout.units[index];
+  const rowUnit = unitText === '' ? undefined : vocabulary().units.get(unitKey(unitText));
+  let heading: Heading = readHeading(head, layout.upperCase);
+  if (heading.role === 'unknown' && (rowUnit ?? sectionUnit) !== undefined) heading = readHeading(head, true);
+  if (head === '' && unitText === '') notes.pleaseCheck.push(`${place} has values but no head: kept as the label "${made.name}"`);
+  switch (heading.role) {
+    case 'label':
+      made.rank = heading.label === 'sample' ? heading.rank : Infinity;
+      made.name = heading.label === 'sample' ? made.name : heading.label;
+      return made;
+    case 'quantity':
+      return Object.assign(made, {
+        role: 'quantity', name: heading.symbol, unit: heading.unit, sheetUnit: heading.unit, mayBeNegative: true, limit: heading.limit,
+        factor: heading.negated ? -1 : 1, note: heading.negated ? 'south or west: sign turned' : '',
+      } satisfies Partial<Draft>);
+    case 'uncertainty':
+      return Object.assign(made, {
+        role: 'uncertainty', name: heading.of, sigmas: heading.sigmas, relative: heading.relative, sheetUnit: heading.unit?.unit ?? rowUnit?.unit ?? '',
+        factor: heading.unit?.factor ?? 1, knownUnit: (heading.unit ?? rowUnit) !== undefined,
+      } satisfies Partial<Draft>);
+    case 'analyte': {
+      const unit = heading.unit ?? rowUnit ?? sectionUnit;
+      made.method = heading.method !== '' ? heading.method : layout.methods[index];
+      made.note = heading.note ?? '';
+      asAnalyte(made, heading.symbol, unit);
+      if (unitText !== '' && rowUnit === undefined && findAnalyte(heading.symbol)!.unit !== '') notes.pleaseCheck.push(`${place} "${head}": its unit "${unitText}" is not known`);
+      return made;
+    }
+    default:
+      return made;
+  }
+}
+
+/** Makes a draft the column of an analyte, with the factor from the sheet's unit to the library's. */
+function asAnalyte(made: Draft, symbol: string, unit: SpelledUnit | undefined): void {
+  const analyte = findAnalyte(symbol)!;
+  made.role = 'analyte';
+  made.name = symbol;
+  made.unit = analyte.unit;
+  made.mayBeNegative = mayBeNegative.has(symbol);
+  if (analyte.unit === '') {
+    made.sheetUnit = '';
+  } else if (unit !== undefined && isMassUnit(unit.unit)) {
+    made.sheetUnit = unit.unit;
+    made.factor = unit.factor * massUnitFactor(unit.unit, analyte.unit as MassUnit);
+  } else made.knownUnit = false;
+}
+
+function settle(made: Draft, setting: ColumnSetting, head: string, layout: Layout): Draft {
+  made.settled = true;
+  made.note = 'as settled by the user';
+  const given = typeof setting === 'string' ? (setting === 'ignore' ? { ignore: true } : setting === 'label' ? { label: headKey(head) } : findAnalyte(setting) !== undefined ? { as: setting } : { label: setting }) : setting;
+  if (given.ignore === true) return Object.assign(made, { role: 'ignored', name: '' } as const);
+  if (given.label !== undefined) return Object.assign(made, { role: 'label', name: given.label, rank: given.label === 'sample' ? -1 : Infinity } as const);
+  if (given.quantity !== undefined) {
+    return Object.assign(made, { role: 'quantity', name: given.quantity, unit: given.unit ?? '', sheetUnit: given.unit ?? '', mayBeNegative: true } as const);
+  }
+  const own = readHeading(head, layout.upperCase);
+  const symbol = given.as ?? (own.role === 'analyte' ? own.symbol : undefined);
+  if (symbol === undefined || findAnalyte(symbol) === undefined) {
+    throw new AssayError(`columns: "${head}" cannot become "${String(given.as)}". Give a symbol such as SiO2 or Ba as \`as\`, or { label: … }, { quantity: …, unit: … } or 'ignore'.`);
+  }
+  let unit: SpelledUnit | undefined = own.role === 'analyte' ? own.unit : undefined;
+  if (given.unit !== undefined) {
+    unit = vocabulary().units.get(spellingKey(given.unit));
+    if (unit === undefined) throw new AssayError(`columns: the unit "${given.unit}" of "${head}" is not known. Use wt%, ppm, ppb, ppt, mg/kg, µg/g, ng/g or g/t.`);
+  }
+  unit ??= vocabulary().units.get(unitKey(layout.units[made.index]));
+  asAnalyte(made, symbol, unit);
+  return made;
+}
+
+function tagged(made: Draft, name: string, unit: string, tag: string): Draft {
+  if (tag === 'text') return Object.assign(made, { role: 'label', name, rank: name === 'sample' ? -1 : Infinity } as const);
+  if (tag === 'state') return Object.assign(made, { role: 'states', name } as const);
+  if (tag === '1 sigma') return Object.assign(made, { role: 'uncertainty', name, sheetUnit: unit, sigmas: 1, knownUnit: true } as const);
+  return Object.assign(made, { role: 'quantity', name, unit, sheetUnit: unit, mayBeNegative: true } as const);
+}
+
+/** The label `sample`: the column whose head says so best, else the first text column. */
+function chooseSampleLabel(drafts: Draft[], notes: PlanNotes): void {
+  const named = drafts.filter(({ role, rank }) => role === 'label' && Number.isFinite(rank)).sort((a, b) => a.rank - b.rank);
+  const chosen = named[0] ?? drafts.find(({ role, name }) => role === 'label' && name !== 'volcano');
+  if (chosen === undefined) {
+    notes.pleaseCheck.push('no column of sample names was found: samples are numbered');
+    return;
+  }
+  if (named.length === 0) notes.inferred.push(`"${chosen.head}" is taken as the sample names`);
+  for (const other of drafts) if (other !== chosen && other.role === 'label' && other.name === 'sample') other.name = 'sample (2)';
+  chosen.name = 'sample';
+}
+
+/** A column headed like an analyte that holds words is a label: `S` or `Location In` are heads of many things. */
+function demoteText(layout: Layout, drafts: Draft[], notes: PlanNotes): void {
+  const { cells } = vocabulary();
+  const step = Math.max(1, Math.floor(layout.body.length / 400));
+  for (const made of drafts) {
+    if ((made.role !== 'analyte' && made.role !== 'quantity' && made.role !== 'uncertainty') || made.settled) continue;
+    let numbers = 0;
+    let words = 0;
+    for (let i = 0; i < layout.body.length; i += step) {
+      const look = layout.grid.look(layout.body[i], made.index);
+      if (look === cellLook.number || look === cellLook.below) numbers++;
+      else if (look === cellLook.text) {
+        const text = layout.grid.text(layout.body[i], made.index);
+        if (/\d/.test(text) || cells.has(text.toLowerCase().replace(/\s+/g, ''))) numbers++;
+        else words++;
+      }
+    }
+    if (words > numbers) {
+      notes.pleaseCheck.push(`"${made.head}" reads like ${made.name === '' ? 'an uncertainty' : made.name} but holds words: kept as a label`);
+      Object.assign(made, { role: 'label', name: headKey(made.head), unit: '', sheetUnit: '', factor: 1, knownUnit: true, method: '' } as const);
+    }
+  }
+}
+
+/** An uncertainty column without a name belongs to the number column before it. */
+function attachUncertainty(drafts: Draft[], notes: PlanNotes): void {
+  drafts.forEach((made, at) => {
+    if (made.role !== 'uncertainty') return;
+    if (made.name === '') made.name = at > 0 && ['analyte', 'quantity'].includes(drafts[at - 1].role) ? drafts[at - 1].name : '';
+    const of = drafts.find(({ role, name }) => (role === 'analyte' || role === 'quantity') && name === made.name);
+    if (made.name === '' || of === undefined) {
+      Object.assign(made, { role: 'label', name: headKey(made.head) } as const);
+      return;
+    }
+    if (!ownTag.test(made.head)) notes.inferred.push(`"${made.head}" is taken as ${made.sigmas}σ of ${made.name}${made.relative ? ', relative in %' : ''}`);
+    made.unit = of.unit;
+  });
+}
+
+/** A missing unit is concluded only where one unit alone makes the numbers possible for a rock. */
+function inferUnits(layout: Layout, drafts: Draft[], notes: PlanNotes): void {
+  const step = Math.max(1, Math.floor(layout.body.length / 2000));
+  for (const made of drafts) {
+    if (made.role !== 'analyte' || made.unit === '') continue;
+    const range = plausibleRanges().get(made.name);
+    const values: number[] = [];
+    for (let i = 0; i < layout.body.length; i += step) {
+      if (layout.grid.look(layout.body[i], made.index) === cellLook.number && layout.grid.seen > 0) values.push(layout.grid.seen);
+    }
+    const fits = (unit: MassUnit): boolean => {
+      const factor = massUnitFactor(unit, made.unit as MassUnit);
+      const inside = values.filter((value) => value * factor >= range!.low && value * factor <= range!.high).length;
+      return inside >= 0.8 * values.length;
+    };
+    if (made.knownUnit) {
+      if (range !== undefined && values.length >= 3 && isMassUnit(made.sheetUnit) && values.every((value) => value * made.factor > range.high)) {
+        notes.pleaseCheck.push(`"${made.head}": every value is too high for ${made.name} in ${made.sheetUnit}; is the unit right?`);
+      }
+      continue;
+    }
+    const possible = range === undefined || values.length === 0 ? [] : (['wt%', 'ppm', 'ppb'] as const).filter(fits);
+    if (values.length === 0) {
+      made.sheetUnit = made.unit;
+      made.knownUnit = true;
+      made.note = 'no number in it';
+    } else if (possible.length === 1) {
+      made.sheetUnit = possible[0];
+      made.factor = massUnitFactor(possible[0], made.unit as MassUnit);
+      made.knownUnit = true;
+      notes.inferred.push(`"${made.head}" has no unit: its size allows only ${possible[0]}`);
+    } else {
+      notes.pleaseCheck.push(`"${made.head}" has no unit, and its size allows ${possible.length === 0 ? 'none for sure' : possible.join(' or ')}: kept as a label until columns: { '${headKey(made.head)}': { unit: … } } says which`);
+      Object.assign(made, { role: 'label', name: headKey(made.head), unit: '', factor: 1, note: 'unit not known' } as const);
+    }
+  }
+}
+
+/** Iron given as the element is total iron; the suite holds iron as FeO. */
+function ironAsTotal(drafts: Draft[], notes: PlanNotes): void {
+  for (const made of drafts) {
+    if (made.role !== 'analyte' || made.name !== 'Fe') continue;
+    const toOxide = massFactor('Fe', 'FeO') * massUnitFactor('ppm', 'wt%');
+    Object.assign(made, { name: 'FeOT', unit: 'wt%', factor: made.factor * toOxide, note: 'element Fe as FeO' } as const);
+    notes.inferred.push(`"${made.head}" is taken as total iron and expressed as FeO`);
+  }
+}
+
+/** One analyte by several methods: the preferred one has the analyte's name, the others stay beside it under their method's. */
+function keepApart(drafts: Draft[], prefer: Readonly<Record<string, string>>, notes: PlanNotes): void {
+  const groups = new Map<string, Draft[]>();
+  for (const made of drafts) {
+    if (made.role !== 'analyte' && made.role !== 'quantity') continue;
+    const group = groups.get(made.name);
+    if (group === undefined) groups.set(made.name, [made]);
+    else group.push(made);
+  }
+  for (const [symbol, group] of groups) {
+    if (group.length < 2) continue;
+    const ranks = group.map((made) => (made.settled ? -1 : methodRank(symbol, made.method, prefer[symbol])));
+    const chosen = group[ranks.indexOf(Math.min(...ranks))];
+    const taken = new Set<string>([symbol]);
+    for (const other of group) {
+      if (other === chosen) continue;
+      let name = `${symbol} ${other.method === '' ? '(2)' : other.method}`;
+      for (let count = 2; taken.has(name); count++) name = `${symbol} ${other.method} (${count})`;
+      taken.add(name);
+      const { head } = other;
+      for (const made of drafts) if (made.role === 'uncertainty' && made.name === symbol && drafts.indexOf(made) === drafts.indexOf(other) + 1) made.name = name;
+      Object.assign(other, { role: 'quantity', name, note: `also ${symbol}; kept apart` } as const);
+      notes.pleaseCheck.push(`${symbol} stands in ${group.length} columns: "${chosen.head}" is taken, "${head}" is kept as "${name}"`);
+    }
+  }
+}
+
+function methodRank(symbol: string, method: string, wanted: string | undefined): number {
+  const { methodPreference } = vocabulary();
+  const key = spellingKey(method).replace(/-/g, '');
+  if (wanted !== undefined && key.includes(spellingKey(wanted).replace(/-/g, ''))) return 0;
+  const order = findAnalyte(symbol)?.kind === 'oxide' ? methodPreference.oxides : methodPreference.resistant.elements.includes(symbol) ? methodPreference.resistant.order : methodPreference.elements;
+  const at = order.findIndex((each) => key.includes(each.toLowerCase()));
+  return 1 + (at < 0 ? order.length : at);
+}
+
+function uniqueLabels(drafts: Draft[]): void {
+  const taken = new Set<string>();
+  for (const made of drafts) {
+    if (made.role !== 'label') continue;
+    const base = made.name === '' ? 'label' : made.name;
+    for (let count = 2; taken.has(made.name); count++) made.name = `${base} (${count})`;
+    taken.add(made.name);
+  }
+}
+
+/** With `unknown: 'quantities'`, labels that hold nothing but numbers become number columns. */
+function promoteNumbers(layout: Layout, drafts: Draft[]): void {
+  const names = new Set(drafts.filter(({ role }) => role === 'analyte' || role === 'quantity').map(({ name }) => name));
+  for (const made of drafts) {
+    if (made.role !== 'label' || made.name === 'sample' || made.settled || names.has(made.name)) continue;
+    let numbers = 0;
+    let others = 0;
+    for (const row of layout.body) {
+      const look = layout.grid.look(row, made.index);
+      if (look === cellLook.number) numbers++;
+      else if (look !== cellLook.empty) others++;
+    }
+    if (numbers > 0 && others === 0) Object.assign(made, { role: 'quantity', mayBeNegative: true } as const);
+  }
+}
