@@ -5,3 +5,5 @@ export type { FieldProbabilities, ProbabilityMethod, Uncertainty } from './proba
 export * from './scheme';
 export { schemeColumns } from './scheme-columns';
 export { probabilityText, verdictOf, type CriterionOutcome, type SchemeVerdict, type Verdicts } from './verdicts';
+export { nameRocks, type NameOptions, type RockNames } from './name-rocks';
+export { namingChain, type NamingChain, type NamingStep } from './naming-chain';
