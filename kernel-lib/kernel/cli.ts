@@ -1,10 +1,11 @@
 #!/usr/bin/env node
 import { Command } from 'commander';
+import { libraryVersion } from '../suite';
 import { installCommand, listCommand, removeCommand, startKernel } from './command/kernel';
 import { runCommand, type RunCommand } from './command/run';
 import { startCommand } from './command/start';
+import { verifyCommand } from './command/verify';
 import type { Place } from './protocol/kernelspec';
-import { libraryVersion } from './version';
 
 /** Exit status for a command that could not begin: a bad option, a file that is not there. */
 const badUse = 2;
@@ -42,6 +43,15 @@ program
   .option('-k, --keep-going', 'run on after a cell that failed')
   .option('-q, --quiet', 'no progress lines, no summary')
   .action((notebook: string, options: RunCommand) => finish(runCommand(notebook, options)));
+
+program
+  .command('verify')
+  .description('run a notebook again as its record says, and name whatever comes out otherwise')
+  .argument('<notebook>', 'an executed .ipynb file with its .record.json beside it')
+  .option('-t, --timeout <seconds>', 'longest time for one cell')
+  .option('--tolerance <relative>', 'on another platform, the relative difference below which numbers are the same (default 1e-9)')
+  .option('-q, --quiet', 'no progress lines')
+  .action((notebook: string, options: { timeout?: string; tolerance?: string; quiet?: boolean }) => finish(verifyCommand(notebook, options)));
 
 const kernel = program.command('kernel').description('install, list or remove the Jupyter kernel');
 const placed = (command: Command): Command =>

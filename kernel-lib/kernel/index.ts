@@ -9,3 +9,7 @@ export { runNotebook, type NotebookRun, type RunEvent, type RunFailure, type Run
 export { notebookHtml, type HtmlOptions } from './notebook/html';
 export { NotebookFormatError, type Notebook, type NotebookCell, type NotebookOutput } from './notebook/document';
 export type { ParameterValue } from './notebook/parameters';
+export { verifyRun, type Change, type Verification, type VerifyOptions } from './record/verify';
+export { RunRecordError } from './record/run-record';
+export type { ValueDifference } from './record/compare-outputs';
+export type { RunFacts } from './record/run-facts';

@@ -1,7 +1,7 @@
 import { readFileSync } from 'node:fs';
-import { dirname, join } from 'node:path';
+import { join } from 'node:path';
 import { showAs, type Showable, type TableCell } from '../display';
-import { bibtex, findSource, formatSource, referenceVersions, shortSource, type Source } from '../tables';
+import { bibtex, findSource, formatSource, libraryFolder, once, referenceVersions, shortSource, type Source } from '../tables';
 import type { Step, StepDetail, Traced } from './lineage';
 
 /** A result, a suite, or several of them together: whatever carries a lineage. */
@@ -43,20 +43,12 @@ function steps(of: Results, caller: string): readonly Step[] {
   return [...new Set(all.flatMap(({ lineage = [] }) => lineage))];
 }
 
-let known: { name: string; version: string; dependencies: Record<string, string> } | undefined;
-
-function packageFile(): { name: string; version: string; dependencies: Record<string, string> } {
-  for (let at = __dirname; known === undefined; at = dirname(at)) {
-    try {
-      const found = JSON.parse(readFileSync(join(at, 'package.json'), 'utf8')) as { name: string; version: string; dependencies: Record<string, string> };
-      if (found.name === 'wedgework') known = found;
-    } catch {
-      // No package.json in this folder: look one folder up.
-    }
-    if (dirname(at) === at) break;
-  }
-  return known ?? { name: 'wedgework', version: 'unknown', dependencies: {} };
+interface PackageFile {
+  readonly version: string;
+  readonly dependencies: Readonly<Record<string, string>>;
 }
+
+const packageFile = once(() => JSON.parse(readFileSync(join(libraryFolder(), 'package.json'), 'utf8')) as PackageFile);
 
 /** The version of this library, e.g. `0.1.0`. */
 export function libraryVersion(): string {

@@ -1,4 +1,4 @@
-import { existsSync } from 'node:fs';
+import { existsSync, readFileSync } from 'node:fs';
 import { dirname, join } from 'node:path';
 
 let folder: string | undefined;
@@ -12,5 +12,14 @@ export function referenceFolder(): string {
     if (dirname(at) === at) {
       throw new Error('The folder reference-tables/ was not found beside the library. Reinstall wedgework, or build it again in a full clone.');
     }
+  }
+}
+
+/** @internal Folder of the installed library: the one with its package.json. */
+export function libraryFolder(): string {
+  for (let at = __dirname; ; at = dirname(at)) {
+    const file = join(at, 'package.json');
+    if (existsSync(file) && (JSON.parse(readFileSync(file, 'utf8')) as { name?: string }).name === 'wedgework') return at;
+    if (dirname(at) === at) throw new Error('The package.json of wedgework was not found above its own files. Install the library again.');
   }
 }

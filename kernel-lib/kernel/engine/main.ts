@@ -3,6 +3,7 @@ import { createRequire } from 'node:module';
 import { join } from 'node:path';
 import { Worker } from 'node:worker_threads';
 import type { EngineOptions, EngineReport, EngineRequest } from './messages';
+import { writeInto } from '../../display';
 import { runFacts } from '../record/run-facts';
 import { Session } from './session';
 import { cellCompilerVersion } from './tslab-contract';
@@ -13,6 +14,7 @@ async function main(): Promise<void> {
   const options = JSON.parse(process.argv[2]) as EngineOptions;
   const tell = (report: EngineReport) => process.send?.(report);
   const session = new Session({ ...options, libraryRequire: createRequire(join(__dirname, 'main.js')) });
+  if (options.scratch !== undefined) writeInto(options.scratch);
   redirectStreams(session);
   refuseInput();
   openLifeline(session);

@@ -48,4 +48,6 @@ export interface EngineOptions {
   /** Whether the library is loaded as `ww` before the first cell. */
   readonly preload: boolean;
   readonly quiet: boolean;
+  /** Folder that takes every file the cells write through the library, for a trial run. */
+  readonly scratch?: string;
 }

@@ -5,6 +5,8 @@ import { EngineGone, EngineProcess } from '../engine/engine-process';
 import type { CellReply } from '../engine/messages';
 import type { CellOutput, ErrorOutput } from '../output';
 import { progressType } from '../progress';
+import type { RunFacts } from '../record/run-facts';
+import { formatRecord, makeRecord, recordPath } from '../record/run-record';
 import { summaryType } from '../run-summary';
 import { OutputStore } from './cell-outputs';
 import { formatNotebook, NotebookFormatError, parseNotebook, type Notebook, type NotebookCell } from './document';
@@ -31,6 +33,10 @@ export interface RunOptions {
   readonly keepGoing?: boolean;
   /** Folder that the cells run in (default: the notebook's own). */
   readonly folder?: string;
+  /** Whether a record of the run is written beside the executed notebook (default true where `out` is given). */
+  readonly record?: boolean;
+  /** Folder that takes every file the cells write through the library, instead of where they ask: for a trial run. */
+  readonly scratch?: string;
   /** No progress lines (default false). */
   readonly quiet?: boolean;
   readonly onProgress?: (event: RunEvent) => void;
@@ -60,6 +66,8 @@ export interface NotebookRun {
   /** Labelled lines that the notebook gave through `runSummary`, in order. */
   readonly summary: readonly (readonly [label: string, value: string | number])[];
   readonly seconds: number;
+  /** What the process of the run read and what ran it; undefined when the process ended early. */
+  readonly facts?: RunFacts;
   /** Files written. */
   readonly written: readonly string[];
 }
@@ -94,8 +102,9 @@ export async function runNotebook(path: string, options: RunOptions = {}): Promi
   const failures: RunFailure[] = [];
   let summary: NotebookRun['summary'] = [];
   let status: NotebookRun['status'] = 'ok';
+  let facts: RunFacts | undefined;
 
-  const engine = new EngineProcess({ folder, preload: true, quiet: options.quiet ?? false });
+  const engine = new EngineProcess({ folder, preload: true, quiet: options.quiet ?? false, scratch: options.scratch });
   const stop = () => engine.interrupt();
   const stopped = () => signal?.aborted === true;
   signal?.addEventListener('abort', stop);
@@ -127,6 +136,7 @@ export async function runNotebook(path: string, options: RunOptions = {}): Promi
       else status = timedOut ? 'timed out' : 'failed';
       if (status !== 'failed' || options.keepGoing !== true || ename === 'KernelEnded') break;
     }
+    if (failures.at(-1)?.ename !== 'KernelEnded' && status !== 'timed out') facts = await engine.facts();
   } finally {
     signal?.removeEventListener('abort', stop);
     await engine.end();
@@ -145,7 +155,13 @@ export async function runNotebook(path: string, options: RunOptions = {}): Promi
     writeWhole(resolve(options.html), notebookHtml(executed, { title: basename(file, '.ipynb') }));
     written.push(resolve(options.html));
   }
-  return { status, notebook: executed, failures, cellsRun: counts.size, cellsInAll: code.length, summary, seconds: (performance.now() - start) / 1000, written };
+  if (options.out !== undefined && options.record !== false && facts !== undefined) {
+    const out = resolve(options.out);
+    const record = await makeRecord({ source: file, folder, executed: out, parameters: options.set ?? {}, keepGoing: options.keepGoing === true, status, notebook: executed, facts });
+    writeWhole(recordPath(out), formatRecord(record));
+    written.push(recordPath(out));
+  }
+  return { status, notebook: executed, failures, cellsRun: counts.size, cellsInAll: code.length, summary, facts, seconds: (performance.now() - start) / 1000, written };
 }
 
 /** Runs one cell, but not for ever. The engine's end is an error of the cell like any other. */

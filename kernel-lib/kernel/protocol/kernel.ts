@@ -1,6 +1,6 @@
 import { EngineGone, EngineProcess } from '../engine/engine-process';
 import type { CellOutput } from '../output';
-import { libraryVersion } from '../version';
+import { libraryVersion } from '../../suite';
 import { History } from './history';
 import { charactersFromUnits, unitsFromCharacters } from './positions';
 import { KernelSockets, type Channel } from './sockets';

@@ -2,7 +2,7 @@ import { copyFileSync, existsSync, mkdirSync, readFileSync, rmSync } from 'node:
 import { homedir } from 'node:os';
 import { join } from 'node:path';
 import { writeWhole } from '../../display';
-import { libraryFolder } from '../version';
+import { libraryFolder } from '../../tables';
 
 /** Name of the kernel's folder, and what front ends ask for. */
 export const kernelName = 'wedgework';
