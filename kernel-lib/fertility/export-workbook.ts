@@ -14,8 +14,11 @@ interface StyledCell {
   readonly bottomBorderStyle?: 'thin';
   readonly textDecoration?: { readonly strikethrough: true };
   readonly wrap?: boolean;
+  readonly align?: 'right' | 'center';
   readonly alignVertical?: 'top';
   readonly format?: string;
+  /** Of the whole row, in points. */
+  readonly height?: number;
 }
 
 type Cell = StyledCell | null;
@@ -29,7 +32,18 @@ interface Sheet {
 }
 
 /** The part of the writer that is used; it is loaded when the first workbook is asked for. */
-type WriteWorkbook = (sheets: readonly Sheet[]) => { toBuffer(): Promise<Buffer> };
+type WriteWorkbook = (sheets: readonly Sheet[], options: { readonly fontFamily: string; readonly fontSize: number; readonly features: readonly object[] }) => { toBuffer(): Promise<Buffer> };
+
+/** Prints every sheet as wide as a page, however many columns it has. */
+const fitPageWidth = {
+  files: {
+    transform: {
+      'xl/worksheets/sheet{id}.xml': {
+        transform: (content: string) => content.replace('<sheetViews>', '<sheetPr><pageSetUpPr fitToPage="1"/></sheetPr><sheetViews>').replace('<pageSetup ', '<pageSetup fitToWidth="1" fitToHeight="0" '),
+      },
+    },
+  },
+};
 
 /** Ground of a verdict cell: tints of colours that colour-blind readers tell apart. */
 const verdictTint: Readonly<Record<string, string>> = { supported: '#BFE3D3', undecided: '#FBE7B0', 'not supported': '#E3E3E3', 'cannot be asked': '#FFFFFF' };
@@ -55,7 +69,7 @@ export async function saveFertilityWorkbook(screen: FertilityScreen, path: strin
   // eslint-disable-next-line @typescript-eslint/no-require-imports
   const write = (require('write-excel-file/node') as { default: WriteWorkbook }).default;
   const sheets = [verdictSheet(screen), evidenceSheet(screen), ...(samples ? [sampleSheet(screen)] : []), cautionSheet(screen), sourceSheet(screen)];
-  writeWhole(path, await write(sheets).toBuffer());
+  writeWhole(path, await write(sheets, { fontFamily: 'Arial', fontSize: 10, features: [fitPageWidth] }).toBuffer());
   return { path, rows: screen.groups.length };
 }
 
@@ -64,16 +78,24 @@ function cell(value: TableCell, style: Omit<StyledCell, 'value'> = {}): Cell {
   return { value: typeof value === 'string' ? escapeSpreadsheet(value) : value, ...style };
 }
 
+/** Rows with wrapped texts are given their height, because not every program works it out on opening. */
+function withHeights(rows: readonly (readonly Cell[])[], widths: readonly number[]): Cell[][] {
+  return rows.map((row) => {
+    const lines = row.reduce((most, each, j) => (each?.wrap === true ? Math.max(most, Math.ceil((String(each.value ?? '').length * 1.15) / widths[j])) : most), 1);
+    return row.map((each, j) => (lines > 1 && j === row.findIndex((other) => other !== null) ? { ...each, height: 13 * lines + 2 } : each));
+  });
+}
+
 const heads = (texts: readonly string[]): Cell[] =>
   texts.map((text) => cell(text, { fontWeight: 'bold', backgroundColor: '#EEF1F4', bottomBorderColor: '#888888', bottomBorderStyle: 'thin', wrap: true, alignVertical: 'top' }));
 
 function sheet(name: string, widths: readonly number[], head: readonly string[], rows: readonly (readonly Cell[])[]): Sheet {
-  return { sheet: name, data: [heads(head), ...rows.map((row) => [...row])], columns: widths.map((width) => ({ width })), stickyRowsCount: 1, orientation: 'landscape' };
+  return { sheet: name, data: withHeights([heads(head), ...rows], widths), columns: widths.map((width) => ({ width })), stickyRowsCount: 1, orientation: 'landscape' };
 }
 
 const share = { format: '0.00', alignVertical: 'top' } as const;
 const wrapped = { wrap: true, alignVertical: 'top' } as const;
-const top = { alignVertical: 'top' } as const;
+const top = { alignVertical: 'top', align: 'center' } as const;
 
 function verdictSheet(screen: FertilityScreen): Sheet {
   const criteria = weightedCriteria(screen);
@@ -85,7 +107,7 @@ function verdictSheet(screen: FertilityScreen): Sheet {
     screen.groups.map((group) => [
       cell(group.rank, top), cell(group.group, { ...wrapped, fontWeight: 'bold' }), cell(group.verdict, { ...wrapped, backgroundColor: verdictTint[group.verdict] }),
       cell(group.score, share), cell(group.low, share), cell(group.high, share), cell(group.samples, top), cell(group.asked, top), cell(group.struckOut, top), cell(group.leftOut, top),
-      ...criteria.map(({ at }) => cell(shareText(group, at), wrapped)), cell(group.agreement, wrapped), cell(ranksText(group), top), cell(group.because, wrapped),
+      ...criteria.map(({ at }) => cell(shareText(group, at), { ...wrapped, align: 'center' })), cell(group.agreement, wrapped), cell(ranksText(group), top), cell(group.because, wrapped),
       cell(furtherText(group), wrapped),
     ]),
   );

@@ -17,7 +17,7 @@ export interface Grounds {
 /** @internal Puts the suite on the basis of the criteria and works out its totals. */
 export function groundsOf(suite: Suite, basis: FertilityBasis): Grounds {
   // A suite that was recast before brings its sums along, and is not recast twice.
-  const dry = suite.has('SumAsGiven') ? suite : volatileFree(suite);
+  const dry = suite.has('SumAsGiven') ? suite : volatileFree(suite, { iron: 'measured' });
   const totals = totalsOf(suite, dry);
   const asGivenOperand = (symbol: string) => totals.get(symbol) ?? resolveColumn(suite, symbol);
   const dryOperand = (symbol: string) => totals.get(symbol) ?? resolveColumn(dry, symbol);

@@ -8,7 +8,7 @@ export { saveFertilityCsv, type SavedScreen } from './export-csv';
 export type { FertilityRows } from './export-columns';
 export * from './export-geojson';
 export { saveFertilityWorkbook } from './export-workbook';
-export type { FurtherMeasurement } from './further';
+export type { FurtherMeasurement, FurtherOutcome } from './further';
 export type { FertilityBasis } from './ground';
 export type { GroupTrend, GroupValues } from './group-values';
 export type { GuardFlags } from './guard-flags';

@@ -131,7 +131,7 @@ function weigh(evidence: Evidence, settings: Settings, options: ScreenOptions): 
     if (place === 0 || key(group) < key(order[place - 1])) rank = place + 1;
     const rows = grouping.rows[group];
     const undecided = scores[group].verdict === 'undecided' || scores[group].verdict === 'cannot be asked';
-    const further = undecided ? furtherMeasurement(tallies[group], weighted, criteria, rows, grounds, { cut, interval }) : undefined;
+    const further = undecided ? furtherMeasurement({ tallies: tallies[group], weighted, cut, interval }, criteria, rows, grounds) : undefined;
     return {
       rank, group: grouping.names[group], samples: rows.length, asked: asked[group], leftOut: count(guarding.excluded, rows),
       struckOut: count(guarding.struck, rows), tallies: tallies[group], ...scores[group], ranks: ranges[group], ...(further === undefined ? {} : { further }),

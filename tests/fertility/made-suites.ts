@@ -5,11 +5,11 @@ import { cellState, column, suiteOf, type Suite } from 'wedgework';
 
 /** One andesite that meets no criterion and no guard: the ground on which a test changes what it asks about. */
 export const ordinary: Readonly<Record<string, number>> = {
-  SiO2: 60, TiO2: 0.7, Al2O3: 17, FeOT: 6, MnO: 0.12, MgO: 3, CaO: 6, Na2O: 3.7, K2O: 1.5, P2O5: 0.2, LOI: 1, Sc: 15, V: 120, Cr: 40, Ni: 25, Cu: 40, Sr: 400, Y: 20, La: 12, Sm: 3, Eu: 0.95,
+  SiO2: 60, TiO2: 0.7, Al2O3: 17, FeOT: 6, MnO: 0.12, MgO: 3, CaO: 6, Na2O: 3.7, K2O: 1.5, P2O5: 0.2, LOI: 1, Total: 100, Sc: 15, V: 120, Cr: 40, Ni: 25, Cu: 40, Sr: 400, Y: 20, La: 12, Sm: 3, Eu: 0.95,
   Gd: 3.1, Dy: 3, Yb: 2,
 };
 
-/** A suite of samples that differ from `ordinary` as each entry says; a text `<5` is below detection, `>5` above range, NaN missing. Oxides are not rescaled. */
+/** A suite of samples that differ from `ordinary` as each entry says; a text `<5` is below detection, `>5` above range, NaN missing. The total stays 100 unless a change says otherwise. */
 export function suiteLike(changes: readonly Readonly<Record<string, number | string>>[], options: { sigma?: Readonly<Record<string, number>>; labels?: Readonly<Record<string, readonly string[]>> } = {}): Suite {
   const symbols = [...new Set([...Object.keys(ordinary), ...changes.flatMap(Object.keys)])];
   const columns = symbols.map((symbol) => {
