@@ -10,7 +10,7 @@ export function escapeMarkdown(text: string): string {
   return escapeHtml(text).replace(/[\\`*_{}[\]()#+!|~]/g, '\\$&').replace(/\s*\r?\n\s*/g, ' ');
 }
 
-/** Text made safe to stand in a spreadsheet cell: what would be read as a formula (`=`, `+`, `-`, `@`, a tab or a return in front) gets an apostrophe. */
+/** Text made safe to stand in a spreadsheet cell: what would be read as a formula (`=`, `+`, `-`, `@`, a tab or a return in front) gets an apostrophe; so does a text that already has one there, so that taking one off gives every text back. */
 export function escapeSpreadsheet(text: string): string {
-  return /^\s*[=+\-@\t\r]/.test(text) ? `'${text}` : text;
+  return /^'*\s*[=+\-@\t\r]/.test(text) ? `'${text}` : text;
 }

@@ -11,6 +11,8 @@ export interface TableView {
   readonly rows: readonly (readonly TableCell[])[];
   /** How many rows there are in all, when `rows` holds only the first ones. */
   readonly totalRows?: number;
+  /** How many rows are shown before the rest is only counted (default 60). */
+  readonly mostRows?: number;
   readonly notes?: readonly string[];
 }
 
@@ -35,7 +37,7 @@ function cut(view: TableView): { heads: string[]; rows: TableCell[][]; notes: st
   const total = view.totalRows ?? view.rows.length;
   const wide = view.columns.length > mostColumns;
   const heads = view.columns.slice(0, mostColumns);
-  const rows = view.rows.slice(0, mostRows).map((row) => row.slice(0, mostColumns));
+  const rows = view.rows.slice(0, view.mostRows ?? mostRows).map((row) => row.slice(0, mostColumns));
   const notes = [...(view.notes ?? [])];
   if (total > rows.length) notes.push(`${rows.length} of ${total} rows shown.`);
   if (wide) notes.push(`${mostColumns} of ${view.columns.length} columns shown.`);
