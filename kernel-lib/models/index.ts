@@ -12,3 +12,5 @@ export { mix, mixingHyperbola, type MixingEnd, type MixingHyperbola, type MixOpt
 export type { Composition } from './one-analysis';
 export type { ModelPath } from './path';
 export type { TraceModelOptions } from './trace-setup';
+export { rankAssemblages, type AssemblageRanking, type RankAssemblagesOptions, type RankedAssemblage } from './rank-assemblages';
+export { silicaOfMeltTypes, testTraces, type TraceTest, type TraceTestElement, type TraceTestOptions } from './trace-test';
