@@ -2,8 +2,8 @@
  * Runs as a worker thread beside the engine's main thread, so that a cell in an endless loop can still be stopped. It listens on a pipe
  * from the process that started the engine: a byte asks to interrupt the running cell; the end of the pipe means that process is gone.
  */
-import { createReadStream } from 'node:fs';
 import { Session as Inspector } from 'node:inspector';
+import { Socket } from 'node:net';
 import { parentPort, workerData } from 'node:worker_threads';
 
 const { pipe, answered } = workerData as { pipe: number; answered: SharedArrayBuffer };
@@ -26,7 +26,8 @@ function interrupt(): void {
   }, patience);
 }
 
-createReadStream('', { fd: pipe })
+// A socket rather than a file stream: a read that blocks a thread would keep the process from ending by itself.
+new Socket({ fd: pipe, readable: true, writable: false })
   .on('data', interrupt)
   .on('error', () => process.kill(process.pid, 'SIGKILL'))
   .on('close', () => process.kill(process.pid, 'SIGKILL'));

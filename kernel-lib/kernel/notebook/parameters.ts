@@ -11,8 +11,9 @@ export function parameterNames(notebook: Notebook): readonly string[] {
   const names: string[] = [];
   for (const cell of notebook.cells) {
     if (!isParameters(cell)) continue;
-    // Declarations at the start of a line; one declaration may hold several names.
-    for (const [, list] of cell.source.matchAll(/^[ \t]*(?:const|let|var)\s+([^;\n]*)/gm)) {
+    // Declarations at the start of a line; one declaration may hold several names. Texts are emptied: they may look like anything.
+    const source = cell.source.replace(/'(?:\\.|[^'\\\n])*'|"(?:\\.|[^"\\\n])*"|`(?:\\.|[^`\\])*`/g, "''");
+    for (const [, list] of source.matchAll(/^[ \t]*(?:const|let|var)\s+([^;\n]*)/gm)) {
       for (const [, name] of list.matchAll(/(?:^|,\s*)([\p{L}_$][\p{L}\p{N}_$]*)\s*(?::[^=,]*)?=/gu)) names.push(name);
     }
   }
