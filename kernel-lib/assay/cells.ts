@@ -12,6 +12,12 @@ export interface CellConventions {
   readonly statedSigmas: 1 | 2;
 }
 
+/**
+ * What numbers a quantity can have: a concentration has none below zero; loss on ignition, epsilon values and coordinates do; columns that
+ * the library wrote itself hold any number, no-data codes not looked for.
+ */
+export type Signs = 'positive' | 'signed' | 'any';
+
 /** What a cell's text turned out to be. One decoder is used for all cells; its fields hold the last one. */
 export class CellDecoder {
   state: number = cellState.missing;
@@ -51,9 +57,9 @@ export class CellDecoder {
    * Decodes the text of a number cell.
    *
    * @param raw as in the sheet
-   * @param mayBeNegative the quantity can be below zero (loss on ignition, epsilon values, coordinates)
+   * @param signs what numbers the quantity can have
    */
-  decode(raw: string, mayBeNegative: boolean): void {
+  decode(raw: string, signs: Signs): void {
     if (raw.length > 200) return this.unreadable('a long text');
     const text = plainSigns(raw);
     const kind = this.words.cells.get(cellKey(text));
@@ -69,42 +75,42 @@ export class CellDecoder {
     if (bound !== null && bound !== undefined) {
       const limit = this.number(bound[2]);
       if (Number.isNaN(limit)) return this.unreadable('not a number');
-      if (limit < 0) return this.unreadable('a negative limit');
+      if (limit < 0 && signs === 'positive') return this.unreadable('a negative limit');
       return /[<≤‹]/.test(bound[1]) ? this.set(cellState.belowDetection, NaN, limit) : this.set(cellState.aboveRange, NaN, limit);
     }
     const plain = this.number(text);
     if (!Number.isNaN(plain)) {
-      this.take(plain, mayBeNegative);
+      this.take(plain, signs);
       if (this.fault === '' && this.grouped) this.remark = 'grouped digits';
       return;
     }
-    if (this.withUncertainty(text, mayBeNegative)) return;
+    if (this.withUncertainty(text, signs)) return;
     const marked = /^(?:~|≈|∼|ca\.?|c\.|approx\.?)\s*(.+)$/i.exec(text);
-    if (marked !== null) return this.remarked(marked[1], mayBeNegative, 'approximate');
+    if (marked !== null) return this.remarked(marked[1], signs, 'approximate');
     const footnote = /^(.+?)\s*(?:\*+|†|‡|§|¶|#|\?|!)$/.exec(text);
-    if (footnote !== null) return this.remarked(footnote[1], mayBeNegative, 'footnote mark');
+    if (footnote !== null) return this.remarked(footnote[1], signs, 'footnote mark');
     this.unreadable(/^#[A-Z/0]+[!?]?$/.test(text) ? 'a spreadsheet error' : 'not a number');
   }
 
   /** Takes a plain number: measured, or what the sheet's conventions make of a negative one. */
-  take(value: number, mayBeNegative: boolean): void {
-    if (value < 0 && this.words.sentinels.has(value) && !(mayBeNegative && value > -100)) {
+  take(value: number, signs: Signs): void {
+    if (value < 0 && signs !== 'any' && this.words.sentinels.has(value) && !(signs === 'signed' && value > -100)) {
       this.set(cellState.missing);
       this.remark = 'no-data code';
-    } else if (value < 0 && !mayBeNegative) {
+    } else if (value < 0 && !signs) {
       if (this.conventions.negative === 'below-detection') this.set(cellState.belowDetection, NaN, -value);
       else this.unreadable('a negative concentration');
     } else this.set(cellState.measured, value);
   }
 
-  private remarked(text: string, mayBeNegative: boolean, remark: string): void {
+  private remarked(text: string, signs: Signs, remark: string): void {
     const value = this.number(text);
     if (Number.isNaN(value)) return this.unreadable('not a number');
-    this.take(value, mayBeNegative);
+    this.take(value, signs);
     if (this.fault === '') this.remark = remark;
   }
 
-  private withUncertainty(text: string, mayBeNegative: boolean): boolean {
+  private withUncertainty(text: string, signs: Signs): boolean {
     const stated = /^(.+?)\s*(?:±|\+\/-|\+-)\s*(.+)$/.exec(text);
     const bracketed = stated === null ? /^([-+]?[\d.,]+)\s*\(\s*([\d.,]+)\s*\)$/.exec(text) : null;
     const parts = stated ?? bracketed;
@@ -117,7 +123,7 @@ export class CellDecoder {
       const mark = parts[1].lastIndexOf(this.conventions.decimal);
       if (mark >= 0) sigma = Number(`${sigma}e-${parts[1].length - mark - 1}`);
     }
-    this.take(value, mayBeNegative);
+    this.take(value, signs);
     if (this.state === cellState.measured) this.sigma = sigma / this.conventions.statedSigmas;
     this.remark = 'stated uncertainty';
     return true;

@@ -2,6 +2,7 @@ import { cellState, type Column } from '../suite';
 import { findAnalyte } from '../chemistry';
 import { CellDecoder, type CellConventions } from './cells';
 import { cellAddress, cellLook } from './grid';
+import { unguarded } from './guarded';
 import type { Layout } from './layout';
 import { columnPlace, type PlannedColumn } from './plan-columns';
 import type { ImportedColumn } from './report';
@@ -78,12 +79,13 @@ export function decodeColumns(layout: Layout, plan: readonly PlannedColumn[], co
 function fillBlock(layout: Layout, filling: Filling, from: number, to: number, decoder: CellDecoder, withheld: ReadonlySet<number>): void {
   const { grid, body } = layout;
   const { values, states, counts, plan } = filling;
-  const { index, mayBeNegative, factor, limit } = plan;
+  const { index, signs, factor, limit } = plan;
+  const lowest = signs === 'positive' ? 0 : signs === 'any' ? -Infinity : Math.max(-359.9, -limit);
   const plainOnly = factor === 1;
   for (let i = from; i < to; i++) {
     const row = body[i];
     const look = grid.look(row, index);
-    if (look === cellLook.number && (grid.seen >= 0 || (mayBeNegative && grid.seen > -360 && grid.seen >= -limit)) && grid.seen <= limit && withheld.size === 0) {
+    if (look === cellLook.number && grid.seen >= lowest && grid.seen <= limit && withheld.size === 0) {
       values[i] = plainOnly ? grid.seen : filling.convert(grid.seen);
       counts.measured++;
     } else if (look === cellLook.empty) {
@@ -104,7 +106,7 @@ function fillSlowly(layout: Layout, filling: Filling, i: number, decoder: CellDe
   const { grid, body } = layout;
   const { plan, counts } = filling;
   const text = grid.text(body[i], plan.index);
-  decoder.decode(text, plan.mayBeNegative);
+  decoder.decode(text, plan.signs);
   if (decoder.fault === '' && decoder.state === cellState.measured && Math.abs(decoder.value) > plan.limit) decoder.refuse('out of range');
   if (withheld && decoder.state !== cellState.missing) decoder.refuse('its row has too many or too few cells');
   const address = addressOf(layout, body[i], plan.index);
@@ -140,18 +142,13 @@ function addressOf(layout: Layout, row: number, column: number): string {
 function headLimits(layout: Layout, filling: Filling, decoder: CellDecoder): void {
   for (const [row, state] of [[layout.header.limit, cellState.belowDetection], [layout.header.upperLimit, cellState.aboveRange]] as const) {
     if (row === undefined) continue;
-    decoder.decode(layout.grid.text(row, filling.plan.index), false);
+    decoder.decode(layout.grid.text(row, filling.plan.index), 'any');
     const limit = decoder.state === cellState.measured ? decoder.value : decoder.limit;
     if (Number.isNaN(limit)) continue;
     for (let i = 0; i < filling.states.length; i++) {
       if (filling.states[i] === state && Number.isNaN(filling.limits?.[i] ?? NaN)) filling.setLimit(i, limit);
     }
   }
-}
-
-/** Text that a written sheet made inert (see `writeAssays`) is given back as it was. */
-export function unguarded(text: string): string {
-  return /^'+[=+\-@\t\r]/.test(text) ? text.slice(1) : text;
 }
 
 function readLabel(layout: Layout, index: number): string[] {

@@ -4,3 +4,5 @@ export type { ColumnSetting } from './plan-columns';
 export { readAssays, type Assays, type ReadAssaysOptions } from './read-assays';
 export type { ImportedColumn, ImportReport, SheetSummary } from './report';
 export * from './sheet-grids';
+export { writeAssays } from './write-assays';
+export { writeTable, type TableColumn, type TableLabels } from './write-table';

@@ -1,4 +1,5 @@
 import { cellLook, TurnedGrid, type Grid } from './grid';
+import { unguarded } from './guarded';
 import { readHeading, type Heading } from './heading';
 import { plainSigns, spellingKey, vocabulary } from './spellings';
 
@@ -88,7 +89,7 @@ function layOut(grid: Grid, head: HeadRow, reader: HeadingReader, samplesIn: 'ro
   const columns = grid.columns;
   const words = vocabulary();
   const rowTexts = (row: number) => Array.from({ length: columns }, (_, column) => grid.text(row, column));
-  const heads = rowTexts(head.row);
+  const heads = rowTexts(head.row).map(unguarded);
   const isAnalyte = heads.map((text) => reader.read(text, head.upperCase).role === 'analyte');
   const kindOf = (row: number) => headerKind(grid, row, isAnalyte, words);
   const header: { analyte: number; unit?: number; method?: number; limit?: number; upperLimit?: number } = { analyte: head.row };

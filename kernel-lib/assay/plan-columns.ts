@@ -1,5 +1,6 @@
 import { findAnalyte, isMassUnit, massUnitFactor, type MassUnit } from '../chemistry';
 import { massFactor } from '../tables';
+import type { Signs } from './cells';
 import { AssayError } from './errors';
 import { cellLook, columnLetters } from './grid';
 import { ownTag, readHeading, type Heading } from './heading';
@@ -24,7 +25,7 @@ export interface PlannedColumn {
   readonly method: string;
   readonly sigmas: number;
   readonly relative: boolean;
-  readonly mayBeNegative: boolean;
+  readonly signs: Signs;
   /** Largest size a coordinate may have. */
   readonly limit: number;
   readonly note: string;
@@ -43,7 +44,7 @@ export interface PlanOptions {
   readonly unknown: 'labels' | 'quantities';
 }
 
-const mayBeNegative = new Set(['LOI', 'epsilon-Nd', 'epsilon-Hf', 'latitude', 'longitude']);
+const signedAnalytes = new Set(['LOI', 'epsilon-Nd', 'epsilon-Hf']);
 
 type Draft = { -readonly [Key in keyof PlannedColumn]: PlannedColumn[Key] } & { knownUnit: boolean; rank: number; settled: boolean };
 
@@ -127,7 +128,7 @@ function unitWithin(text: string): SpelledUnit | undefined {
 
 function blankDraft(index: number, head: string): Draft {
   return {
-    index, head, role: 'label', name: headKey(head), unit: '', sheetUnit: '', factor: 1, method: '', sigmas: 1, relative: false, mayBeNegative: false,
+    index, head, role: 'label', name: headKey(head), unit: '', sheetUnit: '', factor: 1, method: '', sigmas: 1, relative: false, signs: 'positive',
     limit: Infinity, note: '', knownUnit: true, rank: Infinity, settled: false,
   };
 }
@@ -150,7 +151,7 @@ function draft(layout: Layout, index: number, head: string, place: string, setti
       return made;
     case 'quantity':
       return Object.assign(made, {
-        role: 'quantity', name: heading.symbol, unit: heading.unit, sheetUnit: heading.unit, mayBeNegative: true, limit: heading.limit,
+        role: 'quantity', name: heading.symbol, unit: heading.unit, sheetUnit: heading.unit, signs: 'signed', limit: heading.limit,
         factor: heading.negated ? -1 : 1, note: heading.negated ? 'south or west: sign turned' : '',
       } satisfies Partial<Draft>);
     case 'uncertainty':
@@ -177,7 +178,7 @@ function asAnalyte(made: Draft, symbol: string, unit: SpelledUnit | undefined): 
   made.role = 'analyte';
   made.name = symbol;
   made.unit = analyte.unit;
-  made.mayBeNegative = mayBeNegative.has(symbol);
+  made.signs = signedAnalytes.has(symbol) ? 'signed' : 'positive';
   if (analyte.unit === '') {
     made.sheetUnit = '';
   } else if (unit !== undefined && isMassUnit(unit.unit)) {
@@ -193,7 +194,7 @@ function settle(made: Draft, setting: ColumnSetting, head: string, layout: Layou
   if (given.ignore === true) return Object.assign(made, { role: 'ignored', name: '' } as const);
   if (given.label !== undefined) return Object.assign(made, { role: 'label', name: given.label, rank: given.label === 'sample' ? -1 : Infinity } as const);
   if (given.quantity !== undefined) {
-    return Object.assign(made, { role: 'quantity', name: given.quantity, unit: given.unit ?? '', sheetUnit: given.unit ?? '', mayBeNegative: true } as const);
+    return Object.assign(made, { role: 'quantity', name: given.quantity, unit: given.unit ?? '', sheetUnit: given.unit ?? '', signs: 'signed' } as const);
   }
   const own = readHeading(head, layout.upperCase);
   const symbol = given.as ?? (own.role === 'analyte' ? own.symbol : undefined);
@@ -214,7 +215,7 @@ function tagged(made: Draft, name: string, unit: string, tag: string): Draft {
   if (tag === 'text') return Object.assign(made, { role: 'label', name, rank: name === 'sample' ? -1 : Infinity } as const);
   if (tag === 'state') return Object.assign(made, { role: 'states', name } as const);
   if (tag === '1 sigma') return Object.assign(made, { role: 'uncertainty', name, sheetUnit: unit, sigmas: 1, knownUnit: true } as const);
-  return Object.assign(made, { role: 'quantity', name, unit, sheetUnit: unit, mayBeNegative: true } as const);
+  return Object.assign(made, { role: 'quantity', name, unit, sheetUnit: unit, signs: 'any' } as const);
 }
 
 /** The label `sample`: the column whose head says so best, else the first text column. */
@@ -375,6 +376,6 @@ function promoteNumbers(layout: Layout, drafts: Draft[]): void {
       if (look === cellLook.number) numbers++;
       else if (look !== cellLook.empty) others++;
     }
-    if (numbers > 0 && others === 0) Object.assign(made, { role: 'quantity', mayBeNegative: true } as const);
+    if (numbers > 0 && others === 0) Object.assign(made, { role: 'quantity', signs: 'signed' } as const);
   }
 }

@@ -69,6 +69,7 @@ export function reportView(report: ImportReport): TableView {
   ];
   return {
     title: 'Import report',
+    mostRows: Infinity,
     columns: ['column', 'head', 'became', 'name', 'unit', 'converted', 'measured', 'below', 'above', 'missing', 'unreadable', 'note'],
     rows: report.columns.map((each) => [
       each.sheet === '' ? each.place : `${each.sheet}!${each.place}`,
