@@ -8,7 +8,7 @@ import type { FertilityIndicator, SilicaWindow } from './tables';
 /** What one indicator says of every sample. Arrays have one entry a sample. */
 export interface IndicatorAnswers {
   readonly indicator: FertilityIndicator;
-  /** The indicator's own quantity (NaN where it has no value); unit '' for a ratio. Undefined when the suite lacks a column it needs. */
+  /** The indicator's own quantity (NaN where it has no value; without 1σ); unit '' for a ratio. Undefined when the suite lacks a column it needs. */
   readonly values: Column | undefined;
   /** One number of `fertilityVerdict` a sample, guards applied. All `not applicable` for indicators that give no verdict. */
   readonly verdicts: Uint8Array;
@@ -51,7 +51,7 @@ export function askIndicator(indicator: FertilityIndicator, grounds: Grounds, gu
     verdicts[i] = withoutGuards[i];
     reasons[i] = reasonOfFinding[found[i]];
   }
-  return { indicator, values: reader.values(indicator.expression), verdicts, reasons, withoutGuards, usable };
+  return { indicator, values: reader.quantity(indicator.expression), verdicts, reasons, withoutGuards, usable };
 }
 
 const verdictOfFinding: readonly number[] = table({

@@ -9,9 +9,13 @@ export const standingCautions = [
   'Public disclosure and drilling decisions need a qualified (competent) person under the reporting code that applies, and the local rules for land, safety and environment.',
 ] as const;
 
+/** @internal The standing cautions in one line, for every row of a file, so that a row that is copied out of its file keeps them. */
+export const shortCaution =
+  'Screens suites, does not find ore; alteration, cumulates and sampling mislead; disclosure and drilling need a qualified (competent) person.';
+
 /** @internal What these samples in particular call for, after the standing cautions. */
 export function cautionsOf(evidence: Evidence, weights: Readonly<Record<string, number>>): string[] {
-  const { grounds, guarding, criteria, answers, grouping } = evidence;
+  const { grounds, guarding, criteria, grouping } = evidence;
   const { suite } = grounds;
   const out: string[] = [...standingCautions, 'An interval takes the samples of a group as independent draws; several samples of one outcrop make it too narrow.'];
   const label = guarding.guards.find(({ guard }) => guard.label !== undefined)!;
@@ -31,8 +35,10 @@ export function cautionsOf(evidence: Evidence, weights: Readonly<Record<string, 
     if (unmeasured > 0) out.push(`${indicator.name} (${shortSource(indicator.source)}): not measured in ${unmeasured} ${plural(unmeasured)} that could have been asked.`);
     if (indicator.standing === 'from memory') out.push(`${indicator.name}: the limit is recalled from ${shortSource(indicator.source)}, not seen in it. Check it there before you rely on it.`);
   }
-  const withoutSigma = answers.filter(({ indicator, values }) => weights[indicator.key] > 0 && values !== undefined && values.sigma === undefined);
-  if (withoutSigma.length > 0) out.push('No 1σ on the analyses that the weighted criteria use: "near" cannot be told from "met" and "not met". The audit gives columns their 1σ.');
+  const { volatileFree } = grounds;
+  const weighted = criteria.filter(({ indicator }) => weights[indicator.key] > 0);
+  const withoutSigma = weighted.filter(({ indicator }) => volatileFree.symbols(indicator.expression).every((symbol) => volatileFree.column(symbol)?.sigma === undefined));
+  if (withoutSigma.length > 0) out.push(`No 1σ on ${withoutSigma.map(({ indicator }) => indicator.expression).join(', ')}: there "near" cannot be told from "met" and "not met". The audit gives columns their 1σ.`);
   out.push('Zircon indices (such as 10 000·(Eu/Eu*)/Y, Lu et al. 2016) are not whole-rock criteria and are left out.');
   return out;
 }

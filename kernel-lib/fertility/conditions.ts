@@ -14,6 +14,7 @@ export interface Ground {
 /** @internal Evaluates conditions on whole columns, each distinct one once. */
 export class ConditionReader {
   private readonly findings = new Map<string, Uint8Array>();
+  private readonly quantities = new Map<string, Column | undefined>();
   private readonly named = indicatorLanguage().named;
   private readonly normal: (symbol: string) => number;
 
@@ -32,8 +33,13 @@ export class ConditionReader {
     return expressionSymbols(parseExpression(expression, this.named));
   }
 
-  /** The values of an expression, or undefined when the suite lacks a column that it needs. */
-  values(expression: string, sigma = true): Column | undefined {
+  /** The values of an expression, each distinct one evaluated once; undefined when the suite lacks a column that it needs. */
+  quantity(expression: string): Column | undefined {
+    if (!this.quantities.has(expression)) this.quantities.set(expression, this.evaluated(expression, false));
+    return this.quantities.get(expression);
+  }
+
+  private evaluated(expression: string, sigma: boolean): Column | undefined {
     const { suite, operand } = this.ground;
     if (this.symbols(expression).some((symbol) => operand(symbol) === undefined)) return undefined;
     return evaluate(suite, expression, { named: this.named, reference: this.normal, operand, sigma });
@@ -72,7 +78,7 @@ export class ConditionReader {
     const size = this.ground.suite.size;
     // The margin is positive on the side where the condition holds, so one rule serves every comparison.
     const margin = is === '>' || is === '>=' ? `(${expression})-(${limit})` : `(${limit})-(${expression})`;
-    const column = this.values(margin);
+    const column = this.evaluated(margin, true);
     const out = new Uint8Array(size).fill(finding.missing);
     if (column === undefined) return out;
     const { values, states, sigma, limits } = column;
@@ -92,7 +98,7 @@ export class ConditionReader {
       else if (state === cellState.aboveRange && bound >= 0) out[i] = finding.metByBound;
       else {
         // An expression may be bounded at both ends, and a column keeps one: the other is read off the negated margin.
-        opposite ??= this.values(`-(${margin})`, false)!;
+        opposite ??= this.evaluated(`-(${margin})`, false)!;
         const other = opposite.states[i] === cellState.belowDetection ? -opposite.limits![i] : NaN;
         out[i] = state === cellState.belowDetection && other >= 0 ? finding.metByBound : this.censoredKind(expression, limit, i);
       }

@@ -1,6 +1,6 @@
 import type { TableCell } from '../display';
 import { fertilityReasonNames, fertilityVerdictNames } from './codes';
-import { standingCautions } from './cautions';
+import { shortCaution, standingCautions } from './cautions';
 import type { FertilityScreen } from './screen';
 import { furtherText, ranksText, verdictText } from './view';
 
@@ -19,10 +19,8 @@ export interface ExportTable {
   readonly columns: readonly ExportColumn[];
 }
 
-/** @internal What goes into every row, so that a row that is copied out of its file keeps it. */
-export const rowCaution = standingCautions.join(' ');
-
-const rounded = (value: number, digits: number): number | null => (Number.isFinite(value) ? Math.round(value * 10 ** digits) / 10 ** digits : null);
+const powers = [1, 10, 100, 1e3, 1e4, 1e5, 1e6];
+const rounded = (value: number, digits: number): number | null => (Number.isFinite(value) ? Math.round(value * powers[digits]) / powers[digits] : null);
 
 /** @internal The table of groups, or of samples. */
 export function exportTable(screen: FertilityScreen, rows: FertilityRows): ExportTable {
@@ -54,7 +52,7 @@ function groupTable(screen: FertilityScreen): ExportTable {
       column('smallest further measurement', furtherText), ...criteria, ...values, ...trends,
       // 1e-6 degrees is 0.1 m on the ground.
       column('latitude', ({ latitude }) => rounded(latitude, 6)), column('longitude', ({ longitude }) => rounded(longitude, 6)),
-      column('check on labelled districts', () => screen.calibration.statement), column('caution', () => rowCaution),
+      column('check on labelled districts', () => screen.calibration.statement), column('caution', () => standingCautions.join(' ')),
     ],
   };
 }
@@ -89,7 +87,7 @@ function sampleTable(screen: FertilityScreen): ExportTable {
     columns: [
       { head: 'sample', at: (row) => suite.samples[row] }, { head: screen.label, at: (row) => label[row] },
       { head: `${screen.label} verdict`, at: (row) => byName.get(label[row])?.verdict ?? '' }, { head: `${screen.label} rank`, at: (row) => byName.get(label[row])?.rank ?? null },
-      { head: 'flags', at: (row) => flagsOf(guards, row) }, ...criteria, ...values, ...position('latitude'), ...position('longitude'), { head: 'caution', at: () => rowCaution },
+      { head: 'flags', at: (row) => flagsOf(guards, row) }, ...criteria, ...values, ...position('latitude'), ...position('longitude'), { head: 'caution', at: () => shortCaution },
     ],
   };
 }
