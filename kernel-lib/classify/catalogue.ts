@@ -1,8 +1,8 @@
 import { readdirSync } from 'node:fs';
 import { isAbsolute, join, resolve } from 'node:path';
 import { showAs, type Showable } from '../display';
-import { expressionSymbols, parseExpression } from '../suite';
 import { bibliography, once, referenceFolder, ReferenceTableError, shortSource } from '../tables';
+import { schemeNeeds } from './needs';
 import type { Scheme } from './scheme';
 import { readScheme } from './scheme-file';
 
@@ -33,13 +33,6 @@ export function findScheme(key: string): Scheme {
 
 function allSchemes(): readonly Scheme[] {
   return [...builtIn().values(), ...loaded.values()];
-}
-
-/** Every symbol that a scheme reads. */
-export function schemeNeeds(scheme: Scheme): readonly string[] {
-  const asked = scheme.kind === 'criteria' ? scheme.criteria : scheme.kind === 'thresholds' ? [scheme.axes[1]] : scheme.axes;
-  const symbols = asked.flatMap(({ expression }) => expressionSymbols(parseExpression(expression)));
-  return [...new Set(symbols.map((symbol) => symbol.replace(/^(mol|cation) /, '')))];
 }
 
 /** A source as a reader wants it: short where the bibliography has it, as written where an own scheme cites something else. */

@@ -8,14 +8,17 @@ export interface Edge {
   readonly y2: number;
   /** False for an edge that only closes a field on the frame: it is no boundary, and distance to it means nothing. */
   readonly real: boolean;
+  /** Whether the outline runs from the first end to the second. */
+  readonly forward: boolean;
 }
 
 /** The edges of an outline. */
 export function outlineEdges(vertices: readonly PlanePoint[], isReal: (a: PlanePoint, b: PlanePoint) => boolean): readonly Edge[] {
   return vertices.map((a, i) => {
     const b = vertices[(i + 1) % vertices.length];
-    const [first, second] = a[0] < b[0] || (a[0] === b[0] && a[1] <= b[1]) ? [a, b] : [b, a];
-    return { x1: first[0], y1: first[1], x2: second[0], y2: second[1], real: isReal(a, b) };
+    const forward = a[0] < b[0] || (a[0] === b[0] && a[1] <= b[1]);
+    const [first, second] = forward ? [a, b] : [b, a];
+    return { x1: first[0], y1: first[1], x2: second[0], y2: second[1], real: isReal(a, b), forward };
   });
 }
 
@@ -30,6 +33,7 @@ export interface FlatFields {
   readonly x2: Float64Array;
   readonly y2: Float64Array;
   readonly real: Uint8Array;
+  readonly forward: Uint8Array;
   readonly boxes: Float64Array;
 }
 
@@ -49,6 +53,7 @@ export function flattenFields(fields: readonly (readonly Edge[])[]): FlatFields 
     count: fields.length, start, boxes,
     x1: pick(({ x1 }) => x1), y1: pick(({ y1 }) => y1), x2: pick(({ x2 }) => x2), y2: pick(({ y2 }) => y2),
     real: Uint8Array.from(edges, ({ real }) => (real ? 1 : 0)),
+    forward: Uint8Array.from(edges, ({ forward }) => (forward ? 1 : 0)),
   };
 }
 

@@ -1,5 +1,6 @@
 /** classify/: one engine, many schemes; schemes are data. Verdicts with distance, probability and reasons. */
-export { schemes, findScheme, schemeNeeds, type SchemeList } from './catalogue';
+export { schemes, findScheme, type SchemeList } from './catalogue';
+export { schemeNeeds } from './needs';
 export { classify, type ClassifyOptions } from './classify';
 export type { FieldProbabilities, ProbabilityMethod, Uncertainty } from './probability';
 export * from './scheme';
