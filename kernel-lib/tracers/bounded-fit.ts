@@ -19,8 +19,9 @@ export interface BoundedSolution {
 
 /** Iterations of one round: the solver itself stops only at a perfect fit, so it runs in short rounds until nothing is gained. */
 const iterationsOfRound = 6;
-const mostRounds = 12;
-const worthwhileGain = 1e-4;
+const mostRounds = 16;
+/** In units of χ²: far below what an interval can feel. */
+const worthwhileGain = 1e-3;
 /** Parameters are scaled to about 1 by the caller, so one absolute step serves the difference quotient. */
 const differenceStep = 1e-4;
 
@@ -34,12 +35,15 @@ export function fitWithinBounds(problem: BoundedProblem, start: readonly number[
   const count = observed.length;
   const x = Array.from({ length: count }, (_, i) => i);
   const out = new Float64Array(count);
-  // The solver evaluates one parameter vector at every datum in turn: predict once a vector.
+  // The solver evaluates one parameter vector at every datum in turn: predict once a vector. Data and predictions are divided by σ here and
+  // the solver gets unit weights, because its own weights enter its step the wrong way round (as σ² instead of 1/σ², version 4.1.3).
   const parameterised = (parameters: number[]) => {
     const predicted = new Float64Array(count);
     predict(parameters, predicted);
+    for (let i = 0; i < count; i++) predicted[i] /= sigma[i];
     return (i: number) => predicted[i];
   };
+  const whitened = observed.map((value, i) => value / sigma[i]);
   const chiSquareOf = (parameters: ArrayLike<number>): number => {
     predict(parameters, out);
     let sum = 0;
@@ -51,8 +55,8 @@ export function fitWithinBounds(problem: BoundedProblem, start: readonly number[
   if (!Number.isFinite(chiSquare)) return { parameters, chiSquare };
   for (let round = 0; round < mostRounds; round++) {
     const before = chiSquare;
-    const found = levenbergMarquardt({ x, y: observed }, parameterised, {
-      initialValues: parameters.slice(), weights: sigma, minValues: lower, maxValues: upper, gradientDifference: differenceStep,
+    const found = levenbergMarquardt({ x, y: whitened }, parameterised, {
+      initialValues: parameters.slice(), weights: 1, minValues: lower, maxValues: upper, gradientDifference: differenceStep,
       damping: 0.01, maxIterations: iterationsOfRound, errorTolerance: 1e-9,
     });
     const reached = chiSquareOf(found.parameterValues);
