@@ -3,6 +3,7 @@ import { Command } from 'commander';
 import { libraryVersion } from '../suite';
 import { installCommand, listCommand, removeCommand, startKernel } from './command/kernel';
 import { runCommand, type RunCommand } from './command/run';
+import { runManyCommand } from './command/run-many';
 import { startCommand } from './command/start';
 import { verifyCommand } from './command/verify';
 import type { Place } from './protocol/kernelspec';
@@ -39,10 +40,17 @@ program
   .option('-s, --set <name=value>', 'value for a name in the cell tagged "parameters"; may be given again', (text: string, all: string[]) => [...all, text], [] as string[])
   .option('-o, --out <file>', 'where the executed notebook goes (default: <name>.executed.ipynb here)')
   .option('--html [file]', 'also write one HTML page, beside the executed notebook unless a file is named')
+  .option('--report [file]', 'also write a report without code, as .html and .pdf, or the one that is named')
   .option('-t, --timeout <seconds>', 'longest time for one cell')
   .option('-k, --keep-going', 'run on after a cell that failed')
   .option('-q, --quiet', 'no progress lines, no summary')
-  .action((notebook: string, options: RunCommand) => finish(runCommand(notebook, options)));
+  .option('--over <folder>', 'run it once for every sheet in a folder; --out then names the folder for the results')
+  .option('--sheet-name <name>', 'with --over: the parameter that takes the sheet (default: sheet)')
+  .option('-j, --jobs <number>', 'with --over: runs at once (default: one a processor)')
+  .option('--again', 'with --over: also run sheets whose results are finished and current')
+  .action((notebook: string, options: RunCommand & { over?: string; jobs?: string; sheetName?: string; again?: boolean }) =>
+    finish(options.over === undefined ? runCommand(notebook, options) : runManyCommand(notebook, options.over, options)),
+  );
 
 program
   .command('verify')

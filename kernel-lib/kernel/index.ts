@@ -13,3 +13,7 @@ export { verifyRun, type Change, type Verification, type VerifyOptions } from '.
 export { RunRecordError } from './record/run-record';
 export type { ValueDifference } from './record/compare-outputs';
 export type { RunFacts } from './record/run-facts';
+export { report, saveReport, type Report, type ReportParts, type ReportResult } from './report/report';
+export type { Block, CodeBlock, FigureBlock, HeadingBlock, TableBlock, TextBlock } from './report/blocks';
+export type { WorkbookSheet } from './report/workbook';
+export { runOverSheets, type ManyOptions, type ManyRuns, type SheetRun } from './notebook/run-many';

@@ -8,6 +8,7 @@ export interface RunCommand {
   readonly set: readonly string[];
   readonly out?: string;
   readonly html?: string | true;
+  readonly report?: string | true;
   readonly timeout?: string;
   readonly keepGoing?: boolean;
   readonly quiet?: boolean;
@@ -37,7 +38,9 @@ export async function runCommand(notebook: string, options: RunCommand): Promise
   try {
     if (!options.quiet) progress.line(`Running ${notebook}`);
     const html = options.html === true ? out.replace(/(\.ipynb)?$/, '.html') : options.html;
-    const run = await runNotebook(notebook, { set, out, html, timeout, keepGoing: options.keepGoing, quiet: options.quiet, onProgress: progress.tell, signal });
+    const stem = out.replace(/(\.ipynb)?$/, '');
+    const report = options.report === true ? [`${stem}.report.html`, `${stem}.report.pdf`] : options.report;
+    const run = await runNotebook(notebook, { set, out, html, report, timeout, keepGoing: options.keepGoing, quiet: options.quiet, onProgress: progress.tell, signal });
     progress.end();
     if (run.failures.length > 0 || run.status !== 'ok') progress.line(failureText(run, basename(notebook)));
     if (!options.quiet) {

@@ -7,6 +7,10 @@ import type { CellOutput, ErrorOutput } from '../output';
 import { progressType } from '../progress';
 import type { RunFacts } from '../record/run-facts';
 import { formatRecord, makeRecord, recordPath } from '../record/run-record';
+import { closingBlocks } from '../report/closing';
+import { notebookBlocks } from '../report/notebook-blocks';
+import { reportPage } from '../report/page';
+import { reportPdf } from '../report/pdf';
 import { summaryType } from '../run-summary';
 import { OutputStore } from './cell-outputs';
 import { formatNotebook, NotebookFormatError, parseNotebook, type Notebook, type NotebookCell } from './document';
@@ -33,6 +37,8 @@ export interface RunOptions {
   readonly keepGoing?: boolean;
   /** Folder that the cells run in (default: the notebook's own). */
   readonly folder?: string;
+  /** Where a report goes (.html or .pdf, or a list of both): texts, figures and tables without code, with cautions, methods, sources and lineage. */
+  readonly report?: string | readonly string[];
   /** Whether a record of the run is written beside the executed notebook (default true where `out` is given). */
   readonly record?: boolean;
   /** Folder that takes every file the cells write through the library, instead of where they ask: for a trial run. */
@@ -160,6 +166,12 @@ export async function runNotebook(path: string, options: RunOptions = {}): Promi
     const record = await makeRecord({ source: file, folder, executed: out, parameters: options.set ?? {}, keepGoing: options.keepGoing === true, status, notebook: executed, facts });
     writeWhole(recordPath(out), formatRecord(record));
     written.push(recordPath(out));
+  }
+  for (const to of [options.report ?? []].flat()) {
+    const { title, blocks } = notebookBlocks(executed);
+    const whole = [...blocks, ...closingBlocks(facts?.lineage ?? [], { facts })];
+    writeWhole(resolve(to), to.endsWith('.pdf') ? await reportPdf(title, whole) : reportPage(title, whole));
+    written.push(resolve(to));
   }
   return { status, notebook: executed, failures, cellsRun: counts.size, cellsInAll: code.length, summary, facts, seconds: (performance.now() - start) / 1000, written };
 }
