@@ -29,8 +29,11 @@ export interface HypocentreSlabOptions {
   readonly knotSpacing?: number;
   /** 1σ of a bias common to all depths, such as that of the velocity model, km (default 5; an assumption). */
   readonly systematic?: number;
-  /** km added to every depth, negative to raise the surface from the seismic plane to the slab's top (default 0). */
-  readonly shift?: number;
+  /**
+   * `middle` (default): the middle of the upper plane of seismicity. `top`: raised across the slab until one slab event in twenty lies above
+   * it, which is nearer to what published models call the top of the slab, and too shallow by the location errors of the catalogue.
+   */
+  readonly follow?: 'middle' | 'top';
 }
 
 /** A slab surface fitted to hypocentres, with the events it stands on. */
@@ -46,6 +49,8 @@ export interface HypocentreSlab extends SlabSurface {
   readonly counts: { readonly given: number; readonly fixedDepth: number; readonly slab: number; readonly lowerPlane: number; readonly crust: number; readonly neither: number };
   /** 1σ of the slab events about the surface, across the slab, km. */
   readonly scatter: number;
+  /** How far the surface was raised across the slab from the middle of the events to their top, km (0 with `middle`). */
+  readonly raisedBy: number;
   /** Distance of the lower plane of seismicity below the upper one, km, or undefined where there is none. */
   readonly planeSeparation?: number;
 }
@@ -61,7 +66,7 @@ const mostTerms = 320;
 /**
  * Fits a slab surface to hypocentres, choosing the slab's events against crustal and double-plane seismicity.
  *
- * The surface follows the centre of the upper plane of seismicity: the slab's top may lie some km above it (use `shift`). Its 1σ holds the
+ * The surface follows the middle of the upper plane of seismicity: the top of the slab lies some km above it (see `follow`). Its 1σ holds the
  * scatter of the events, the stiffness of the surface and `systematic`. Depths are given up to 150 km from slab events, marked as
  * extrapolated where fewer than three lie within 60 km. Describes where past earthquakes were; forecasts nothing.
  *
@@ -73,13 +78,13 @@ const mostTerms = 320;
  * @example const slab = slabFromHypocentres(quakes, { area: { west: -132, east: -127, south: -46, north: -43 } })
  */
 export function slabFromHypocentres(events: Hypocentres, options: HypocentreSlabOptions = {}): HypocentreSlab & Showable {
-  const { trenchDepth = 7, crustDepth = 50, fixedDepths = [0, 5, 10, 33, 35], minimumEvents = 40, systematic = 5, shift = 0 } = options;
+  const { trenchDepth = 7, crustDepth = 50, fixedDepths = [0, 5, 10, 33, 35], minimumEvents = 40, systematic = 5, follow = 'middle' } = options;
   if (!(events?.depth instanceof Float64Array)) throw new RangeError('slabFromHypocentres: events must come from readHypocentres or hypocentresOf.');
   for (const [name, value] of Object.entries({ trenchDepth, crustDepth, minimumEvents, systematic: systematic + 1e-12 })) {
     if (!(value > 0)) throw new RangeError(`slabFromHypocentres: ${name} must be a positive number, not ${String(value)}.`);
   }
   if (options.knotSpacing !== undefined && !(options.knotSpacing >= 10)) throw new RangeError(`slabFromHypocentres: knotSpacing must be at least 10 km, not ${String(options.knotSpacing)}.`);
-  if (!Number.isFinite(shift)) throw new RangeError(`slabFromHypocentres: shift must be a number of km, not ${String(shift)}.`);
+  if (follow !== 'middle' && follow !== 'top') throw new RangeError(`slabFromHypocentres: follow must be "middle" or "top", not "${String(follow)}".`);
 
   const inArea = rowsInArea(events, options.area);
   const fixed = new Set(fixedDepths);
@@ -111,7 +116,7 @@ export function slabFromHypocentres(events: Hypocentres, options: HypocentreSlab
         'Widen the area, use a longer catalogue, or take published depths (slabFromDepths).',
     );
   }
-  return finish({ events: { longitude, latitude, depth }, fit, frame, plane, grid, counts, options: { ...options, systematic, shift, crustDepth, trenchDepth }, source: events });
+  return finish({ events: { longitude, latitude, depth }, fit, frame, plane, grid, counts, options: { ...options, systematic, follow, crustDepth, trenchDepth }, source: events });
 }
 
 function rowsInArea(events: Hypocentres, area: HypocentreSlabOptions['area']): number[] {
@@ -186,6 +191,8 @@ function gridFor(frame: TurnedFrame, spacing: number | undefined): SplineGrid {
   return grid;
 }
 
+const quantile = (values: readonly number[], share: number): number => [...values].sort((a, b) => a - b)[Math.min(values.length - 1, Math.floor(share * values.length))];
+
 function countKinds(fit: SurfaceFit, given: number, fixedDepth: number): HypocentreSlab['counts'] {
   const counts = [0, 0, 0, 0];
   for (const kind of fit.kinds) counts[kind]++;
@@ -199,7 +206,7 @@ interface Finish {
   readonly plane: Plane;
   readonly grid: SplineGrid;
   readonly counts: HypocentreSlab['counts'];
-  readonly options: HypocentreSlabOptions & { readonly systematic: number; readonly shift: number; readonly crustDepth: number; readonly trenchDepth: number };
+  readonly options: HypocentreSlabOptions & { readonly systematic: number; readonly follow: 'middle' | 'top'; readonly crustDepth: number; readonly trenchDepth: number };
   readonly source: Hypocentres;
 }
 
@@ -207,7 +214,8 @@ function finish(made: Finish): HypocentreSlab & Showable {
   const { events, fit, plane, counts, options, grid } = made;
   const chosen: number[] = [];
   for (let i = 0; i < fit.kinds.length; i++) if (fit.kinds[i] === eventKind.slab) chosen.push(i);
-  const at = surfaceReader(made, chosen);
+  const raisedBy = options.follow === 'top' ? -quantile(chosen.map((i) => fit.across[i]), 0.05) : 0;
+  const at = surfaceReader(made, chosen, raisedBy);
   const onSlab = { longitude: Float64Array.from(chosen, (i) => events.longitude[i]), latitude: Float64Array.from(chosen, (i) => events.latitude[i]), depth: Float64Array.from(chosen, (i) => events.depth[i]) };
   const trench = options.trench === undefined ? undefined : orientedTrench(options.trench, at, onSlab, plane);
   const extent = extentOf(onSlab.longitude, onSlab.latitude, plane.centre.longitude);
@@ -218,21 +226,26 @@ function finish(made: Finish): HypocentreSlab & Showable {
   notes.push(`Of ${fit.kinds.length} events weighed, ${counts.slab} lie on the slab, ${counts.lowerPlane} on a lower plane, ${counts.crust} look like shallow crust, ${counts.neither} like neither.`);
   if (separation !== undefined) notes.push(`A double seismic zone: the lower plane lies ${separation.toFixed(0)} km below the upper one, and the surface follows the upper.`);
   if (trench === undefined) notes.push('No trench line was given: there are no trench distances, and the shallow end of the surface is not held.');
-  notes.push('The surface is the centre of the upper seismic plane; the top of the slab may lie some km above it. Nothing here forecasts earthquakes or eruptions.');
+  notes.push(
+    options.follow === 'top'
+      ? `The surface is the top of the upper seismic plane, ${raisedBy.toFixed(1)} km above its middle.`
+      : 'The surface is the middle of the upper seismic plane; published models of the top of the slab lie some km to 20 km above it ({ follow: \'top\' }).',
+    'Nothing here forecasts earthquakes or eruptions.',
+  );
   const slab: HypocentreSlab = {
     kind: 'hypocentres', name: 'hypocentres', ...(trench === undefined ? {} : { trench }), extent, depthRange, notes,
     lineage: [
       ...made.source.lineage,
       step('slabFromHypocentres', {
         area: options.area === undefined ? null : { ...options.area }, crustDepth: options.crustDepth, trenchDepth: trench === undefined ? null : options.trenchDepth,
-        systematic: options.systematic, shift: options.shift, knotSpacing: grid.step, terms: grid.size, effectiveTerms: Number(fit.effectiveTerms.toPrecision(4)), rounds: fit.rounds,
+        systematic: options.systematic, follow: options.follow, raisedBy: Number(raisedBy.toPrecision(4)), knotSpacing: grid.step, terms: grid.size, effectiveTerms: Number(fit.effectiveTerms.toPrecision(4)), rounds: fit.rounds,
         stiffness: Number(fit.stiffness.toPrecision(4)), scatter: Number(fit.mixture.spread.toPrecision(4)), counts: { ...counts },
       }, { sources: ['eilers_marx_1996', 'wood_fasiolo_2017', 'dempster_1977', 'silverman_1985'] }),
     ],
     depthAt: (longitudes, latitudes) => at(longitudes, latitudes).depth,
     at,
     events: { ...events, kind: fit.kinds, slabProbability: fit.slabShare, across: fit.across },
-    counts, scatter: fit.mixture.spread, ...(separation === undefined ? {} : { planeSeparation: separation }),
+    counts, scatter: fit.mixture.spread, raisedBy, ...(separation === undefined ? {} : { planeSeparation: separation }),
   };
   return showAs(slab, () => ({
     title: 'Slab surface fitted to hypocentres',
@@ -243,7 +256,7 @@ function finish(made: Finish): HypocentreSlab & Showable {
 }
 
 /** Reads depth, 1σ, dip and strike off the fitted surface; support from the slab events round about. */
-function surfaceReader({ fit, frame, plane, grid, options }: Finish, chosen: readonly number[]) {
+function surfaceReader({ fit, frame, plane, grid, options }: Finish, chosen: readonly number[], raisedBy: number) {
   const index = new KDBush(Math.max(1, chosen.length));
   for (const i of chosen) index.add(frame.x[i], frame.y[i]);
   index.finish();
@@ -260,8 +273,9 @@ function surfaceReader({ fit, frame, plane, grid, options }: Finish, chosen: rea
       const outside = x[i] < grid.left || y[i] < grid.bottom || x[i] > grid.left + (grid.countX - 3) * grid.step || y[i] > grid.bottom + (grid.countY - 3) * grid.step;
       if (outside || (near === 0 && index.withinInto(x[i], y[i], reach, found) === 0)) continue;
       splineAt(grid, basis, fit.coefficients, i, value);
-      if (value[0] + options.shift <= 0) continue;
-      result.depth[i] = value[0] + options.shift;
+      const depth = value[0] - raisedBy * Math.hypot(1, value[1], value[2]);
+      if (depth <= 0) continue;
+      result.depth[i] = depth;
       result.sigma[i] = Math.hypot(Math.sqrt(Math.max(0, varianceAt(grid, basis, fit.covariance, i))), options.systematic);
       result.support[i] = near >= supportEvents ? slabSupport.within : slabSupport.extrapolated;
       setAttitude(result, i, { slopeX: frame.cosine * value[1] - frame.sine * value[2], slopeY: frame.sine * value[1] + frame.cosine * value[2] }, plane.local(longitudes[i], latitudes[i]));

@@ -7,3 +7,12 @@ export { slabSupport, slabSupportNames, type ShownSlabSurface, type SlabBelow, t
 export { slabFromDepths, type PublishedSlabOptions } from './contour-surface';
 export { slabFromHypocentres, type HypocentreSlab, type HypocentreSlabOptions } from './hypocentre-surface';
 export { eventKind, eventKindNames } from './event-choice';
+export { slabBelow, slabColumns, withCoordinates, type SlabBelowPoints } from './slab-below';
+export { volcanoesAbove, type VolcanoAbove, type VolcanoesAbove } from './volcanoes-above';
+export { plateVelocity, rateInMillimetres, slabKinematics, withKinematics, type PlateMotion, type Rate, type RateUnit, type SlabKinematics } from './kinematics';
+export { plausibleRanges, pointOut, type PlausibleRange } from './plausibility';
+export { atComposition, type AtComposition, type CompositionIndex, type ArcValue, type ArcValueOptions, type ArcValues } from './at-composition';
+export { crossArcTrend, type ArcTrend, type ArcTrendOptions, type ArcTrendPoint } from './trend';
+export type { Line, RobustMethod } from './regression';
+export { crustCalibrations, thicknessFromRatios, type CrustCalibration } from './crust';
+export { crustalThickness, type CrustalThickness, type CrustEstimate, type CrustOptions } from './crustal-thickness';
