@@ -6,9 +6,11 @@ export const sizeLimits = {
   rowBytes: 2 * 1024 * 1024,
   /** Columns of a sheet. */
   columns: 10_000,
-  /** Cells of all sheets of a workbook together. */
-  workbookCells: 40_000_000,
+  /** Cells of one workbook. */
+  workbookCells: 20_000_000,
   /** Bytes of a workbook once unpacked, and how many times its packed size that may be. */
-  unpackedBytes: 1024 * 1024 * 1024,
-  unpackedRatio: 250,
+  unpackedBytes: 400 * 1024 * 1024,
+  unpackedRatio: 200,
+  /** Parts of a workbook file. */
+  parts: 5_000,
 } as const;

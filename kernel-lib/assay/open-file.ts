@@ -48,7 +48,7 @@ export async function openFile(path: string, options: { readonly delimiter?: str
     }
     const bytes = size === head.length ? head : await readRest(handle, head, size);
     const { sha256 } = noteInput(path, bytes);
-    if (packed || compound) return { file, sha256, kind: 'workbook', sheets: await readWorkbook(bytes, file) };
+    if (packed || compound) return { file, sha256, kind: 'workbook', sheets: readWorkbook(bytes, file) };
     return { file, sha256, kind: 'delimited', ...openText(bytes, file, options.delimiter) };
   } finally {
     await handle.close();
