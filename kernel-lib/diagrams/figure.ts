@@ -26,6 +26,8 @@ export interface FigureParts {
   /** Sentences of the caption: source of the boundaries, basis, what open symbols mean … The counts are added. */
   readonly caption: readonly string[];
   readonly counts?: DiagramCounts;
+  /** Whether the caption says the counts (default true); a caption of several panels may say its own. */
+  readonly showCounts?: boolean;
   /** What the counts count (default `sample`). */
   readonly counted?: string;
   /** Width that a legend on the right needs, in pixels, so that the caption may run as wide as the figure. */
@@ -46,7 +48,7 @@ export function figure(parts: FigureParts): Diagram {
   const views = parts.panels.map((panel, i) => panelView(panel, i, i === 0 ? parts.title : undefined));
   const widest = Math.max(...parts.panels.map(({ frame }) => frame.width));
   const width = columns * widest + (columns - 1) * 60 + 55 + (parts.legendWidth ?? 0);
-  const sentences = [...parts.caption, ...(parts.counts === undefined ? [] : [countsText(parts.counts, parts.counted)])].filter((text) => text !== '');
+  const sentences = [...parts.caption, ...(parts.counts === undefined || parts.showCounts === false ? [] : [countsText(parts.counts, parts.counted)])].filter((text) => text !== '');
   const lines = wrapText(sentences.join(' '), Math.max(width, 380), { size: textSize.caption });
   const description = `${[parts.title, parts.name].filter(Boolean).join(' – ')}${parts.counts === undefined ? '' : `: ${countsText(parts.counts, parts.counted)}`}`;
   const title = lines.length === 0 ? {} : {

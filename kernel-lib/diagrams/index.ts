@@ -26,7 +26,8 @@
  *
  * Layers there are: `samplesLayer` (markers by group, open where altered, arrows for limits, errors, bins), `fieldsLayer` (polygons and
  * their names), `linesLayer` (+ `curve`), `bandsLayer`, `pathsLayer` (ticks, labels), `markersLayer` (reservoirs), `vectorsLayer`,
- * `seriesLayer` (patterns). A layer of your own is an object
+ * `seriesLayer` (patterns), `barsLayer` (on an axis with `names`), `namesLayer` (sample names), and `ternaryFrame`, `ternaryLayer`,
+ * `ternaryPoint` for triangles. A layer of your own is an object
  * `{ claim?, labelRank?, draw }` (layer.ts): `claim` tells the label placer what is solid, `draw` returns Vega-Lite units made with `unit`,
  * `lineUnit`, `labelUnit`. A specification that fits none of this can still have the look and the files: `diagramOf({ spec: { config:
  * themeConfig, … }, … })`. Texts: `symbolText`, `expressionText`, `axisTitle`, `numberText`. Look at every figure:
@@ -35,17 +36,32 @@
 export * from './chemical-text';
 export * from './diagram';
 export * from './figure';
+export { textWidth, type TextStyle } from './font';
 export { checkWindow, windowAround, type Axis, type Frame, type VegaSpec, type WindowChoice, type WindowHints } from './frame';
+export type { Box, Point } from './geometry';
+export { groupScale, groupSuite, type Grouping, type GroupScale } from './groups';
 export * from './layer';
+export { LabelPlacer, type PlacedLabel } from './place-labels';
 export { specWarnings } from './render';
+export * from './layers/bars';
 export * from './layers/fields';
 export * from './layers/lines';
 export * from './layers/markers';
+export * from './layers/names';
 export * from './layers/samples';
 export * from './layers/series';
+export * from './harker';
 export * from './model-paths';
+export * from './patterns';
 export * from './sample-points';
+export * from './screening';
+export * from './screening-map';
+export * from './save';
 export { scheme, type SchemeDiagramOptions } from './scheme';
 export * from './ternary';
+export { fontFamily, groupColours, groupShapes, ink, textSize, themeConfig } from './theme';
 export * from './well-known';
 export * from './xy';
+export * from './isotope-plots';
+export * from './slab-share-bars';
+export * from './tracer-plots';

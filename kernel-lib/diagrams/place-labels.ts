@@ -141,7 +141,7 @@ export class LabelPlacer {
       const consider = (x: number, y: number): void => {
         const box = { left: x - width / 2, right: x + width / 2, top: y - height / 2, bottom: y + height / 2 };
         const away = Math.hypot((x - middle[0]) / (bounds.right - bounds.left), (y - middle[1]) / (bounds.bottom - bounds.top));
-        const score = 4 * this.pointsUnder(box) + 3 * away + 2.5 * rank;
+        const score = 6 * this.pointsUnder(box) + 3 * away + 2.5 * rank;
         if (best !== undefined && score >= best.score) return;
         if (!isInside([x, y], polygon) || !this.isFree(box) || crosses(polygon, box)) return;
         best = { label: { x, y, lines, box }, score };
@@ -162,26 +162,31 @@ export class LabelPlacer {
   /**
    * A place beside a point: right, left, above, below and the corners, then farther away.
    *
+   * @param anchors the point, or several (along a line) of which any will do, best first
    * @param reach distance of the text from the point, in pixels
-   * @returns undefined when every place near it is taken
+   * @returns undefined when every place near is taken
    */
-  placeBeside([x, y]: Point, lines: readonly string[], style: TextStyle, reach = 6): PlacedLabel | undefined {
+  placeBeside(anchors: readonly Point[], lines: readonly string[], style: TextStyle, reach = 6): PlacedLabel | undefined {
     const { width, height } = textBlock(lines, style);
     let best: { label: PlacedLabel; score: number } | undefined;
-    [1, 1.8, 2.8, 4].forEach((times, ring) => {
-      const gap = reach * times;
-      directions.forEach(([dx, dy], rank) => {
-        const cx = x + dx * (gap + width / 2);
-        const cy = y + dy * (gap + height / 2) * (dx === 0 ? 1 : 0.8);
-        const box = { left: cx - width / 2, right: cx + width / 2, top: cy - height / 2, bottom: cy + height / 2 };
-        const score = 3 * this.pointsUnder(box) + 4 * ring + 0.5 * rank;
-        if ((best === undefined || score < best.score) && this.isFree(box)) best = { label: { x: cx, y: cy, lines, box }, score };
+    anchors.forEach(([x, y], place) => {
+      rings.forEach((times, ring) => {
+        const gap = reach * times;
+        directions.forEach(([dx, dy], rank) => {
+          const cx = x + dx * (gap + width / 2);
+          const cy = y + dy * (gap + height / 2) * (dx === 0 ? 1 : 0.8);
+          const box = { left: cx - width / 2, right: cx + width / 2, top: cy - height / 2, bottom: cy + height / 2 };
+          const score = 3 * this.pointsUnder(box) + 4 * ring + 0.5 * rank + (4 * place) / anchors.length;
+          if ((best === undefined || score < best.score) && this.isFree(box)) best = { label: { x: cx, y: cy, lines, box }, score };
+        });
       });
     });
     return this.take(best);
   }
 }
 
+/** Distances at which a place beside a point is looked for, in multiples of the reach. */
+const rings = [1, 1.8, 2.8, 4] as const;
 const directions: readonly Point[] = [[1, 0], [-1, 0], [0, -1], [0, 1], [1, -1], [-1, -1], [1, 1], [-1, 1]];
 
 function crosses(polygon: readonly Point[], box: Box): boolean {

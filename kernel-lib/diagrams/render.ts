@@ -34,11 +34,10 @@ function startIdsAnew(vega: typeof import('vega')): void {
  * @throws Error when the specification cannot be compiled; the message is Vega's
  */
 export async function renderSvg(spec: VegaSpec): Promise<string> {
-  const { vega, vegaLite } = drawingLibraries();
-  const compiled = vegaLite.compile(spec as unknown as Parameters<typeof vegaLite.compile>[0], { logger: quietLogger() as never });
+  const { vega } = drawingLibraries();
   // Nothing may be fetched: diagrams carry their data.
   const loader = { load: refuse, sanitize: refuse, http: refuse, file: refuse } as never as ReturnType<typeof vega.loader>;
-  const view = new vega.View(vega.parse(compiled.spec), { renderer: 'none', loader, logger: quietLogger() as never });
+  const view = new vega.View(vega.parse(compileSpec(spec) as Parameters<typeof vega.parse>[0]), { renderer: 'none', loader, logger: quietLogger() as never });
   try {
     startIdsAnew(vega);
     return await view.toSVG();
@@ -59,6 +58,12 @@ function quietLogger(heard: (text: string) => void = () => {}): object {
   };
   const logger: object = { level: () => logger, error: hear, warn: hear, info: () => logger, debug: () => logger };
   return logger;
+}
+
+/** The Vega specification behind a Vega-Lite one. */
+export function compileSpec(spec: VegaSpec): object {
+  const { vegaLite } = drawingLibraries();
+  return vegaLite.compile(spec as unknown as Parameters<typeof vegaLite.compile>[0], { logger: quietLogger() as never }).spec;
 }
 
 /** Warnings that compiling a specification gives; empty for a sound one. */

@@ -71,7 +71,7 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
   if (verdict.probability !== undefined) tooltips.set('how sure', Array.from({ length: suite.size }, (_, i) => probabilityText(verdict, i)));
   const set = samplePoints(who, suite, {
     x: chosen.axes[0].expression, y: chosen.axes[1].expression, columns, tooltips, axisTitles: [titles[0], titles[1]],
-    reason: (row) => dressText(verdict.remarks[row]) || undefined,
+    reason: (row) => dressText(verdict.remarks[row]).replace(/^needs /, 'without ').replace(/; needs /g, ', ') || undefined,
   }, options);
   const paths = pathShapes(who, options.paths, (liquid) => onScheme(who, liquid, chosen, place, iron));
   const frame = isTernary ? ternaryFrame(options.width ?? words.width) : schemeFrame(chosen, titles, [columns.x.values, columns.y.values], paths.shapes, set, options, words);
@@ -85,7 +85,7 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
   const corners = isTernary ? (chosen.axes.map((axis, i): TernaryCorner => (letters === undefined ? { name: axis.title } : { name: letters[i], meaning: axis.title })) as unknown as [TernaryCorner, TernaryCorner, TernaryCorner]) : undefined;
   const layers = [
     ...(corners === undefined ? [] : [ternaryLayer(corners)]),
-    fieldsLayer(fields, { edges: edges(true), conventionEdges: edges(false) }),
+    fieldsLayer(fields, { edges: edges(true), conventionEdges: edges(false), width: chosen.kind === 'polygons' ? 0.9 : 1.3 }),
     ...(others.length === 0 ? [] : [linesLayer(others.flatMap((other) => other.lines.filter(({ published }) => published).map(({ points, name }) => ({ points: points.map(place), label: name.replace(' | ', ' / '), dash: [5, 3] }))))]),
     samplesLayer(set.points, { ...options, zoom: !isTernary }),
     ...(options.names === undefined ? [] : [namesLayer(set.points, suite.samples, options.names)]),
@@ -122,7 +122,8 @@ function missingAxes(suite: Suite, { axes }: Scheme, { remarks }: SchemeVerdict)
 }
 
 function basisSentence({ basis, axes }: Scheme, suite: Suite, iron: IronBasis = 'measured', isTernary: boolean, titles: readonly string[]): string {
-  const axesText = isTernary ? ` Corners: ${titles.join('; ')}.` : '';
+  const units = [...new Set(axes.map(({ unit }) => unit))].filter((unit) => unit !== '');
+  const axesText = isTernary ? ` Triangle: ${units.length === 1 ? units[0] : titles.join('; ')}, closed to 100 %.` : '';
   if (basis !== 'volatile-free') return axesText.trim();
   const recast = 'Recast to 100 % free of volatiles';
   const total = axes.some(({ expression }) => /FeOT|Fe2O3T/.test(expression)) ? ' FeO*: total iron as FeO.' : '';

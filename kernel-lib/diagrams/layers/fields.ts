@@ -23,6 +23,8 @@ export interface FieldsOptions {
   /** The scheme's own outer frame: sides that lie on it are not boundaries, and are not drawn. */
   readonly outer?: { readonly x: readonly [number, number]; readonly y: readonly [number, number] };
   readonly names?: boolean;
+  /** Width of the boundaries in pixels (default 0.9). */
+  readonly width?: number;
 }
 
 type Segment = readonly [Point, Point];
@@ -41,7 +43,7 @@ export function fieldsLayer(fields: readonly FieldShape[], options: FieldsOption
     },
     draw(canvas) {
       const { frame } = canvas;
-      const rule = (sides: readonly Segment[], style: object) => unit(frame, { type: 'rule', color: ink.line, strokeWidth: 0.9, strokeCap: 'round', tooltip: null, ...style }, sides.map(ruleRow), {
+      const rule = (sides: readonly Segment[], style: object) => unit(frame, { type: 'rule', color: ink.line, strokeWidth: options.width ?? 0.9, strokeCap: 'round', tooltip: null, ...style }, sides.map(ruleRow), {
         x2: { field: 'x2' }, y2: { field: 'y2' },
       });
       const names = options.names === false ? [] : placeNames(canvas, fields);

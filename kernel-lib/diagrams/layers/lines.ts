@@ -46,13 +46,8 @@ function labelOnLine({ frame, placer }: Canvas, label: string, points: readonly 
     const steps = Math.max(1, Math.round(Math.hypot(a[0] - b[0], a[1] - b[1]) / 12));
     for (let k = 0; k <= steps; k++) stops.push([a[0] + ((b[0] - a[0]) * k) / steps, a[1] + ((b[1] - a[1]) * k) / steps]);
   }
-  const style = { size: textSize.note };
-  for (const stop of stops) {
-    if (stop[0] < 0 || stop[0] > frame.width || stop[1] < 0 || stop[1] > frame.height) continue;
-    const placed = placer.placeBeside(stop, [label], style, 5);
-    if (placed !== undefined) return [placed];
-  }
-  return [];
+  const inside = stops.filter(([x, y]) => x >= 0 && x <= frame.width && y >= 0 && y <= frame.height);
+  return [placer.placeBeside(inside, [label], { size: textSize.note }, 5)].filter((placed) => placed !== undefined);
 }
 
 /** The points of y = f(x) across a window, close enough to draw a curve on either scale. */

@@ -1,5 +1,5 @@
 import { claimLine, labelUnit, lineUnit, specNumber, unit, type Canvas, type Layer } from '../layer';
-import { frameBox, inWindow, toPixels } from '../frame';
+import { inWindow, toPixels } from '../frame';
 import type { Point } from '../geometry';
 import type { PlacedLabel } from '../place-labels';
 import { ink, textSize } from '../theme';
@@ -41,7 +41,7 @@ function boxAround([x, y]: Point, half: number) {
 }
 
 function besideEach({ frame, placer }: Canvas, shapes: readonly { x: number; y: number; label: string }[], reach: number): PlacedLabel[] {
-  return shapes.flatMap(({ x, y, label }) => placer.placeBeside(toPixels(frame, [x, y]), [label], { size: textSize.note }, reach) ?? []);
+  return shapes.flatMap(({ x, y, label }) => placer.placeBeside([toPixels(frame, [x, y])], [label], { size: textSize.note }, reach) ?? []);
 }
 
 /** A model path over the diagram. */
@@ -85,15 +85,11 @@ export function pathsLayer(paths: readonly PathShape[]): Layer {
   };
 }
 
+/** Beside the end of the path, or farther back where its end is crowded. */
 function nameAtEnd({ frame, placer }: Canvas, points: readonly Point[], label: string): PlacedLabel[] {
-  const box = frameBox(frame);
-  for (let i = points.length - 1; i >= 0; i--) {
-    const [x, y] = toPixels(frame, points[i]);
-    if (!(x >= box.left && x <= box.right && y >= box.top && y <= box.bottom)) continue;
-    const placed = placer.placeBeside([x, y], [label], { size: textSize.note, bold: true }, 7);
-    if (placed !== undefined) return [placed];
-  }
-  return [];
+  const anchors = [...points].reverse().filter(([x, y]) => inWindow(frame, x, y)).map((point) => toPixels(frame, point));
+  const some = anchors.filter((_, i) => i % Math.ceil(anchors.length / 20) === 0);
+  return [placer.placeBeside(some, [label], { size: textSize.note, bold: true }, 7)].filter((placed) => placed !== undefined);
 }
 
 /** An arrow that says what moves a composition: removal of a mineral, addition of a component. */
@@ -115,7 +111,7 @@ export function vectorsLayer(vectors: readonly VectorShape[]): Layer {
         // The arrow head points up in its own frame.
         return { x: specNumber(to[0]), y: specNumber(to[1]), a: specNumber((Math.atan2(bx - ax, ay - by) * 180) / Math.PI) };
       });
-      const labels = vectors.flatMap(({ to, label }) => (label === undefined ? [] : placer.placeBeside(toPixels(frame, to), [label], { size: textSize.note }, 7) ?? []));
+      const labels = vectors.flatMap(({ to, label }) => (label === undefined ? [] : placer.placeBeside([toPixels(frame, to)], [label], { size: textSize.note }, 7) ?? []));
       return [
         lineUnit(frame, vectors.map(({ from, to }) => [from, to]), { color: ink.path, strokeWidth: 1.3 }),
         unit(frame, { type: 'point', filled: true, shape: 'M0,-1L0.7,0.8L0,0.4L-0.7,0.8Z', size: 70, color: ink.path, opacity: 1, tooltip: null }, heads, {

@@ -12,7 +12,7 @@ export function namesLayer({ x, y }: SamplePoints, samples: readonly string[], w
       const style = { size: textSize.note - 1 };
       const labels = samples.flatMap((name, i) => {
         if ((asked !== undefined && !asked.has(name)) || !Number.isFinite(x[i]) || !Number.isFinite(y[i]) || !inWindow(frame, x[i], y[i])) return [];
-        return placer.placeBeside(toPixels(frame, [x[i], y[i]]), [name], style, 5) ?? [];
+        return placer.placeBeside([toPixels(frame, [x[i], y[i]])], [name], style, 5) ?? [];
       });
       return labels.length === 0 ? [] : [labelUnit(frame, labels, { fontSize: style.size })];
     },

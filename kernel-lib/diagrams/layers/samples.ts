@@ -1,6 +1,7 @@
-import { specNumber, unit, type Canvas, type Layer } from '../layer';
+import { lineRows, specNumber, unit, type Canvas, type Layer } from '../layer';
 import { positionChannels } from '../axes';
 import { fromPixels, toPixels, type Frame, type VegaSpec } from '../frame';
+import type { Point } from '../geometry';
 import type { GroupScale } from '../groups';
 import { groupColours, ink, markerArea } from '../theme';
 
@@ -30,8 +31,8 @@ export interface SamplesOptions {
   readonly errors?: 'none' | 'bars' | 'ellipses';
   /** Above this many samples, bins with a count scale are drawn instead (default 5,000). */
   readonly binAbove?: number;
-  /** Whether this layer carries the legend and the filter that goes with it (default true); one panel of a figure does. */
-  readonly legend?: boolean;
+  /** Smaller markers, for one of several small panels; the first panel carries the filter of the legend that all share. */
+  readonly inPanel?: boolean;
   /** Zoom and pan by mouse (default true); triangles have none, because their ticks and corners stand outside the frame. */
   readonly zoom?: boolean;
 }
@@ -74,15 +75,15 @@ function drawMarkers({ frame, panel }: Canvas, points: SamplePoints, options: Sa
     if (side !== undefined && side[i] !== pointSide.known) bounded.push({ ...row, d: side[i], c: groups === undefined ? oneColour : groups.colourOf(groups.names[group![i]]) });
     else known.push(row);
   }
-  const area = markerArea(drawn);
-  const filter = groups === undefined || options.legend === false ? undefined : `pick${panel}`;
+  const area = options.inPanel === true ? Math.min(26, markerArea(drawn)) : markerArea(drawn);
+  const filter = groups === undefined || panel > 0 ? undefined : 'pick0';
   const opacity = groups === undefined ? {} : { opacity: { condition: { param: 'pick0', value: 1 }, value: 0.06 } };
   const tooltip = [
     ...titles.map((title, k) => ({ field: `t${k}`, type: 'nominal', title })),
     { field: 'x', type: 'quantitative', title: points.axisTitles[0], format: '.4~g' },
     { field: 'y', type: 'quantitative', title: points.axisTitles[1], format: '.4~g' },
   ];
-  const legend = groups === undefined || options.legend === false ? null : groups.legend;
+  const legend = groups?.legend ?? null;
   const markers: VegaSpec = {
     ...unit(frame, { type: 'point', size: area, fillOpacity: 0.88, strokeOpacity: 1 }, known, {
       shape: groups === undefined ? { value: 'circle' } : { field: 'g', type: 'nominal', scale: groups.shapes, legend },
@@ -125,24 +126,32 @@ function boundedUnits(frame: Frame, rows: readonly object[], area: number, toolt
 function errorUnit(frame: Frame, points: SamplePoints, kind: 'bars' | 'ellipses', opacity: object): VegaSpec {
   const { x, y, sigmaX, sigmaY, group, groups } = points;
   const color = { field: 'c', type: 'nominal', scale: null };
-  const rows: object[] = [];
+  const ofGroup = (i: number) => (groups === undefined ? { c: oneColour } : { g: groups.names[group![i]], c: groups.colourOf(groups.names[group![i]]) });
+  if (kind === 'bars') {
+    const bars: object[] = [];
+    for (let i = 0; i < x.length; i++) {
+      if (!Number.isFinite(x[i]) || !Number.isFinite(y[i])) continue;
+      const sx = sigmaX?.[i] ?? NaN;
+      const sy = sigmaY?.[i] ?? NaN;
+      if (sx > 0) bars.push({ x: specNumber(x[i] - sx), x2: specNumber(x[i] + sx), y: specNumber(y[i]), y2: specNumber(y[i]), ...ofGroup(i) });
+      if (sy > 0) bars.push({ x: specNumber(x[i]), x2: specNumber(x[i]), y: specNumber(y[i] - sy), y2: specNumber(y[i] + sy), ...ofGroup(i) });
+    }
+    return unit(frame, { type: 'rule', strokeWidth: 0.9, strokeOpacity: 0.7, tooltip: null }, bars, { x2: { field: 'x2' }, y2: { field: 'y2' }, color, ...opacity });
+  }
+  const byGroup = new Map<number, Point[][]>();
   let ellipses = 0;
   for (let i = 0; i < x.length; i++) {
-    if (!Number.isFinite(x[i]) || !Number.isFinite(y[i])) continue;
     const sx = sigmaX?.[i] ?? NaN;
     const sy = sigmaY?.[i] ?? NaN;
-    const g = groups === undefined ? { c: oneColour } : { g: groups.names[group![i]], c: groups.colourOf(groups.names[group![i]]) };
-    if (kind === 'bars') {
-      if (sx > 0) rows.push({ x: specNumber(x[i] - sx), x2: specNumber(x[i] + sx), y: specNumber(y[i]), y2: specNumber(y[i]), ...g });
-      if (sy > 0) rows.push({ x: specNumber(x[i]), x2: specNumber(x[i]), y: specNumber(y[i] - sy), y2: specNumber(y[i] + sy), ...g });
-    } else if (sx > 0 && sy > 0) {
-      if (++ellipses > mostEllipses) throw new RangeError(`Error ellipses are drawn for up to ${mostEllipses} samples; choose errors: "bars", or draw fewer samples.`);
-      for (let k = 0; k <= 32; k++) rows.push({ x: specNumber(x[i] + sx * Math.cos((k * Math.PI) / 16)), y: specNumber(y[i] + sy * Math.sin((k * Math.PI) / 16)), k: i, i: k, ...g });
-    }
+    if (!Number.isFinite(x[i]) || !Number.isFinite(y[i]) || !(sx > 0 && sy > 0)) continue;
+    if (++ellipses > mostEllipses) throw new RangeError(`Error ellipses are drawn for up to ${mostEllipses} samples; choose errors: "bars", or draw fewer samples.`);
+    const g = group?.[i] ?? 0;
+    if (!byGroup.has(g)) byGroup.set(g, []);
+    byGroup.get(g)!.push(Array.from({ length: 33 }, (_, k): Point => [x[i] + sx * Math.cos((k * Math.PI) / 16), y[i] + sy * Math.sin((k * Math.PI) / 16)]));
   }
-  if (kind === 'bars') return unit(frame, { type: 'rule', strokeWidth: 0.9, strokeOpacity: 0.7, tooltip: null }, rows, { x2: { field: 'x2' }, y2: { field: 'y2' }, color, ...opacity });
+  const rows = [...byGroup].flatMap(([g, outlines]) => lineRows(outlines, groups === undefined ? { c: oneColour } : { g: groups.names[g], c: groups.colourOf(groups.names[g]) }));
   return unit(frame, { type: 'line', strokeWidth: 0.8, strokeOpacity: 0.8, tooltip: null }, rows, {
-    color, detail: { field: 'k', type: 'nominal' }, order: { field: 'i', type: 'quantitative' }, ...opacity,
+    color, detail: { field: groups === undefined ? 'c' : 'g', type: 'nominal' }, order: { field: 'i', type: 'quantitative' }, ...opacity,
   });
 }
 
@@ -169,14 +178,14 @@ function drawBins({ frame, panel }: Canvas, { x, y }: SamplePoints, options: Sam
     const [x1, y1] = fromPixels(frame, [left + binSize, top + binSize]);
     bins.push({ x: specNumber(x0), x2: specNumber(x1), y: specNumber(y0), y2: specNumber(y1), n: count });
   });
-  const legend = options.legend === false ? null : { title: 'samples in bin', gradientLength: 140, tickCount: 4, format: 'd' };
+  const legend = { title: 'samples in bin', gradientLength: 140, tickCount: 4, format: 'd' };
   return [{
     data: { values: bins },
     mark: { type: 'rect', clip: true, strokeWidth: 0 },
     encoding: {
       ...positionChannels(frame),
       x2: { field: 'x2' }, y2: { field: 'y2' },
-      color: { field: 'n', type: 'quantitative', scale: { type: 'log', scheme: 'viridis', reverse: true, domain: [1, Math.max(2, most)] }, legend },
+      color: { field: 'n', type: 'quantitative', scale: { type: 'log', scheme: 'viridis', reverse: true, ...(most < 2 ? { domain: [1, 2] } : { domainMin: 1 }) }, legend },
       tooltip: [{ field: 'n', type: 'quantitative', title: 'samples' }],
     },
     params: zoomParam(panel, options),

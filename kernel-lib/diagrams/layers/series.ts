@@ -1,7 +1,9 @@
-import { lineUnit, specNumber, unit, type Canvas, type Layer } from '../layer';
-import { toPixels, type VegaSpec } from '../frame';
+import { claimLine, labelUnit, lineRows, lineUnit, specNumber, unit, type Canvas, type Layer } from '../layer';
+import { inWindow, toPixels, type VegaSpec } from '../frame';
+import type { Point } from '../geometry';
+import type { PlacedLabel } from '../place-labels';
 import type { GroupScale } from '../groups';
-import { groupColours, ink } from '../theme';
+import { groupColours, ink, textSize } from '../theme';
 
 /** One line of a pattern: values at x = 0, 1, 2 …; NaN where there is none. */
 export interface SeriesShape {
@@ -23,9 +25,11 @@ export interface SeriesOptions {
   readonly groups?: GroupScale;
   /** Names of the places along x, for tooltips. */
   readonly places: readonly string[];
-  readonly legend?: boolean;
   readonly valueTitle: string;
 }
+
+/** Above this many curves, lines alone are drawn, without markers. */
+export const mostMarkedCurves = 300;
 
 /** Stretches of known values; a gap between two stretches is bridged by a thin dashed line. */
 function stretches(values: ArrayLike<number>): { solid: [number, number][][]; bridges: [number, number][][] } {
@@ -52,38 +56,52 @@ function stretches(values: ArrayLike<number>): { solid: [number, number][][]; br
 export function seriesLayer(series: readonly SeriesShape[], options: SeriesOptions): Layer {
   const { groups, places, valueTitle } = options;
   const many = series.length > 40;
+  const references = series.filter(({ reference }) => reference === true);
+  const own = series.filter(({ reference }) => reference !== true);
   return {
-    claim({ frame, placer }) {
-      for (const { values } of series) for (let i = 0; i < values.length; i++) if (values[i] > 0) placer.avoidPoint(...toPixels(frame, [i, values[i]]));
+    claim(canvas) {
+      for (const { values } of references) for (const line of stretches(values).solid) claimLine(canvas, line);
+      // Labels keep off the curves too, where there are few enough to leave room.
+      if (!many) for (const { values } of own) for (const line of stretches(values).solid) avoidCurve(canvas, line);
     },
     draw(canvas) {
-      const { frame } = canvas;
+      const { frame, placer } = canvas;
       const units: VegaSpec[] = [];
       const colourOf = (group: string | undefined) => (groups === undefined || group === undefined ? groupColours[0] : groups.colourOf(group));
       const color = { field: 'c', type: 'nominal', scale: null };
       for (const { band, group } of series) if (band !== undefined) units.push(bandUnit(canvas, band, colourOf(group)));
       const filtered = groups === undefined ? {} : { opacity: { condition: { param: 'pick0', value: many ? 0.45 : 0.9 }, value: 0.05 } };
-      const own = series.filter(({ reference }) => reference !== true);
       const stretched = own.map(({ values, group }) => ({ ...stretches(values), group }));
-      const rows = (kind: 'solid' | 'bridges') => {
-        let k = 0;
-        return stretched.flatMap((each) => each[kind].flatMap((line) => {
-          k++;
-          return line.map(([x, y]) => ({ x, y: specNumber(y), k, c: colourOf(each.group), ...(each.group === undefined ? {} : { g: each.group }) }));
-        }));
-      };
+      const groupNames = [...new Set(own.map(({ group }) => group))];
+      const rows = (kind: 'solid' | 'bridges') =>
+        groupNames.flatMap((name) => lineRows(stretched.filter(({ group }) => group === name).flatMap((each) => each[kind]), { c: colourOf(name), ...(name === undefined ? {} : { g: name }) }));
       const lineStyle = (style: object, kind: 'solid' | 'bridges') => unit(frame, { type: 'line', strokeJoin: 'round', tooltip: null, ...style }, rows(kind), {
-        color, detail: { field: 'k', type: 'nominal' }, order: { field: 'x', type: 'quantitative' }, ...filtered,
+        color, detail: { field: groups === undefined ? 'c' : 'g', type: 'nominal' }, order: { field: 'i', type: 'quantitative' }, ...filtered,
       });
       const bridges = lineStyle({ strokeWidth: 0.9, strokeDash: [2, 3] }, 'bridges');
       if ((bridges['data'] as { values: unknown[] }).values.length > 0) units.push(bridges);
       units.push(lineStyle({ strokeWidth: many ? 0.8 : 1.5 }, 'solid'));
-      for (const { values } of series.filter(({ reference }) => reference === true)) {
-        units.push(lineUnit(frame, stretches(values).solid, { color: ink.path, strokeWidth: 1.2, strokeDash: [6, 3] }));
+      const names: PlacedLabel[] = [];
+      for (const { values, name } of references) {
+        const { solid } = stretches(values);
+        units.push(lineUnit(frame, solid, { color: ink.path, strokeWidth: 1.2, strokeDash: [6, 3] }));
+        const anchors = solid.flat().reverse().filter(([x, y]) => inWindow(frame, x, y)).map((point) => toPixels(frame, point));
+        const placed = placer.placeBeside(anchors, [name.replace(/\s*\([^)]*\)\s*$/, '')], { size: textSize.note }, 6);
+        if (placed !== undefined) names.push(placed);
       }
-      return [...units, ...limitUnits(canvas, own, colourOf, filtered), markerUnit(canvas, own, { groups, places, valueTitle, filtered, many, legend: options.legend !== false })];
+      if (names.length > 0) units.push(labelUnit(frame, names, { color: ink.path }));
+      return [...units, ...limitUnits(canvas, own, colourOf, filtered), markerUnit(canvas, own, { groups, places, valueTitle, filtered, many, few: series.length <= mostMarkedCurves })];
     },
   };
+}
+
+function avoidCurve({ frame, placer }: Canvas, line: readonly Point[]): void {
+  const pixels = line.map((point) => toPixels(frame, point));
+  for (let i = 1; i < pixels.length; i++) {
+    const [[ax, ay], [bx, by]] = [pixels[i - 1], pixels[i]];
+    const steps = Math.max(1, Math.ceil(Math.hypot(bx - ax, by - ay) / 4));
+    for (let k = 0; k <= steps; k++) placer.avoidPoint(ax + ((bx - ax) * k) / steps, ay + ((by - ay) * k) / steps);
+  }
 }
 
 function bandUnit({ frame }: Canvas, { low, high }: NonNullable<SeriesShape['band']>, colour: string): VegaSpec {
@@ -107,19 +125,20 @@ interface MarkerStyle {
   readonly valueTitle: string;
   readonly filtered: object;
   readonly many: boolean;
-  readonly legend: boolean;
+  /** Few enough curves for markers, and tooltips with them. */
+  readonly few: boolean;
 }
 
-function markerUnit({ frame, panel }: Canvas, series: readonly SeriesShape[], { groups, places, valueTitle, filtered, many, legend }: MarkerStyle): VegaSpec {
-  const rows = series.flatMap(({ values, group, name, open }) => Array.from(values, (y, x) => ({ x, y, n: name, e: places[x], ...(group === undefined ? {} : { g: group }), ...(open === true ? { o: group === undefined ? groupColours[0] : groups!.colourOf(group) } : {}) })))
+function markerUnit({ frame, panel }: Canvas, series: readonly SeriesShape[], { groups, places, valueTitle, filtered, many, few }: MarkerStyle): VegaSpec {
+  const rows = (few ? series : []).flatMap(({ values, group, name, open }) => Array.from(values, (y, x) => ({ x, y, n: name, e: places[x], ...(group === undefined ? {} : { g: group }), ...(open === true ? { o: group === undefined ? groupColours[0] : groups!.colourOf(group) } : {}) })))
     .filter(({ y }) => y > 0)
     .map((row) => ({ ...row, y: specNumber(row.y) }));
-  const shown = legend ? groups?.legend : null;
+  const legend = groups?.legend ?? null;
   return {
     ...unit(frame, { type: 'point', size: many ? 10 : 40, strokeWidth: many ? 0 : 0.6 }, rows, {
-      fill: { condition: { test: 'isValid(datum.o)', value: ink.ground }, ...(groups === undefined ? { value: groupColours[0] } : { field: 'g', type: 'nominal', scale: groups.colours, legend: shown }) },
+      fill: { condition: { test: 'isValid(datum.o)', value: ink.ground }, ...(groups === undefined ? { value: groupColours[0] } : { field: 'g', type: 'nominal', scale: groups.colours, legend }) },
       stroke: { condition: { test: 'isValid(datum.o)', field: 'o', type: 'nominal', scale: null }, value: ink.ground },
-      ...(groups === undefined ? { shape: { value: 'circle' } } : { shape: { field: 'g', type: 'nominal', scale: groups.shapes, legend: shown } }),
+      ...(groups === undefined ? { shape: { value: 'circle' } } : { shape: { field: 'g', type: 'nominal', scale: groups.shapes, legend } }),
       tooltip: [
         { field: 'n', type: 'nominal', title: 'sample' },
         ...(groups === undefined ? [] : [{ field: 'g', type: 'nominal', title: groups.title }]),
@@ -128,6 +147,6 @@ function markerUnit({ frame, panel }: Canvas, series: readonly SeriesShape[], { 
       ],
       ...filtered,
     }),
-    params: [{ name: `zoom${panel}`, select: 'interval', bind: 'scales' }, ...(groups === undefined || !legend ? [] : [{ name: `pick${panel}`, select: { type: 'point', fields: ['g'] }, bind: 'legend' }])],
+    params: [{ name: `zoom${panel}`, select: 'interval', bind: 'scales' }, ...(groups === undefined || panel > 0 ? [] : [{ name: 'pick0', select: { type: 'point', fields: ['g'] }, bind: 'legend' }])],
   };
 }
