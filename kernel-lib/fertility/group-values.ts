@@ -3,7 +3,7 @@ import type { IndicatorAnswers } from './answers';
 import type { Evidence } from './evidence';
 
 /** The middle of an indicator's own quantity in a group, over the samples that may be used for it. NaN with none. */
-export interface GroupValues {
+export interface IndicatorValues {
   readonly indicator: string;
   readonly samples: number;
   readonly median: number;
@@ -12,7 +12,7 @@ export interface GroupValues {
 }
 
 /** A trend of a group: the correlation of two quantities with its 95 % interval, and what that says. */
-export interface GroupTrend {
+export interface IndicatorTrend {
   readonly indicator: string;
   readonly samples: number;
   readonly correlation: number;
@@ -26,7 +26,7 @@ export interface GroupTrend {
 const fewestForTrend = 8;
 
 /** @internal Median and quartiles of one indicator's quantity in a group. */
-export function groupValues({ indicator, values, usable }: IndicatorAnswers, rows: Int32Array): GroupValues {
+export function groupValues({ indicator, values, usable }: IndicatorAnswers, rows: Int32Array): IndicatorValues {
   const picked = new Float64Array(rows.length);
   let count = 0;
   if (values !== undefined) {
@@ -44,7 +44,7 @@ export function groupValues({ indicator, values, usable }: IndicatorAnswers, row
 }
 
 /** @internal The trend of one indicator in a group, on measured values only. */
-export function groupTrend({ indicator, values, usable }: IndicatorAnswers, rows: Int32Array, evidence: Evidence): GroupTrend {
+export function groupTrend({ indicator, values, usable }: IndicatorAnswers, rows: Int32Array, evidence: Evidence): IndicatorTrend {
   const along = evidence.grounds.volatileFree.column(indicator.against!);
   const x: number[] = [];
   const y: number[] = [];

@@ -10,7 +10,7 @@ export * from './export-geojson';
 export { saveFertilityWorkbook } from './export-workbook';
 export type { FurtherMeasurement, FurtherOutcome } from './further';
 export type { FertilityBasis } from './ground';
-export type { GroupTrend, GroupValues } from './group-values';
+export type { IndicatorTrend, IndicatorValues } from './group-values';
 export type { GuardFlags } from './guard-flags';
 export { labelledDistricts } from './labelled';
 export type { EvidenceScore, FamilyStance, GroupVerdict } from './score';

@@ -6,7 +6,7 @@ import { calibrateFertility, type FertilityCalibration } from './calibration';
 import { cautionsOf } from './cautions';
 import { gatherEvidence, type Evidence } from './evidence';
 import { furtherMeasurement, type FurtherMeasurement } from './further';
-import { groupPosition, groupTrend, groupValues, type GroupTrend, type GroupValues } from './group-values';
+import { groupPosition, groupTrend, groupValues, type IndicatorTrend, type IndicatorValues } from './group-values';
 import type { GuardFlags } from './guard-flags';
 import { scoreGroup, type EvidenceScore, type Weighted } from './score';
 import { readSettings, type RankingOptions, type Settings } from './settings';
@@ -39,8 +39,8 @@ export interface GroupEvidence extends EvidenceScore {
   readonly ranks: RankRange;
   /** Undefined when the verdict is settled, or when no measurement in reason could settle it. */
   readonly further?: FurtherMeasurement;
-  readonly values: readonly GroupValues[];
-  readonly trends: readonly GroupTrend[];
+  readonly values: readonly IndicatorValues[];
+  readonly trends: readonly IndicatorTrend[];
   /** Middle of the samples' coordinates, °; NaN without any. */
   readonly latitude: number;
   readonly longitude: number;

@@ -81,7 +81,7 @@ function sampleOf(group, number) {
   const silica = Math.min(72, Math.max(53.5, normal(62, 3.6)));
   const oxides = majors(silica, group.potassium);
   const strontium = draw(kind.strontium, 120);
-  const yttrium = strontium / draw(kind.srY, 4);
+  const yttrium = strontium / draw(kind.srY, 8);
   const scandium = Math.max(2.2, draw([22 - 1.15 * (silica - 54), 1.2], 2));
   const vanadium = scandium * Math.max(0.6, 32.5 - 0.385 * silica + normal(...kind.vSc));
   const yb = draw(kind.yb, 0.4);
