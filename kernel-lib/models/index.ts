@@ -14,3 +14,8 @@ export type { ModelPath } from './path';
 export type { TraceModelOptions } from './trace-setup';
 export { rankAssemblages, type AssemblageRanking, type RankAssemblagesOptions, type RankedAssemblage } from './rank-assemblages';
 export { silicaOfMeltTypes, testTraces, type TraceTest, type TraceTestElement, type TraceTestOptions } from './trace-test';
+export { withLiquidProperties, type LiquidConditions, type LiquidRedox, type LiquidThermometer } from './liquid-properties';
+export { suspensionFactor } from './melt-viscosity';
+export { apatiteSolubility, apatiteTemperature, withSaturationTemperatures, zirconiumInZircon, zirconSolubility, zirconTemperature, type ZirconModel } from './saturation';
+export { wholeRockPath } from './whole-rock-path';
+export type { CrystalStage, PathConditions, PathMineral, WholeRockOptions } from './whole-rock-options';

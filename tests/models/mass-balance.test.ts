@@ -37,11 +37,11 @@ describe('NonNegativeSolver', () => {
         try {
           independent = fcnnlsVector(rows, target).K.to1DArray();
         } catch {
-          return; // ml-fcnnls gives up on some columns that nearly depend on each other
+          return; // it gave up: nothing to compare with
         }
         expect(sumOfSquares(x)).toBeLessThanOrEqual(sumOfSquares(independent) * (1 + 1e-9) + 1e-7);
       }),
-      { seed: 6, numRuns: 300 },
+      { seed: 6, numRuns: 150 },
     );
   });
 
@@ -128,7 +128,7 @@ describe('massBalance', () => {
       } as const;
       const { parent, minerals, masses } = plantedParent(daughter, planted);
       const { phases, F, probability } = massBalance({
-        parent: noisy(parent, 0.02, random), daughter: noisy(daughter, 0.02, random), minerals, errors: { relative: 0.02, floor: 0 }, basis: 'as given', seed: i, draws: 300,
+        parent: noisy(parent, 0.02, random), daughter: noisy(daughter, 0.02, random), minerals, errors: { relative: 0.02, floor: 0 }, basis: 'as given', seed: i, draws: 200,
       });
       for (const { phase, low, high } of phases) {
         all++;

@@ -35,7 +35,7 @@ function rhyolite(random: SeededRandom): Analysis {
 
 const solve = (parent: Analysis, daughter: Analysis, seed: number) =>
   massBalance({
-    parent, daughter, seed, draws: 100, errors: { relative: 0.02, floor: 0.02 },
+    parent, daughter, seed, draws: 60, errors: { relative: 0.02, floor: 0.02 },
     minerals: { olivine: { between: ['Fo65', 'Fo90'] }, clinopyroxene: labels.clinopyroxene, plagioclase: { between: ['An45', 'An92'] }, magnetite: labels.magnetite },
   });
 
@@ -43,14 +43,14 @@ describe('testTraces', () => {
   it('rejects mixtures offered as crystallisation pairs in at least 90 % of cases', () => {
     const random = seededDraws(77);
     let rejected = 0;
-    for (let i = 0; i < 200; i++) {
+    for (let i = 0; i < 100; i++) {
       const [mafic, felsic] = [basalt(random), rhyolite(random)];
       const share = 0.2 + 0.35 * random.uniform();
       const mixture = Object.fromEntries(Object.keys(mafic).map((symbol) => [symbol, (1 - share) * mafic[symbol] + share * felsic[symbol]]));
       const test = testTraces(solve(noisy(mafic, 0.02, random), noisy(mixture, 0.02, random), i), { relativeError: 0.02 });
       if (test.verdict === 'rejected') rejected++;
     }
-    expect(rejected / 200).toBeGreaterThanOrEqual(0.9);
+    expect(rejected / 100).toBeGreaterThanOrEqual(0.9);
   });
 
   it('does not reject true pairs, and accepts most', () => {
@@ -104,7 +104,7 @@ describe('rankAssemblages', () => {
     const random = seededDraws(80);
     let first = 0;
     const candidates = { ...labels, orthopyroxene: 'Wo3En67Fs30', amphibole: 'pargasite Mg#0.75', ilmenite: 'Ilm90', apatite: 'fluorapatite Ca5(PO4)3F', quartz: 'SiO2', garnet: 'Py70Alm17Gr13' };
-    for (let i = 0; i < 20; i++) {
+    for (let i = 0; i < 10; i++) {
       const daughter = daughterOf(random);
       const { parent } = plantedParent(daughter, { olivine: ['Fo80', 0.08], clinopyroxene: ['Wo42En46Fs12', 0.14], plagioclase: ['An75', 0.25], magnetite: ['Usp30', 0.035] });
       const ranking = rankAssemblages({ parent: noisy(parent, 0.005, random), daughter: noisy(daughter, 0.005, random), candidates, errors: { relative: 0.005, floor: 0.005 } });
@@ -116,7 +116,7 @@ describe('rankAssemblages', () => {
       const larger = ranking.bestOfSize.find(({ phases }) => phases.length === best.phases.length + 1);
       if (larger !== undefined) expect(larger.aicc).toBeGreaterThanOrEqual(best.aicc);
     }
-    expect(first).toBeGreaterThanOrEqual(14);
+    expect(first).toBeGreaterThanOrEqual(7);
   });
 
   it('refuses bad arguments by name', () => {
