@@ -11,6 +11,12 @@ import type { ImportedColumn } from './report';
 const blockRows = 512;
 const mostListed = 50;
 
+/** Rows and columns of the grid whose cells may stand in the wrong place. */
+export interface Withheld {
+  readonly rows: ReadonlySet<number>;
+  readonly columns: ReadonlySet<number>;
+}
+
 /** A column being filled. */
 class Filling {
   readonly values: Float64Array;
@@ -51,9 +57,9 @@ export interface DecodedSheet {
 /**
  * Decodes the planned columns of a sheet.
  *
- * @param withheld rows whose numbers are not to be taken (their cells cannot be told apart)
+ * @param withheld rows and columns whose numbers are not to be taken
  */
-export function decodeColumns(layout: Layout, plan: readonly PlannedColumn[], conventions: CellConventions, sheet: string, withheld: ReadonlySet<number> = new Set()): DecodedSheet {
+export function decodeColumns(layout: Layout, plan: readonly PlannedColumn[], conventions: CellConventions, sheet: string, withheld: Withheld): DecodedSheet {
   const { body } = layout;
   const size = body.length;
   const decoder = new CellDecoder(conventions);
@@ -76,28 +82,30 @@ export function decodeColumns(layout: Layout, plan: readonly PlannedColumn[], co
   };
 }
 
-function fillBlock(layout: Layout, filling: Filling, from: number, to: number, decoder: CellDecoder, withheld: ReadonlySet<number>): void {
+function fillBlock(layout: Layout, filling: Filling, from: number, to: number, decoder: CellDecoder, withheld: Withheld): void {
   const { grid, body } = layout;
   const { values, states, counts, plan } = filling;
   const { index, signs, factor, limit } = plan;
   const lowest = signs === 'positive' ? 0 : signs === 'any' ? -Infinity : Math.max(-359.9, -limit);
   const plainOnly = factor === 1;
+  // Nothing withheld is the usual case, and the fast one.
+  const free = withheld.rows.size === 0 && withheld.columns.size === 0;
   for (let i = from; i < to; i++) {
     const row = body[i];
     const look = grid.look(row, index);
-    if (look === cellLook.number && grid.seen >= lowest && grid.seen <= limit && withheld.size === 0) {
+    if (look === cellLook.number && grid.seen >= lowest && grid.seen <= limit && free) {
       values[i] = plainOnly ? grid.seen : filling.convert(grid.seen);
       counts.measured++;
     } else if (look === cellLook.empty) {
       values[i] = NaN;
       states[i] = cellState.missing;
       counts.missing++;
-    } else if (look === cellLook.below && withheld.size === 0) {
+    } else if (look === cellLook.below && free) {
       values[i] = NaN;
       states[i] = cellState.belowDetection;
       filling.setLimit(i, grid.seen);
       counts.below++;
-    } else fillSlowly(layout, filling, i, decoder, withheld.has(row));
+    } else fillSlowly(layout, filling, i, decoder, withheld.rows.has(row) || withheld.columns.has(index));
   }
 }
 

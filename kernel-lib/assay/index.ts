@@ -1,7 +1,8 @@
 /** assay/: spreadsheets in (layout, headers, units, detection limits), the import report, and sheets out again. */
 export { AssayError } from './errors';
 export type { ColumnSetting } from './plan-columns';
-export { readAssays, type Assays, type ReadAssaysOptions } from './read-assays';
+export { readAssays, type Assays } from './read-assays';
+export type { ReadAssaysOptions } from './read-options';
 export type { ImportedColumn, ImportReport, SheetSummary } from './report';
 export * from './sheet-grids';
 export { writeAssays } from './write-assays';

@@ -1,6 +1,6 @@
 import { cellLook, TurnedGrid, type Grid } from './grid';
 import { unguarded } from './guarded';
-import { readHeading, type Heading } from './heading';
+import { ownTag, readHeading, type Heading } from './heading';
 import { plainSigns, spellingKey, vocabulary } from './spellings';
 
 /** Where things stand in a sheet. Rows and columns are counted from 0 in `grid`, which is turned where the samples stand in columns. */
@@ -24,12 +24,31 @@ export interface Layout {
   readonly upperCase: boolean;
 }
 
+/** Number columns of written sheets. */
+const ownNumbers = / \[(number|1 sigma)\]$/;
 const searchRows = 60;
 const searchColumns = 600;
+
+export interface LayoutOptions {
+  readonly samplesIn?: 'rows' | 'columns';
+  /** Row of the analyte names, from 0. */
+  readonly headerRow?: number;
+  /** Heads that the user has settled count like analytes. */
+  readonly settings?: Readonly<Record<string, unknown>>;
+}
 
 /** Headings are read once for each text: a sheet repeats them. */
 class HeadingReader {
   private readonly known = new Map<string, Heading>();
+
+  constructor(private readonly settings: Readonly<Record<string, unknown>>) {}
+
+  /** Whether a text names an analyte, or a column that the user has settled. */
+  names(text: string, upperCase: boolean): string | undefined {
+    if (Object.hasOwn(this.settings, text)) return text;
+    const heading = this.read(text, upperCase);
+    return heading.role === 'analyte' ? heading.symbol : undefined;
+  }
 
   read(text: string, upperCase = false): Heading {
     const key = upperCase ? `^${text}` : text;
@@ -50,8 +69,8 @@ interface HeadRow {
  *
  * @returns undefined when no row and no column names an analyte
  */
-export function findLayout(sheet: Grid, options: { readonly samplesIn?: 'rows' | 'columns'; readonly headerRow?: number } = {}): Layout | undefined {
-  const reader = new HeadingReader();
+export function findLayout(sheet: Grid, options: LayoutOptions = {}): Layout | undefined {
+  const reader = new HeadingReader(options.settings ?? {});
   const turned = new TurnedGrid(sheet);
   const inRows = options.samplesIn === 'columns' ? undefined : bestHeadRow(sheet, reader, options.headerRow);
   const inColumns = options.samplesIn === 'rows' || options.headerRow !== undefined ? undefined : bestHeadRow(turned, reader);
@@ -75,9 +94,9 @@ function bestHeadRow(grid: Grid, reader: HeadingReader, only?: number): HeadRow 
     const analytes = new Set<string>();
     let labels = 0;
     for (const text of texts) {
-      const heading = reader.read(text, upperCase);
-      if (heading.role === 'analyte') analytes.add(heading.symbol);
-      else if (heading.role === 'label' || heading.role === 'quantity') labels++;
+      const symbol = ownTag.test(text) ? text : reader.names(text, upperCase);
+      if (symbol !== undefined) analytes.add(symbol);
+      else if (/label|quantity/.test(reader.read(text, upperCase).role)) labels++;
     }
     const count = analytes.size + (analytes.size > 0 && labels > 0 ? 0.5 : 0);
     if (count > 0 && count > (best?.analytes ?? 0)) best = { row, analytes: count, upperCase };
@@ -90,7 +109,7 @@ function layOut(grid: Grid, head: HeadRow, reader: HeadingReader, samplesIn: 'ro
   const words = vocabulary();
   const rowTexts = (row: number) => Array.from({ length: columns }, (_, column) => grid.text(row, column));
   const heads = rowTexts(head.row).map(unguarded);
-  const isAnalyte = heads.map((text) => reader.read(text, head.upperCase).role === 'analyte');
+  const isAnalyte = heads.map((text) => reader.names(text, head.upperCase) !== undefined || ownNumbers.test(text));
   const kindOf = (row: number) => headerKind(grid, row, isAnalyte, words);
   const header: { analyte: number; unit?: number; method?: number; limit?: number; upperLimit?: number } = { analyte: head.row };
   let top = head.row;
@@ -199,7 +218,6 @@ function findBody(grid: Grid, from: number, heads: readonly string[], isAnalyte:
   const skipped: { row: number; why: string; text: string }[] = [];
   let limit: number | undefined;
   let upperLimit: number | undefined;
-  const columns = heads.length;
   const analyteColumns = heads.flatMap((_, column) => (isAnalyte[column] ? [column] : []));
   const labelColumns = heads.flatMap((_, column) => (isAnalyte[column] ? [] : [column]));
   for (let row = from; row < grid.rows; row++) {
@@ -245,7 +263,6 @@ function findBody(grid: Grid, from: number, heads: readonly string[], isAnalyte:
     else if (texts > 0 || labels > 1 || (labels === 1 && labelColumns.length === 1 && !/\s/.test(longText) && longText.length <= 24)) body.push(row);
     else skipped.push({ row, why: 'no analysis in it', text: longText || grid.text(row, 0) });
   }
-  void columns;
   return { body: Uint32Array.from(body), skipped, limit, upperLimit };
 }
 

@@ -51,11 +51,11 @@ type Draft = { -readonly [Key in keyof PlannedColumn]: PlannedColumn[Key] } & { 
 /**
  * Decides what every column of a laid-out sheet becomes.
  *
- * @throws AssayError for a setting that names no column, or an unknown symbol or unit
+ * @param used receives the settings that name a column of this sheet
+ * @throws AssayError for a setting with an unknown symbol or unit
  */
-export function planColumns(layout: Layout, options: PlanOptions): { columns: PlannedColumn[]; notes: PlanNotes } {
+export function planColumns(layout: Layout, options: PlanOptions, used: Set<string>): { columns: PlannedColumn[]; notes: PlanNotes } {
   const notes: PlanNotes = { inferred: [], ignored: [], pleaseCheck: [] };
-  const used = new Set<string>();
   const drafts: Draft[] = [];
   let sectionUnit: SpelledUnit | undefined;
   layout.heads.forEach((head, index) => {
@@ -73,9 +73,6 @@ export function planColumns(layout: Layout, options: PlanOptions): { columns: Pl
     }
     drafts.push(draft(layout, index, head, place, setting, sectionUnit, notes));
   });
-  for (const name of Object.keys(options.columns)) {
-    if (!used.has(name)) throw new AssayError(`columns: no column is headed "${name}". The heads are: ${layout.heads.filter(Boolean).slice(0, 40).join(' | ')}.`);
-  }
   chooseSampleLabel(drafts, notes);
   demoteText(layout, drafts, notes);
   attachUncertainty(drafts, notes);

@@ -1,45 +1,18 @@
 import { showAs, type Showable } from '../display';
 import { totalIron, type TotalIronCounts } from '../recast';
 import { step, suiteOf, type Column, type StepDetail, type Suite, type Traced } from '../suite';
-import { cellLook, type Grid } from './grid';
 import { AssayError } from './errors';
-import { DelimitedGrid } from './delimited';
-import type { CellConventions } from './cells';
-import { decodeColumns, type DecodedSheet } from './decode-columns';
+import { joinSheet, matchSamples, type Joined } from './join-sheets';
 import { findLayout, type Layout } from './layout';
 import { openFile, type OpenFile, type OpenSheet } from './open-file';
-import { planColumns, type ColumnSetting } from './plan-columns';
+import { checkReadOptions, type ReadAssaysOptions } from './read-options';
+import { readSheet, type ReadSheet } from './read-sheet';
 import { reportView, type ImportReport } from './report';
-
-/** How a sheet is read; everything not given is found in the sheet and told in the report. */
-export interface ReadAssaysOptions {
-  /** Name of the sheet of a workbook (default: the first that holds analyses, joined with others that hold more of the same samples). */
-  readonly sheet?: string;
-  /** What a column is, by its head (or `column C`): a symbol, `label`, `ignore`, or `{ as, unit }`, `{ label }`, `{ quantity, unit }`. */
-  readonly columns?: Readonly<Record<string, ColumnSetting>>;
-  /** Which method gives an analyte that was run by several, by symbol: `{ Zr: 'XRF' }`. */
-  readonly prefer?: Readonly<Record<string, string>>;
-  /** What columns that are not known become: text labels (default), or quantities where they hold numbers only. */
-  readonly unknown?: 'labels' | 'quantities';
-  /** What a negative concentration means (default `error`: it is unreadable). */
-  readonly negative?: 'below-detection' | 'error';
-  /** What `n.d.` means (default: what the sheet says, else missing). */
-  readonly notDetermined?: 'missing' | 'below-detection';
-  /** What the number after ± in a cell is (default 1: 1σ). */
-  readonly statedSigmas?: 1 | 2;
-  readonly decimal?: '.' | ',';
-  readonly delimiter?: ',' | ';' | '\t' | '|';
-  readonly samplesIn?: 'rows' | 'columns';
-  /** The row that holds the analyte names, counted from 1 (default: found). */
-  readonly headerRow?: number;
-  /** Whether total iron (`FeOT`) is completed row by row from whatever iron there is (default `complete`). */
-  readonly iron?: 'complete' | 'as-given';
-}
 
 /** What `readAssays` gives; a notebook shows it as the import report. */
 export interface Assays extends Traced, Showable {
   readonly suite: Suite;
-  readonly report: ImportReport;
+  readonly report: ImportReport & Showable;
 }
 
 /**
@@ -48,7 +21,7 @@ export interface Assays extends Traced, Showable {
  * Oxides become wt %, elements ppm; isotope ratios stay bare numbers; what is not an analyte becomes a text label. Below-detection and
  * above-range cells keep their limit and hold no number; a cell that cannot be read is missing, and listed with its address. Total iron
  * (`FeOT`) is completed row by row: a reported total wins, `FeO` and `Fe2O3` both measured are summed, one of them alone is taken as total
- * and counted as such.
+ * and counted as such. Sheets of a workbook that hold more of the same samples are joined by sample name.
  *
  * @param path of the file, from the notebook's folder
  * @param options see `ReadAssaysOptions`; `columns: { 'Zr XRF': 'ignore', 'Au': { unit: 'ppb' } }` settles single columns
@@ -57,74 +30,101 @@ export interface Assays extends Traced, Showable {
  * @example const { suite, report } = await readAssays('notebooks/data/oruvai-arc.csv')
  */
 export async function readAssays(path: string, options: ReadAssaysOptions = {}): Promise<Assays> {
-  checkOptions(path, options);
+  checkReadOptions(path, options);
   const opened = await openFile(path, { delimiter: options.delimiter });
-  const sheets = opened.sheets.map((sheet) => ({ sheet, layout: findLayout(sheet.grid, { samplesIn: options.samplesIn, headerRow: options.headerRow === undefined ? undefined : options.headerRow - 1 }) }));
-  const chosen = chooseSheet(opened, sheets, options.sheet);
-  const read = readSheet(opened, chosen.sheet, chosen.layout, options);
-  const { decoded, conventions, inferred, ignored, pleaseCheck } = read;
-  if (chosen.layout.body.length === 0) throw new AssayError(`${whereIs(opened, chosen.sheet)}: there is a head row (row ${chosen.layout.header.analyte + 1}) but no samples below it.`);
-  let columns: Column[] = decoded.columns;
+  const headerRow = options.headerRow === undefined ? undefined : options.headerRow - 1;
+  const sheets = opened.sheets.map((sheet) => ({ sheet, layout: findLayout(sheet.grid, { samplesIn: options.samplesIn, headerRow, settings: options.columns }) }));
+  const { read, whole, remarks } = readSheets(opened, sheets, options);
+  const pleaseCheck = [...read.flatMap((each) => each.pleaseCheck), ...whole.remarks, ...remarks];
+  let { columns } = whole;
   let iron: TotalIronCounts | undefined;
   if (options.iron !== 'as-given' && columns.some(({ symbol }) => /^(FeOT|Fe2O3T|FeO|Fe2O3)$/.test(symbol))) {
-    const total = totalIron(suiteOf({ columns, labels: decoded.labels }));
+    const total = totalIron(suiteOf({ columns, labels: whole.labels }));
     iron = total.counts;
-    columns = [...columns.filter(({ symbol }) => symbol !== 'FeOT'), total.column];
-    columns = inPlace(columns, decoded.columns);
-    if (iron.ferricAlone + iron.ferrousAlone > 0) {
-      pleaseCheck.push(`total iron: ${iron.ferricAlone} rows have Fe2O3 alone and ${iron.ferrousAlone} FeO alone, taken as total iron`);
-    }
+    columns = withIron(columns, total.column);
+    if (iron.ferricAlone + iron.ferrousAlone > 0) pleaseCheck.push(`total iron: ${iron.ferricAlone} rows have Fe2O3 alone and ${iron.ferrousAlone} FeO alone, taken as total iron`);
   }
-  const report: ImportReport = showAs(
+  const first = read[0];
+  const inferred = read.flatMap((each) => each.inferred);
+  const report = showAs(
     {
-      file: opened.file, sha256: opened.sha256, encoding: opened.encoding ?? '', delimiter: opened.delimiter ?? '', decimal: conventions.decimal,
+      file: opened.file, sha256: opened.sha256, encoding: opened.encoding ?? '', delimiter: opened.delimiter ?? '', decimal: first.conventions.decimal,
       sheets: sheets.map(({ sheet, layout }) => ({ name: sheet.name, rows: sheet.grid.rows, columns: sheet.grid.columns, holds: holds(layout) })),
-      sheetsRead: [chosen.sheet.name], samplesIn: chosen.layout.samplesIn, rows: chosen.layout.body.length, columns: decoded.imported,
-      ...(iron === undefined ? {} : { iron }), inferred, ignored, pleaseCheck: [...inferred, ...pleaseCheck],
-    },
+      sheetsRead: read.map(({ name }) => name), samplesIn: first.layout.samplesIn, rows: whole.labels.get('sample')?.length ?? columns[0].values.length,
+      columns: read.flatMap(({ decoded }) => decoded.imported), ...(iron === undefined ? {} : { iron }), inferred,
+      ignored: read.flatMap((each) => each.ignored), pleaseCheck: [...inferred, ...pleaseCheck],
+    } satisfies ImportReport,
     reportView,
   );
-  const because = step(
-    'readAssays',
-    {
-      file: opened.file, sha256: opened.sha256, sheet: chosen.sheet.name, encoding: report.encoding, delimiter: report.delimiter, decimal: report.decimal,
-      samplesIn: report.samplesIn, headerRow: chosen.layout.header.analyte + 1, rows: report.rows,
-      columns: decoded.imported.map(({ place, head, became, name, sheetUnit, factor }) => ({ place, head, became, name, unit: sheetUnit, factor })),
-      inferred, settled: JSON.parse(JSON.stringify(options)) as StepDetail, ...(iron === undefined ? {} : { ironFound: { ...iron } }),
-    },
-    { tables: ['analyte-spellings.json', 'plausible-ranges.csv', 'atomic-weights.csv'] },
-  );
-  const suite = suiteOf({ columns, labels: decoded.labels, lineage: [because] });
+  const suite = suiteOf({ columns, labels: whole.labels, lineage: [lineageStep(report, read, options)] });
   return showAs({ suite, report, lineage: suite.lineage }, () => reportView(report));
 }
 
-function checkOptions(path: string, options: ReadAssaysOptions): void {
-  if (typeof path !== 'string' || path === '') throw new RangeError('readAssays: path must be the path of a sheet, as text, e.g. "data/my-island.csv".');
-  const allowed: Readonly<Record<string, readonly unknown[] | undefined>> = {
-    sheet: undefined, columns: undefined, prefer: undefined, headerRow: undefined,
-    unknown: ['labels', 'quantities'], negative: ['below-detection', 'error'], notDetermined: ['missing', 'below-detection'], statedSigmas: [1, 2],
-    decimal: ['.', ','], delimiter: [',', ';', '\t', '|'], samplesIn: ['rows', 'columns'], iron: ['complete', 'as-given'],
-  };
-  for (const [name, value] of Object.entries(options)) {
-    if (!Object.hasOwn(allowed, name)) throw new RangeError(`readAssays: there is no option "${name}". Options: ${Object.keys(allowed).join(', ')}.`);
-    const choices = allowed[name];
-    if (value !== undefined && choices !== undefined && !choices.includes(value)) {
-      throw new RangeError(`readAssays: ${name} must be ${choices.map((choice) => JSON.stringify(choice)).join(' or ')}, not ${JSON.stringify(value)}.`);
-    }
-  }
-  const { headerRow } = options;
-  if (headerRow !== undefined && !(Number.isInteger(headerRow) && headerRow >= 1)) throw new RangeError(`readAssays: headerRow must be a row number from 1, not ${String(headerRow)}.`);
+function lineageStep(report: ImportReport, read: readonly ReadSheet[], options: ReadAssaysOptions) {
+  const cells = report.columns.reduce((sum, each) => sum + each.below, 0);
+  return step(
+    'readAssays',
+    {
+      file: report.file, sha256: report.sha256, sheet: report.sheetsRead.join(' + '), encoding: report.encoding, delimiter: report.delimiter, decimal: report.decimal,
+      samplesIn: report.samplesIn, headerRow: read[0].layout.header.analyte + 1, rows: report.rows, negative: read[0].conventions.negative, notDetermined: read[0].conventions.notDetermined,
+      columns: report.columns.map(({ sheet, place, head, became, name, sheetUnit, factor }) => ({ sheet, place, head, became, name, unit: sheetUnit, factor })),
+      inferred: report.inferred, settled: JSON.parse(JSON.stringify(options)) as StepDetail, ...(report.iron === undefined ? {} : { ironFound: { ...report.iron } }),
+    },
+    {
+      tables: ['analyte-spellings.json', 'plausible-ranges.csv', 'atomic-weights.csv'],
+      says: `${report.rows} analyses were read from ${report.file}; ${cells} results below detection were kept as such.`,
+    },
+  );
 }
 
 type LaidOut = { readonly sheet: OpenSheet; readonly layout: Layout | undefined };
 
+/** Reads the chosen sheet, and joins the others that hold more of its samples. */
+function readSheets(opened: OpenFile, sheets: readonly LaidOut[], options: ReadAssaysOptions): { read: ReadSheet[]; whole: Joined; remarks: string[] } {
+  const sheetOptions = { ...options, columns: options.columns ?? {}, prefer: options.prefer ?? {}, unknown: options.unknown ?? ('labels' as const) };
+  const used = new Set<string>();
+  const chosen = chooseSheet(opened, sheets, options.sheet);
+  const where = whereIs(opened, chosen.sheet);
+  const first = readSheet(chosen.sheet, chosen.layout, sheetOptions, where, used);
+  if (chosen.layout.body.length === 0) throw new AssayError(`${where}: there is a head row (row ${chosen.layout.header.analyte + 1}) but no samples below it.`);
+  const read = [first];
+  const remarks: string[] = [];
+  let whole: Joined = { columns: first.decoded.columns, labels: first.decoded.labels, remarks: [] };
+  for (const { sheet, layout } of options.sheet === undefined ? sheets : []) {
+    if (sheet === chosen.sheet || layout === undefined || layout.body.length === 0) continue;
+    if (sheet.hidden) {
+      remarks.push(`the hidden sheet "${sheet.name}" (${holds(layout)}) is not read`);
+      continue;
+    }
+    const next = readSheet(sheet, layout, sheetOptions, whereIs(opened, sheet), used);
+    const names = next.decoded.labels.get('sample');
+    const match = names === undefined || !whole.labels.has('sample') ? { refused: 'it has no sample names' } : matchSamples(whole.labels.get('sample')!, names);
+    if ('refused' in match) remarks.push(`sheet "${sheet.name}" (${holds(layout)}) is not read: ${match.refused}. Read it with { sheet: '${sheet.name}' }`);
+    else {
+      whole = joinSheet(whole, next, match);
+      read.push(next);
+    }
+  }
+  const unused = Object.keys(sheetOptions.columns).find((name) => !used.has(name));
+  if (unused !== undefined) {
+    throw new AssayError(`${where}: columns: no column is headed "${unused}". The heads are: ${chosen.layout.heads.filter(Boolean).slice(0, 40).join(' | ')}.`);
+  }
+  return { read, whole, remarks };
+}
+
 function chooseSheet(opened: OpenFile, sheets: readonly LaidOut[], wanted: string | undefined): { sheet: OpenSheet; layout: Layout } {
-  const found = wanted === undefined ? sheets.find(({ layout, sheet }) => layout !== undefined && !sheet.hidden) ?? sheets.find(({ layout }) => layout !== undefined) : sheets.find(({ sheet }) => sheet.name === wanted);
+  const readable = sheets.filter(({ layout }) => layout !== undefined && layout.body.length > 0);
+  const found = wanted === undefined ? (readable.find(({ sheet }) => !sheet.hidden) ?? readable[0] ?? sheets.find(({ layout }) => layout !== undefined)) : sheets.find(({ sheet }) => sheet.name === wanted);
   if (found === undefined && wanted !== undefined) {
     throw new AssayError(`${opened.file} has no sheet "${wanted}". Its sheets: ${sheets.map(({ sheet, layout }) => `${sheet.name} (${holds(layout)})`).join(', ')}.`);
   }
   if (found?.layout === undefined) {
-    throw new AssayError(`${opened.file}: no head row was found: no row or column names analytes such as SiO2, "Ba (ppm)" or FeO*. Give headerRow, or columns: { 'head': 'SiO2' }.`);
+    const empty = (found === undefined ? sheets : [found]).every(({ sheet }) => sheet.grid.rows === 0 || sheet.grid.columns === 0);
+    throw new AssayError(
+      empty
+        ? `${opened.file}${wanted === undefined ? '' : `, sheet "${wanted}"`} holds no cells. Save the sheet again.`
+        : `${opened.file}${wanted === undefined ? '' : `, sheet "${wanted}"`}: no head row was found: no row or column names analytes such as SiO2, "Ba (ppm)" or FeO*. Give headerRow, or columns: { 'head': 'SiO2' }.`,
+    );
   }
   return { sheet: found.sheet, layout: found.layout };
 }
@@ -138,54 +138,7 @@ function whereIs(opened: OpenFile, sheet: OpenSheet): string {
   return sheet.name === '' ? opened.file : `${opened.file}, sheet "${sheet.name}"`;
 }
 
-interface ReadSheet {
-  readonly decoded: DecodedSheet;
-  readonly conventions: CellConventions;
-  readonly inferred: string[];
-  readonly ignored: string[];
-  readonly pleaseCheck: string[];
+/** The columns with the completed FeOT in the place of the one that was there, else at the end. */
+function withIron(columns: readonly Column[], iron: Column): Column[] {
+  return columns.some(({ symbol }) => symbol === 'FeOT') ? columns.map((each) => (each.symbol === 'FeOT' ? iron : each)) : [...columns, iron];
 }
-
-function readSheet(opened: OpenFile, sheet: OpenSheet, layout: Layout, options: ReadAssaysOptions): ReadSheet {
-  const decimal = options.decimal ?? decimalMark(layout);
-  if (sheet.grid instanceof DelimitedGrid) sheet.grid.useDecimal(decimal);
-  const { columns, notes } = planColumns(layout, { columns: options.columns ?? {}, prefer: options.prefer ?? {}, unknown: options.unknown ?? 'labels' });
-  const conventions: CellConventions = {
-    decimal,
-    negative: options.negative ?? 'error',
-    notDetermined: options.notDetermined ?? 'missing',
-    statedSigmas: options.statedSigmas ?? 1,
-  };
-  const decoded = decodeColumns(layout, columns, conventions, sheet.name);
-  const ignored = [...notes.ignored, ...layout.skipped.slice(0, 40).map(({ row, why, text }) => `row ${row + 1}: ${why}${text === '' ? '' : ` ("${text.slice(0, 80)}")`}`)];
-  void opened;
-  return { decoded, conventions, inferred: notes.inferred, ignored, pleaseCheck: [...sheet.remarks, ...notes.pleaseCheck, ...decoded.remarks] };
-}
-
-/** The decimal mark of the sheet: a comma where cells such as `52,1` outnumber cells such as `52.1`. */
-function decimalMark(layout: Layout): '.' | ',' {
-  let points = 0;
-  let commas = 0;
-  const { grid, body } = layout;
-  for (let i = 0; i < Math.min(body.length, 200); i++) {
-    for (let column = 0; column < Math.min(grid.columns, 200); column++) {
-      const look = grid.look(body[i], column);
-      if (look === cellLook.empty) continue;
-      const text = grid.text(body[i], column);
-      if (/^[<>]?\s*-?\d+,\d+$/.test(text) && !/^[<>]?\s*-?[1-9]\d{0,2},\d{3}$/.test(text)) commas++;
-      else if (/^[<>]?\s*-?\d*\.\d+$/.test(text)) points++;
-    }
-  }
-  return commas > points ? ',' : '.';
-}
-
-/** The columns in the order of the sheet, a completed FeOT in the place of the one that was there. */
-function inPlace(columns: readonly Column[], order: readonly Column[]): Column[] {
-  const bySymbol = new Map(columns.map((each) => [each.symbol, each]));
-  const ordered = order.map(({ symbol }) => bySymbol.get(symbol)!);
-  if (!order.some(({ symbol }) => symbol === 'FeOT')) ordered.push(bySymbol.get('FeOT')!);
-  return ordered;
-}
-
-/** The grid type is kept inside the room. @internal */
-export type { Grid };

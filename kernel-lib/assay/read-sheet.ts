@@ -1,0 +1,123 @@
+import type { CellConventions } from './cells';
+import { decodeColumns, type DecodedSheet, type Withheld } from './decode-columns';
+import { DelimitedGrid } from './delimited';
+import { AssayError } from './errors';
+import { cellLook } from './grid';
+import type { Layout } from './layout';
+import type { OpenSheet } from './open-file';
+import { planColumns, type PlanOptions } from './plan-columns';
+
+/** One sheet read: its columns and labels, and what has to be said about it. */
+export interface ReadSheet {
+  readonly name: string;
+  readonly layout: Layout;
+  readonly decoded: DecodedSheet;
+  readonly conventions: CellConventions;
+  readonly inferred: readonly string[];
+  readonly ignored: readonly string[];
+  readonly pleaseCheck: readonly string[];
+}
+
+export interface SheetOptions extends PlanOptions {
+  readonly decimal?: '.' | ',';
+  readonly negative?: 'below-detection' | 'error';
+  readonly notDetermined?: 'missing' | 'below-detection';
+  readonly statedSigmas?: 1 | 2;
+}
+
+const mostSkippedListed = 40;
+
+/** Reads the body of a sheet whose layout is known. */
+export function readSheet(sheet: OpenSheet, layout: Layout, options: SheetOptions, where: string, used: Set<string>): ReadSheet {
+  const decimal = options.decimal ?? decimalMark(layout);
+  if (sheet.grid instanceof DelimitedGrid) sheet.grid.useDecimal(decimal);
+  const { columns, notes } = planColumns(layout, options, used);
+  const inferred = [...notes.inferred];
+  if (options.decimal === undefined && decimal === ',') inferred.push('the decimal mark is a comma');
+  const said = legend(layout.prose);
+  if (options.negative === undefined && said.negative !== undefined) inferred.push(`negative values are below detection: the sheet says "${said.negative}"`);
+  if (options.notDetermined === undefined && said.notDetermined !== undefined) inferred.push(`n.d. is ${said.notDetermined.means === 'missing' ? 'not determined (missing)' : 'not detected (below detection)'}: the sheet says "${said.notDetermined.words}"`);
+  const conventions: CellConventions = {
+    decimal,
+    negative: options.negative ?? (said.negative === undefined ? 'error' : 'below-detection'),
+    notDetermined: options.notDetermined ?? said.notDetermined?.means ?? 'missing',
+    statedSigmas: options.statedSigmas ?? 1,
+  };
+  const { withheld, remarks } = unevenRows(sheet, layout, where);
+  const decoded = decodeColumns(layout, columns, conventions, sheet.name, withheld);
+  const skipped = layout.skipped.filter(({ why }) => why !== 'detection limits' && why !== 'upper limits');
+  const ignored = [
+    ...notes.ignored,
+    ...skipped.slice(0, mostSkippedListed).map(({ row, why, text }) => `${layout.samplesIn === 'rows' ? 'row' : 'column'} ${row + 1}: ${why}${text === '' ? '' : ` ("${text.slice(0, 80)}")`}`),
+    ...(skipped.length > mostSkippedListed ? [`${skipped.length - mostSkippedListed} more rows`] : []),
+  ];
+  return { name: sheet.name, layout, decoded, conventions, inferred, ignored, pleaseCheck: [...sheet.remarks, ...remarks, ...notes.pleaseCheck, ...decoded.remarks] };
+}
+
+/** The decimal mark of the sheet: a comma where cells such as `52,1` outnumber cells such as `52.1`. */
+function decimalMark({ grid, body }: Layout): '.' | ',' {
+  let points = 0;
+  let commas = 0;
+  for (let i = 0; i < Math.min(body.length, 200); i++) {
+    for (let column = 0; column < Math.min(grid.columns, 200); column++) {
+      if (grid.look(body[i], column) === cellLook.empty) continue;
+      const text = grid.text(body[i], column);
+      // `1,234` could be either; it does not vote.
+      if (/^[<>~]?\s*-?\d+,\d+$/.test(text) && !/^[<>~]?\s*-?[1-9]\d{0,2},\d{3}$/.test(text)) commas++;
+      else if (/^[<>~]?\s*-?\d*\.\d+$/.test(text) && !/^[<>~]?\s*-?[1-9]\d{0,2}\.\d{3}$/.test(text)) points++;
+    }
+  }
+  return commas > points ? ',' : '.';
+}
+
+/** What the text around the table says about its cells. */
+function legend(prose: readonly string[]): { negative?: string; notDetermined?: { means: 'missing' | 'below-detection'; words: string } } {
+  let negative: string | undefined;
+  let notDetermined: { means: 'missing' | 'below-detection'; words: string } | undefined;
+  for (const text of prose) {
+    negative ??= /(negative\s+(values?|numbers?|concentrations?|results?)|(?:^|\s)(?:-|minus)\s*sign).{0,40}?(below|less than|under|<)\s*[\w\s]{0,12}(detection|limit|d\.?l\.?)/i.exec(text)?.[0];
+    const means = /\bn\.?\s?d\.?["']?\s*(?:=|:|–|—|-|,|\bis\b|\bmeans\b|\bdenotes\b)\s*["']?((?:not\s+(?:detected|determined|analy[sz]ed|measured|available))|below\s+(?:the\s+)?(?:limit|detection|d\.?l)|no\s+data)/i.exec(text);
+    if (means !== null) notDetermined ??= { means: /detected|below/i.test(means[1]) ? 'below-detection' : 'missing', words: means[0] };
+  }
+  return { negative, notDetermined };
+}
+
+/**
+ * Rows of a text file that have more or fewer cells than the head: with a delimiter lost or added, every cell after it stands under the
+ * wrong head, so their numbers are not taken. A file whose rows end early all over leaves off empty cells at the end, and is taken.
+ */
+function unevenRows(sheet: OpenSheet, layout: Layout, where: string): { withheld: Withheld; remarks: string[] } {
+  const nothing = { withheld: { rows: new Set<number>(), columns: new Set<number>() }, remarks: [] };
+  if (!(sheet.grid instanceof DelimitedGrid)) return nothing;
+  const { grid } = sheet;
+  if (layout.samplesIn === 'columns') return { ...nothing, withheld: { rows: new Set(), columns: longRows(grid, layout) } };
+  const wanted = grid.width(layout.header.analyte);
+  const long: number[] = [];
+  const short: number[] = [];
+  for (const row of layout.body) {
+    const width = grid.width(row);
+    if (width < wanted) short.push(row);
+    else if (width > wanted && hasMore(grid, row, wanted)) long.push(row);
+  }
+  if (long.length > 0.8 * layout.body.length && layout.body.length > 1) {
+    throw new AssayError(`${where}: the head row has ${wanted} cells but the rows below it have ${grid.width(long[0])}, so heads do not stand over their columns. Add the missing heads, or check the delimiter and the decimal mark.`);
+  }
+  const trimmed = short.length >= 3 && short.length > 0.05 * layout.body.length;
+  const rows = new Set([...long, ...(trimmed ? [] : short)]);
+  const remarks = [...rows].sort((a, b) => a - b).slice(0, 20).map((row) => `row ${row + 1} has ${grid.width(row)} cells under ${wanted} heads: its numbers are not taken`);
+  if (rows.size > 20) remarks.push(`${rows.size - 20} more rows have too many or too few cells: their numbers are not taken`);
+  if (trimmed) remarks.push(`${short.length} rows end before the last head: taken as empty cells left off`);
+  return { withheld: { rows, columns: new Set() }, remarks };
+}
+
+function hasMore(grid: DelimitedGrid, row: number, from: number): boolean {
+  for (let column = from; column < grid.width(row); column++) if (grid.look(row, column) !== cellLook.empty) return true;
+  return false;
+}
+
+function longRows(grid: DelimitedGrid, layout: Layout): Set<number> {
+  const last = layout.body.length === 0 ? 0 : layout.body[layout.body.length - 1];
+  const columns = new Set<number>();
+  for (let row = 0; row < grid.rows; row++) if (hasMore(grid, row, Math.max(last + 1, layout.body.length))) columns.add(row);
+  return columns;
+}
