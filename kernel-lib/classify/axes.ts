@@ -75,9 +75,11 @@ function plainSymbol(symbol: string): string {
 /** The oxides that a volatile-free sum cannot do without. */
 const neededForSum = ['SiO2', 'Al2O3', 'FeOT', 'MgO', 'CaO', 'Na2O', 'K2O'];
 
-/** Why a row has no value on an axis, in words: `needs K2O`, `Nb is below detection`. Made for failing rows only. */
-export function whyMissing(operands: Operands, axis: AxisValues, basis: SchemeBasis, row: number): string {
-  if (axis.lacking.length > 0) return `needs ${axis.lacking.join(', ')}`;
+/** Why a row has no value on some axes, in words: `needs K2O`, `Nb below detection`. Made for failing rows only. */
+export function whyMissing(operands: Operands, axes: readonly AxisValues[], basis: SchemeBasis, row: number): string {
+  const whole = [...new Set(axes.flatMap((axis) => axis.lacking))];
+  if (whole.length > 0) return `needs ${whole.join(', ')}`;
+  const symbols = [...new Set(axes.flatMap((axis) => axis.symbols))];
   const lacking: string[] = [];
   const below: string[] = [];
   const above: string[] = [];
@@ -88,13 +90,13 @@ export function whyMissing(operands: Operands, axis: AxisValues, basis: SchemeBa
     const list = state === cellState.missing ? lacking : state === cellState.belowDetection ? below : state === cellState.aboveRange ? above : undefined;
     if (list !== undefined && !list.includes(name)) list.push(name);
   };
-  axis.symbols.filter((symbol) => symbol !== 'Mg-number').forEach(look);
-  if (axis.symbols.includes('Mg-number')) ['MgO', 'FeOT'].forEach(look);
+  symbols.filter((symbol) => symbol !== 'Mg-number').forEach(look);
+  if (symbols.includes('Mg-number')) ['MgO', 'FeOT'].forEach(look);
   if (basis === 'volatile-free' && lacking.length + below.length + above.length === 0) neededForSum.forEach(look);
   const parts = [
     lacking.length === 0 ? '' : `needs ${lacking.join(', ')}`,
     below.length === 0 ? '' : `${below.join(', ')} below detection`,
     above.length === 0 ? '' : `${above.join(', ')} above range`,
   ].filter((part) => part !== '');
-  return parts.length === 0 ? `no finite value of ${axis.symbols.map(plainSymbol).join(', ')}` : parts.join('; ');
+  return parts.length === 0 ? `no finite value of ${symbols.map(plainSymbol).join(', ')}` : parts.join('; ');
 }

@@ -155,7 +155,7 @@ function judgePlane(
 
 function whyNoPoint(operands: Operands, scheme: Scheme, axes: readonly AxisValues[], row: number): string {
   const failing = axes.filter(({ column }) => column === undefined || !Number.isFinite(column.values[row]));
-  return [...new Set(failing.map((axis) => whyMissing(operands, axis, scheme.basis, row)))].join('; ');
+  return whyMissing(operands, failing, scheme.basis, row);
 }
 
 function whereOutside(scheme: Scheme, { x: [xa, xb], y: [ya, yb] }: Scheme['frame'], x: number, y: number): string {

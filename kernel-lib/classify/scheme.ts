@@ -112,10 +112,3 @@ export interface Scheme {
   /** `built in`, or the file it was loaded from. */
   readonly origin: string;
 }
-
-/** Title of an axis as a diagram writes it: `SiO₂ (wt %, volatile-free)`. */
-export function axisTitle(scheme: Scheme, axis: SchemeAxis): string {
-  const basis = scheme.basis === 'volatile-free' && axis.unit === 'wt %' ? 'volatile-free' : '';
-  const inside = [axis.unit, basis].filter((text) => text !== '').join(', ');
-  return inside === '' ? axis.title : `${axis.title} (${inside})`;
-}

@@ -7,6 +7,8 @@ import type { Scheme, SchemeCriterion } from './scheme';
 export interface CriterionOutcome {
   readonly criterion: SchemeCriterion;
   readonly met: Int8Array;
+  /** The values it was asked of (n); undefined where the suite lacks them. */
+  readonly values?: Float64Array;
 }
 
 /** What one scheme says about every sample (n). */

@@ -1,0 +1,51 @@
+import { showAs, type Showable, type TableCell } from '../display';
+import { step, type Step, type Suite } from '../suite';
+import { operandsOf } from './axes';
+import { findScheme } from './catalogue';
+import { judge } from './classify';
+import type { SchemeVerdict } from './verdicts';
+
+/** Affinity by immobile elements (n). */
+export interface ImmobileAffinity extends Showable {
+  readonly suite: Suite;
+  /** `tholeiitic`, `transitional` or `calc-alkaline`; '' where it could not be asked. */
+  readonly affinity: readonly string[];
+  /** What each ratio says, or what is lacking. */
+  readonly because: readonly string[];
+  /** The verdict of each ratio: Zr/Y, La/Yb, Th/Yb. */
+  readonly ratios: readonly SchemeVerdict[];
+  readonly lineage: readonly Step[];
+}
+
+const keys = ['affinity-zr-y', 'affinity-la-yb', 'affinity-th-yb'] as const;
+const ratioNames = ['Zr/Y', 'La/Yb', 'Th/Yb'] as const;
+
+/**
+ * Tholeiitic, transitional or calc-alkaline affinity by the ratios of immobile elements Zr/Y, La/Yb and Th/Yb: for altered lavas, whose
+ * alkalis moved. At least two of the three ratios are needed; where those asked do not agree, the affinity is transitional.
+ *
+ * @param suite n samples with Zr, Y, La, Yb, Th in ppm
+ * @returns affinity and reasons (n)
+ * @source Ross & Bédard 2009 (limits and rule; its curved boundaries are not included)
+ * @example immobileAffinity(suite).affinity
+ */
+export function immobileAffinity(suite: Suite): ImmobileAffinity {
+  const operands = operandsOf(suite, 'measured');
+  const ratios = keys.map((key) => judge(operands, findScheme(key)));
+  const affinity = new Array<string>(suite.size).fill('');
+  const because = new Array<string>(suite.size).fill('');
+  for (let i = 0; i < suite.size; i++) {
+    const asked = ratios.map(({ names }) => names[i]);
+    const known = asked.filter((name) => name !== '');
+    because[i] = asked.map((name, k) => (name === '' ? `${ratioNames[k]} ${ratios[k].remarks[i]}` : `${ratioNames[k]} ${name}`)).join(', ');
+    if (known.length < 2) because[i] = `fewer than two ratios: ${because[i]}`;
+    else affinity[i] = known.every((name) => name === known[0]) ? known[0] : 'transitional';
+  }
+  const made = step('immobileAffinity', { ratios: [...ratioNames] }, { sources: ['ross_bedard_2009'], tables: keys.map((key) => `schemes/${key}.json`) });
+  return showAs({ suite, affinity, because, ratios, lineage: [...suite.lineage, made] }, (shown) => ({
+    title: 'Affinity by immobile elements',
+    columns: ['sample', 'affinity', 'because'],
+    rows: Array.from({ length: Math.min(60, suite.size) }, (_, i): TableCell[] => [suite.samples[i], shown.affinity[i] === '' ? 'not determined' : shown.affinity[i], shown.because[i]]),
+    totalRows: suite.size,
+  }));
+}
