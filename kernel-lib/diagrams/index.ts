@@ -65,3 +65,4 @@ export * from './xy';
 export * from './isotope-plots';
 export * from './slab-share-bars';
 export * from './tracer-plots';
+export * from './wedge-corner';

@@ -3,7 +3,7 @@ import { publishedConstant } from '../tables';
 import { withIsotopes } from '../tracers';
 import { axisTitle, symbolText } from './chemical-text';
 import { diagramOf, type Diagram } from './diagram';
-import { windowAround } from './frame';
+import { checkWindow, windowAround } from './frame';
 import type { LineShape } from './layers/lines';
 import type { PathInput } from './model-paths';
 import { reservoirMarks } from './reservoir-markers';
@@ -47,21 +47,36 @@ export function isotopePlot(suite: Suite, name: IsotopePlotName, options: Isotop
   const lacking = [x, y].filter((axis) => resolveColumn(whole, axis) === undefined);
   if (lacking.length > 0) throw new RangeError(`isotopePlot: "${name}" needs ${lacking.join(' and ')}, which this suite does not hold. It holds: ${suite.analytes.join(', ')}.`);
   const marks = marksOf(options.reservoirs ?? defaultReservoirs, x, y);
-  const positions = (side: 'x' | 'y') => marks.markers.map((mark) => mark[side]);
-  const chosen = typeof options.window === 'object' ? options.window : {};
-  const span = { leastSpan: 1e-4 };
-  const near = (axis: string, at: readonly number[]) => windowAround([evaluate(whole, axis, { sigma: false }).values, at], span);
-  const window = { x: chosen.x ?? near(x, positions('x')), y: chosen.y ?? near(y, positions('y')) };
-  const line = referenceLine(name, window.x);
+  checkWindow('isotopePlot', options.window);
   const asWritten = (axis: string) => (axis.includes('/') ? axis : `[${axis}]`);
+  const values = [x, y].map((axis) => evaluate(whole, asWritten(axis), { sigma: false }).values);
+  const near = options.window === 'whole' ? marks.markers : marks.markers.filter((mark) => isNear(values[0], mark.x) && isNear(values[1], mark.y));
+  const outside = marks.markers.filter((mark) => !near.includes(mark)).map(({ label }) => label);
+  const chosen = typeof options.window === 'object' ? options.window : {};
+  const around = (k: 0 | 1) => windowAround([values[k], near.map((mark) => (k === 0 ? mark.x : mark.y))], { leastSpan: 1e-4 });
+  const window = { x: chosen.x ?? around(0), y: chosen.y ?? around(1) };
+  const line = referenceLine(name, window.x);
   const made = xy(whole, asWritten(x), asWritten(y), {
     ...options, window, reservoirs: marks.markers, lines: line === undefined ? [] : [line], paths: options.paths,
     axisTitles: { x: symbolText(x), y: symbolText(y) },
-    caption: [line === undefined ? '' : 'Line: Northern Hemisphere Reference Line (Hart 1984).', marks.caption].filter((text) => text !== ''),
+    caption: [line === undefined ? '' : 'Line: Northern Hemisphere Reference Line (Hart 1984).', marks.caption, outside.length === 0 ? '' : `Outside the frame: ${outside.join(', ')}.`].filter((text) => text !== ''),
   });
   const sources = [...(line === undefined ? [] : [publishedConstant('nhrl-207-slope').source]), ...marks.sources];
   const because = step('diagrams.isotopePlot', { name, x, y, reservoirs: marks.markers.map(({ label }) => label) }, { sources: [...new Set(sources)], tables: ['reservoirs.csv', 'constants.csv'] });
   return diagramOf({ ...made, name: `${axisTitle(y)} against ${axisTitle(x)}`, lineage: [...whole.lineage, because] });
+}
+
+/** A reservoir may widen the span of the data to this many times; beyond, it would leave the data no room and stays outside (window `whole` takes it in). */
+const mostWidening = 3.5;
+
+function isNear(values: ArrayLike<number>, at: number): boolean {
+  let low = Infinity;
+  let high = -Infinity;
+  for (let i = 0; i < values.length; i++) {
+    if (values[i] < low) low = values[i];
+    if (values[i] > high) high = values[i];
+  }
+  return !(low < high) || Math.max(high, at) - Math.min(low, at) <= mostWidening * (high - low);
 }
 
 /** Marks of reservoirs on isotope axes; ε of a reservoir is computed from its ratio. */

@@ -32,14 +32,14 @@ export function slabShareBars(of: Suite | SlabShares, options: SlabShareBarOptio
   const drawn = known.map((e) => elements[e]);
   const lowest = Math.min(0, ...groups.flatMap(({ median }) => known.map((e) => median[e]).filter(Number.isFinite)));
   const single = groups.length === 1;
-  const room = Math.max(22, Math.min(56, 10 * groups.length + 12));
+  const room = Math.max(24, Math.min(46, 7 * groups.length + 8));
   const frame: Frame = {
     width: options.width ?? Math.max(360, room * drawn.length),
     height: options.height ?? 300,
     x: { title: '', window: [-0.5, drawn.length - 0.5], names: drawn.map(symbolText) },
-    y: { title: 'slab-derived share (%)', window: [lowest < -5 ? Math.max(-100, 25 * Math.floor(lowest / 25)) : 0, 100] },
+    y: { title: 'slab-derived share (%)', window: [lowest < -5 ? Math.max(-50, 25 * Math.floor(lowest / 25)) : 0, 100] },
   };
-  const scale = groupScale(shares.group ?? 'group', groups.map(({ name }) => name));
+  const scale = groupScale(shares.group ?? 'group', groups.map(({ name }) => groupText(name)));
   const counted = shares.kept.reduce((sum, each) => sum + each, 0);
   const sigmaNote = 'Bars: median share of each element above the oceanic-basalt array at the Nb/Yb of the sample; whiskers 1σ (scatter and array). Pearce & Peate 1995; Pearce et al. 2005.';
   return figure({
@@ -54,6 +54,7 @@ export function slabShareBars(of: Suite | SlabShares, options: SlabShareBarOptio
 }
 
 const everything = 'all samples';
+const groupText = (name: string): string => (name.trim() === '' ? 'not given' : name);
 
 function sharesOf(suite: Suite, options: SlabShareBarOptions): SlabShares {
   if (options.group !== undefined) return slabShares(suite, options);
@@ -67,15 +68,14 @@ function barsLayer(shares: SlabShares, known: readonly number[], scale: ReturnTy
   const count = shares.groups.length;
   return {
     draw({ frame }) {
-      const base = 0;
       const rows = shares.groups.flatMap(({ name, samples, median, sigma }, g) =>
         known.flatMap((e, place) => {
           if (!Number.isFinite(median[e])) return [];
           const left = place - filled / 2 + (filled * g) / count;
           const pad = (filled / count) * 0.06;
           return [{
-            x: specNumber(left + pad), x2: specNumber(left + filled / count - pad), m: specNumber(left + filled / count / 2), y: specNumber(Math.max(frame.y.window[0], median[e])), y2: base,
-            lo: specNumber(Math.max(frame.y.window[0], median[e] - sigma[e])), hi: specNumber(Math.min(100, median[e] + sigma[e])), g: name, e: shares.elements[e], n: samples,
+            x: specNumber(left + pad), x2: specNumber(left + filled / count - pad), m: specNumber(left + filled / count / 2), y: specNumber(Math.max(frame.y.window[0], median[e])), y2: 0,
+            lo: specNumber(Math.max(frame.y.window[0], median[e] - sigma[e])), hi: specNumber(Math.min(100, median[e] + sigma[e])), g: groupText(name), e: shares.elements[e], n: samples,
             s: specNumber(median[e]), d: specNumber(sigma[e]),
           }];
         }),

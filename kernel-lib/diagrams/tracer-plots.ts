@@ -1,13 +1,16 @@
 import { step, type Suite } from '../suite';
 import { mantleArray, ratio, referenceComposition, usualReferences } from '../tracers';
 import { axisTitle } from './chemical-text';
-import { diagramOf, type Diagram } from './diagram';
-import { windowAround } from './frame';
-import type { LineShape } from './layers/lines';
-import type { PathInput } from './model-paths';
+import type { Diagram } from './diagram';
+import { figure } from './figure';
+import { checkWindow, windowAround, type Frame } from './frame';
+import { bandsLayer, linesLayer, type BandShape, type LineShape } from './layers/lines';
+import { markersLayer, pathsLayer } from './layers/markers';
+import { namesLayer } from './layers/names';
+import { samplesLayer } from './layers/samples';
+import { pathShapes, type PathInput } from './model-paths';
 import { reservoirMarks } from './reservoir-markers';
-import type { SampleOptions } from './sample-points';
-import { xy } from './xy';
+import { samplePoints, type SampleOptions } from './sample-points';
 
 /** The ready tracer plots, by the ratio that gives them their point. */
 export const tracerPlotNames = ['barium-thorium', 'thorium-niobium', 'barium-lanthanum', 'uranium-thorium', 'cerium-lead', 'strontium-yttrium'] as const;
@@ -42,6 +45,9 @@ const plots: Readonly<Record<TracerPlotName, TracerPlot>> = {
   'strontium-yttrium': { x: 'La/Yb', y: 'Sr/Y', reservoirs: ['n-morb-1989', sediment], reads: 'Garnet or amphibole in the residue raises both.', sources: [] },
 };
 
+/** Ce/Pb of oceanic basalts, 25 ± 5 (Hofmann et al. 1986). */
+const oceanicCeriumLead = [20, 30] as const;
+
 /**
  * A ratio–ratio plot for tracing slab components, on log axes, with reservoirs marked: `barium-thorium` (Ba/Th–(La/Sm)N), `thorium-niobium`
  * (Th/Yb–Nb/Yb with the oceanic-basalt array), `barium-lanthanum` (Ba/La–Th/Yb), `uranium-thorium` (U/Th–Th/Nb), `cerium-lead` (Ce/Pb–Ba/La
@@ -62,34 +68,65 @@ export function tracerPlot(suite: Suite, name: TracerPlotName, options: TracerPl
   const marks = reservoirMarks(options.reservoirs ?? plot.reservoirs, { ...plot, reference });
   const values = [plot.x, plot.y].map((expression) => ratio(suite, expression, { sigma: false }).values);
   const positions = (['x', 'y'] as const).map((side) => marks.markers.map((mark) => mark[side]));
+  checkWindow('tracerPlot', options.window);
   const chosen = typeof options.window === 'object' ? options.window : {};
   const window = {
     x: chosen.x ?? windowAround([values[0], positions[0]], { scale: 'log' }),
-    y: chosen.y ?? windowAround([values[1], positions[1]], { scale: 'log' }),
+    y: chosen.y ?? windowAround([values[1], positions[1], name === 'cerium-lead' ? oceanicCeriumLead : []], { scale: 'log' }),
   };
-  const { lines, caption } = linesOf(name, window);
+  const { bands, lines, caption } = linesOf(name, window);
   const normalised = plot.x.includes(')N');
-  const made = xy(suite, plot.x, plot.y, {
-    ...options, window, scale: 'log', reference, reservoirs: marks.markers, lines, paths: options.paths,
-    caption: [plot.reads, caption, normalised ? `N: normalised to ${chondrite.name}.` : '', marks.caption].filter((text) => text !== ''),
-  });
+  const titles = [axisTitle(plot.x), axisTitle(plot.y)] as const;
+  const set = samplePoints('tracerPlot', suite, { x: plot.x, y: plot.y, reference, axisTitles: titles }, options);
+  const { shapes: paths, notes } = pathShapes('tracerPlot', options.paths, (liquid) => ({
+    x: ratio(liquid, plot.x, { sigma: false }).values, y: ratio(liquid, plot.y, { sigma: false }).values,
+  }));
+  const frame: Frame = {
+    width: options.width ?? 440, height: options.height ?? 360,
+    x: { title: titles[0], scale: 'log', window: window.x }, y: { title: titles[1], scale: 'log', window: window.y },
+  };
   const sources = [...plot.sources, ...(normalised ? chondrite.sources : []), ...marks.sources];
-  const because = step('diagrams.tracerPlot', { name, x: plot.x, y: plot.y, reservoirs: marks.markers.map(({ label }) => label) }, { sources: [...new Set(sources)], tables: ['reservoirs.csv'] });
-  return diagramOf({ ...made, name: `${axisTitle(plot.y)} against ${axisTitle(plot.x)}`, lineage: [...suite.lineage, because] });
+  const because = step('diagrams.tracerPlot', { name, x: plot.x, y: plot.y, reservoirs: marks.markers.map(({ label }) => label) }, {
+    sources: [...new Set(sources)], tables: ['reservoirs.csv'], fromMemory: normalised ? chondrite.fromMemory(['La', 'Sm']) : [],
+  });
+  return figure({
+    name: `${titles[1]} against ${titles[0]}`,
+    title: options.title,
+    panels: [{
+      frame,
+      layers: [
+        bandsLayer(bands), linesLayer(lines), samplesLayer(set.points, options), ...(options.names === undefined ? [] : [namesLayer(set.points, suite.samples, options.names)]),
+        pathsLayer(paths), markersLayer(marks.markers),
+      ],
+    }],
+    caption: [plot.reads, caption, normalised ? `N: normalised to ${chondrite.name}.` : '', marks.caption, ...notes, ...set.notes].filter((text) => text !== ''),
+    counts: set.counts(frame),
+    legendWidth: set.legendWidth,
+    lineage: [...suite.lineage, ...(marks.suite?.lineage ?? []), because],
+  });
 }
 
-function linesOf(name: TracerPlotName, { x: [low, high] }: { readonly x: readonly [number, number] }): { readonly lines: readonly LineShape[]; readonly caption: string } {
+interface PlotLines {
+  /** Shaded, so that names can stand on it. */
+  readonly bands: readonly BandShape[];
+  readonly lines: readonly LineShape[];
+  readonly caption: string;
+}
+
+function linesOf(name: TracerPlotName, { x: [low, high] }: { readonly x: readonly [number, number] }): PlotLines {
   if (name === 'thorium-niobium') {
     const { slope, intercept, scatter } = mantleArray('Th')!;
-    const along = (shift: number): LineShape['points'] => [low, high].map((x) => [x, 10 ** (intercept + shift + slope * Math.log10(x))] as const);
+    const at = (x: number, shift: number) => 10 ** (intercept + shift + slope * Math.log10(x));
+    const ends = [low, high];
     return {
-      lines: [{ points: along(0), label: 'oceanic-basalt array' }, { points: along(2 * scatter), dash: [4, 3] }, { points: along(-2 * scatter), dash: [4, 3] }],
-      caption: `Array: line through N-MORB and OIB ± 2σ of other oceanic basalts (${(2 * scatter).toFixed(2)} log units); slab input or crust raises Th/Yb above it.`,
+      bands: [{ x: ends, low: ends.map((x) => at(x, -2 * scatter)), high: ends.map((x) => at(x, 2 * scatter)) }],
+      lines: [{ points: ends.map((x) => [x, at(x, 0)] as const), label: 'oceanic-basalt array' }],
+      caption: `Array: line through N-MORB and OIB, shaded ± 2σ of other oceanic basalts (${(2 * scatter).toFixed(2)} log units); slab input or crust raises Th/Yb above it.`,
     };
   }
   if (name === 'cerium-lead') {
     const level = (y: number): LineShape['points'] => [[low, y], [high, y]];
-    return { lines: [{ points: level(30), dash: [4, 3] }, { points: level(20), dash: [4, 3], label: 'oceanic basalts 25 ± 5' }], caption: 'Oceanic basalts: Ce/Pb 25 ± 5 (Hofmann et al. 1986).' };
+    return { bands: [], lines: [{ points: level(oceanicCeriumLead[1]), dash: [4, 3] }, { points: level(oceanicCeriumLead[0]), dash: [4, 3], label: 'oceanic basalts 25 ± 5' }], caption: 'Oceanic basalts: Ce/Pb 25 ± 5 (Hofmann et al. 1986).' };
   }
-  return { lines: [], caption: '' };
+  return { bands: [], lines: [], caption: '' };
 }

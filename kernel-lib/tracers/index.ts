@@ -11,6 +11,7 @@ export * from './pattern';
 export * from './rare-earth-shape';
 export * from './ratios';
 export * from './reference';
+export * from './reservoir-suite';
 export * from './slab-partitioning';
 export * from './slab-share';
 export * from './unmix';

@@ -49,8 +49,9 @@ export function mantleArray(element: string, options: ArrayOptions = {}): ArrayL
   return { element, slope, intercept, scatter: Math.max(leastScatter, scatter) };
 }
 
-/** Source keys of the compositions that an array rests on. */
-export function arraySources(options: ArrayOptions = {}): readonly string[] {
+/** What arrays of these elements rest on, for a lineage. */
+export function arrayBasis(elements: readonly string[], options: ArrayOptions = {}): { readonly sources: readonly string[]; readonly fromMemory: readonly string[] } {
   const { through = defaults.through, others = defaults.others } = options;
-  return [...new Set([...through, ...others].flatMap((each) => referenceComposition(each as ReferenceComposition).sources))];
+  const references = [...through, ...others].map((each: ReferenceComposition) => referenceComposition(each));
+  return { sources: [...new Set(references.flatMap(({ sources }) => sources))], fromMemory: references.flatMap(({ fromMemory }) => fromMemory([...elements, 'Nb', 'Yb'])) };
 }

@@ -127,6 +127,8 @@ export function pattern(suite: Suite, options: PatternOptions = {}): PatternTabl
       {
         sources: [...new Set([...reference.sources, ...(typeof order === 'string' ? elementOrder(order).sources : [])])],
         tables: [...reference.tables, ...(typeof order === 'string' ? ['element-orders.csv'] : [])],
+        fromMemory: reference.fromMemory(normalised.map(({ element }) => element)),
+        says: `Element patterns are normalised to ${reference.name}.`,
       },
     ),
   ];

@@ -148,7 +148,11 @@ export function rareEarthShapes(suite: Suite, options: ShapeOptions = {}): RareE
   const because = step(
     'rareEarthShapes',
     { degree, reference: reference.key, exclude: [...exclude], error, outlyingBeyond, notFitted: tooFew },
-    { sources: ['oneill_2016', 'shannon_1976', ...reference.sources], tables: ['ionic-radii.csv', ...reference.tables] },
+    {
+      sources: ['oneill_2016', 'shannon_1976', ...reference.sources], tables: ['ionic-radii.csv', ...reference.tables],
+      fromMemory: [...reference.fromMemory(present.map(({ element }) => element)), 'radii of trivalent rare earths in eightfold coordination (Shannon 1976)'],
+      says: `Rare-earth patterns are described by polynomials of ionic radius up to degree ${degree}, orthogonal over the rare earths without Eu.`,
+    },
   );
   const result = {
     samples: suite.samples, degree, columns, residuals: new Map(present.map(({ element }, p) => [element as string, residuals[p]])), outlying, notes,

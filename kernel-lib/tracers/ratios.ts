@@ -101,6 +101,8 @@ class Bookkeeping {
   readonly chosen: RatioOptions;
   private readonly references = new Map<string, Reference>();
   private readonly formulas = new Map<string, { variant: string; formula: string; source: string }>();
+  /** Analytes divided by each reference. */
+  private readonly divided = new Map<Reference, Set<string>>();
 
   constructor(options: RatioOptions) {
     this.chosen = options;
@@ -113,6 +115,16 @@ class Bookkeeping {
     let found = this.references.get(key);
     if (found === undefined) this.references.set(key, (found = referenceComposition(reference, { caesiumAndLead })));
     return found;
+  }
+
+  /** The reference as evaluation wants it, noting what is asked of it. */
+  valueIn(reference: Reference): (symbol: string) => number {
+    let asked = this.divided.get(reference);
+    if (asked === undefined) this.divided.set(reference, (asked = new Set()));
+    return (symbol) => {
+      asked.add(symbol);
+      return reference.valueOf(symbol) ?? NaN;
+    };
   }
 
   formula(quantity: string): { formula: string; reference: Reference } {
@@ -143,6 +155,8 @@ class Bookkeeping {
       {
         sources: [...new Set([...used.flatMap(({ sources }) => sources), ...[...this.formulas.values()].map(({ source }) => source)])],
         tables: [...new Set([...used.flatMap(({ tables }) => tables), ...(this.formulas.size > 0 ? ['named-quantities.csv'] : []), 'atomic-weights.csv'])],
+        fromMemory: [...this.divided].flatMap(([reference, symbols]) => reference.fromMemory(symbols)),
+        says: used.length === 0 ? '' : `Ratios marked N are normalised to ${used.map(({ name }) => name).join(' and ')}.`,
       },
     );
   }
@@ -196,7 +210,7 @@ function compute(suite: Suite, expression: string, record: Bookkeeping): Column 
   const named = new Map<string, Column>();
   for (const name of mentioned) {
     const { formula, reference } = record.formula(name);
-    named.set(name, evaluate(suite, formula, { symbol: name, sigma, reference: valueIn(reference) }));
+    named.set(name, evaluate(suite, formula, { symbol: name, sigma, reference: record.valueIn(reference) }));
   }
   if (mentioned.length === 1 && mentioned[0] === expression.trim()) return { ...named.get(mentioned[0])!, symbol: expression };
   const text = bracketed(expression);
@@ -204,12 +218,10 @@ function compute(suite: Suite, expression: string, record: Bookkeeping): Column 
   return evaluate(suite, text, {
     symbol: expression,
     sigma,
-    ...(usesN ? { reference: valueIn(record.reference(usualReferences.rareEarths)) } : {}),
+    ...(usesN ? { reference: record.valueIn(record.reference(usualReferences.rareEarths)) } : {}),
     operand: (symbol) => named.get(symbol) ?? resolveColumn(suite, symbol),
   });
 }
-
-const valueIn = (reference: Reference) => (symbol: string): number => reference.valueOf(symbol) ?? NaN;
 
 function blankColumn(symbol: string, size: number): Column {
   return { symbol, kind: 'quantity', unit: '', values: new Float64Array(size).fill(NaN), states: new Uint8Array(size).fill(cellState.missing) };

@@ -1,5 +1,5 @@
 import { findAnalyte, isMassUnit, massUnitFactor } from '../chemistry';
-import { equivalentSymbols, massFactor, reservoir, reservoirUnit, type Reservoir, type ReservoirValue } from '../tables';
+import { equivalentSymbols, massFactor, reservoir, reservoirUnit, shortSource, type Reservoir, type ReservoirValue } from '../tables';
 
 /**
  * What values may be divided by: the key of a reservoir (`chondrite-c1-1989`), a reservoir, or your own values by symbol (elements in ppm,
@@ -26,6 +26,8 @@ export interface Reference {
   readonly tables: readonly string[];
   /** How far the values have been checked: the standings that occur. */
   readonly standings: readonly string[];
+  /** Those of the named analytes whose values are from memory, as one line to check: `C1 chondrite: La 0.237, Ce 0.612 (Sun & McDonough 1989)`. */
+  readonly fromMemory: (symbols: Iterable<string>) => readonly string[];
   /** What a reader must know, e.g. which Cs and Pb were taken. */
   readonly notes: readonly string[];
 }
@@ -60,7 +62,7 @@ function ofOwnValues(values: Readonly<Record<string, number>>): Reference {
     if (!(Number.isFinite(value) && value > 0)) throw new RangeError(`Reference value of ${symbol} is ${String(value)}; give a positive number (elements ppm, oxides wt %).`);
   }
   const own = (symbol: string): number | undefined => (Object.hasOwn(values, symbol) ? values[symbol] : undefined);
-  return { key: 'own values', name: 'own values', valueOf: (symbol) => own(symbol) ?? converted(symbol, own), sources: [], tables: [], standings: [], notes: [] };
+  return { key: 'own values', name: 'own values', valueOf: (symbol) => own(symbol) ?? converted(symbol, own), sources: [], tables: [], standings: [], fromMemory: () => [], notes: [] };
 }
 
 function ofReservoir(found: Reservoir, caesiumAndLead: CaesiumLeadChoice): Reference {
@@ -83,8 +85,18 @@ function ofReservoir(found: Reservoir, caesiumAndLead: CaesiumLeadChoice): Refer
     sources: [...new Set(values.map(({ source }) => source))],
     tables: ['reservoirs.csv'],
     standings: [...new Set(values.map(({ standing }) => standing))],
+    fromMemory: (symbols) => {
+      const recalled = [...new Set(symbols)].map((symbol) => ({ symbol, entry: pick(symbol) ?? otherForm(symbol, pick) })).filter(({ entry }) => entry?.standing === 'from memory');
+      if (recalled.length === 0) return [];
+      const cited = [...new Set(recalled.map(({ entry }) => shortSource(entry!.source)))].join('; ');
+      return [`${found.name}: ${recalled.map(({ entry }) => `${entry!.analyte.replace('_recommended', '')} ${entry!.value}${entry!.unit === 'ratio' ? '' : ` ${entry!.unit}`}`).join(', ')} (${cited})`];
+    },
     notes,
   };
+}
+
+function otherForm(symbol: string, pick: (symbol: string) => ReservoirValue | undefined): ReservoirValue | undefined {
+  return equivalentSymbols(symbol).map(pick).find((entry) => entry !== undefined);
 }
 
 function inCanonicalUnit(symbol: string, entry: ReservoirValue): number {

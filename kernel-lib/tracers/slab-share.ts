@@ -2,7 +2,7 @@ import { showAs, type Showable, type TableCell, type TableView } from '../displa
 import { cellState, derivedColumn, resolveColumn, step, type Column, type Step, type Suite } from '../suite';
 import { applyFilter, basaltFilter, type SampleFilter } from './basalt-filter';
 import { quantileOfSorted } from './censored-quantiles';
-import { arraySources, mantleArray, type ArrayLine, type ArrayOptions } from './mantle-array';
+import { arrayBasis, mantleArray, type ArrayLine, type ArrayOptions } from './mantle-array';
 import { shownCell } from './shown-cell';
 
 /** How slab shares are computed. */
@@ -91,7 +91,8 @@ export function slabShares(suite: Suite, options: SlabShareOptions = {}): SlabSh
     arrays: Object.fromEntries([...arrays].map(([element, { slope, intercept, scatter }]) => [element, [slope, intercept, scatter]])),
   };
   const says = `The slab-derived share of ${[...shares.keys()].join(', ')} is the excess over the oceanic-basalt array at the sample's Nb/Yb.`;
-  const because = step('slabShares', detail, { sources: ['pearce_peate_1995', 'pearce_2005', ...arraySources({ through, others })], tables: ['reservoirs.csv'], says });
+  const basis = arrayBasis([...shares.keys()], { through, others });
+  const because = step('slabShares', detail, { sources: ['pearce_peate_1995', 'pearce_2005', ...basis.sources], tables: ['reservoirs.csv'], fromMemory: basis.fromMemory, says });
   const result = {
     samples: suite.samples, elements: [...shares.keys()], shares, arrays, kept: outcome.kept, ...(group === undefined ? {} : { group }), groups, notes,
     lineage: [...suite.lineage, because],

@@ -118,8 +118,9 @@ export async function unmix(suite: Suite, components: readonly MixingComponent[]
   const named = (arrays: Float64Array[]) => new Map(components.map(({ name }, j) => [name, arrays[j]]));
   const notes = references.flatMap(({ name, standings }, j) => (standings.length > 0 ? [`${components[j].name}: ${name} (values ${standings.join(', ')}).`] : []));
   const detail = { components: components.map(({ name }) => name), ratios, draws, seed, error: Object.fromEntries(ratios.map((ratio, k) => [ratio, least[k]])) };
+  const says = `Mixing proportions of ${components.map(({ name }) => name).join(', ')} were solved from ${ratios.join(', ')} with ${draws} Monte Carlo draws (seed ${seed}).`;
   const sources = ['langmuir_1978', ...new Set(references.flatMap((reference) => reference.sources))];
-  const lineage = [...suite.lineage, step('unmix', detail, { sources, tables: [...new Set(references.flatMap(({ tables }) => tables))] })];
+  const lineage = [...suite.lineage, step('unmix', detail, { sources, tables: [...new Set(references.flatMap(({ tables }) => tables))], fromMemory: references.flatMap(({ fromMemory }) => fromMemory(ratios.flatMap((ratio) => [ratio, elementOfRatio(ratio)]))), says })];
   const result = {
     samples: suite.samples, components: components.map(({ name }) => name), ratios, shares: named(shares), low: named(low), high: named(high), chiSquare,
     degreesOfFreedom: ratios.length - (count - 1), notes, lineage,

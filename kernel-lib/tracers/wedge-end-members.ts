@@ -94,10 +94,12 @@ export function wedgeEndMembers(options: WedgeEndMemberOptions = {}): WedgeEndMe
   const notes: string[] = [];
   const sources = new Set<string>();
   const tables = new Set<string>();
+  const fromMemory: string[] = [];
   const values = (what: string, from: ReferenceComposition): Float64Array => {
     const reference = referenceComposition(from);
     reference.sources.forEach((source) => sources.add(source));
     reference.tables.forEach((table) => tables.add(table));
+    fromMemory.push(...reference.fromMemory(elements));
     if (reference.standings.length > 0) notes.push(`${what}: ${reference.name} (values ${reference.standings.join(', ')}).`);
     return ofElements(what, elements, (element) => reference.valueOf(element));
   };
@@ -123,12 +125,14 @@ export function wedgeEndMembers(options: WedgeEndMemberOptions = {}): WedgeEndMe
     : liquid('sediment melt', values('sediment', options.sediment ?? 'subducting-sediment-1998'), sedimentSets, sedimentMeltFraction);
   if (options.fluid === undefined && options.crust === undefined) notes.push('crust: N-MORB 1989, its K, Rb and U replaced by those of altered crust at ODP site 801.');
 
+  if (options.fluid === undefined && options.crust === undefined) fromMemory.push('crust: N-MORB (Sun & McDonough 1989) with K, Rb, U of altered crust (Kelley et al. 2003)');
+  if (options.mantleCoefficients === undefined) fromMemory.push('mantle coefficients (McKenzie & O’Nions 1991), modes and reactions (Johnson et al. 1990; Walter 1998)');
   const melting = options.mantleCoefficients === undefined ? publishedMelting(elements, sources, tables, notes) : ownMelting(elements, options.mantleCoefficients);
   const detail = {
     elements: [...elements], fluidFraction, sedimentMeltFraction, fluidResidue,
     own: Object.entries(options).filter(([, value]) => typeof value === 'object' && !Array.isArray(value)).map(([name]) => name),
   };
-  const members = { elements: [...elements], mantle, fluid, sedimentMelt, melting, notes, lineage: [step('wedgeEndMembers', detail, { sources: [...sources], tables: [...tables] })] };
+  const members = { elements: [...elements], mantle, fluid, sedimentMelt, melting, notes, lineage: [step('wedgeEndMembers', detail, { sources: [...sources], tables: [...tables], fromMemory })] };
   return showAs(members, membersView);
 }
 

@@ -234,7 +234,7 @@ function verdictOf(
   const parts = [
     unresolved.length === free.length ? 'Not resolvable with these elements.' : unresolved.length > 0 ? `Not resolvable with these elements: ${unresolved.join(', ')}.` : 'Resolved.',
     ...(limits.length > 0 ? [`Upper limit only: ${limits.join(', ')}.`] : []),
-    ...(widened > 1 ? [`Misfit beyond the errors (worst ${worst}, ${residual.toFixed(1)} σ): intervals widened ×${widened.toFixed(1)}; other end members may be needed.`] : []),
+    ...(widened > 1 ? [`Misfit beyond the errors (worst ${worst}, ${residual.toFixed(1).replace('-', '−')} σ): intervals widened ×${widened.toFixed(1)}; other end members may be needed.`] : []),
   ];
   return parts.join(' ');
 }
