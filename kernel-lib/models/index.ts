@@ -19,3 +19,4 @@ export { suspensionFactor } from './melt-viscosity';
 export { apatiteSolubility, apatiteTemperature, withSaturationTemperatures, zirconiumInZircon, zirconSolubility, zirconTemperature, type ZirconModel } from './saturation';
 export { wholeRockPath } from './whole-rock-path';
 export type { CrystalStage, PathConditions, PathMineral, WholeRockOptions } from './whole-rock-options';
+export { primaryMelt, type PrimaryMelt, type PrimaryMeltOptions } from './primary-melt';
