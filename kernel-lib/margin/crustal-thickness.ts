@@ -138,6 +138,12 @@ function coefficientNote({ constantError, terms, uncertainty }: CrustCalibration
   return errors.length === 0 ? 'uncertainty of the calibration not recorded' : `coefficients ${errors.join(', ')} (their covariance is not recorded)`;
 }
 
+/** Modified Thompson τ for n values: t (n − 1) / (√n √(n − 2 + t²)), with Student's t for n − 2 degrees of freedom. */
+export function thompsonTau(n: number, alpha = 0.05): number {
+  const t = studentT(alpha, n - 2);
+  return (t * (n - 1)) / (Math.sqrt(n) * Math.sqrt(n - 2 + t * t));
+}
+
 /** Modified Thompson τ: takes out the value furthest from the mean while it is further than τ standard deviations, one at a time. */
 export function keepByThompson(rows: readonly number[], value: (row: number) => number, alpha = 0.05): number[] {
   let kept = [...rows];
@@ -147,8 +153,7 @@ export function keepByThompson(rows: readonly number[], value: (row: number) => 
     const values = kept.map(value);
     const mean = values.reduce((sum, v) => sum + v, 0) / n;
     const deviation = Math.sqrt(values.reduce((sum, v) => sum + (v - mean) ** 2, 0) / (n - 1));
-    const t = studentT(alpha, n - 2);
-    const tau = (t * (n - 1)) / (Math.sqrt(n) * Math.sqrt(n - 2 + t * t));
+    const tau = thompsonTau(n, alpha);
     let worst = 0;
     for (let i = 1; i < n; i++) if (Math.abs(values[i] - mean) > Math.abs(values[worst] - mean)) worst = i;
     if (!(Math.abs(values[worst] - mean) > tau * deviation)) return kept;

@@ -77,7 +77,10 @@ export interface TwoPlanes {
  * Bayesian information criterion when they stand at least 12 km and 2.5 widths apart and the lesser holds at least 15 % of the events.
  */
 export function findTwoPlanes(across: ArrayLike<number>): TwoPlanes | undefined {
-  const values = Float64Array.from(across).sort();
+  const sorted = Float64Array.from(across).sort();
+  // Every k-th of the sorted values stands for all: some two thousand tell two planes as well as twenty thousand.
+  const every = Math.max(1, Math.floor(sorted.length / 2000));
+  const values = sorted.filter((_, i) => i % every === 0);
   const n = values.length;
   if (n < 60) return undefined;
   let mean = 0;

@@ -82,16 +82,17 @@ export interface SlabKinematics {
  * convergence is what carries the slab down (Syracuse & Abers 2006 tabulate it so); Φ is in km, and is often printed in hundreds of km.
  *
  * @param given `rate` ({ value, unit }), `azimuth` (degrees, direction in which the lower plate moves against the upper), `strike` (degrees, the slab
- *   dipping to its right), `dip` (degrees), `age` (Ma, of the plate at the trench)
+ *   dipping to its right), `dip` (degrees), `age` (Ma, of the plate at the trench; without it there is no Φ)
  * @returns mm/yr, degrees, km/Ma and km; `notes` point out what is unusual
  * @throws RangeError for a unit that is not known or values that are not possible
  * @source Kirby et al. 1991 (thermal parameter); Syracuse & Abers 2006
  * @example slabKinematics({ rate: { value: 62.8, unit: 'km/Ma' }, azimuth: 331, strike: 241, dip: 45, age: 54.3 }).thermalParameter // 2411 km
  */
-export function slabKinematics(given: { readonly rate: Rate; readonly azimuth: number; readonly strike: number; readonly dip: number; readonly age: number }): SlabKinematics & Showable {
+export function slabKinematics(given: { readonly rate: Rate; readonly azimuth: number; readonly strike: number; readonly dip: number; readonly age?: number }): SlabKinematics & Showable {
   const convergence = rateInMillimetres(given?.rate);
-  const { azimuth, strike, dip, age } = given;
-  for (const [name, value, from, to] of [['azimuth', azimuth, -360, 360], ['strike', strike, -360, 360], ['dip', dip, 0, 90], ['age', age, 0, 4000]] as const) {
+  const { azimuth, strike, dip, age = NaN } = given;
+  for (const [name, value, from, to] of [['azimuth', azimuth, -720, 720], ['strike', strike, -720, 720], ['dip', dip, 0, 90], ['age', age, 0, 4000]] as const) {
+    if (name === 'age' && given.age === undefined) continue;
     if (!(value >= from && value <= to)) throw new RangeError(`slabKinematics: ${name} must be a number from ${from} to ${to}${name === 'age' ? ' Ma' : ' degrees'}, not ${String(value)}.`);
   }
   const obliquity = wrapAngle(azimuth - (strike + 90));
@@ -99,12 +100,13 @@ export function slabKinematics(given: { readonly rate: Rate; readonly azimuth: n
   const parallel = convergence * Math.sin(obliquity * radians);
   const descent = normal * Math.sin(dip * radians);
   const notes = [pointOut('convergence-rate', convergence), pointOut('slab-dip', dip), pointOut('slab-age', age)].filter((note) => note !== undefined);
+  if (given.age === undefined) notes.push('No plate age, so no thermal parameter.');
   if (convergence > 250) notes.push('No plates are known to converge so fast: check that the unit is not mm/yr given as cm/yr.');
   if (Math.abs(obliquity) > 90) notes.push(`The lower plate moves away from the arc (${obliquity.toFixed(0)}° from down dip): check the azimuth, and that the slab dips to the right of the strike.`);
   else if (Math.abs(obliquity) > 45) notes.push(`Convergence is more oblique than 45° (${obliquity.toFixed(0)}°).`);
   const result: SlabKinematics = {
     convergence, obliquity, normal, parallel, descent, thermalParameter: age * descent, notes,
-    lineage: [step('slabKinematics', { rate: given.rate.value, unit: given.rate.unit, azimuth, strike, dip, age }, { sources: ['kirby_1991', 'syracuse_abers_2006'], tables: ['plausible-ranges.json'] })],
+    lineage: [step('slabKinematics', { rate: given.rate.value, unit: given.rate.unit, azimuth, strike, dip, age: given.age ?? null }, { sources: ['kirby_1991', 'syracuse_abers_2006'], tables: ['plausible-ranges.json'] })],
   };
   return showAs(result, () => ({
     title: 'Kinematics of the slab',

@@ -43,10 +43,12 @@ export function huberLine(x: ArrayLike<number>, y: ArrayLike<number>): Line {
   for (let round = 0; round < 60; round++) {
     const residuals = Float64Array.from(x, (value, i) => y[i] - line.intercept - line.slope * value);
     const scale = robustSpread(residuals);
+    // Half the points or more lie on the line: there is no scatter to weigh the others against, and the line stands.
+    if (scale <= 1e-12 * (Math.abs(line.intercept) + Math.abs(line.slope) * Math.max(...Array.from(x, Math.abs)))) return line;
     let [sw, sx, sy, sxx, sxy] = [0, 0, 0, 0, 0];
     for (let i = 0; i < x.length; i++) {
       const far = Math.abs(residuals[i]);
-      const weight = scale === 0 || far <= 1.345 * scale ? 1 : (1.345 * scale) / far;
+      const weight = far <= 1.345 * scale ? 1 : (1.345 * scale) / far;
       sw += weight;
       sx += weight * x[i];
       sy += weight * y[i];

@@ -1,4 +1,5 @@
 import Delaunator from 'delaunator';
+import KDBush from 'kdbush';
 
 /** Where a point lies in a triangulation: a triangle and its three weights, or outside the hull. */
 export interface Located {
@@ -29,6 +30,9 @@ export class TriangulatedSurface {
   private readonly incoming: Int32Array;
   private readonly slopes: Float64Array;
   private readonly hasSlope: Uint8Array;
+  private readonly index: KDBush;
+  private readonly found: Uint32Array;
+  private readonly spacing: number;
   private at = 0;
 
   constructor(readonly x: Float64Array, readonly y: Float64Array, readonly z: Float64Array, private readonly reach: number) {
@@ -46,6 +50,18 @@ export class TriangulatedSurface {
       // An edge on the hull is kept as the start, so that going round the vertex meets every triangle.
       if (halfedges[e] === -1 || this.incoming[end] === -1) this.incoming[end] = e;
     }
+    this.index = new KDBush(x.length);
+    let [left, right, bottom, top] = [Infinity, -Infinity, Infinity, -Infinity];
+    for (let i = 0; i < x.length; i++) {
+      this.index.add(x[i], y[i]);
+      left = Math.min(left, x[i]);
+      right = Math.max(right, x[i]);
+      bottom = Math.min(bottom, y[i]);
+      top = Math.max(top, y[i]);
+    }
+    this.index.finish();
+    this.found = new Uint32Array(x.length);
+    this.spacing = Math.sqrt(((right - left) * (top - bottom)) / x.length) || 1;
     this.slopes = new Float64Array(2 * x.length);
     this.hasSlope = new Uint8Array(x.length);
   }
@@ -54,10 +70,20 @@ export class TriangulatedSurface {
     return this.triangles.length / 3;
   }
 
-  /** Finds the triangle of a point by walking there from the last one found. */
+  /** A triangle near a point: one at a vertex that the index finds close by, else the last one found. */
+  private startNear(px: number, py: number): number {
+    for (let radius = this.spacing, tries = 0; tries < 5; tries++, radius *= 2) {
+      if (this.index.withinInto(px, py, radius, this.found) === 0) continue;
+      const edge = this.incoming[this.found[0]];
+      if (edge !== -1) return edge - (edge % 3);
+    }
+    return this.at;
+  }
+
+  /** Finds the triangle of a point by walking there from one that is near. */
   locate(px: number, py: number, into: Located): Located {
     const { x, y, triangles, halfedges } = this;
-    let t = this.at;
+    let t = this.startNear(px, py);
     for (let steps = 0; steps < triangles.length; steps++) {
       const i = triangles[t];
       const j = triangles[t + 1];
