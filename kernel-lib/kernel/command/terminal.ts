@@ -1,3 +1,4 @@
+import { stripVTControlCharacters } from 'node:util';
 import type { NotebookRun, RunEvent } from '../notebook/run';
 
 /** Tells a run's progress on the terminal: one line that changes in place, or a line a part where the output is no terminal. */
@@ -36,7 +37,7 @@ export class TerminalProgress {
 
   line(text: string): void {
     this.end();
-    this.stream.write(`${text}\n`);
+    this.stream.write(`${this.stream.isTTY ? text : stripVTControlCharacters(text)}\n`);
   }
 
   private inPlace(text: string): void {
