@@ -1,3 +1,4 @@
+import type { Suite } from '../suite';
 import { finding } from './conditions';
 import type { Grounds } from './ground';
 import { fertilityGuards, type FertilityGuard } from './tables';
@@ -34,7 +35,7 @@ export function guardSamples(grounds: Grounds): Guarding {
   const struck = new Uint8Array(suite.size);
   const guards = fertilityGuards().map((guard): GuardFlags => {
     const flags = new Uint8Array(suite.size);
-    const checked = guard.label === undefined ? flagByConditions(guard, grounds, flags) : flagByLabel(suite.labels.get(guard.label), flags);
+    const checked = guard.label === undefined ? flagByConditions(guard, grounds, flags) : flagByLabel(labelOf(suite, guard.label), flags);
     const target = guard.effect === 'exclude' ? excluded : guard.effect === 'strike' ? struck : undefined;
     let flagged = 0;
     for (let i = 0; i < flags.length; i++) {
@@ -45,6 +46,12 @@ export function guardSamples(grounds: Grounds): Guarding {
     return { guard, flags, flagged, checked };
   });
   return { guards, excluded, struck };
+}
+
+/** A label however its head is written: a guard must not be missed for a capital letter. */
+function labelOf(suite: Suite, name: string): readonly string[] | undefined {
+  const written = suite.labels.has(name) ? name : [...suite.labels.keys()].find((each) => each.trim().toLowerCase() === name);
+  return written === undefined ? undefined : suite.label(written);
 }
 
 function flagByLabel(texts: readonly string[] | undefined, flags: Uint8Array): number {
