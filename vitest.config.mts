@@ -7,7 +7,8 @@ export default defineConfig({
   test: {
     include: ['tests/**/*.test.ts'],
     exclude: ['tests/notebook/**'],
-    testTimeout: 30_000,
+    testTimeout: 60_000,
+    hookTimeout: 60_000,
     pool: 'forks',
     maxWorkers: 2,
   },

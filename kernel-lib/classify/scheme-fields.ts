@@ -134,8 +134,10 @@ function fieldsBetweenLines(made: SchemeFile, frame: Frame, fail: Fail): Outline
   });
   // A refused range is cut off; otherwise lines are continued straight to the frame.
   const [xa, xb] = made.beyond === 'refuse' ? [Math.max(frame.x[0], ...published.map(([from]) => from)), Math.min(frame.x[1], ...published.map(([, to]) => to))] : frame.x;
-  const xs = [...new Set([xa, xb, ...given.flat().map(([x]) => x)])].filter((x) => x >= xa && x <= xb).sort((a, b) => a - b);
   const top = (x: number) => (made.plane === 'ternary' ? 100 - x : frame.y[1]);
+  // A continued line may leave the frame before its side is reached: it bends there, and nowhere else.
+  const leaves = given.flatMap((points) => [...meets(points, xa, xb, () => frame.y[0]), ...meets(points, xa, xb, top)]);
+  const xs = [...new Set([xa, xb, ...given.flat().map(([x]) => x), ...leaves])].filter((x) => x >= xa && x <= xb).sort((a, b) => a - b);
   const levels = [
     xs.map((): number => frame.y[0]),
     ...given.map((points) => xs.map((x) => Math.min(top(x), Math.max(frame.y[0], polylineAt(points, x))))),
@@ -164,6 +166,16 @@ function fieldsBetweenLines(made: SchemeFile, frame: Frame, fail: Fail): Outline
     return [Math.max(...around.map(([from]) => from)), Math.min(...around.map(([, to]) => to))];
   });
   return { outlines, lines, ranges };
+}
+
+/** x at which a line, continued straight to xa and xb, meets another straight one. */
+function meets(points: readonly PlanePoint[], xa: number, xb: number, other: (x: number) => number): number[] {
+  const ends = [xa, ...points.map(([x]) => x).filter((x) => x > xa && x < xb), xb];
+  return ends.slice(1).flatMap((to, i) => {
+    const from = ends[i];
+    const [above, below] = [polylineAt(points, from) - other(from), polylineAt(points, to) - other(to)];
+    return above * below < 0 ? [from + ((to - from) * above) / (above - below)] : [];
+  });
 }
 
 function dropRepeats(points: readonly PlanePoint[]): readonly PlanePoint[] {
