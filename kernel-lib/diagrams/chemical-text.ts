@@ -43,7 +43,7 @@ export function expressionText(expression: string): string {
     .replace(/\blog10\b/g, 'log₁₀')
     .replace(/\s*\*\*?\s*/g, ' × ')
     .replace(/\s*\+\s*/g, ' + ')
-    .replace(/(?<=[^\s(,×+/])\s*-\s*/g, ' − ')
+    .replace(/(?<=[^\s(,×+/])\s*-\s*(?![a-z])/g, ' − ')
     .replace(/\^(\d)(?!\d)/g, (_, digit: string) => raised(digit));
   return written.replace(/\u0001(.)/gu, (_, code: string) => kept[code.charCodeAt(0) - 0xe000]);
 }
@@ -53,6 +53,11 @@ const oxidePattern = new RegExp(`(?<![A-Za-z0-9_])(?:${escaped.filter((symbol) =
 /** A sentence with its oxides and isotope ratios set as print sets them; everything else is left alone. */
 export function dressText(sentence: string): string {
   return sentence.replace(oxidePattern, symbolText);
+}
+
+/** A finished text with the few characters replaced that the shipped font lacks. */
+export function drawable(text: string): string {
+  return text.replaceAll('ₙ', normalisedMark);
 }
 
 /** A unit as print sets it. */
@@ -69,8 +74,13 @@ export function unitText(unit: string): string {
  * @example axisTitle('SiO2', 'wt%', 'volatile-free') // 'SiO₂ (wt %, volatile-free)'
  */
 export function axisTitle(what: string, unit = '', basis = ''): string {
-  const bracket = [unitText(unit), basis].filter((part) => part !== '').join(', ');
-  return bracket === '' ? expressionText(what) : `${expressionText(what)} (${bracket})`;
+  return bracketed(expressionText(what), unit, basis);
+}
+
+/** A finished title with unit and basis in brackets behind it. */
+export function bracketed(title: string, unit: string, basis: string): string {
+  const inside = [unitText(unit), basis].filter((part) => part !== '').join(', ');
+  return inside === '' ? title : `${title} (${inside})`;
 }
 
 /** A number for a label or a caption: real minus sign. */

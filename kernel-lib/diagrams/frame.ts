@@ -112,7 +112,9 @@ export function windowAround(values: Iterable<ArrayLike<number>>, hints: WindowH
   }
   if (low > high) return whole ?? (scale === 'log' ? [1, 100] : [0, 1]);
   if (scale === 'log') return logWindow(low, high, hints);
-  const least = hints.leastSpan ?? (Math.max(Math.abs(low), Math.abs(high)) * 0.2 || 1);
+  const size = Math.max(Math.abs(low), Math.abs(high));
+  // Next to nothing is nothing: a step smaller than the smallest number cannot be drawn.
+  const least = hints.leastSpan ?? (size > 1e-200 ? size * 0.2 : 1);
   const span = Math.max(high - low, least);
   const middle = (low + high) / 2;
   const step = roundStep(span * 1.12, 6) / 2;

@@ -2,7 +2,7 @@ import { classify, findScheme, probabilityText, schemeColumns, verdictOf, type S
 import type { IronBasis } from '../recast';
 import { column, step, type Column, type Suite } from '../suite';
 import { bibliography, shortSource } from '../tables';
-import { axisTitle, dressText } from './chemical-text';
+import { bracketed, drawable, dressText } from './chemical-text';
 import type { Diagram } from './diagram';
 import { figure } from './figure';
 import { windowAround, type Axis, type Frame } from './frame';
@@ -64,14 +64,14 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
   const { x = emptyColumn(suite), y = emptyColumn(suite) } = verdict;
   if (x === undefined || y === undefined) throw new RangeError(`${who}: no sample has what the axes of "${chosen.key}" need: ${dressText(missingAxes(suite, chosen, verdict))}.`);
   const isTernary = chosen.plane === 'ternary';
-  const titles = chosen.axes.map((axis) => axisTitle(axis.title, axis.unit, chosen.basis === 'volatile-free' && axis.unit === 'wt %' ? 'volatile-free' : ''));
+  const titles = chosen.axes.map((axis) => drawable(bracketed(axis.title, axis.unit, chosen.basis === 'volatile-free' && axis.unit === 'wt %' ? 'volatile-free' : '')));
   const place = (point: Point): Point => (isTernary ? ternaryPoint(...point) : point);
   const columns = isTernary ? ternaryColumns(x, y) : options.errors === undefined || options.errors === 'none' ? { x, y } : withSigma(suite, chosen, x, y, iron);
   const tooltips = new Map<string, ArrayLike<string>>([['verdict', verdictTexts(verdict)]]);
   if (verdict.probability !== undefined) tooltips.set('how sure', Array.from({ length: suite.size }, (_, i) => probabilityText(verdict, i)));
   const set = samplePoints(who, suite, {
     x: chosen.axes[0].expression, y: chosen.axes[1].expression, columns, tooltips, axisTitles: [titles[0], titles[1]],
-    reason: (row) => dressText(verdict.remarks[row]).replace(/^needs /, 'without ').replace(/; needs /g, ', ') || undefined,
+    reason: (row) => reasonOf(chosen, verdict.remarks[row]),
   }, options);
   const paths = pathShapes(who, options.paths, (liquid) => onScheme(who, liquid, chosen, place, iron));
   const frame = isTernary ? ternaryFrame(options.width ?? words.width) : schemeFrame(chosen, titles, [columns.x.values, columns.y.values], paths.shapes, set, options, words);
@@ -82,10 +82,12 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
   });
   const edges = (published: boolean) => chosen.lines.filter((line) => line.published === published).map(({ points }) => points.map(place));
   const letters = words.corners;
-  const corners = isTernary ? (chosen.axes.map((axis, i): TernaryCorner => (letters === undefined ? { name: axis.title } : { name: letters[i], meaning: axis.title })) as unknown as [TernaryCorner, TernaryCorner, TernaryCorner]) : undefined;
+  const corners = isTernary ? (chosen.axes.map((axis, i): TernaryCorner => (letters === undefined ? { name: drawable(axis.title) } : { name: letters[i], meaning: drawable(axis.title) })) as unknown as [TernaryCorner, TernaryCorner, TernaryCorner]) : undefined;
   const layers = [
     ...(corners === undefined ? [] : [ternaryLayer(corners)]),
-    fieldsLayer(fields, { edges: edges(true), conventionEdges: edges(false), width: chosen.kind === 'polygons' ? 0.9 : 1.3 }),
+    // Lines that divide no fields say themselves what they are.
+    ...(fields.length > 0 ? [] : [linesLayer(chosen.lines.map(({ points, name, published }) => ({ points: points.map(place), label: drawable(name), ...(published ? {} : { dash: [4, 3] }) })))]),
+    fieldsLayer(fields, { edges: fields.length > 0 ? edges(true) : [], conventionEdges: fields.length > 0 ? edges(false) : [], width: chosen.kind === 'polygons' ? 0.9 : 1.3 }),
     ...(others.length === 0 ? [] : [linesLayer(others.flatMap((other) => other.lines.filter(({ published }) => published).map(({ points, name }) => ({ points: points.map(place), label: name.replace(' | ', ' / '), dash: [5, 3] }))))]),
     samplesLayer(set.points, { ...options, zoom: !isTernary }),
     ...(options.names === undefined ? [] : [namesLayer(set.points, suite.samples, options.names)]),
@@ -98,7 +100,7 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
     name: chosen.title,
     title: options.title,
     panels: [{ frame, layers }],
-    caption: [`Boundaries: ${sources.map(cite).join('; ')}.`, basisSentence(chosen, suite, iron, isTernary, titles), ...dashed, ...paths.notes, ...set.notes],
+    caption: [`${chosen.kind === 'points' ? 'Reference points' : chosen.kind === 'criteria' ? 'Criteria' : 'Boundaries'}: ${sources.map(cite).join('; ')}.`, basisSentence(chosen, suite, iron, isTernary, titles), ...dashed, ...paths.notes, ...set.notes],
     counts: set.counts(frame),
     legendWidth: set.legendWidth,
     lineage: [...verdicts.lineage, step(`diagrams.${who}`, { scheme: chosen.key, also: others.map(({ key }) => key) }, {
@@ -115,6 +117,12 @@ function emptyColumn(suite: Suite): Column | undefined {
 
 function cite(key: string): string {
   return bibliography().has(key) ? shortSource(key) : key;
+}
+
+/** Why a sample has no place: of schemes that divide a plane, the verdict says it; others speak of their criteria instead. */
+function reasonOf({ kind, basis }: Scheme, remark: string): string | undefined {
+  if (kind === 'criteria' || kind === 'points') return basis === 'volatile-free' ? 'without a volatile-free sum' : undefined;
+  return dressText(remark).replace(/^needs /, 'without ').replace(/; needs /g, ', ') || undefined;
 }
 
 function missingAxes(suite: Suite, { axes }: Scheme, { remarks }: SchemeVerdict): string {

@@ -10,7 +10,7 @@ function scatter(seed) {
 
 export function madeSuite(ww, { samples, groups, seed = 7 }) {
   const { uniform, normal } = scatter(seed);
-  const names = [...'SiO2 TiO2 Al2O3 FeOT MnO MgO CaO Na2O K2O P2O5 LOI'.split(' '), ...'Cs Rb Ba Th U Nb Ta La Ce Pb Pr Sr Nd Zr Hf Sm Eu Ti Gd Tb Dy Y Ho Er Tm Yb Lu Sc V Cr Ni'.split(' ')];
+  const names = [...'SiO2 TiO2 Al2O3 FeOT FeO Fe2O3 MnO MgO CaO Na2O K2O P2O5 LOI'.split(' '), ...'Cs Rb Ba Th U Nb Ta La Ce Pb Pr Sr Nd Zr Hf Sm Eu Ti Gd Tb Dy Y Ho Er Tm Yb Lu Sc V Cr Ni Co'.split(' ')];
   const values = Object.fromEntries(names.map((name) => [name, new Float64Array(samples)]));
   const limits = { Nb: new Float64Array(samples).fill(NaN), Ta: new Float64Array(samples).fill(NaN) };
   const states = Object.fromEntries(names.map((name) => [name, new Uint8Array(samples)]));
@@ -25,6 +25,8 @@ export function madeSuite(ww, { samples, groups, seed = 7 }) {
     set('TiO2', 1.05 - 0.75 * evolved);
     set('Al2O3', 17.6 - 3 * evolved);
     set('FeOT', (10.4 - 9 * evolved) * (1 - 0.1 * back));
+    set('FeO', (8.2 - 7.2 * evolved) * (1 - 0.1 * back));
+    values.Fe2O3[i] = (values.FeOT[i] - values.FeO[i]) / 0.8998;
     set('MnO', 0.18 - 0.12 * evolved);
     set('MgO', 8.2 * Math.exp(-3.1 * evolved) + 0.2, 0.08);
     set('CaO', 11 - 10.2 * evolved);
@@ -39,7 +41,7 @@ export function madeSuite(ww, { samples, groups, seed = 7 }) {
       ['Pb', 2.2, fluid], ['Pr', 1.6, melt ** 0.9], ['Sr', 320, 1 + 0.8 * back - 0.9 * evolved], ['Nd', 8, melt ** 0.8], ['Zr', 55, melt], ['Hf', 1.6, melt ** 0.9], ['Sm', 2.3, melt ** 0.6],
       ['Eu', 0.85, melt ** 0.4 * (1 - 0.5 * evolved)], ['Ti', 5800, 1 - 0.7 * evolved], ['Gd', 2.8, melt ** 0.4], ['Tb', 0.48, melt ** 0.35], ['Dy', 3.1, melt ** 0.3], ['Y', 18, melt ** 0.3],
       ['Ho', 0.66, melt ** 0.3], ['Er', 1.95, melt ** 0.3], ['Tm', 0.29, melt ** 0.3], ['Yb', 1.95, melt ** 0.28], ['Lu', 0.3, melt ** 0.28], ['Sc', 36, 1 - 1.1 * evolved], ['V', 280, 1 - 1.1 * evolved],
-      ['Cr', 220, Math.exp(-6 * evolved)], ['Ni', 80, Math.exp(-5 * evolved)],
+      ['Cr', 220, Math.exp(-6 * evolved)], ['Ni', 80, Math.exp(-5 * evolved)], ['Co', 34, Math.exp(-2.2 * evolved)],
     ]) set(name, Math.max(0.001, base * factor), 0.06);
     if (values.Nb[i] < 1.3 && i % 4 === 0) {
       states.Nb[i] = 1;
