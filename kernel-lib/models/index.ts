@@ -20,3 +20,5 @@ export { apatiteSolubility, apatiteTemperature, withSaturationTemperatures, zirc
 export { wholeRockPath } from './whole-rock-path';
 export type { CrystalStage, PathConditions, PathMineral, WholeRockOptions } from './whole-rock-options';
 export { primaryMelt, type PrimaryMelt, type PrimaryMeltOptions } from './primary-melt';
+export type { DescentProcess } from './descent-laws';
+export { fitDescent, type CompanionTest, type DescentElement, type DescentFit, type DescentRival, type DescentSample, type FitDescentOptions } from './fit-descent';
