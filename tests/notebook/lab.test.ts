@@ -50,3 +50,91 @@ describe.each([...gallery, 'figures.ipynb'])('%s in JupyterLab', (name) => {
     await notebook.close();
   });
 });
+
+describe('a diagram in JupyterLab', () => {
+  it('tells the sample under the pointer, and stays legible in the dark theme', async () => {
+    const notebook = await lab.open('figures.ipynb');
+    const { page } = notebook;
+    await notebook.command('notebook:run-all-cells');
+    const canvas = page.locator('.jp-OutputArea-output .vega-embed canvas').first();
+    await canvas.scrollIntoViewIfNeeded();
+    await page.waitForTimeout(500);
+    // The middle of a marker of the first group, known by its colour (Okabe & Ito's blue), left of the legend.
+    const spot = await canvas.evaluate((element) => {
+      const { width, height, clientWidth } = element as HTMLCanvasElement;
+      const pixels = (element as HTMLCanvasElement).getContext('2d')!.getImageData(0, 0, width, height).data;
+      const blue = (x: number, y: number) => {
+        const i = 4 * (y * width + x);
+        return Math.abs(pixels[i] - 0) < 40 && Math.abs(pixels[i + 1] - 114) < 40 && Math.abs(pixels[i + 2] - 178) < 40;
+      };
+      for (let y = 4; y < height - 4; y++) for (let x = 40; x < 0.7 * width; x++) if (blue(x, y) && blue(x - 2, y) && blue(x + 2, y) && blue(x, y + 3)) return { x: (x * clientWidth) / width, y: ((y + 2) * clientWidth) / width };
+      return null;
+    });
+    expect(spot).not.toBeNull();
+    await canvas.hover({ position: spot! });
+    const tooltip = page.locator('#vg-tooltip-element.visible');
+    await tooltip.waitFor({ timeout: 5_000 });
+    expect(await tooltip.innerText()).toMatch(/KE-\d+/);
+    expect(await tooltip.innerText()).toContain('Ketu');
+    await notebook.screenshot('lab-hover');
+
+    await notebook.command('apputils:change-theme', { theme: 'JupyterLab Dark' });
+    await page.waitForTimeout(1_000);
+    await canvas.scrollIntoViewIfNeeded();
+    await notebook.screenshot('lab-dark');
+    // The figure brings its own white ground.
+    const corner = await canvas.evaluate((element) => [...(element as HTMLCanvasElement).getContext('2d')!.getImageData(2, 2, 1, 1).data]);
+    expect(corner).toEqual([255, 255, 255, 255]);
+    await notebook.command('apputils:change-theme', { theme: 'JupyterLab Light' });
+    await notebook.close();
+  });
+});
+
+describe('a working session in JupyterLab', () => {
+  it('shows a traceback in the own lines, stops a loop, keeps variables, completes with our words', async () => {
+    const notebook = await lab.open('live.ipynb');
+    const { page } = notebook;
+    const run = async (index: number) => {
+      await notebook.select(index);
+      await notebook.command('notebook:run-cell');
+      return (await notebook.cells())[index];
+    };
+    await run(1);
+    const error = (await run(2)).outputs!.at(-1)!;
+    expect(error).toMatchObject({ output_type: 'error', ename: 'RangeError' });
+    const shown = page.locator('.jp-RenderedText[data-mime-type="application/vnd.jupyter.stderr"], .jp-RenderedText[data-mime-type="application/vnd.jupyter.error"]').first();
+    expect(await shown.innerText()).toMatch(/RangeError[^]*line 2:[^]*column\('Xy'\)/);
+    await notebook.screenshot('lab-error');
+
+    await notebook.select(3);
+    const looping = notebook.command('notebook:run-cell').catch(() => {});
+    await page.waitForTimeout(1_000);
+    const asked = Date.now();
+    await notebook.interrupt();
+    await looping;
+    expect(Date.now() - asked).toBeLessThan(2_000);
+    expect((await notebook.cells())[3].outputs!.at(-1)).toMatchObject({ output_type: 'error', ename: 'Interrupted' });
+    expect((await run(4)).outputs![0].data!['text/plain']).toBe('42');
+
+    await notebook.select(5);
+    await notebook.command('notebook:enter-edit-mode');
+    await page.locator('.jp-Notebook .jp-Cell').nth(5).locator('.cm-content').click();
+    await page.keyboard.type('ww.molar');
+    await notebook.command('completer:invoke-notebook');
+    const popup = page.locator('.jp-Completer');
+    await popup.waitFor({ timeout: 10_000 });
+    expect(await popup.innerText()).toContain('molarMass');
+    await page.locator('.jp-Completer-docpanel').waitFor({ timeout: 10_000 });
+    expect(await page.locator('.jp-Completer-docpanel').innerText()).toContain('Molar mass');
+    await notebook.screenshot('lab-completion');
+
+    await page.keyboard.press('Escape');
+    await page.keyboard.type('Mass(');
+    await notebook.command('tooltip:launch-notebook');
+    const words = page.locator('.jp-Tooltip');
+    await words.waitFor({ timeout: 10_000 });
+    expect(await words.innerText()).toMatch(/molarMass\(symbol: string\): number[^]*Molar mass of an oxide/);
+    await notebook.screenshot('lab-tooltip');
+    await notebook.close();
+  });
+});

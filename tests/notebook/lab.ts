@@ -106,7 +106,7 @@ export class LabNotebook {
   }
 }
 
-/** No news dialog, every output drawn whether in sight or not. */
+/** No news dialog, every output drawn whether in sight or not, words beside the completions. */
 function configure(): void {
   const write = (folder: string, name: string, content: object) => {
     mkdirSync(folder, { recursive: true });
@@ -115,6 +115,7 @@ function configure(): void {
   const { JUPYTER_CONFIG_DIR: configuration } = jupyterEnvironment;
   write(join(configuration, 'labconfig'), 'page_config.json', { disabledExtensions: { '@jupyterlab/apputils-extension:announcements': true } });
   write(join(configuration, 'lab/user-settings/@jupyterlab/notebook-extension'), 'tracker.jupyterlab-settings', { windowingMode: 'none' });
+  write(join(configuration, 'lab/user-settings/@jupyterlab/completer-extension'), 'manager.jupyterlab-settings', { showDocumentationPanel: true });
 }
 
 function freePort(): Promise<number> {
