@@ -8,7 +8,7 @@ import type { FertilityIndicator, SilicaWindow } from './tables';
 /** What one indicator says of every sample. Arrays have one entry a sample. */
 export interface IndicatorAnswers {
   readonly indicator: FertilityIndicator;
-  /** The indicator's own quantity (NaN where it has no value; without 1σ); unit '' for a ratio. Undefined when the suite lacks a column it needs. */
+  /** The indicator's own quantity (NaN where it has no value), with 1σ and bounds where known; unit '' for a ratio. Undefined when the suite lacks a column it needs. */
   readonly values: Column | undefined;
   /** One number of `fertilityVerdict` a sample, guards applied. All `not applicable` for indicators that give no verdict. */
   readonly verdicts: Uint8Array;

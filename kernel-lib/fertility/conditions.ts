@@ -33,16 +33,16 @@ export class ConditionReader {
     return expressionSymbols(parseExpression(expression, this.named));
   }
 
-  /** The values of an expression, each distinct one evaluated once; undefined when the suite lacks a column that it needs. */
+  /** The values of an expression with 1σ and bounds, each distinct one evaluated once; undefined when the suite lacks a column that it needs. */
   quantity(expression: string): Column | undefined {
-    if (!this.quantities.has(expression)) this.quantities.set(expression, this.evaluated(expression, false));
+    if (!this.quantities.has(expression)) this.quantities.set(expression, this.evaluated(expression));
     return this.quantities.get(expression);
   }
 
-  private evaluated(expression: string, sigma: boolean): Column | undefined {
+  private evaluated(expression: string): Column | undefined {
     const { suite, operand } = this.ground;
     if (this.symbols(expression).some((symbol) => operand(symbol) === undefined)) return undefined;
-    return evaluate(suite, expression, { named: this.named, reference: this.normal, operand, sigma });
+    return evaluate(suite, expression, { named: this.named, reference: this.normal, operand });
   }
 
   /** What a condition says of every sample: one number of `finding` each. */
@@ -76,34 +76,38 @@ export class ConditionReader {
 
   private find(expression: string, is: FertilityCondition['is'], limit: string): Uint8Array {
     const size = this.ground.suite.size;
-    // The margin is positive on the side where the condition holds, so one rule serves every comparison.
-    const margin = is === '>' || is === '>=' ? `(${expression})-(${limit})` : `(${limit})-(${expression})`;
-    const column = this.evaluated(margin, true);
     const out = new Uint8Array(size).fill(finding.missing);
+    // A limit that runs over another quantity makes one margin of both, so that the errors of all operands are in it.
+    const plain = Number(limit);
+    const asked = Number.isNaN(plain) ? `(${expression})-(${limit})` : expression;
+    const at = Number.isNaN(plain) ? 0 : plain;
+    const column = this.quantity(asked);
     if (column === undefined) return out;
     const { values, states, sigma, limits } = column;
+    const side = is === '>' || is === '>=' ? 1 : -1;
     const orEqual = is.length === 2;
-    let opposite: Column | undefined;
     for (let i = 0; i < size; i++) {
       const value = values[i];
       if (value === value) {
-        const met = orEqual ? value >= 0 : value > 0;
-        out[i] = sigma !== undefined && sigma[i] > 0 && Math.abs(value) <= sigma[i] ? finding.near : met ? finding.met : finding.notMet;
+        // Positive on the side where the condition holds.
+        const margin = side * (value - at);
+        const met = orEqual ? margin >= 0 : margin > 0;
+        out[i] = sigma !== undefined && sigma[i] > 0 && Math.abs(margin) <= sigma[i] ? finding.near : met ? finding.met : finding.notMet;
         continue;
       }
       const state = states[i];
       if (state !== cellState.belowDetection && state !== cellState.aboveRange) continue;
-      const bound = limits![i];
-      if (state === cellState.belowDetection && bound <= 0) out[i] = finding.notMetByBound;
-      else if (state === cellState.aboveRange && bound >= 0) out[i] = finding.metByBound;
-      else {
-        // An expression may be bounded at both ends, and a column keeps one: the other is read off the negated margin.
-        opposite ??= this.evaluated(`-(${margin})`, false)!;
-        const other = opposite.states[i] === cellState.belowDetection ? -opposite.limits![i] : NaN;
-        out[i] = state === cellState.belowDetection && other >= 0 ? finding.metByBound : this.censoredKind(expression, limit, i);
-      }
+      const below = state === cellState.belowDetection;
+      const decided = below ? (limits![i] <= at ? -side : this.lowEnd(asked, i) >= at ? side : 0) : limits![i] >= at ? side : 0;
+      out[i] = decided > 0 ? finding.metByBound : decided < 0 ? finding.notMetByBound : this.censoredKind(expression, limit, i);
     }
     return out;
+  }
+
+  /** The low end of a quantity that a column holds by its high end alone: read off the negated quantity. */
+  private lowEnd(expression: string, row: number): number {
+    const opposite = this.quantity(`-(${expression})`)!;
+    return opposite.states[row] === cellState.belowDetection ? -opposite.limits![row] : -Infinity;
   }
 
   /** Which kind of bound left a sample undecided, by its first censored operand. */
