@@ -23,7 +23,9 @@ export interface ArcMagmaKinds extends Showable {
 /** Lists that speak of one kind, and so can disagree. */
 const families: readonly { readonly kind: string; readonly keys: readonly string[] }[] = [
   { kind: 'boninite', keys: ['boninite'] },
-  { kind: 'high-Mg andesite', keys: ['high-mg-andesite', 'high-mg-number-andesite', 'primitive-andesite'] },
+  { kind: 'high-Mg andesite', keys: ['high-mg-andesite'] },
+  { kind: 'high-Mg-number andesite', keys: ['high-mg-number-andesite'] },
+  { kind: 'primitive andesite', keys: ['primitive-andesite'] },
   { kind: 'sanukitoid', keys: ['sanukitoid'] },
   { kind: 'adakite-like', keys: ['adakite-1990', 'adakite-2007', 'adakite-1999'] },
   { kind: 'high Sr/Y', keys: ['high-sr-y-1990', 'high-sr-y-2007', 'high-la-yb'] },

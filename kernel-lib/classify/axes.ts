@@ -20,6 +20,17 @@ export function isVolatileFree(suite: Suite): boolean {
 }
 
 export function operandsOf(suite: Suite, iron: IronBasis): Operands {
+  let made = operandsBySuite.get(suite);
+  if (made === undefined) operandsBySuite.set(suite, (made = new Map()));
+  let operands = made.get(iron);
+  if (operands === undefined) made.set(iron, (operands = makeOperands(suite, iron)));
+  return operands;
+}
+
+/** Suites are immutable, so what was recast for one question serves the next; it goes when the suite goes. */
+const operandsBySuite = new WeakMap<Suite, Map<IronBasis, Operands>>();
+
+function makeOperands(suite: Suite, iron: IronBasis): Operands {
   const known = new Map<string, Column | undefined>();
   let recast: Suite | undefined;
   const onBasis = (basis: SchemeBasis) => (basis === 'as-analysed' ? suite : (recast ??= isVolatileFree(suite) ? suite : volatileFree(suite, { iron })));

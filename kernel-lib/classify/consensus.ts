@@ -50,7 +50,7 @@ const affinityVote: Readonly<Record<string, number>> = { tholeiitic: -1, transit
 /** Weight of a scheme whose elements are flagged as moved, against 1: heard, but outvoted by any other. Our own choice. */
 const movedWeight = 0.25;
 /** Share of the weight that must be on one side for a reading: two of three. Our own choice. */
-const clearMajority = 1 / 3;
+const clearMajority = 1 / 3 - 1e-9;
 
 /**
  * One table of what a suite is: a row a sample, with its IUGS name, the series by every scheme, which agree, which could not be asked and
@@ -77,21 +77,50 @@ export function consensus(suite: Suite, options: ConsensusOptions = {}): Consens
   const flags = alterationFlags(suite);
   const text = () => new Array<string>(suite.size).fill('');
   const [agree, against, notAsked, reading, because] = [text(), text(), text(), text(), text()];
+  const readings = new Map<string, Reading>();
+  const all = [...found.values()];
+  const weighed = all.some(({ probability }) => probability !== undefined);
   for (let i = 0; i < suite.size; i++) {
-    const row = readRow(i, found, affinity, flags?.[i] ?? '');
-    agree[i] = row.agree.join(', ');
-    against[i] = row.against.join(', ');
-    notAsked[i] = row.notAsked.join('; ');
+    // Rows that all schemes answer alike read alike; only probabilities make every row its own.
+    const key = weighed ? '' : situation(all, affinity, flags, i);
+    let row = weighed ? undefined : readings.get(key);
+    if (row === undefined) {
+      row = readRow(i, found, affinity, flags?.[i] ?? '');
+      if (!weighed) readings.set(key, row);
+    }
+    agree[i] = row.agree;
+    against[i] = row.against;
+    notAsked[i] = row.notAsked;
     reading[i] = row.reading;
     because[i] = row.because;
   }
   const made = step(
-    'consensus', { iron: settings.iron, movedWeight, clearMajority, audited: flags !== undefined, ...chance.detail },
+    'consensus', { iron: settings.iron, movedWeight, clearMajority: 'two thirds of the weight', audited: flags !== undefined, ...chance.detail },
     { sources: [...new Set([...keys.flatMap((key) => findScheme(key).sources), 'ross_bedard_2009'])], tables: keys.map((key) => `schemes/${key}.json`) },
   );
   const lineage = [...joinLineages(names.lineage, affinity.lineage), made];
   const result = { suite, names, verdicts: verdictsOf(suite, found, lineage), affinity, alteration: flags, agree, against, notAsked, reading, because, lineage };
   return showAs(result, consensusTable);
+}
+
+/** What one row says, in words. */
+interface Reading {
+  readonly agree: string;
+  readonly against: string;
+  readonly notAsked: string;
+  readonly reading: string;
+  readonly because: string;
+}
+
+/** Everything that a reading rests on where no probabilities weigh in: fields, reasons for none, flag. */
+function situation(all: readonly SchemeVerdict[], affinity: ImmobileAffinity, flags: readonly string[] | undefined, i: number): string {
+  let packed = 0;
+  let reasons = '';
+  for (const { field, remarks } of all) {
+    packed = packed * 16 + field[i] + 1;
+    if (field[i] < 0) reasons += `|${remarks[i]}`;
+  }
+  return `${packed}|${affinity.affinity[i] === '' ? affinity.because[i] : affinity.affinity[i]}|${flags === undefined ? '' : flags[i]}${reasons}`;
 }
 
 interface Voice {
@@ -101,7 +130,7 @@ interface Voice {
   readonly weight: number;
 }
 
-function readRow(i: number, found: ReadonlyMap<string, SchemeVerdict>, affinity: ImmobileAffinity, flag: string) {
+function readRow(i: number, found: ReadonlyMap<string, SchemeVerdict>, affinity: ImmobileAffinity, flag: string): Reading {
   const notAsked: string[] = [];
   const setBack: string[] = [];
   const voices: Voice[] = [];
@@ -142,7 +171,8 @@ function readRow(i: number, found: ReadonlyMap<string, SchemeVerdict>, affinity:
   const against = side === undefined || isAlkaline ? [] : voices.filter(({ vote }) => vote !== side && (side !== 0 || vote !== 0)).map(({ who }) => who);
   const parts = isAlkaline ? ['alkaline'] : [potassiumMoved ? '' : potassic, sideName];
   const reading = parts.filter((part) => part !== '').join(', ');
-  return { agree, against, notAsked, reading, because: sentence({ isAlkaline, alkaline, voices, side, agree, against, setBack, flag, sideName }) };
+  const written = { agree: agree.join(', '), against: against.join(', '), notAsked: notAsked.join('; ') };
+  return { ...written, reading, because: sentence({ isAlkaline, alkaline, voices, side, agree, against, setBack, flag, sideName }) };
 }
 
 function sentence(from: {

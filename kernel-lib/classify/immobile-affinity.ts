@@ -34,12 +34,23 @@ export function immobileAffinity(suite: Suite): ImmobileAffinity {
   const ratios = keys.map((key) => judge(operands, findScheme(key)));
   const affinity = new Array<string>(suite.size).fill('');
   const because = new Array<string>(suite.size).fill('');
+  const byFields = new Map<number, { affinity: string; because: string }>();
   for (let i = 0; i < suite.size; i++) {
+    const [a, b, c] = [ratios[0].field[i], ratios[1].field[i], ratios[2].field[i]];
+    const key = a < 0 || b < 0 || c < 0 ? -1 : (a * 3 + b) * 3 + c;
+    const same = byFields.get(key);
+    if (same !== undefined) {
+      affinity[i] = same.affinity;
+      because[i] = same.because;
+      continue;
+    }
     const asked = ratios.map(({ names }) => names[i]);
     const known = asked.filter((name) => name !== '');
     because[i] = asked.map((name, k) => (name === '' ? `${ratioNames[k]} ${ratios[k].remarks[i]}` : `${ratioNames[k]} ${name}`)).join(', ');
     if (known.length < 2) because[i] = `fewer than two ratios: ${because[i]}`;
     else affinity[i] = known.every((name) => name === known[0]) ? known[0] : 'transitional';
+    // Rows with all three ratios fall into 27 kinds; the others have reasons of their own.
+    if (key >= 0) byFields.set(key, { affinity: affinity[i], because: because[i] });
   }
   const made = step('immobileAffinity', { ratios: [...ratioNames] }, { sources: ['ross_bedard_2009'], tables: keys.map((key) => `schemes/${key}.json`) });
   return showAs({ suite, affinity, because, ratios, lineage: [...suite.lineage, made] }, (shown) => ({

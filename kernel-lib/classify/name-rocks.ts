@@ -1,6 +1,6 @@
 import { showAs, type Showable, type TableCell } from '../display';
 import { norm, type IronSplitOptions, type Norm } from '../recast';
-import { joinLineages, step, type Column, type Step, type Suite } from '../suite';
+import { gatherColumn, joinLineages, step, suiteOf, type Column, type Step, type Suite } from '../suite';
 import { molarMass } from '../tables';
 import { findScheme } from './catalogue';
 import { isVolatileFree, operandsOf, type IronBasis, type Operands } from './axes';
@@ -31,7 +31,10 @@ export interface RockNames extends Showable {
   readonly remarks: readonly string[];
   readonly tas: SchemeVerdict;
   readonly potassium: SchemeVerdict;
+  /** Norms of the samples whose name rests on one (basalt, tephrite, foidite and trachyte fields). */
   readonly norm: Norm;
+  /** Row of `norm` that belongs to a sample (n); −1 where its name rests on none. */
+  readonly normRow: Int32Array;
   /** 0 not asked or not met, 1 boninite, 2 komatiite, 3 meimechite, 4 picrite. */
   readonly highMagnesium: Uint8Array;
   /** Volatile screen: 0 passed, 1 failed, 2 not measured. */
@@ -70,16 +73,19 @@ export function nameWith(operands: Operands, normIron: IronSplitOptions, volatil
   const { size } = suite;
   const tas = judge(operands, findScheme('tas'));
   const potassium = judge(operands, findScheme('potassium-silica'));
-  const made = norm(suite, { iron: normIron });
   const highMagnesium = screenMagnesium(operands);
+  const asked = Int32Array.from({ length: size }, (_, i) => i).filter((i) => highMagnesium[i] === 0 && fieldsByNorm.has(tas.symbols[i]));
+  const made = norm(majorsOf(suite, asked), { iron: normIron });
+  const normRow = new Int32Array(size).fill(-1);
+  asked.forEach((i, row) => (normRow[i] = row));
   const volatileScreen = screenVolatiles(suite);
-  const values = namingValues(operands, made);
+  const values = namingValues(operands, made, normRow);
   const names = new Array<string>(size).fill('');
   const roots = new Array<string>(size).fill('');
   const remarks = new Array<string>(size).fill('');
   let screened = 0;
   let named = 0;
-  const joined = new Map<string, string>();
+  const joined = new Map<string, Map<string, string>>();
   for (let i = 0; i < size; i++) {
     const high = highMagnesium[i];
     const failed = volatileScreen[i] === 1 && high === 0;
@@ -88,8 +94,10 @@ export function nameWith(operands: Operands, normIron: IronSplitOptions, volatil
       remarks[i] = volatileRemark;
       continue;
     }
-    if (high > 0) roots[i] = names[i] = highMagnesiumNames[high];
-    else if (tas.field[i] < 0) remarks[i] = tas.remarks[i];
+    if (high > 0) {
+      roots[i] = names[i] = highMagnesiumNames[high];
+      if (high > 1) remarks[i] = cumulateRemark;
+    } else if (tas.field[i] < 0) remarks[i] = tas.remarks[i];
     else {
       const symbol = tas.symbols[i];
       const root = rootName(symbol, tas.names[i], values, i);
@@ -112,16 +120,28 @@ export function nameWith(operands: Operands, normIron: IronSplitOptions, volatil
     },
   );
   const lineage = [...joinLineages(operands.onBasis('volatile-free').lineage, made.lineage), because];
-  return showAs({ suite, names, roots, fields: tas.symbols, remarks, tas, potassium, norm: made, highMagnesium, volatileScreen, lineage }, nameTable);
+  return showAs({ suite, names, roots, fields: tas.symbols, remarks, tas, potassium, norm: made, highMagnesium, volatileScreen, normRow, lineage }, nameTable);
 }
 
+const cumulateRemark = 'if it is a lava: peridotites and rocks with accumulated olivine meet this rule too';
 const volatileRemark = 'fails the volatile screen (H2O+ > 2 % or CO2 > 0.5 %): not fit for naming';
 
-function join(known: Map<string, string>, prefix: string, root: string): string {
-  const key = `${prefix} ${root}`;
-  let text = known.get(key);
-  if (text === undefined) known.set(key, (text = key));
+/** Prefix and root as one text, made once. */
+function join(known: Map<string, Map<string, string>>, prefix: string, root: string): string {
+  let roots = known.get(prefix);
+  if (roots === undefined) known.set(prefix, (roots = new Map()));
+  let text = roots.get(root);
+  if (text === undefined) roots.set(root, (text = `${prefix} ${root}`));
   return text;
+}
+
+/** TAS fields whose names rest on the norm. */
+const fieldsByNorm = new Set(['B', 'U1', 'F', 'T']);
+
+/** The oxides of some rows. */
+function majorsOf(suite: Suite, rows: Int32Array): Suite {
+  const oxides = [...suite.columns.values()].filter(({ kind, symbol }) => kind === 'oxide' || symbol === 'Ti' || symbol === 'K' || symbol === 'Mn' || symbol === 'P');
+  return suiteOf({ columns: oxides.map((each) => gatherColumn(each, rows)), labels: { sample: Array.from(rows, (i) => suite.samples[i]) }, lineage: suite.lineage });
 }
 
 /** Columns that the TAS rules read, volatile-free, and the norm. */
@@ -131,12 +151,13 @@ export interface NamingValues {
   readonly alumina?: Float64Array;
   readonly iron?: Float64Array;
   readonly norm: Norm;
+  readonly normRow: Int32Array;
 }
 
 /** @internal */
-export function namingValues(operands: Operands, made: Norm): NamingValues {
+export function namingValues(operands: Operands, made: Norm, normRow: Int32Array): NamingValues {
   const on = (symbol: string) => operands.operand('volatile-free', symbol)?.values;
-  return { soda: on('Na2O'), potash: on('K2O'), alumina: on('Al2O3'), iron: on('FeOT'), norm: made };
+  return { soda: on('Na2O'), potash: on('K2O'), alumina: on('Al2O3'), iron: on('FeOT'), norm: made, normRow };
 }
 
 /** (Na2O + K2O)/Al2O3, molar. */
@@ -145,17 +166,19 @@ export function agpaitic({ soda, potash, alumina }: NamingValues, i: number): nu
 }
 
 /** 100 Q/(Q + or + ab + an) of the norm. */
-export function quartzShare({ norm: { weights } }: NamingValues, i: number): number {
-  const q = weights.Q.values[i];
-  return (100 * q) / (q + weights.Or.values[i] + weights.Ab.values[i] + weights.An.values[i]);
+export function quartzShare({ norm: { weights }, normRow }: NamingValues, i: number): number {
+  const row = normRow[i];
+  const q = weights.Q.values[row];
+  return (100 * q) / (q + weights.Or.values[row] + weights.Ab.values[row] + weights.An.values[row]);
 }
 
 /** The name inside a TAS field, by the field's own rule. */
 function rootName(symbol: string, fieldName: string, values: NamingValues, i: number): { name: string; prefix: boolean; remark: string } {
   const rules = namingRules();
-  const { norm: { weights, reasons } } = values;
+  const { norm: { weights, reasons }, normRow } = values;
+  const row = normRow[i];
   const plain = { name: fieldName, prefix: false, remark: '' };
-  const noNorm = reasons[i] !== '';
+  const noNorm = row >= 0 && reasons[row] !== '';
   switch (symbol) {
     case 'S1':
     case 'S2':
@@ -164,18 +187,18 @@ function rootName(symbol: string, fieldName: string, values: NamingValues, i: nu
       return { ...plain, name: rules.sodic.names[symbol][sodic ? 0 : 1] };
     }
     case 'B':
-      if (noNorm) return { name: 'basalt', prefix: false, remark: `alkali or subalkali not determined: ${reasons[i]}` };
-      return weights.Ne.values[i] > 0 ? { ...plain, name: 'alkali basalt' } : { ...plain, name: 'subalkali basalt', prefix: true };
+      if (noNorm) return { name: 'basalt', prefix: false, remark: `alkali or subalkali not determined: ${reasons[row]}` };
+      return weights.Ne.values[row] > 0 ? { ...plain, name: 'alkali basalt' } : { ...plain, name: 'subalkali basalt', prefix: true };
     case 'U1':
     case 'F': {
-      if (noNorm) return { ...plain, remark: `the norm that the name rests on is not determined: ${reasons[i]}` };
-      if (weights.Ne.values[i] > rules.nephelinite.nephelineAbove) return { ...plain, name: 'nephelinite' };
-      if (weights.Ne.values[i] > 0 && weights.Ab.values[i] < rules.nephelinite.albiteBelow) return { ...plain, name: 'melanephelinite' };
+      if (noNorm) return { ...plain, remark: `the norm that the name rests on is not determined: ${reasons[row]}` };
+      if (weights.Ne.values[row] > rules.nephelinite.nephelineAbove) return { ...plain, name: 'nephelinite' };
+      if (weights.Ne.values[row] > 0 && weights.Ab.values[row] < rules.nephelinite.albiteBelow) return { ...plain, name: 'melanephelinite' };
       if (symbol === 'F') return { ...plain, remark: 'a foidite is named by its most abundant feldspathoid: see the thin section' };
-      return { ...plain, name: weights.Ol.values[i] > rules.basanite.olivineAbove ? 'basanite' : 'tephrite' };
+      return { ...plain, name: weights.Ol.values[row] > rules.basanite.olivineAbove ? 'basanite' : 'tephrite' };
     }
     case 'T': {
-      if (noNorm) return { ...plain, remark: `trachyte or trachydacite not determined: ${reasons[i]}` };
+      if (noNorm) return { ...plain, remark: `trachyte or trachydacite not determined: ${reasons[row]}` };
       const name = quartzShare(values, i) > rules.trachyte.quartzAbove ? 'trachydacite' : 'trachyte';
       if (!(agpaitic(values, i) > rules.peralkaline.above)) return { ...plain, name };
       return { ...plain, name: `${comenditic(values, i) ? 'comenditic' : 'pantelleritic'} ${name}` };

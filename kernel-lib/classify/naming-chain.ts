@@ -60,8 +60,8 @@ export function namingChain(names: RockNames, sample: string | number): NamingCh
       outcome: tas.field[i] < 0 ? `no field: ${tas.remarks[i]}` : `${tas.symbols[i]} ${tas.names[i]}, ${formatNumber(Number(tas.distance[i].toPrecision(3)))} from the nearest boundary`,
       source: 'le_bas_1986', standing: tas.scheme.standing,
     });
-    const weight = (mineral: 'Q' | 'Ne' | 'Ol' | 'Ab') => norm.weights[mineral].values[i];
-    const values = namingValues(operands, norm);
+    const weight = (mineral: 'Q' | 'Ne' | 'Ol' | 'Ab') => norm.weights[mineral].values[names.normRow[i]];
+    const values = namingValues(operands, norm, names.normRow);
     const symbol = tas.symbols[i];
     if (symbol === 'S1' || symbol === 'S2' || symbol === 'S3') add('sodic', said({ Na2O: on('Na2O'), K2O: on('K2O') }), names.roots[i]);
     if (symbol === 'B') add('basalt', said({ 'normative Ne': weight('Ne') }), names.roots[i]);

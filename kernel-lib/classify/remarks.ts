@@ -28,6 +28,9 @@ export class RemarkBook {
   }
 
   texts(): readonly string[] {
-    return Array.from(this.codes, (code) => this.known[code]);
+    const { codes, known } = this;
+    const texts = new Array<string>(codes.length);
+    for (let i = 0; i < codes.length; i++) texts[i] = known[codes[i]];
+    return texts;
   }
 }

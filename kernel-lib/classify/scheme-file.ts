@@ -21,6 +21,8 @@ export const schemeSchema = z.strictObject({
   title: text,
   kind: z.enum(['polygons', 'lines', 'thresholds', 'criteria', 'points']),
   plane: z.enum(['rectangular', 'ternary']).default('rectangular'),
+  /** A triangle with its first corner on the right: a line must be single-valued on the first axis, wherever custom puts that corner. */
+  mirrored: z.boolean().default(false),
   sources: z.array(text).min(1),
   basis: basisSchema,
   axes: z.array(axisSchema).min(2).max(3),
@@ -102,6 +104,7 @@ function checkShape(made: SchemeFile, own: boolean, fail: (why: string) => never
         fail(`kind "lines" needs lines from below upward and one field more than lines; it has ${made.lines.length} lines and ${made.fields.length} fields.`);
       }
       if (made.frame === undefined) fail('kind "lines" needs a frame { "x": [low, high], "y": [low, high] }.');
+      if (made.axes.some(({ scale }) => scale === 'log')) fail('kind "lines" takes linear axes; on a log axis give the fields as polygons, or write log10(…) as the expression.');
     },
     thresholds: () => {
       if (made.bounds.length === 0 || made.fields.length !== made.bounds.length + 1) {

@@ -2,7 +2,7 @@ import { formatNumber, showAs, type Showable, type TableCell } from '../display'
 import { cellState, derivedColumn, resolveColumn, step, type Column, type Step, type StepDetail, type Suite } from '../suite';
 import { molarMass } from '../tables';
 import { splitIron, type IronSplitOptions } from './iron-split';
-import { normMinerals, normParts, normRow, type NormMineral, type NormPart, type NormRow } from './norm-rules';
+import { normMinerals, normParts, normRow, type NormMineral, type NormPart } from './norm-rules';
 
 /** How `norm` works. */
 export interface NormOptions {
@@ -70,7 +70,7 @@ export function norm(suite: Suite, options: NormOptions = {}): Norm {
   const columns = new Map(used.map((oxide) => [oxide, resolveColumn(split, oxide)]));
   const mass = (oxide: string) => (Object.hasOwn(molarMasses, oxide) ? molarMasses[oxide] : molarMass(oxide));
   const size = suite.size;
-  const blank = <Name extends string>(names: readonly Name[]) => Object.fromEntries(names.map((name) => [name, new Float64Array(size)])) as Record<Name, Float64Array>;
+  const blank = (names: readonly string[]) => names.map(() => new Float64Array(size));
   const weights = blank(normMinerals);
   const moles = blank(normMinerals);
   const parts = blank(normParts);
@@ -108,18 +108,21 @@ export function norm(suite: Suite, options: NormOptions = {}): Norm {
         gaps.set(trouble, text);
       }
       reasons[i] = text;
-      clear(i, weights, moles, parts);
+      for (const columns of [weights, moles, parts]) clear(i, columns);
       magnesiumShare[i] = NaN;
       remainder[i] = NaN;
       continue;
     }
     incomplete += gap;
-    remainder[i] = row.remainder() * (sum === 'volatile-free' ? 100 / given : 1);
-    write(i, row, sum === 'volatile-free' ? 100 / given : 1, weights, moles, parts);
+    const scale = sum === 'volatile-free' ? 100 / given : 1;
+    remainder[i] = row.remainder() * scale;
+    write(i, row.weights, scale, weights);
+    write(i, row.moles, scale, moles);
+    write(i, row.parts, scale, parts);
     magnesiumShare[i] = row.magnesiumShare();
   }
-  const asColumns = <Name extends string>(from: Record<Name, Float64Array>, unit: string, label: (name: Name) => string) =>
-    Object.fromEntries(Object.entries<Float64Array>(from).map(([name, each]) => [name, derivedColumn(label(name as Name), each, unit)])) as Record<Name, Column>;
+  const asColumns = <Name extends string>(names: readonly Name[], from: readonly Float64Array[], unit: string, label: string) =>
+    Object.fromEntries(names.map((name, j) => [name, derivedColumn(`${label} ${name}`, from[j], unit)])) as Record<Name, Column>;
   const without = reasons.reduce((count, reason) => count + (reason === '' ? 0 : 1), 0);
   const because = step(
     'norm',
@@ -130,22 +133,19 @@ export function norm(suite: Suite, options: NormOptions = {}): Norm {
     },
   );
   const result = {
-    suite, weights: asColumns(weights, 'wt%', (name) => `norm ${name}`), moles: asColumns(moles, 'mol', (name) => `norm moles ${name}`),
-    parts: asColumns(parts, 'wt%', (name) => `norm ${name}`), magnesiumShare, oxideSum, remainder, reasons, lineage: [...split.lineage, because],
+    suite, weights: asColumns(normMinerals, weights, 'wt%', 'norm'), moles: asColumns(normMinerals, moles, 'mol', 'norm moles'),
+    parts: asColumns(normParts, parts, 'wt%', 'norm'), magnesiumShare, oxideSum, remainder, reasons, lineage: [...split.lineage, because],
   };
   return showAs(result, normTable);
 }
 
-function write(i: number, row: NormRow, scale: number, weights: Record<NormMineral, Float64Array>, moles: Record<NormMineral, Float64Array>, parts: Record<NormPart, Float64Array>): void {
-  for (let j = 0; j < normMinerals.length; j++) {
-    weights[normMinerals[j]][i] = row.weights[j] * scale;
-    moles[normMinerals[j]][i] = row.moles[j] * scale;
-  }
-  for (let j = 0; j < normParts.length; j++) parts[normParts[j]][i] = row.parts[j] * scale;
+/** Copies the numbers of one row into place j of every column. */
+function write(i: number, from: Float64Array, scale: number, to: readonly Float64Array[]): void {
+  for (let j = 0; j < to.length; j++) to[j][i] = from[j] * scale;
 }
 
-function clear(i: number, ...all: readonly Readonly<Record<string, Float64Array>>[]): void {
-  for (const columns of all) for (const name in columns) columns[name][i] = NaN;
+function clear(i: number, to: readonly Float64Array[]): void {
+  for (let j = 0; j < to.length; j++) to[j][i] = NaN;
 }
 
 const rowsShown = 60;

@@ -1,6 +1,9 @@
 import { cellState, column, resolveColumn, step, type Column, type Suite } from '../suite';
 import { massFactor } from '../tables';
 
+// Read once: looked up through a module in a hot loop it costs as much as the loop.
+const { derived, missing } = cellState;
+
 /** How the total iron of each row was found; one count for each way. */
 export interface TotalIronCounts {
   /** A total was reported (FeOT or Fe2O3T). */
@@ -30,13 +33,13 @@ export function totalIron(suite: Suite): { readonly column: Column; readonly cou
   const toFerrous = massFactor('Fe2O3', 'FeO');
   const size = suite.size;
   const values = new Float64Array(size).fill(NaN);
-  const states = new Uint8Array(size).fill(cellState.missing);
+  const states = new Uint8Array(size).fill(missing);
   const limits = total?.limits === undefined ? undefined : new Float64Array(size).fill(NaN);
   const sigma = [total, ferrous, ferric].some((each) => each?.sigma !== undefined) ? new Float64Array(size).fill(NaN) : undefined;
   const usable = (each: Column | undefined, i: number) => each !== undefined && Number.isFinite(each.values[i]);
   const counts = { reportedTotal: 0, summed: 0, ferricAlone: 0, ferrousAlone: 0, none: 0 };
   for (let i = 0; i < size; i++) {
-    if (total !== undefined && total.states[i] !== cellState.missing) {
+    if (total !== undefined && total.states[i] !== missing) {
       values[i] = total.values[i];
       states[i] = total.states[i];
       if (limits !== undefined) limits[i] = total.limits![i];
@@ -51,7 +54,7 @@ export function totalIron(suite: Suite): { readonly column: Column; readonly cou
       continue;
     }
     values[i] = (hasFerrous ? ferrous!.values[i] : 0) + (hasFerric ? ferric!.values[i] * toFerrous : 0);
-    states[i] = cellState.derived;
+    states[i] = derived;
     if (sigma !== undefined) {
       sigma[i] = Math.hypot(hasFerrous ? (ferrous!.sigma?.[i] ?? NaN) : 0, hasFerric ? (ferric!.sigma?.[i] ?? NaN) * toFerrous : 0);
     }

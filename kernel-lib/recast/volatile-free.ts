@@ -2,6 +2,9 @@ import { cellState, column, derivedColumn, resolveColumn, step, suiteOf, type Co
 import { massFactor } from '../tables';
 import { totalIron } from './total-iron';
 
+// Read once: looked up through a module in a hot loop it costs as much as the loop.
+const { derived, measured, missing } = cellState;
+
 /** How iron enters the volatile-free sum. */
 export type IronBasis = 'total-as-FeO' | 'total-as-Fe2O3' | 'measured';
 
@@ -59,7 +62,7 @@ export function volatileFree(suite: Suite, options: { readonly iron?: IronBasis 
     for (let i = 0; i < size; i++) {
       if (Number.isFinite(values[i])) sum[i] += values[i];
       else if (needed) usable[i] = 0;
-      else if (!isIron && states[i] === cellState.missing) gaps[i] = 1;
+      else if (!isIron && states[i] === missing) gaps[i] = 1;
     }
   }
   for (let i = 0; i < size; i++) {
@@ -95,7 +98,7 @@ function ironColumns(suite: Suite, allIron: Column, iron: IronBasis): readonly (
   const ferric = suite.columns.get('Fe2O3');
   const both = (i: number) => Number.isFinite(ferrous?.values[i]) && Number.isFinite(ferric?.values[i]);
   const where = (from: Column, symbol: string, keep: (i: number) => boolean): Column => {
-    const states = from.states.map((state, i) => (keep(i) ? state : cellState.missing));
+    const states = from.states.map((state, i) => (keep(i) ? state : missing));
     const blank = (values: Float64Array | undefined) => values?.map((value, i) => (keep(i) ? value : NaN));
     return column({ symbol, values: blank(from.values)!, states, limits: blank(from.limits), sigma: blank(from.sigma) });
   };
@@ -126,7 +129,7 @@ function recastColumn(part: Column, sum: Float64Array, parts: ReadonlyMap<string
     const factor = 100 / sum[i];
     values[i] = part.values[i] * factor;
     if (limits !== undefined) limits[i] = part.limits![i] * factor;
-    states[i] = Number.isNaN(factor) ? cellState.missing : part.states[i] === cellState.measured ? cellState.derived : part.states[i];
+    states[i] = Number.isNaN(factor) ? missing : part.states[i] === measured ? derived : part.states[i];
   }
   if (sigma !== undefined) {
     // x' = 100·x/S: the error of x enters both x and S, the errors of the other oxides only S.

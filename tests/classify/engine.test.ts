@@ -87,8 +87,9 @@ describe('lines', () => {
     expect(symbol('iron-enrichment', { SiO2: 55.5, FeOT: 8, MgO: 4 }).symbols[0]).toBe('TH');
   });
 
-  it('AFM gives no answer beyond the ends of the curve', () => {
-    expect(symbol('afm', { Na2O: 4, K2O: 2, FeOT: 1, MgO: 0.5 }).remarks[0]).toMatch(/Na₂O \+ K₂O is not within 15–58.8/);
+  it('AFM gives no answer beyond the ends of the curve (5 and 50 % MgO of the three: Irvine & Baragar 1971)', () => {
+    expect(symbol('afm', { Na2O: 6, K2O: 3, FeOT: 2, MgO: 0.5 }).remarks[0]).toMatch(/MgO is not within 5–50/);
+    expect(symbol('afm', { Na2O: 1, K2O: 0.5, FeOT: 8, MgO: 12 }).remarks[0]).toMatch(/MgO is not within 5–50/);
     expect(symbol('afm', { Na2O: 3, K2O: 1, FeOT: 10, MgO: 4 }).symbols[0]).toBe('TH');
     expect(symbol('afm', { Na2O: 4, K2O: 2, FeOT: 6, MgO: 4 }).symbols[0]).toBe('CA');
     expect(symbol('afm-kuno', { Na2O: 8, K2O: 3, FeOT: 4, MgO: 1 }).symbols[0]).not.toBe('');
