@@ -26,7 +26,7 @@ export function buildFields(made: SchemeFile, origin: string, fail: Fail): Schem
     ...each, basis: each.basis ?? made.basis, text: each.text ?? conditionText(each),
   });
   return {
-    key: made.key, title: made.title, kind: made.kind, plane: made.plane, sources: made.sources, basis: made.basis, axes: made.axes,
+    key: made.key, title: made.title, kind: made.kind, plane: made.plane, mirrored: made.mirrored, sources: made.sources, basis: made.basis, axes: made.axes,
     frame, window, fields, lines, points, bounds: made.bounds, criteria: made.criteria.map(condition), beyond: made.beyond,
     conditions: made.conditions.map(condition), limits: made.limits, standing: made.standing, standingNote: made.standingNote, origin,
   };

@@ -82,6 +82,8 @@ export interface Scheme {
   readonly title: string;
   readonly kind: SchemeKind;
   readonly plane: 'rectangular' | 'ternary';
+  /** A triangle is drawn with its first corner on the right instead of the left. */
+  readonly mirrored: boolean;
   /** Source keys of the bibliography. */
   readonly sources: readonly string[];
   readonly basis: SchemeBasis;

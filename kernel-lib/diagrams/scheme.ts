@@ -65,8 +65,8 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
   if (x === undefined || y === undefined) throw new RangeError(`${who}: no sample has what the axes of "${chosen.key}" need: ${dressText(missingAxes(suite, chosen, verdict))}.`);
   const isTernary = chosen.plane === 'ternary';
   const titles = chosen.axes.map((axis) => drawable(bracketed(axis.title, axis.unit, chosen.basis === 'volatile-free' && axis.unit === 'wt %' ? 'volatile-free' : '')));
-  const place = (point: Point): Point => (isTernary ? ternaryPoint(...point) : point);
-  const columns = isTernary ? ternaryColumns(x, y) : options.errors === undefined || options.errors === 'none' ? { x, y } : withSigma(suite, chosen, x, y, iron);
+  const place = ([x, y]: Point): Point => (isTernary ? ternaryPoint(chosen.mirrored ? 100 - x - y : x, y) : [x, y]);
+  const columns = isTernary ? ternaryColumns(x, y, place) : options.errors === undefined || options.errors === 'none' ? { x, y } : withSigma(suite, chosen, x, y, iron);
   const tooltips = new Map<string, ArrayLike<string>>([['verdict', verdictTexts(verdict)]]);
   if (verdict.probability !== undefined) tooltips.set('how sure', Array.from({ length: suite.size }, (_, i) => probabilityText(verdict, i)));
   const set = samplePoints(who, suite, {
@@ -83,6 +83,7 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
   const edges = (published: boolean) => chosen.lines.filter((line) => line.published === published).map(({ points }) => points.map(place));
   const letters = words.corners;
   const corners = isTernary ? (chosen.axes.map((axis, i): TernaryCorner => (letters === undefined ? { name: drawable(axis.title) } : { name: letters[i], meaning: drawable(axis.title) })) as unknown as [TernaryCorner, TernaryCorner, TernaryCorner]) : undefined;
+  if (chosen.mirrored) corners?.reverse();
   const layers = [
     ...(corners === undefined ? [] : [ternaryLayer(corners)]),
     // Lines that divide no fields say themselves what they are.
@@ -143,10 +144,10 @@ function verdictTexts({ names, remarks }: SchemeVerdict): string[] {
   return names.map((name, i) => (name === '' ? `not determined: ${dressText(remarks[i])}` : remarks[i] === '' ? name : `${name} (${dressText(remarks[i])})`));
 }
 
-function ternaryColumns(first: Column, second: Column): { x: Column; y: Column } {
+function ternaryColumns(first: Column, second: Column, place: (point: Point) => Point): { x: Column; y: Column } {
   const x = new Float64Array(first.values.length);
   const y = new Float64Array(first.values.length);
-  for (let i = 0; i < x.length; i++) [x[i], y[i]] = ternaryPoint(first.values[i], second.values[i]);
+  for (let i = 0; i < x.length; i++) [x[i], y[i]] = place([first.values[i], second.values[i]]);
   return { x: { ...first, values: x }, y: { ...second, values: y } };
 }
 
@@ -174,9 +175,16 @@ function schemeFrame(
     const whole = chosen.window[side];
     // A little more than the samples, so that their fields can be told; never beyond the frame that fields are closed on.
     const leastSpan = scale === 'log' ? Math.max(4, (whole[1] / whole[0]) ** 0.35) : (whole[1] - whole[0]) * 0.3;
-    const around = () => windowAround([values, set.points[side], ...paths.map(({ points }) => points.map((point) => point[at]))], { scale, whole, leastSpan, within: chosen.frame[side] });
+    const within = mostlyInside(values, whole) ? whole : chosen.frame[side];
+    const around = () => windowAround([values, set.points[side], ...paths.map(({ points }) => points.map((point) => point[at]))], { scale, whole, leastSpan, within });
     const limits = typeof window === 'object' ? (window[side] ?? around()) : window === 'whole' ? whole : around();
     return { title: titles[at], scale, window: limits };
   };
   return { width: width ?? words.width ?? 500, height: height ?? words.height ?? 380, x: axis('x', xs), y: axis('y', ys) };
+}
+
+/** Of many samples, a few far outliers do not squeeze the rest: where 95 % lie in the usual window, it bounds the diagram, and the rest are counted. */
+function mostlyInside(values: Float64Array, [low, high]: readonly [number, number]): boolean {
+  const known = values.filter(Number.isFinite);
+  return known.length >= 100 && known.filter((value) => value >= low && value <= high).length >= 0.95 * known.length;
 }

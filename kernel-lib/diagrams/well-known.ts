@@ -51,5 +51,5 @@ export function ironEnrichment(suite: Suite, options: SchemeDiagramOptions = {})
  * @example diagrams.afm(suite, { group: 'volcano' })
  */
 export function afm(suite: Suite, options: SchemeDiagramOptions = {}): Diagram {
-  return schemeDiagram(suite, 'afm', options, { who: 'afm', corners: ['A', 'F', 'M'], width: 460 });
+  return schemeDiagram(suite, 'afm', options, { who: 'afm', corners: ['M', 'F', 'A'], width: 460 });
 }
