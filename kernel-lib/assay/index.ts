@@ -7,3 +7,4 @@ export type { ImportedColumn, ImportReport, SheetSummary } from './report';
 export * from './sheet-grids';
 export { writeAssays } from './write-assays';
 export { writeTable, type TableColumn, type TableLabels } from './write-table';
+export * from './quality';
