@@ -17,16 +17,19 @@ export interface BoundedSolution {
   readonly chiSquare: number;
 }
 
-/** Iterations of one round: the solver itself stops only at a perfect fit, so it runs in short rounds until nothing is gained. */
-const iterationsOfRound = 6;
-const mostRounds = 16;
+/** Iterations of one round: the solver itself stops only at a perfect fit, so it runs in short rounds until nothing is to be gained. */
+const iterationsOfRound = 5;
+const mostRounds = 24;
 /** In units of χ²: far below what an interval can feel. */
 const worthwhileGain = 1e-3;
+/** Damping of a round: raised when a round gains nothing although the slope says it should, as happens when a step is cut off at a bound. */
+const dampings = [0.01, 30, 3000, 300_000] as const;
 /** Parameters are scaled to about 1 by the caller, so one absolute step serves the difference quotient. */
 const differenceStep = 1e-4;
 
 /**
- * Weighted least squares within bounds, by Levenberg and Marquardt's method, from one start.
+ * Weighted least squares within bounds, by Levenberg and Marquardt's method, from one start. A parameter at a bound that the slope presses
+ * against is held there for a round, so that the others can move along the bound.
  *
  * @returns the best parameters found and their χ²; χ² is Infinity when the model could not be evaluated at the start
  */
@@ -35,38 +38,80 @@ export function fitWithinBounds(problem: BoundedProblem, start: readonly number[
   const count = observed.length;
   const x = Array.from({ length: count }, (_, i) => i);
   const out = new Float64Array(count);
-  // The solver evaluates one parameter vector at every datum in turn: predict once a vector. Data and predictions are divided by σ here and
-  // the solver gets unit weights, because its own weights enter its step the wrong way round (as σ² instead of 1/σ², version 4.1.3).
-  const parameterised = (parameters: number[]) => {
-    const predicted = new Float64Array(count);
-    predict(parameters, predicted);
-    for (let i = 0; i < count; i++) predicted[i] /= sigma[i];
-    return (i: number) => predicted[i];
-  };
+  const residual = new Float64Array(count);
+  // The solver gets data and predictions divided by σ, and unit weights, because its own weights enter its step the wrong way round (as σ²
+  // instead of 1/σ², version 4.1.3).
   const whitened = observed.map((value, i) => value / sigma[i]);
   const chiSquareOf = (parameters: ArrayLike<number>): number => {
     predict(parameters, out);
     let sum = 0;
-    for (let i = 0; i < count; i++) sum += ((observed[i] - out[i]) / sigma[i]) ** 2;
+    for (let i = 0; i < count; i++) {
+      residual[i] = (observed[i] - out[i]) / sigma[i];
+      sum += residual[i] * residual[i];
+    }
     return Number.isNaN(sum) ? Infinity : sum;
   };
   let parameters = start.map((value, k) => Math.min(upper[k], Math.max(lower[k], value)));
   let chiSquare = chiSquareOf(parameters);
-  if (!Number.isFinite(chiSquare)) return { parameters, chiSquare };
-  for (let round = 0; round < mostRounds; round++) {
-    const before = chiSquare;
+  let level = 0;
+  for (let round = 0; round < mostRounds && Number.isFinite(chiSquare); round++) {
+    const free = worthMoving(problem, parameters, chiSquareOf, residual);
+    if (free.length === 0) break;
+    const whole = parameters.slice();
+    // The solver evaluates one parameter vector at every datum in turn: predict once a vector.
+    const parameterised = (moved: number[]) => {
+      for (let f = 0; f < free.length; f++) whole[free[f]] = moved[f];
+      const predicted = new Float64Array(count);
+      predict(whole, predicted);
+      for (let i = 0; i < count; i++) predicted[i] /= sigma[i];
+      return (i: number) => predicted[i];
+    };
     const found = levenbergMarquardt({ x, y: whitened }, parameterised, {
-      initialValues: parameters.slice(), weights: 1, minValues: lower, maxValues: upper, gradientDifference: differenceStep,
-      damping: 0.01, maxIterations: iterationsOfRound, errorTolerance: 1e-9,
+      initialValues: free.map((k) => parameters[k]), weights: 1, minValues: free.map((k) => lower[k]), maxValues: free.map((k) => upper[k]),
+      gradientDifference: differenceStep, damping: dampings[level], maxIterations: iterationsOfRound, errorTolerance: 1e-9,
     });
-    const reached = chiSquareOf(found.parameterValues);
+    const moved = parameters.slice();
+    free.forEach((k, f) => (moved[k] = found.parameterValues[f]));
+    const reached = chiSquareOf(moved);
     if (reached < chiSquare) {
       chiSquare = reached;
-      parameters = found.parameterValues;
-    }
-    if (before - chiSquare < worthwhileGain) break;
+      parameters = moved;
+      level = 0;
+    } else if (++level === dampings.length) break;
   }
   return { parameters, chiSquare };
+}
+
+/**
+ * The parameters that are free to move, or none when no move is worth it: each is asked what χ² it could gain by itself, slope² over four
+ * times the curvature; one at a bound that presses outward is not free.
+ */
+function worthMoving({ predict, sigma, lower, upper }: BoundedProblem, at: readonly number[], chiSquareOf: (parameters: ArrayLike<number>) => number, residual: Float64Array): number[] {
+  chiSquareOf(at);
+  const here = new Float64Array(sigma.length);
+  const there = new Float64Array(sigma.length);
+  predict(at, here);
+  const free: number[] = [];
+  let gain = 0;
+  const shifted = at.slice();
+  for (let k = 0; k < at.length; k++) {
+    const by = at[k] + differenceStep > upper[k] ? -differenceStep : differenceStep;
+    shifted[k] = at[k] + by;
+    predict(shifted, there);
+    shifted[k] = at[k];
+    let slope = 0;
+    let curvature = 0;
+    for (let i = 0; i < here.length; i++) {
+      const change = (there[i] - here[i]) / by / sigma[i];
+      slope += residual[i] * change;
+      curvature += change * change;
+    }
+    // χ² falls where residual · change is positive.
+    if ((at[k] <= lower[k] && slope < 0) || (at[k] >= upper[k] && slope > 0) || !(curvature > 0)) continue;
+    free.push(k);
+    gain = Math.max(gain, (slope * slope) / curvature);
+  }
+  return gain < worthwhileGain ? [] : free;
 }
 
 /**

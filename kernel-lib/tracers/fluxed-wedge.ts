@@ -97,6 +97,9 @@ export function checkedWedgeOptions(caller: string, options: FluxedWedgeOptions)
   return { facies, style, endMembers };
 }
 
+const leastD = 1e-9;
+const leastPpm = 1e-12;
+
 /** The model made ready for inner loops: one object a fit, no allocation an evaluation. Parameters in the order of `wedgeParameterNames`. */
 export class WedgeModel {
   private readonly mantle: Float64Array;
@@ -130,7 +133,9 @@ export class WedgeModel {
       const left = m > 0 ? this.mantle[e] * fractionalResidue(this.startD[e], P, m) : this.mantle[e];
       const D = m > 0 ? Math.max(0, this.startD[e] - P * m) / (1 - m) : this.startD[e];
       const source = (1 - x - y) * left + x * this.fluid[e] + y * this.sediment[e];
-      out[e] = Math.log(source * (this.batch ? batchMelt(D, P, F) : pooledFractionalMelt(Math.max(D, 1e-9), P, F)));
+      // An element that prior melting took away to nothing has a logarithm all the same, far below any analysis.
+      const concentration = source * (this.batch ? batchMelt(D, P, F) : pooledFractionalMelt(Math.max(D, leastD), P, F));
+      out[e] = Math.log(concentration > leastPpm ? concentration : leastPpm);
     }
   }
 

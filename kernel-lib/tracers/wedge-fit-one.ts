@@ -86,6 +86,8 @@ export interface BestWedge extends BoundedSolution {
 
 /** Typical sizes: the solver sees parameters divided by these (melt on its logarithm). */
 const scaleOf: Readonly<Record<WedgeParameterName, number>> = { melt: 1, fluid: 0.01, sediment: 0.01, priorMelt: 0.02 };
+/** Random looks over the whole box; the best of them are where the solver starts. */
+const looks = 400;
 const starts = 12;
 /** The 95 % point of χ² with one degree of freedom: minima closer than this cannot be told apart. */
 const asGood = 3.84;
@@ -119,12 +121,17 @@ export function prepareWedge(observation: WedgeObservation, setup: WedgeFitSetup
 export function bestWedge({ observation, free, problem, random }: PreparedWedge): BestWedge | undefined {
   if (observation.elements.length <= free.length) return undefined;
   const { lower, upper } = problem;
-  const solutions: BoundedSolution[] = [];
-  for (let s = 0; s < starts; s++) {
-    // Squared, so that the starts crowd towards small additions, where arc magmas are.
-    const start = free.map((name, k) => lower[k] + (upper[k] - lower[k]) * (name === 'melt' ? 0.3 + 0.7 * random.uniform() : random.uniform() ** 2));
-    solutions.push(fitWithinBounds(problem, start));
-  }
+  const out = new Float64Array(observation.elements.length);
+  const looked = Array.from({ length: looks }, () => {
+    // Squared, so that the looks crowd towards small additions, where arc magmas are.
+    const at = free.map((name, k) => lower[k] + (upper[k] - lower[k]) * (name === 'melt' ? random.uniform() : random.uniform() ** 2));
+    problem.predict(at, out);
+    let chiSquare = 0;
+    for (let i = 0; i < out.length; i++) chiSquare += ((problem.observed[i] - out[i]) / problem.sigma[i]) ** 2;
+    return { at, chiSquare: Number.isFinite(chiSquare) ? chiSquare : Number.MAX_VALUE };
+  });
+  looked.sort((p, q) => p.chiSquare - q.chiSquare);
+  const solutions = looked.slice(0, starts).map(({ at }) => fitWithinBounds(problem, at));
   solutions.sort((a, b) => a.chiSquare - b.chiSquare);
   const best = solutions[0];
   return { ...best, rivals: solutions.filter(({ chiSquare }) => chiSquare - best.chiSquare < asGood), spread: linearSigma(problem, best.parameters) };
