@@ -1,7 +1,7 @@
 #!/usr/bin/env node
 // What the notebook tests need besides Node: a Python environment of their own with Jupyter in it, our kernel and the stock tslab kernel
-// in that environment, and a Chromium. All of it stays in the git-ignored folder .artifacts/, except Chromium, which Debian's packages
-// bring where it is missing.
+// in that environment, a Chromium and pandoc. All of it stays in the git-ignored folder .artifacts/, except the last two, which
+// Debian's packages bring where they are missing.
 import { execFileSync } from 'node:child_process';
 import { createHash } from 'node:crypto';
 import { accessSync, constants, existsSync, mkdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
@@ -61,6 +61,8 @@ if (!existsSync(stamp) || readFileSync(stamp, 'utf8') !== wanted || !tried(pytho
 }
 
 if (['chromium', 'chromium-browser', 'google-chrome'].every((name) => onPath(name) === undefined)) debian('chromium');
+// For nbconvert's LaTeX.
+if (onPath('pandoc') === undefined) debian('pandoc');
 
 run(process.execPath, [join(root, 'kernel-lib', 'dist', 'kernel', 'cli.js'), 'kernel', 'install', '--venv', venv], { stdio: ['ignore', 'ignore', 'inherit'] });
 const stock = join(venv, 'share', 'jupyter', 'kernels', 'tslab');

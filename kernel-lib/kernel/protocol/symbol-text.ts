@@ -15,9 +15,17 @@ export function symbolText({ signature, documentation, tags }: SymbolInfo): { pl
     markdown.push('');
   }
   for (const { name, text } of tags) {
-    const title = name === 'param' ? '' : `${tagTitles[name] ?? name}: `;
-    plain.push(`${title}${text}`);
-    markdown.push(name === 'example' ? `**Example**\n\`\`\`typescript\n${text}\n\`\`\`` : `- ${title === '' ? '' : `**${title.slice(0, -2)}** `}${text}`);
+    const title = tagTitles[name] ?? name;
+    if (name === 'param') {
+      plain.push(text);
+      markdown.push(`- ${text.replace(/^\S+/, '`$&`')}`);
+    } else if (name === 'example') {
+      plain.push('', `${title}:`, text);
+      markdown.push('', `**${title}**`, '', '```typescript', text, '```');
+    } else {
+      plain.push(`${title}: ${text}`);
+      markdown.push(`- **${title}** ${text}`);
+    }
   }
   return { plain: plain.join('\n'), markdown: markdown.join('\n') };
 }
