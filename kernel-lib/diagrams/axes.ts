@@ -53,6 +53,10 @@ export function axisSpec(axis: Axis, length: number, side: 'x' | 'y'): VegaSpec 
       ticks: side === 'x', tickSize: 4,
     };
   }
+  if (axis.ticks !== undefined && axis.tickNames !== undefined) {
+    const names = Object.fromEntries(axis.ticks.map((tick, i) => [String(tick), axis.tickNames![i]]));
+    return { ...common, values: [...axis.ticks], labelExpr: `${JSON.stringify(names)}[toString(datum.value)] || ''`, labelOverlap: true };
+  }
   if (axis.ticks !== undefined) return { ...common, values: [...axis.ticks] };
   if (axis.scale !== 'log') return { ...common, tickCount: Math.max(2, Math.round(length / (side === 'x' ? 75 : 55))), labelOverlap: true };
   const { all, labelled } = logTicks(axis.window, length);

@@ -12,6 +12,8 @@ export interface Axis {
   readonly names?: readonly string[];
   /** Exact places of the ticks, instead of round numbers. */
   readonly ticks?: readonly number[];
+  /** Texts of the ticks, one each of `ticks`, instead of their numbers. */
+  readonly tickNames?: readonly string[];
   /** `false` draws no axis at all. */
   readonly shown?: boolean;
   /** Faint lines across the diagram at each tick (default false). */
@@ -54,6 +56,11 @@ export function fromPixels(frame: Frame, [x, y]: Point): Point {
 /** The frame's own rectangle in pixels. */
 export function frameBox({ width, height }: Frame): Box {
   return { left: 0, right: width, top: 0, bottom: height };
+}
+
+/** Whether a point can be drawn at all: both values known, and positive where the axis is logarithmic. */
+export function isDrawable({ x, y }: Frame, px: number, py: number): boolean {
+  return Number.isFinite(px) && Number.isFinite(py) && (x.scale !== 'log' || px > 0) && (y.scale !== 'log' || py > 0);
 }
 
 export function inWindow({ x, y }: Frame, px: number, py: number): boolean {
@@ -113,8 +120,8 @@ export function windowAround(values: Iterable<ArrayLike<number>>, hints: WindowH
   if (low > high) return whole ?? (scale === 'log' ? [1, 100] : [0, 1]);
   if (scale === 'log') return logWindow(low, high, hints);
   const size = Math.max(Math.abs(low), Math.abs(high));
-  // Next to nothing is nothing: a step smaller than the smallest number cannot be drawn.
-  const least = hints.leastSpan ?? (size > 1e-200 ? size * 0.2 : 1);
+  // Isotope ratios differ in the fifth digit; less than that is one value, which gets a fifth of itself. Next to nothing is nothing.
+  const least = hints.leastSpan ?? (size < 1e-200 ? 1 : high - low > size * 1e-6 ? 0 : size * 0.2);
   const span = Math.max(high - low, least);
   const middle = (low + high) / 2;
   const step = roundStep(span * 1.12, 6) / 2;

@@ -38,7 +38,7 @@ export function groupScale(title: string, names: readonly string[], other?: stri
     title, names, colourOf,
     colours: { domain: names, range: names.map(colourOf) },
     shapes: { domain: names, range: names.map(shapeOf) },
-    legend: { title, symbolSize: 70, symbolStrokeWidth: 0, symbolOpacity: 1, ...(names.length > 20 ? { columns: 2 } : {}) },
+    legend: { title, symbolSize: 70, symbolStrokeWidth: 0, symbolOpacity: 1, symbolLimit: 0, ...(names.length > 20 ? { columns: 2 } : {}) },
   };
 }
 

@@ -3,7 +3,7 @@ import { cellState, step, type Suite } from '../suite';
 import type { Diagram } from './diagram';
 import { figure, legendRoom } from './figure';
 import { windowAround, type Frame, type WindowChoice } from './frame';
-import { groupScale, groupSuite } from './groups';
+import { groupSuite } from './groups';
 import { mostMarkedCurves, seriesLayer, type SeriesShape } from './layers/series';
 import { alteredSamples, checkSampleOptions, type SampleOptions } from './sample-points';
 
@@ -61,12 +61,14 @@ function patternDiagram(who: string, suite: Suite, options: PatternDiagramOption
   if (curves !== 'samples' && curves !== 'groups') throw new RangeError(`${who}: curves must be "samples" or "groups", not "${String(curves)}".`);
   if (curves === 'groups' && group === undefined) throw new RangeError(`${who}: curves "groups" needs a label to group by, e.g. group: "volcano".`);
   const byGroup = curves === 'groups';
-  const table = pattern(suite, { order, ...defined({ reference, band, caesiumAndLead, group: byGroup ? group : undefined }) });
-  const grouping = group === undefined || suite.size === 0 ? undefined : byGroup ? undefined : groupSuite(suite, group);
-  const groups = byGroup ? groupScale(group!, table.names.map(nameOfGroup)) : grouping?.scale;
+  const grouping = group === undefined || suite.size === 0 ? undefined : groupSuite(suite, group);
+  // Groups are pooled as on every other figure, so that a group has one colour throughout.
+  const grouped = byGroup && grouping !== undefined ? suite.withLabels({ [group!]: Array.from(grouping.index, (k) => grouping.scale.names[k]) }) : suite;
+  const table = pattern(grouped, { order, ...defined({ reference, band, caesiumAndLead, group: byGroup ? group : undefined }) });
+  const groups = grouping?.scale;
   const open = byGroup ? undefined : alteredSamples(suite, options.altered);
   const series = table.names.map((name, i): SeriesShape => {
-    if (byGroup) return seriesOf(table, i, nameOfGroup(name), nameOfGroup(name));
+    if (byGroup) return seriesOf(table, i, name, name);
     const made = seriesOf(table, i, name, grouping === undefined ? undefined : grouping.scale.names[grouping.index[i]]);
     return open?.[i] === 1 ? { ...made, open: true } : made;
   });
@@ -92,6 +94,7 @@ function patternDiagram(who: string, suite: Suite, options: PatternDiagramOption
       `Normalised to ${table.referenceName}.`,
       ...(byGroup ? [`Curves are medians by ${group}; bands span quantiles ${table.band[0]} to ${table.band[1]}.`] : []),
       ...caesiumAndLeadNote(table, caesiumAndLead),
+      ...(byGroup && grouping !== undefined && grouping.pooled > 0 ? [`The ${grouping.pooled} smallest groups are taken as one.`] : []),
       ...(hasGap(series) ? ['Dotted: across elements that were not measured.'] : []),
       ...(open?.includes(1) && series.length <= mostMarkedCurves ? ['Open symbols: flagged as altered.'] : []),
       ...(hasLimits ? ['Arrows: below detection, drawn at the limit.'] : []),
@@ -108,8 +111,6 @@ function patternDiagram(who: string, suite: Suite, options: PatternDiagramOption
 function defined<Options extends object>(options: Options): { [Key in keyof Options]?: NonNullable<Options[Key]> } {
   return Object.fromEntries(Object.entries(options).filter(([, value]) => value !== undefined)) as { [Key in keyof Options]?: NonNullable<Options[Key]> };
 }
-
-const nameOfGroup = (name: string) => (name.trim() === '' ? 'not given' : name);
 
 /** `C1 chondrite (Sun & McDonough 1989)` → `C1 chondrite`: the work stands in the caption. */
 function shortReference(name: string): string {

@@ -111,6 +111,11 @@ export class LabelPlacer {
     return this.sums[bottom * width + right] - this.sums[top * width + right] - this.sums[bottom * width + left] + this.sums[top * width + left];
   }
 
+  /** Whether nothing solid, and no line, stands in a box of the frame. */
+  isFreeBox(box: Box): boolean {
+    return this.isFree(box);
+  }
+
   private isFree(box: Box): boolean {
     const { area } = this;
     if (box.left < area.left || box.right > area.right || box.top < area.top || box.bottom > area.bottom) return false;

@@ -78,8 +78,8 @@ const notAltered = /^(|-|none|no|fresh|unaltered|false|0)$/i;
 /** 1 for each sample that is flagged as altered; undefined where nothing says so. */
 export function alteredSamples(suite: Suite, altered: SampleOptions['altered']): Uint8Array | undefined {
   if (altered !== undefined && typeof altered !== 'string') return Uint8Array.from(altered, (flag) => (flag ? 1 : 0));
-  if (altered === undefined && !suite.labels.has('alteration')) return undefined;
-  return Uint8Array.from(suite.label(altered ?? 'alteration'), (text) => (notAltered.test(text.trim()) ? 0 : 1));
+  const label = altered ?? [...suite.labels.keys()].find((name) => name.toLowerCase() === 'alteration');
+  return label === undefined ? undefined : Uint8Array.from(suite.label(label), (text) => (notAltered.test(text.trim()) ? 0 : 1));
 }
 
 /**

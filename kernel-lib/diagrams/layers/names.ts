@@ -1,5 +1,5 @@
 import { labelUnit, type Layer } from '../layer';
-import { inWindow, toPixels } from '../frame';
+import { inWindow, isDrawable, toPixels } from '../frame';
 import { textSize } from '../theme';
 import type { SamplePoints } from './samples';
 
@@ -11,7 +11,7 @@ export function namesLayer({ x, y }: SamplePoints, samples: readonly string[], w
     draw({ frame, placer }) {
       const style = { size: textSize.note - 1 };
       const labels = samples.flatMap((name, i) => {
-        if ((asked !== undefined && !asked.has(name)) || !Number.isFinite(x[i]) || !Number.isFinite(y[i]) || !inWindow(frame, x[i], y[i])) return [];
+        if ((asked !== undefined && !asked.has(name)) || !isDrawable(frame, x[i], y[i]) || !inWindow(frame, x[i], y[i])) return [];
         return placer.placeBeside([toPixels(frame, [x[i], y[i]])], [name], style, 5) ?? [];
       });
       return labels.length === 0 ? [] : [labelUnit(frame, labels, { fontSize: style.size })];

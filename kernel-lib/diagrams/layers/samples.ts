@@ -1,6 +1,6 @@
 import { lineRows, specNumber, unit, type Canvas, type Layer } from '../layer';
 import { positionChannels } from '../axes';
-import { fromPixels, toPixels, type Frame, type VegaSpec } from '../frame';
+import { fromPixels, isDrawable, toPixels, type Frame, type VegaSpec } from '../frame';
 import type { Point } from '../geometry';
 import type { GroupScale } from '../groups';
 import { groupColours, ink, markerArea } from '../theme';
@@ -52,7 +52,7 @@ export function samplesLayer(points: SamplePoints, options: SamplesOptions = {})
   return {
     claim({ frame, placer }) {
       for (let i = 0; i < x.length; i++) {
-        if (!Number.isFinite(x[i]) || !Number.isFinite(y[i])) continue;
+        if (!isDrawable(frame, x[i], y[i])) continue;
         const [px, py] = toPixels(frame, [x[i], y[i]]);
         placer.avoidPoint(px, py);
       }
@@ -67,7 +67,7 @@ function drawMarkers({ frame, panel }: Canvas, points: SamplePoints, options: Sa
   const known: object[] = [];
   const bounded: object[] = [];
   for (let i = 0; i < x.length; i++) {
-    if (!Number.isFinite(x[i]) || !Number.isFinite(y[i])) continue;
+    if (!isDrawable(frame, x[i], y[i])) continue;
     const row: Record<string, unknown> = { x: specNumber(x[i]), y: specNumber(y[i]) };
     if (groups !== undefined) row['g'] = groups.names[group![i]];
     if (open !== undefined && open[i] === 1) row['o'] = groups === undefined ? oneColour : groups.colourOf(groups.names[group![i]]);
@@ -80,8 +80,8 @@ function drawMarkers({ frame, panel }: Canvas, points: SamplePoints, options: Sa
   const opacity = groups === undefined ? {} : { opacity: { condition: { param: 'pick0', value: 1 }, value: 0.06 } };
   const tooltip = [
     ...titles.map((title, k) => ({ field: `t${k}`, type: 'nominal', title })),
-    { field: 'x', type: 'quantitative', title: points.axisTitles[0], format: '.4~g' },
-    { field: 'y', type: 'quantitative', title: points.axisTitles[1], format: '.4~g' },
+    { field: 'x', type: 'quantitative', title: points.axisTitles[0], format: '.6~g' },
+    { field: 'y', type: 'quantitative', title: points.axisTitles[1], format: '.6~g' },
   ];
   const legend = groups?.legend ?? null;
   const markers: VegaSpec = {
@@ -130,7 +130,7 @@ function errorUnit(frame: Frame, points: SamplePoints, kind: 'bars' | 'ellipses'
   if (kind === 'bars') {
     const bars: object[] = [];
     for (let i = 0; i < x.length; i++) {
-      if (!Number.isFinite(x[i]) || !Number.isFinite(y[i])) continue;
+      if (!isDrawable(frame, x[i], y[i])) continue;
       const sx = sigmaX?.[i] ?? NaN;
       const sy = sigmaY?.[i] ?? NaN;
       if (sx > 0) bars.push({ x: specNumber(x[i] - sx), x2: specNumber(x[i] + sx), y: specNumber(y[i]), y2: specNumber(y[i]), ...ofGroup(i) });
@@ -143,7 +143,7 @@ function errorUnit(frame: Frame, points: SamplePoints, kind: 'bars' | 'ellipses'
   for (let i = 0; i < x.length; i++) {
     const sx = sigmaX?.[i] ?? NaN;
     const sy = sigmaY?.[i] ?? NaN;
-    if (!Number.isFinite(x[i]) || !Number.isFinite(y[i]) || !(sx > 0 && sy > 0)) continue;
+    if (!isDrawable(frame, x[i], y[i]) || !(sx > 0 && sy > 0)) continue;
     if (++ellipses > mostEllipses) throw new RangeError(`Error ellipses are drawn for up to ${mostEllipses} samples; choose errors: "bars", or draw fewer samples.`);
     const g = group?.[i] ?? 0;
     if (!byGroup.has(g)) byGroup.set(g, []);
@@ -163,7 +163,7 @@ function drawBins({ frame, panel }: Canvas, { x, y }: SamplePoints, options: Sam
   const rows = Math.ceil(frame.height / binSize);
   const counts = new Uint32Array(columns * rows);
   for (let i = 0; i < x.length; i++) {
-    if (!Number.isFinite(x[i]) || !Number.isFinite(y[i])) continue;
+    if (!isDrawable(frame, x[i], y[i])) continue;
     const [px, py] = toPixels(frame, [x[i], y[i]]);
     if (px >= 0 && py >= 0 && px < frame.width && py < frame.height) counts[Math.floor(py / binSize) * columns + Math.floor(px / binSize)]++;
   }
