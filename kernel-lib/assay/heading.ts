@@ -45,7 +45,11 @@ function symbolOf(text: string, sure: boolean): string | undefined {
   const key = spellingKey(trimmed);
   const words = vocabulary();
   const found = words.analytes.get(key) ?? words.analytes.get(key.replace(/\*+$/, ''));
-  if (found !== undefined) return !sure && words.exactOnly.has(key) ? undefined : found;
+  if (found !== undefined) {
+    if (sure) return found;
+    // A short symbol in small letters is as often a word or a code (`as`, `pr`, `no`).
+    return words.exactOnly.has(key) || (key.length <= 2 && /^\p{Ll}/u.test(trimmed)) ? undefined : found;
+  }
   return isotopeRatio(trimmed) ?? elementByMass(trimmed);
 }
 

@@ -98,7 +98,8 @@ function bestHeadRow(grid: Grid, reader: HeadingReader, only?: number): HeadRow 
       if (symbol !== undefined) analytes.add(symbol);
       else if (/label|quantity/.test(reader.read(text, upperCase).role)) labels++;
     }
-    const count = analytes.size + (analytes.size > 0 && labels > 0 ? 0.5 : 0);
+    // A sheet of places without any analyte is known by two heads such as latitude and sample.
+    const count = analytes.size > 0 ? analytes.size + (labels > 0 ? 0.5 : 0) : labels > 1 ? 0.01 * labels : 0;
     if (count > 0 && count > (best?.analytes ?? 0)) best = { row, analytes: count, upperCase };
   }
   return best;

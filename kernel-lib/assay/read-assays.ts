@@ -1,3 +1,4 @@
+import { findAnalyte } from '../chemistry';
 import { showAs, type Showable } from '../display';
 import { totalIron, type TotalIronCounts } from '../recast';
 import { step, suiteOf, type Column, type StepDetail, type Suite, type Traced } from '../suite';
@@ -35,7 +36,8 @@ export async function readAssays(path: string, options: ReadAssaysOptions = {}):
   const headerRow = options.headerRow === undefined ? undefined : options.headerRow - 1;
   const sheets = opened.sheets.map((sheet) => ({ sheet, layout: findLayout(sheet.grid, { samplesIn: options.samplesIn, headerRow, settings: options.columns }) }));
   const { read, whole, remarks } = readSheets(opened, sheets, options);
-  const pleaseCheck = [...read.flatMap((each) => each.pleaseCheck), ...whole.remarks, ...remarks];
+  const noAnalyte = read.every(({ decoded }) => decoded.imported.every(({ became, name }) => became !== 'analyte' && findAnalyte(name) === undefined));
+  const pleaseCheck = [...(noAnalyte ? ['no column names an analyte'] : []), ...read.flatMap((each) => each.pleaseCheck), ...whole.remarks, ...remarks];
   let { columns } = whole;
   let iron: TotalIronCounts | undefined;
   if (options.iron !== 'as-given' && columns.some(({ symbol }) => /^(FeOT|Fe2O3T|FeO|Fe2O3)$/.test(symbol))) {
