@@ -24,7 +24,15 @@ const rounded = (value: number, digits: number): number | null => (Number.isFini
 
 /** @internal The table of groups, or of samples. */
 export function exportTable(screen: FertilityScreen, rows: FertilityRows): ExportTable {
-  return rows === 'groups' ? groupTable(screen) : sampleTable(screen);
+  const table = rows === 'groups' ? groupTable(screen) : sampleTable(screen);
+  // The user's label may bear the name of one of our columns: the second of a name is numbered, so that none is lost.
+  const times = new Map<string, number>();
+  const columns = table.columns.map((column) => {
+    const seen = (times.get(column.head) ?? 0) + 1;
+    times.set(column.head, seen);
+    return seen === 1 ? column : { ...column, head: `${column.head} (${seen})` };
+  });
+  return { rows: table.rows, columns };
 }
 
 function groupTable(screen: FertilityScreen): ExportTable {

@@ -29,7 +29,9 @@ export function saveFertilityCsv(screen: FertilityScreen, path: string, options:
   const { rows = 'groups' } = options;
   checkSave('saveFertilityCsv', path, '.csv', rows);
   const table = exportTable(screen, rows);
-  const lines = [table.columns.map(({ head }) => cellText(head)).join(',')];
+  // Turned into bytes a piece at a time, so that short-lived texts stay short-lived.
+  const pieces: Buffer[] = [];
+  let piece = `${table.columns.map(({ head }) => cellText(head)).join(',')}\r\n`;
   // A column says the same few texts over and over: each is quoted once.
   const readers = table.columns.map(({ at }) => {
     const quoted = new Map<string, string>();
@@ -45,11 +47,15 @@ export function saveFertilityCsv(screen: FertilityScreen, path: string, options:
     };
   });
   for (let row = 0; row < table.rows; row++) {
-    let line = readers[0](row);
-    for (let j = 1; j < readers.length; j++) line += `,${readers[j](row)}`;
-    lines.push(line);
+    for (let j = 0; j < readers.length; j++) piece += j === 0 ? readers[j](row) : `,${readers[j](row)}`;
+    piece += '\r\n';
+    if (row % 500 === 499) {
+      pieces.push(Buffer.from(piece));
+      piece = '';
+    }
   }
-  writeWhole(path, `${lines.join('\r\n')}\r\n`);
+  pieces.push(Buffer.from(piece));
+  writeWhole(path, Buffer.concat(pieces));
   return { path, rows: table.rows };
 }
 

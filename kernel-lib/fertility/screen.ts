@@ -1,6 +1,6 @@
 import { showAs, type Showable } from '../display';
 import { step, type Step, type Suite } from '../suite';
-import { shortSource } from '../tables';
+import { reservoir, shortSource } from '../tables';
 import type { IndicatorAnswers } from './answers';
 import { calibrateFertility, type FertilityCalibration } from './calibration';
 import { cautionsOf } from './cautions';
@@ -10,7 +10,7 @@ import { groupPosition, groupTrend, groupValues, type IndicatorTrend, type Indic
 import type { GuardFlags } from './guard-flags';
 import { scoreGroup, type EvidenceScore, type Weighted } from './score';
 import { readSettings, type RankingOptions, type Settings } from './settings';
-import { fertilityIndicators, fertilityTables } from './tables';
+import { fertilityIndicators, fertilityTables, indicatorLanguage } from './tables';
 import type { IndicatorTally } from './tally';
 import { screenView } from './view';
 import { rankRanges, type RankRange } from './weight-sensitivity';
@@ -141,7 +141,7 @@ function weigh(evidence: Evidence, settings: Settings, options: ScreenOptions): 
   const { weights: given, cut: cutGiven, basis, interval: method, confidence, labelled } = options;
   const calibration = calibrateFertility(defined({ weights: given, cut: cutGiven, basis, interval: method, confidence, labelled }));
   const sources = [...new Set([...answers.map(({ indicator }) => indicator.source), ...guarding.guards.map(({ guard }) => guard.source).filter((source) => source !== ''),
-    method === 'clopper-pearson' ? 'clopper_pearson_1934' : 'wilson_1927', 'georoc_convergent_margins_2022'])];
+    method === 'clopper-pearson' ? 'clopper_pearson_1934' : 'wilson_1927', 'georoc_convergent_margins_2022', ...referenceSources()])];
   const because = step('screenFertility', {
     group: grouping.label, basis: settings.basis, cut, interval: interval.method, confidence: interval.confidence, rankBy, weights: { ...weights }, seed: variation.seed,
     draws: variation.draws, spread: variation.spread, samples: grouping.of.length, groups: groups.length,
@@ -154,6 +154,12 @@ function weigh(evidence: Evidence, settings: Settings, options: ScreenOptions): 
   const screen: FertilityScreen = showAs(content, () => screenView(screen));
   evidenceOf.set(screen, { evidence, settings, options });
   return screen;
+}
+
+/** The works behind the reference composition of the rare earths. */
+function referenceSources(): string[] {
+  const { values } = reservoir(indicatorLanguage().reference);
+  return [...new Set(['La', 'Sm', 'Eu', 'Gd', 'Yb'].flatMap((element) => values.get(element)?.source ?? []))];
 }
 
 /** The limits that were recalled and not seen, each in words. */

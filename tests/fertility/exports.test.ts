@@ -75,6 +75,12 @@ describe('CSV', () => {
     expect(Number(data[0]['Sr/Y'])).toBeCloseTo(suite.values('Sr')[0] / suite.values('Y')[0], 3);
   });
 
+  it('keeps both columns where a label bears the name of one of ours', () => {
+    const path = join(folder, 'by-sample.csv');
+    saveFertilityCsv(screenFertility(suiteLike([{}, {}]), { group: 'sample' }), path, { rows: 'samples' });
+    expect(readFileSync(path, 'utf8')).toMatch(/^sample,sample \(2\),/);
+  });
+
   it('makes texts inert that a spreadsheet would run, and quotes what needs it', () => {
     const path = join(folder, 'hostile.csv');
     saveFertilityCsv(screenFertility(suiteLike(hostile.map(() => ({})), { labels: { sample: hostile, unit: hostile } }), { group: 'unit' }), path, { rows: 'samples' });

@@ -2,7 +2,7 @@ import { readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import Papa from 'papaparse';
 import { describe, expect, it } from 'vitest';
-import { calibrateFertility, fertilityVerdict, labelledDistricts, screenFertility, suiteOf, volatileFree } from 'wedgework';
+import { calibrateFertility, classify, fertilityVerdict, labelledDistricts, screenFertility, suiteOf, volatileFree } from 'wedgework';
 import { suiteLike } from './made-suites';
 
 const answers = Papa.parse<Record<string, string>>(readFileSync(join(__dirname, '../data/fertility/labelled-answers.csv'), 'utf8'), { header: true, skipEmptyLines: true }).data;
@@ -40,6 +40,18 @@ describe('the published analyses', () => {
       const verdict = of('potassium-series').verdicts[i];
       if (verdict !== fertilityVerdict.notApplicable) expect(verdict === fertilityVerdict.met).toBe(row['K series'] === 'high-K');
     });
+  });
+
+  it('are high-K where the potassium-silica scheme says so, inside the silica in which its line is drawn', () => {
+    const names = classify(suite, 'potassium-silica').schemes.get('potassium-silica')!.names;
+    const { verdicts } = of('potassium-series');
+    let compared = 0;
+    verdicts.forEach((verdict, i) => {
+      if (verdict === fertilityVerdict.notApplicable || names[i] === '') return;
+      expect(verdict === fertilityVerdict.met).toBe(names[i] === 'high-K');
+      compared++;
+    });
+    expect(compared).toBeGreaterThan(20);
   });
 
   it('meet the 1990 list where the independent answer says so', () => {
