@@ -66,3 +66,5 @@ export * from './isotope-plots';
 export * from './slab-share-bars';
 export * from './tracer-plots';
 export * from './wedge-corner';
+export * from './balance-plots';
+export * from './path-plots';

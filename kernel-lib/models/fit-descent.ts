@@ -101,6 +101,13 @@ function strength(difference: number): string {
   return difference > 10 ? 'very strong' : difference > 6 ? 'strong' : difference > 2 ? 'positive' : 'hardly any';
 }
 
+/** Whether the samples off the line are all more evolved than every sample on it. */
+function atTheEnd(samples: readonly DescentSample[]): boolean {
+  const out = samples.filter(({ belongs }) => !belongs);
+  const least = Math.min(...samples.filter(({ belongs }) => belongs).map(({ F }) => F));
+  return out.length > 0 && out.every(({ F }) => F < least);
+}
+
 /** Slopes, F and parent from the crystallisation fit. */
 function describeLine(input: DescentInput, fit: FittedProcess, options: FitDescentOptions, who: string) {
   const { problem } = fit.model;
@@ -225,6 +232,7 @@ export function fitDescent(suite: Suite, options: FitDescentOptions = {}): Desce
       : `${rivals[0].process[0].toUpperCase()}${rivals[0].process.slice(1)} is preferred over ${rivals.slice(1).map((each) => `${each.process} (BIC ${each.difference.toFixed(1)} higher)`).join(' and ')}: ${strength(lead)} evidence.`,
     rivals[0].unexplained.length > 0.3 * input.samples ? `Yet it leaves ${rivals[0].unexplained.length} of ${input.samples} samples unexplained, so no single process of these fits the whole suite.` : '',
     out.length === 0 ? 'All samples lie on one liquid line of descent within their errors.' : `Not on the line of descent: ${out.map(({ sample, excludedBy, off }) => `${sample} (${excludedBy}, ${Math.abs(off).toFixed(1)}σ too ${off > 0 ? 'high' : 'low'})`).join(', ')}.`,
+    atTheEnd(line.samples) ? 'They are the most evolved ones, all together: a change in the crystallising assemblage would look the same, so fit the two segments apart before calling them foreign.' : '',
   ].filter((text) => text !== '').join(' ');
   const because = step(
     who, { samples: input.samples, elements: [...input.elements], isotopes: [...input.isotopes], ...errors, level, incompatible: input.elements[line.reference], incompatibleD: options.incompatibleD ?? 0, parent: line.parentName, preferred },

@@ -116,7 +116,7 @@ export function wholeRockPath(options: WholeRockOptions): ModelPath {
     needs.set(sets[i], list);
   }
   const traces = gatherSets(options, elements, needs, orders, phases, who);
-  if (traces.missing.length > 0) notes.push(`Not modelled, because a coefficient is missing: ${[...new Set(traces.missing.map(({ analyte }) => analyte))].join(', ')}.`);
+  if (traces.missing.length > 0) notes.push(`Not modelled, because a coefficient is missing: ${elements.filter((symbol) => !traces.analytes.includes(symbol)).join(', ')}.`);
   const carried = followTraces(traces, found, sets, start, hasZircon ? zirconModel : undefined, width, phases);
   notes.push(...found.notes, ...carried.notes);
 
