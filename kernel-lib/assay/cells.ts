@@ -84,12 +84,13 @@ export class CellDecoder {
       if (this.fault === '' && this.grouped) this.remark = 'grouped digits';
       return;
     }
+    if (/^#[A-Z/0]+[!?]?$/.test(text)) return this.unreadable('a spreadsheet error');
     if (this.withUncertainty(text, signs)) return;
     const marked = /^(?:~|≈|∼|ca\.?|c\.|approx\.?)\s*(.+)$/i.exec(text);
     if (marked !== null) return this.remarked(marked[1], signs, 'approximate');
     const footnote = /^(.+?)\s*(?:\*+|†|‡|§|¶|#|\?|!)$/.exec(text);
     if (footnote !== null) return this.remarked(footnote[1], signs, 'footnote mark');
-    this.unreadable(/^#[A-Z/0]+[!?]?$/.test(text) ? 'a spreadsheet error' : 'not a number');
+    this.unreadable('not a number');
   }
 
   /** Takes a plain number: measured, or what the sheet's conventions make of a negative one. */
@@ -97,7 +98,7 @@ export class CellDecoder {
     if (value < 0 && signs !== 'any' && this.words.sentinels.has(value) && !(signs === 'signed' && value > -100)) {
       this.set(cellState.missing);
       this.remark = 'no-data code';
-    } else if (value < 0 && !signs) {
+    } else if (value < 0 && signs === 'positive') {
       if (this.conventions.negative === 'below-detection') this.set(cellState.belowDetection, NaN, -value);
       else this.unreadable('a negative concentration');
     } else this.set(cellState.measured, value);
