@@ -44,6 +44,11 @@ function cut(view: TableView): { heads: string[]; rows: TableCell[][]; notes: st
   return { heads, rows, notes };
 }
 
+/** A column of numbers, empty cells apart: its head stands over them on the right. */
+function isNumeric(rows: readonly (readonly TableCell[])[], column: number): boolean {
+  return rows.some((row) => typeof row[column] === 'number') && rows.every((row) => typeof row[column] === 'number' || row[column] == null);
+}
+
 /** The table as a bundle of plain HTML, Markdown and text, every text escaped; long tables are cut with a count. */
 export function tableBundle(view: TableView): MimeBundle {
   return { 'text/html': tableHtml(view), 'text/markdown': tableMarkdown(view), 'text/plain': tableText(view) };
@@ -53,7 +58,7 @@ export function tableBundle(view: TableView): MimeBundle {
 export function tableHtml(view: TableView): string {
   const { heads, rows, notes } = cut(view);
   const caption = view.title === undefined ? '' : `<caption>${escapeHtml(view.title)}</caption>`;
-  const head = heads.map((text) => `<th scope="col">${escapeHtml(text)}</th>`).join('');
+  const head = heads.map((text, j) => `<th scope="col"${isNumeric(rows, j) ? ' align="right"' : ''}>${escapeHtml(text)}</th>`).join('');
   const body = rows
     .map((row) => {
       const cells = row.map((cell) => `<td${typeof cell === 'number' ? ' align="right"' : ''}>${escapeHtml(cellText(cell))}</td>`);
@@ -68,7 +73,7 @@ export function tableMarkdown(view: TableView): string {
   const { heads, rows, notes } = cut(view);
   const lines = [
     `| ${heads.map(escapeMarkdown).join(' | ')} |`,
-    `|${heads.map((_, j) => (rows.length > 0 && rows.every((row) => typeof row[j] === 'number') ? '---:' : '---')).join('|')}|`,
+    `|${heads.map((_, j) => (isNumeric(rows, j) ? '---:' : '---')).join('|')}|`,
     ...rows.map((row) => `| ${row.map((cell) => escapeMarkdown(cellText(cell))).join(' | ')} |`),
   ];
   const title = view.title === undefined ? [] : [`**${escapeMarkdown(view.title)}**`, ''];

@@ -23,7 +23,7 @@ figure img { max-width: 100%; height: auto; }
 table { border-collapse: collapse; border: 0; font-size: .875rem; font-variant-numeric: tabular-nums; }
 caption { text-align: left; font-weight: 600; padding: .2rem 0 .4rem; }
 th, td { border: 0; border-bottom: 1px solid #dedee2; padding: .25rem .7rem .25rem 0; text-align: left; vertical-align: top; }
-td[align="right"] { text-align: right; }
+td[align="right"], th[align="right"] { text-align: right; }
 thead th { border-bottom: 2px solid #8a8a90; }
 blockquote { margin: .8rem 0; padding: .1rem 1rem; border-left: 3px solid #b9b9b3; color: #3c3c40; }
 @page { margin: 18mm 16mm; }
@@ -32,6 +32,7 @@ blockquote { margin: .8rem 0; padding: .1rem 1rem; border-left: 3px solid #b9b9b
   body { font-size: 10.5pt; }
   pre, code { font-size: 8.5pt; }
   figure, .error, tr { break-inside: avoid; }
+  .code { break-after: avoid; }
   h1, h2, h3, caption { break-after: avoid; }
   .shown { overflow: visible; }
   a { color: inherit; text-decoration: none; }
