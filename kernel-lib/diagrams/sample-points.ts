@@ -100,8 +100,7 @@ export function samplePoints(who: string, suite: Suite, axes: PointAxes, options
   let bounded = 0;
   for (let i = 0; i < size; i++) {
     const limited = boundOf(xs, i) ?? boundOf(ys, i);
-    if (limited === undefined) continue;
-    if (Number.isNaN(x[i]) && Number.isNaN(y[i])) continue;
+    if (limited === undefined || (Number.isNaN(x[i]) && Number.isNaN(y[i]))) continue;
     if (Number.isNaN(x[i])) {
       x[i] = xs.limits![i];
       side[i] = limited === cellState.belowDetection ? pointSide.left : pointSide.right;
@@ -111,6 +110,8 @@ export function samplePoints(who: string, suite: Suite, axes: PointAxes, options
     }
     bounded++;
   }
+  // A sample with one value is not drawn, so it must not widen the window either.
+  for (let i = 0; i < size; i++) if (Number.isNaN(x[i]) || Number.isNaN(y[i])) x[i] = y[i] = NaN;
   const grouping = options.group === undefined || size === 0 ? undefined : groupSuite(suite, options.group);
   const open = alteredSamples(suite, options.altered);
   const tooltips = new Map<string, ArrayLike<string | number>>([['sample', suite.samples]]);
