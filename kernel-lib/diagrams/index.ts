@@ -66,5 +66,8 @@ export * from './isotope-plots';
 export * from './slab-share-bars';
 export * from './tracer-plots';
 export * from './wedge-corner';
+export { arcMap, type ArcMapOptions } from './arc-map';
+export { slabSection, type SlabSectionOptions } from './slab-section';
+export { arcTrendPlot, type ArcTrendPlotOptions } from './arc-trend-plot';
 export * from './balance-plots';
 export * from './path-plots';

@@ -14,7 +14,7 @@ export interface PublishedSlabOptions {
   readonly trench?: TrenchLine;
   /** 1σ of the published depths in km, which contour files do not carry (default 10; from memory, set it from your source). */
   readonly sigma?: number;
-  /** Longest gap in km between data that is bridged without saying so (default 150). */
+  /** Longest gap in km between data that is bridged without saying so (default 150); gaps of twice that are not bridged. */
   readonly reach?: number;
 }
 
@@ -23,7 +23,7 @@ export interface PublishedSlabOptions {
  *
  * Points are triangulated (Delaunay) on a conformal plane about the slab's centre, so the dateline is no seam; the surface inside each
  * triangle is curved by the slopes at its corners (exact for quadratic surfaces). Below a triangle with an edge longer than `reach` the depth
- * is given but marked as extrapolated; outside the outline of the data there is none.
+ * is given but marked as extrapolated; beyond twice the reach, and outside the outline of the data, there is none.
  *
  * @param points one slab, from `readSlabPoints` or `slabPoints`
  * @param options `trench`, `sigma` (km), `reach` (km)
@@ -73,11 +73,13 @@ function below(surface: TriangulatedSurface, plane: Plane, at: { longitudes: Arr
   const sloped: Sloped = { depth: 0, slopeX: 0, slopeY: 0, bulge: 0 };
   for (let i = 0; i < x.length; i++) {
     if (Number.isNaN(x[i]) || surface.locate(x[i], y[i], where).triangle === -1) continue;
+    const gap = surface.longestEdge(where.triangle);
+    if (gap > 2 * at.reach) continue;
     surface.evaluate(x[i], y[i], where, sloped);
     result.depth[i] = sloped.depth;
     result.sigma[i] = Math.hypot(at.sigma, sloped.bulge / 2);
     setAttitude(result, i, sloped, plane.local(at.longitudes[i], at.latitudes[i]));
-    result.support[i] = surface.longestEdge(where.triangle) > at.reach ? slabSupport.extrapolated : slabSupport.within;
+    result.support[i] = gap > at.reach ? slabSupport.extrapolated : slabSupport.within;
   }
   return result;
 }

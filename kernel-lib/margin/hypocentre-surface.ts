@@ -57,7 +57,7 @@ export interface HypocentreSlab extends SlabSurface {
 
 /** Supported where at least this many slab events lie within this distance. */
 const supportEvents = 3;
-const supportRadius = 60;
+const supportRadius = 40;
 /** No depth is given further than this from the nearest slab event, km. */
 const reach = 150;
 /** Most basis functions: what keeps a fit of 20,000 events under three seconds. */
@@ -68,7 +68,7 @@ const mostTerms = 320;
  *
  * The surface follows the middle of the upper plane of seismicity: the top of the slab lies some km above it (see `follow`). Its 1σ holds the
  * scatter of the events, the stiffness of the surface and `systematic`. Depths are given up to 150 km from slab events, marked as
- * extrapolated where fewer than three lie within 60 km. Describes where past earthquakes were; forecasts nothing.
+ * extrapolated where fewer than three lie within 40 km. Describes where past earthquakes were; forecasts nothing.
  *
  * @param events from `readHypocentres` or `hypocentresOf`
  * @param options see HypocentreSlabOptions; all lengths in km

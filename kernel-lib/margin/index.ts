@@ -16,3 +16,5 @@ export { crossArcTrend, type ArcTrend, type ArcTrendOptions, type ArcTrendPoint 
 export type { Line, RobustMethod } from './regression';
 export { crustCalibrations, thicknessFromRatios, type CrustCalibration } from './crust';
 export { crustalThickness, type CrustalThickness, type CrustEstimate, type CrustOptions } from './crustal-thickness';
+export { slabContours, type SlabContour } from './slab-contours';
+export { geodesic, longitudeNear, pointAt } from './geodesy';

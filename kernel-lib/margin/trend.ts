@@ -57,7 +57,7 @@ const replicates = 300;
  * Looks for a trend across or along an arc: one value a volcano against slab depth, thermal parameter, trench distance or any column.
  *
  * Volcanoes, not samples, are the points: many samples of one volcano say the same thing. The line is robust (Theil–Sen, or Huber); its interval is a
- * seeded bootstrap that draws volcanoes, and each volcano's samples anew; Kendall's τ tells whether the order alone could be chance. Both together
+ * seeded bootstrap that draws residuals about the line, and each volcano's samples anew; Kendall's τ tells whether the order alone could be chance. Both together
  * give the verdict. A trend with slab depth is no proof of a cause, and slabs are not located from potash.
  *
  * @param suite n samples with the column read against, and a label that names the volcano
@@ -93,7 +93,7 @@ export function crossArcTrend(suite: Suite, options: ArcTrendOptions | Compositi
   const y = used.map((each) => each.y);
   const line = robustLine(method, x, y);
   if (Number.isNaN(line.slope)) throw new RangeError(`crossArcTrend: ${against} is the same for all groups, so there is nothing to read a trend against.`);
-  const boot = bootstrap(used, wanted, { method, seed, draws, confidence });
+  const boot = bootstrap(used, line, wanted, { method, seed, draws, confidence });
   const { tau, p } = kendall(x, y, seed);
   const clear = boot.slope[0] > 0 || boot.slope[1] < 0;
   const verdict = clear && p <= 0.05 ? 'trend' : clear || p <= 0.05 ? 'weak' : 'none';
@@ -119,35 +119,37 @@ export function crossArcTrend(suite: Suite, options: ArcTrendOptions | Compositi
 /** @internal `K2O at 60 SiO2`, or the expression itself. */
 export const nameOf = (of: string, at: AtComposition | undefined): string => (at === undefined ? of : `${of} at ${at.value} % ${at.index}`);
 
+/**
+ * Interval of the line. Residuals are drawn, not volcanoes: with five or ten of them, draws of volcanoes often hold only two places close together,
+ * whose line can be anything. The samples of each volcano are drawn as well, so that a lucky fit of a few noisy values is not taken for certainty.
+ */
 function bootstrap(
-  used: readonly { readonly samples: GroupSamples; readonly x: number; readonly y: number }[], wanted: ArcTrendOptions,
+  used: readonly { readonly samples: GroupSamples; readonly x: number; readonly y: number }[], line: Line, wanted: ArcTrendOptions,
   how: { readonly method: RobustMethod; readonly seed: number; readonly draws: number; readonly confidence: number },
 ) {
   const draw = randomSource(how.seed);
   const n = used.length;
   const values = used.map(({ samples }) => resampledValues(samples, wanted, draw, replicates));
+  const x = used.map((each) => each.x);
+  const fitted = x.map((at) => line.intercept + line.slope * at);
+  // A line through n points takes up two degrees of freedom, so its residuals are too small by this much.
+  const widen = Math.sqrt(n / (n - 2));
+  const residuals = used.map((each, i) => widen * (each.y - fitted[i]));
   const slopes = new Float64Array(how.draws);
   const intercepts = new Float64Array(how.draws);
-  const x = new Float64Array(n);
   const y = new Float64Array(n);
   for (let d = 0; d < how.draws; d++) {
-    // A draw in which all volcanoes lie at one place has no slope: draw again.
-    let line: Line = { slope: NaN, intercept: NaN };
-    for (let again = 0; again < 50 && Number.isNaN(line.slope); again++) {
-      for (let i = 0; i < n; i++) {
-        const from = Math.floor(draw() * n);
-        x[i] = used[from].x;
-        y[i] = values[from][Math.floor(draw() * replicates)];
-        if (Number.isNaN(y[i])) y[i] = used[from].y;
-      }
-      line = robustLine(how.method, x, y);
+    for (let i = 0; i < n; i++) {
+      const again = values[i][Math.floor(draw() * replicates)] - used[i].y;
+      y[i] = fitted[i] + residuals[Math.floor(draw() * n)] + (Number.isFinite(again) ? again : 0);
     }
-    slopes[d] = line.slope;
-    intercepts[d] = line.intercept;
+    const drawn = robustLine(how.method, x, y);
+    slopes[d] = drawn.slope;
+    intercepts[d] = drawn.intercept;
   }
   const tail = (1 - how.confidence) / 2;
-  const left = Math.min(...used.map((each) => each.x));
-  const right = Math.max(...used.map((each) => each.x));
+  const left = Math.min(...x);
+  const right = Math.max(...x);
   const places = 41;
   const band = { x: new Float64Array(places), low: new Float64Array(places), high: new Float64Array(places) };
   for (let k = 0; k < places; k++) {

@@ -71,9 +71,12 @@ describe('a surface through published depths', () => {
   test('has no depth outside its outline and says where it bridges a gap', () => {
     const points = contours();
     const kept = points.depth.map((_, i) => i).filter((i) => points.depth[i] <= 40 || points.depth[i] >= 220);
-    const sparse = slabFromDepths(slabPoints({ longitude: kept.map((i) => points.longitude[i]), latitude: kept.map((i) => points.latitude[i]), depth: kept.map((i) => points.depth[i]) }), { reach: 100 });
-    const bridged = sparse.at([-130], [-44.5]);
-    expect(bridged.support[0]).toBe(slabSupport.extrapolated);
+    // The gap between the contours at 40 and 220 km is some 190 km wide.
+    const few = slabPoints({ longitude: kept.map((i) => points.longitude[i]), latitude: kept.map((i) => points.latitude[i]), depth: kept.map((i) => points.depth[i]) });
+    const sparse = slabFromDepths(few, { reach: 120 });
+    expect(sparse.at([-130], [-44.5]).support[0]).toBe(slabSupport.extrapolated);
+    expect(slabFromDepths(few, { reach: 60 }).at([-130], [-44.5]).support[0]).toBe(slabSupport.none);
+    expect(slabFromDepths(few, { reach: 250 }).at([-130], [-44.5]).support[0]).toBe(slabSupport.within);
     expect(sparse.at([-120], [-44.5]).support[0]).toBe(slabSupport.none);
     expect(sparse.at([-120], [-44.5]).depth[0]).toBeNaN();
     expect(sparse.at([NaN], [NaN]).depth[0]).toBeNaN();
