@@ -98,7 +98,8 @@ function readErrors(errors: BalanceErrors | undefined, oxides: readonly string[]
   return { variances: fill((_, oxide) => given[oxide]), model: '1σ as given by oxide', hasErrors: true };
 }
 
-function readColumns(minerals: BalanceMinerals, who: string): readonly PhaseColumn[] {
+/** @internal The columns of the phases of a mass balance: two for a range. */
+export function readPhaseColumns(minerals: BalanceMinerals | undefined, who: string): readonly PhaseColumn[] {
   if (typeof minerals !== 'object' || minerals === null || Object.keys(minerals).length === 0) {
     throw new TypeError(`${who}: minerals must name at least one phase, such as { olivine: 'Fo80', plagioclase: { between: ['An50', 'An90'] } }.`);
   }
@@ -130,7 +131,7 @@ export function readBalance(options: BalanceOptions, minerals: BalanceMinerals, 
   const left = wanted.filter((oxide) => !usable(oxide));
   if (left.length > 0 && options.oxides !== undefined) throw new RangeError(`${who}: oxides holds ${left.join(', ')}, which not all of the analyses have.`);
   if (left.length > 0) notes.push(`Not used, because an analysis has no usable value: ${left.join(', ')}.`);
-  const columns = readColumns(minerals, who);
+  const columns = readPhaseColumns(minerals, who);
   const k = columns.length + (assimilant === undefined ? 0 : 1);
   if (oxides.length < k + (closure === 'free' ? 1 : 0)) throw new RangeError(`${who}: ${k} unknowns need at least as many oxides; there are ${oxides.length} (${oxides.join(', ')}).`);
   const n = oxides.length;

@@ -22,3 +22,4 @@ export type { CrystalStage, PathConditions, PathMineral, WholeRockOptions } from
 export { primaryMelt, type PrimaryMelt, type PrimaryMeltOptions } from './primary-melt';
 export type { DescentProcess } from './descent-laws';
 export { fitDescent, type CompanionTest, type DescentElement, type DescentFit, type DescentRival, type DescentSample, type FitDescentOptions } from './fit-descent';
+export { fitAssemblage, type AssemblageFit, type FitAssemblageOptions, type FittedPhase } from './fit-assemblage';

@@ -5,6 +5,7 @@ import { step, type Suite, type Traced } from '../suite';
 import { molarMass } from '../tables';
 import { BalanceSolver, type BalanceProblem } from './balance-solver';
 import { readBalance, type BalanceInput, type BalanceMinerals, type BalanceOptions } from './balance-input';
+import type { ChosenMineral } from './minerals';
 import { joinLineage } from './one-analysis';
 import { readNumber } from './trace-setup';
 
@@ -90,12 +91,16 @@ export function joinColumns(input: BalanceInput, x: ArrayLike<number>): { phases
 function labelOf(input: BalanceInput, phase: string, x: ArrayLike<number>): { label: string; mineral: string; source: string; standing: string } {
   const columns = input.columns.flatMap((column, j) => (column.phase === phase ? [{ ...column.chosen, mass: x[j] }] : []));
   if (columns.length === 0) return { label: input.assimilant!.samples[0], mineral: '', source: 'supplied by the user', standing: 'supplied' };
+  const { mineral, source, standing } = columns[0];
+  return { label: settledLabel(columns.map(({ mass, ...chosen }) => ({ chosen, mass }))), mineral, source, standing };
+}
+
+/** @internal The composition of a phase from its columns: its label, or where a range between two compositions settled. */
+export function settledLabel(columns: readonly { readonly chosen: Pick<ChosenMineral, 'label' | 'oxides'>; readonly mass: number }[]): string {
   const [first, second] = columns;
-  const { mineral, source, standing } = first;
-  if (second === undefined) return { label: first.label, mineral, source, standing };
+  if (second === undefined) return first.chosen.label;
   const total = first.mass + second.mass;
-  const share = total > 0 ? second.mass / total : NaN;
-  return { label: total > 0 ? settled(first, second, share) : `${first.label}–${second.label}, not used`, mineral, source, standing };
+  return total > 0 ? settled(first.chosen, second.chosen, second.mass / total) : `${first.chosen.label}–${second.chosen.label}, not used`;
 }
 
 /** Where a range settled: as a point of the solid solution where both ends are (`An71`), else as shares of the ends. */
