@@ -26,7 +26,8 @@ const mostDots = 5000;
  * @example diagrams.screeningMap(screen)
  */
 export function screeningMap(screen: FertilityScreen, options: ScreeningMapOptions = {}): Diagram {
-  if (typeof screen !== 'object' || screen === null || !Array.isArray(screen.groups)) throw new TypeError('screeningMap: the first argument must be what screenFertility returned.');
+  if (typeof screen !== 'object' || screen === null || !Array.isArray(screen.groups))
+    throw new TypeError('screeningMap: the first argument must be what screenFertility returned.');
   if (!screen.suite.has('latitude') || !screen.suite.has('longitude')) {
     throw new RangeError('screeningMap: the screened suite has no columns latitude and longitude (°); without them nothing can be put on a map.');
   }
@@ -38,14 +39,31 @@ export function screeningMap(screen: FertilityScreen, options: ScreeningMapOptio
   const turn = plain.length > 0 && spread(turned) < spread(plain) ? (east: number) => (east < 0 ? east + 360 : east) : (east: number) => east;
   const middles = suiteOf({
     columns: [
-      column({ symbol: 'longitude', values: groups.map(({ longitude }) => turn(longitude)), unit: '°' }), column({ symbol: 'latitude', values: groups.map(({ latitude }) => latitude), unit: '°' }),
+      column({ symbol: 'longitude', values: groups.map(({ longitude }) => turn(longitude)), unit: '°' }),
+      column({ symbol: 'latitude', values: groups.map(({ latitude }) => latitude), unit: '°' }),
     ],
-    labels: { sample: groups.map(({ group }) => group), verdict: groups.map(({ verdict }) => verdict), rank: groups.map(({ rank }) => String(rank)), score: groups.map(({ score }) => (Number.isNaN(score) ? '' : score.toFixed(2))) },
+    labels: {
+      sample: groups.map(({ group }) => group),
+      verdict: groups.map(({ verdict }) => verdict),
+      rank: groups.map(({ rank }) => String(rank)),
+      score: groups.map(({ score }) => (Number.isNaN(score) ? '' : score.toFixed(2))),
+    },
   });
   const sampleOptions: SampleOptions = { group: 'verdict', ...options };
-  const set = samplePoints('screeningMap', middles, {
-    x: 'longitude', y: 'latitude', axisTitles: ['longitude', 'latitude'], tooltips: new Map([['rank', middles.label('rank')], ['score', middles.label('score')]]),
-  }, sampleOptions);
+  const set = samplePoints(
+    'screeningMap',
+    middles,
+    {
+      x: 'longitude',
+      y: 'latitude',
+      axisTitles: ['longitude', 'latitude'],
+      tooltips: new Map([
+        ['rank', middles.label('rank')],
+        ['score', middles.label('score')],
+      ]),
+    },
+    sampleOptions,
+  );
   const dots = sampleDots(screen, turn);
   const chosen = typeof options.window === 'object' ? options.window : {};
   const x = chosen.x ?? windowAround([set.points.x, dots.x], { leastSpan: 0.2 });
@@ -55,12 +73,25 @@ export function screeningMap(screen: FertilityScreen, options: ScreeningMapOptio
   const height = Math.min(900, Math.max(160, Math.round((width * (y[1] - y[0])) / ((x[1] - x[0]) * narrowing))));
   const frame: Frame = { width, height, x: { title: 'Longitude (°)', window: x }, y: { title: 'Latitude (°)', window: y } };
   return figure({
-    name: 'Map of a copper-gold screening', title: options.title,
-    panels: [{ frame, layers: [dotsLayer(dots), samplesLayer({ ...set.points, ...verdictGroups(middles.label('verdict')) }, {}), namesLayer(set.points, middles.samples, options.names ?? 'all')] }],
-    caption: [
-      `Colour: verdict on the ${screen.label}, at the middle of its samples.${dots.x.length > 0 ? ' Grey: samples.' : ''}`, 'Whole-rock chemistry screens suites; it does not find ore. Drilling and disclosure need a qualified (competent) person.',
+    name: 'Map of a copper-gold screening',
+    title: options.title,
+    panels: [
+      {
+        frame,
+        layers: [
+          dotsLayer(dots),
+          samplesLayer({ ...set.points, ...verdictGroups(middles.label('verdict')) }, {}),
+          namesLayer(set.points, middles.samples, options.names ?? 'all'),
+        ],
+      },
     ],
-    counts: set.counts(frame), counted: screen.label, legendWidth: set.legendWidth,
+    caption: [
+      `Colour: verdict on the ${screen.label}, at the middle of its samples.${dots.x.length > 0 ? ' Grey: samples.' : ''}`,
+      'Whole-rock chemistry screens suites; it does not find ore. Drilling and disclosure need a qualified (competent) person.',
+    ],
+    counts: set.counts(frame),
+    counted: screen.label,
+    legendWidth: set.legendWidth,
     lineage: [...screen.lineage, step('diagrams.screeningMap', { groups: groups.length })],
   });
 }
@@ -82,7 +113,9 @@ function dotsLayer({ x, y }: Dots): Layer {
       x.forEach((east, i) => {
         if (Number.isFinite(east) && Number.isFinite(y[i])) rows.push({ x: specNumber(east), y: specNumber(y[i]) });
       });
-      return rows.length === 0 ? [] : [unit(frame, { type: 'point', filled: true, size: 5, color: ink.faintLine, opacity: 0.9, tooltip: null }, rows)];
+      return rows.length === 0
+        ? []
+        : [unit(frame, { type: 'point', filled: true, size: 5, color: ink.faintLine, opacity: 0.9, tooltip: null }, rows)];
     },
   };
 }

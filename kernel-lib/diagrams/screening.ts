@@ -25,7 +25,8 @@ export function verdictGroups(verdicts: readonly string[]): { readonly groups: G
   return { groups: groupScale('verdict', names, 'not supported'), group: Uint16Array.from(verdicts, (verdict) => names.indexOf(verdict)) };
 }
 
-const isScreen = (of: Screened): of is FertilityScreen => Array.isArray((of as FertilityScreen).groups) && Array.isArray((of as FertilityScreen).guards);
+const isScreen = (of: Screened): of is FertilityScreen =>
+  Array.isArray((of as FertilityScreen).groups) && Array.isArray((of as FertilityScreen).guards);
 
 interface Subject {
   readonly suite: Suite;
@@ -47,8 +48,15 @@ function subjectOf(of: Screened, options: SampleOptions): Subject {
   const guards = of.guards.filter(({ guard }) => guard.effect !== 'caution');
   const altered = rows.map((i) => guards.some(({ flags }) => flags[i] === 1));
   return {
-    suite, options: { group: 'verdict', altered, ...options }, lineage: of.lineage,
-    notes: (notes) => notes.map((note) => (note === 'Open symbols: flagged as altered.' ? 'Open symbols: altered, weathered, cumulate or with a total out of range, so not counted.' : note)),
+    suite,
+    options: { group: 'verdict', altered, ...options },
+    lineage: of.lineage,
+    notes: (notes) =>
+      notes.map((note) =>
+        note === 'Open symbols: flagged as altered.'
+          ? 'Open symbols: altered, weathered, cumulate or with a total out of range, so not counted.'
+          : note,
+      ),
   };
 }
 
@@ -87,22 +95,32 @@ function draw(of: Screened, given: SampleOptions, plan: Plan): Diagram {
   const { who, name, x, y, titles, reference, lines, also } = plan;
   const columns = plan.columns === undefined || typeof suite !== 'object' || suite === null ? undefined : plan.columns(suite);
   const set = samplePoints(who, suite, { x, y, reference, axisTitles: titles, ...(columns === undefined ? {} : { columns }) }, options);
-  const points = options.group === 'verdict' && suite.labels.has('verdict') ? { ...set.points, ...verdictGroups(suite.label('verdict')) } : set.points;
+  const points =
+    options.group === 'verdict' && suite.labels.has('verdict') ? { ...set.points, ...verdictGroups(suite.label('verdict')) } : set.points;
   const chosen = typeof options.window === 'object' ? options.window : {};
   const frame: Frame = {
-    width: options.width ?? 480, height: options.height ?? 360,
+    width: options.width ?? 480,
+    height: options.height ?? 360,
     x: { title: titles[0], window: chosen.x ?? windowAround([set.points.x, also.x], { within: [0, Infinity] }) },
     y: { title: titles[1], window: chosen.y ?? windowAround([set.points.y, also.y], { within: [0, Infinity] }) },
   };
   const sources = [...new Set(plan.criteria.map((key) => indicator(key).source))];
   return figure({
-    name, title: options.title,
-    panels: [{
-      frame,
-      layers: [linesLayer(lines(frame)), samplesLayer(points, options), ...(options.names === undefined ? [] : [namesLayer(points, suite.samples, options.names)])],
-    }],
+    name,
+    title: options.title,
+    panels: [
+      {
+        frame,
+        layers: [
+          linesLayer(lines(frame)),
+          samplesLayer(points, options),
+          ...(options.names === undefined ? [] : [namesLayer(points, suite.samples, options.names)]),
+        ],
+      },
+    ],
     caption: [...plan.caption, ...notes(set.notes), 'Whole-rock chemistry screens suites; it does not find ore.'],
-    counts: set.counts(frame), legendWidth: set.legendWidth,
+    counts: set.counts(frame),
+    legendWidth: set.legendWidth,
     lineage: [...lineage, step(`diagrams.${who}`, { x, y }, { sources, tables: ['fertility/indicators.json'] })],
   });
 }
@@ -124,15 +142,35 @@ function againstSilica(y: string): (suite: Suite) => { x: Column; y: Column } {
 export function strontiumYttrium(of: Screened, options: SampleOptions = {}): Diagram {
   const [box, edge] = [limitOf('sr-y-box-1990', 'Sr/Y'), limitOf('sr-y-box-1990', 'Y')];
   const [strict, loose] = [limitOf('sr-y-2014', 'Sr/Y'), limitOf('sr-y-2011', 'Sr/Y')];
-  const across = (frame: Frame, y: number): Point[] => [[0, y], [right(frame), y]];
+  const across = (frame: Frame, y: number): Point[] => [
+    [0, y],
+    [right(frame), y],
+  ];
   return draw(of, options, {
-    who: 'strontiumYttrium', name: 'Sr/Y–Y diagram', x: 'Y', y: 'Sr/Y', titles: [axisTitle('Y', 'ppm'), axisTitle('Sr/Y')],
+    who: 'strontiumYttrium',
+    name: 'Sr/Y–Y diagram',
+    x: 'Y',
+    y: 'Sr/Y',
+    titles: [axisTitle('Y', 'ppm'), axisTitle('Sr/Y')],
     lines: (frame) => [
-      { points: across(frame, loose), label: `Sr/Y ${loose} (${cited('sr-y-2011')})` }, { points: across(frame, strict), label: `Sr/Y ${strict} (${cited('sr-y-2014')})` },
-      { points: [[0, box], [edge, box], [edge, top(frame)]], label: `Sr/Y ${box} and Y ${edge} (${cited('sr-y-box-1990')})`, dash: [5, 3] },
+      { points: across(frame, loose), label: `Sr/Y ${loose} (${cited('sr-y-2011')})` },
+      { points: across(frame, strict), label: `Sr/Y ${strict} (${cited('sr-y-2014')})` },
+      {
+        points: [
+          [0, box],
+          [edge, box],
+          [edge, top(frame)],
+        ],
+        label: `Sr/Y ${box} and Y ${edge} (${cited('sr-y-box-1990')})`,
+        dash: [5, 3],
+      },
     ],
-    also: { x: [0, edge], y: [0, box] }, criteria: ['sr-y-box-1990', 'sr-y-2014', 'sr-y-2011'],
-    caption: [`Lines: Sr/Y ${loose} (${cited('sr-y-2011')}), ${strict} above 57 % SiO₂ (${cited('sr-y-2014')}); dashed: high Sr/Y box (${cited('sr-y-box-1990')}), limits recalled from these works.`],
+    also: { x: [0, edge], y: [0, box] },
+    criteria: ['sr-y-box-1990', 'sr-y-2014', 'sr-y-2011'],
+    caption: [
+      `Lines: Sr/Y ${loose} (${cited('sr-y-2011')}), ${strict} above 57 % SiO₂ (${cited('sr-y-2014')}).`,
+      `Dashed: high Sr/Y box (${cited('sr-y-box-1990')}). Limits recalled from these works.`,
+    ],
   });
 }
 
@@ -149,11 +187,29 @@ export function lanthanumYtterbium(of: Screened, options: SampleOptions = {}): D
   const [ratio, edge] = [limitOf('la-yb-1986', '(La/Yb)N'), limitOf('la-yb-1986', 'YbN')];
   const chondrite = reservoir('chondrite-c1-1989').values;
   return draw(of, options, {
-    who: 'lanthanumYtterbium', name: '(La/Yb)N–YbN diagram', x: 'YbN', y: '(La/Yb)N', titles: [axisTitle('YbN'), axisTitle('(La/Yb)N')],
+    who: 'lanthanumYtterbium',
+    name: '(La/Yb)N–YbN diagram',
+    x: 'YbN',
+    y: '(La/Yb)N',
+    titles: [axisTitle('YbN'), axisTitle('(La/Yb)N')],
     reference: (symbol) => chondrite.get(symbol)?.value ?? NaN,
-    lines: (frame) => [{ points: [[0, ratio], [edge, ratio], [edge, top(frame)]], label: `(La/Yb)ɴ ${ratio} and Ybɴ ${edge} (${cited('la-yb-1986')})`, dash: [5, 3] }],
-    also: { x: [0, edge], y: [0, ratio] }, criteria: ['la-yb-1986'],
-    caption: [`Dashed: garnet or amphibole signature (${cited('la-yb-1986')}; about these values, recalled; the curved outlines of that figure are not carried). Chondrite: ${shortSource('sun_mcdonough_1989')}.`],
+    lines: (frame) => [
+      {
+        points: [
+          [0, ratio],
+          [edge, ratio],
+          [edge, top(frame)],
+        ],
+        label: `(La/Yb)ɴ ${ratio} and Ybɴ ${edge} (${cited('la-yb-1986')})`,
+        dash: [5, 3],
+      },
+    ],
+    also: { x: [0, edge], y: [0, ratio] },
+    criteria: ['la-yb-1986'],
+    caption: [
+      `Dashed: garnet or amphibole signature (${cited('la-yb-1986')}; about these values, recalled; its curved outlines are not carried).`,
+      `Chondrite: ${shortSource('sun_mcdonough_1989')}.`,
+    ],
   });
 }
 
@@ -171,12 +227,24 @@ export function vanadiumScandium(of: Screened, options: SampleOptions = {}): Dia
   const { limit } = indicator('v-sc-2014').conditions[0];
   const [intercept, slope] = /^([\d.]+)-([\d.]+)\*SiO2$/.exec(limit)!.slice(1).map(Number);
   return draw(of, options, {
-    who: 'vanadiumScandium', name: 'V/Sc–silica diagram', x: 'SiO2', y: 'V/Sc', titles: [axisTitle('SiO2', 'wt%', 'volatile-free'), axisTitle('V/Sc')], columns: againstSilica('V/Sc'),
+    who: 'vanadiumScandium',
+    name: 'V/Sc–silica diagram',
+    x: 'SiO2',
+    y: 'V/Sc',
+    titles: [axisTitle('SiO2', 'wt%', 'volatile-free'), axisTitle('V/Sc')],
+    columns: againstSilica('V/Sc'),
     lines: (frame) => [
       { points: curve(frame, (silica) => intercept - slope * silica, from), label: cited('v-sc-2014') },
-      { points: [[from, frame.y.window[0]], [from, top(frame)]], dash: [2, 3] },
+      {
+        points: [
+          [from, frame.y.window[0]],
+          [from, top(frame)],
+        ],
+        dash: [2, 3],
+      },
     ],
-    also: { x: [from, from + 10], y: [0, intercept - slope * from] }, criteria: ['v-sc-2014'],
+    also: { x: [from, from + 10], y: [0, intercept - slope * from] },
+    criteria: ['v-sc-2014'],
     caption: [`Line: V/Sc = ${intercept} − ${slope} SiO₂, asked above ${from} % SiO₂ (${cited('v-sc-2014')}; recalled).`],
   });
 }
@@ -193,15 +261,27 @@ export function vanadiumScandium(of: Screened, options: SampleOptions = {}): Dia
 export function strontiumYttriumSilica(of: Screened, options: SampleOptions = {}): Diagram {
   const [strict, loose] = [limitOf('sr-y-2014', 'Sr/Y'), limitOf('sr-y-2011', 'Sr/Y')];
   const [strictFrom, looseFrom] = [indicator('sr-y-2014').silica.over!, indicator('sr-y-2011').silica.from!];
-  const box = (frame: Frame, from: number, y: number): Point[] => [[from, top(frame)], [from, y], [right(frame), y]];
+  const box = (frame: Frame, from: number, y: number): Point[] => [
+    [from, top(frame)],
+    [from, y],
+    [right(frame), y],
+  ];
   return draw(of, options, {
-    who: 'strontiumYttriumSilica', name: 'Sr/Y–silica diagram', x: 'SiO2', y: 'Sr/Y', titles: [axisTitle('SiO2', 'wt%', 'volatile-free'), axisTitle('Sr/Y')], columns: againstSilica('Sr/Y'),
+    who: 'strontiumYttriumSilica',
+    name: 'Sr/Y–silica diagram',
+    x: 'SiO2',
+    y: 'Sr/Y',
+    titles: [axisTitle('SiO2', 'wt%', 'volatile-free'), axisTitle('Sr/Y')],
+    columns: againstSilica('Sr/Y'),
     lines: (frame) => [
-      { points: box(frame, strictFrom, strict), label: `Sr/Y ${strict} (${cited('sr-y-2014')})` }, { points: box(frame, looseFrom, loose), label: `Sr/Y ${loose} (${cited('sr-y-2011')})`, dash: [5, 3] },
+      { points: box(frame, strictFrom, strict), label: `Sr/Y ${strict} (${cited('sr-y-2014')})` },
+      { points: box(frame, looseFrom, loose), label: `Sr/Y ${loose} (${cited('sr-y-2011')})`, dash: [5, 3] },
     ],
-    also: { x: [looseFrom, looseFrom + 10], y: [0, strict] }, criteria: ['sr-y-2014', 'sr-y-2011'],
+    also: { x: [looseFrom, looseFrom + 10], y: [0, strict] },
+    criteria: ['sr-y-2014', 'sr-y-2011'],
     caption: [
-      `Lines: Sr/Y ${strict} above ${strictFrom} % SiO₂ (${cited('sr-y-2014')}); dashed: Sr/Y ${loose} (${cited('sr-y-2011')}) from ${looseFrom} % SiO₂, the window of the high-Sr/Y criteria; limits recalled from these works.`,
+      `Lines: Sr/Y ${strict} above ${strictFrom} % SiO₂ (${cited('sr-y-2014')}).`,
+      `Dashed: Sr/Y ${loose} (${cited('sr-y-2011')}) from ${looseFrom} % SiO₂, the window of the high-Sr/Y criteria. Limits recalled from these works.`,
     ],
   });
 }

@@ -8,7 +8,10 @@ import type { FertilityIndicator, SilicaWindow } from './tables';
 /** What one indicator says of every sample. Arrays have one entry a sample. */
 export interface IndicatorAnswers {
   readonly indicator: FertilityIndicator;
-  /** The indicator's own quantity (NaN where it has no value), with 1σ and bounds where known; unit '' for a ratio. Undefined when the suite lacks a column it needs. */
+  /**
+   * The indicator's own quantity (NaN where it has no value), with 1σ and bounds where known; unit '' for a ratio. Undefined when the suite
+   * lacks a column that it needs.
+   */
   readonly values: Column | undefined;
   /** One number of `fertilityVerdict` a sample, guards applied. All `not applicable` for indicators that give no verdict. */
   readonly verdicts: Uint8Array;
@@ -55,13 +58,25 @@ export function askIndicator(indicator: FertilityIndicator, grounds: Grounds, gu
 }
 
 const verdictOfFinding: readonly number[] = table({
-  met: fertilityVerdict.met, metByBound: fertilityVerdict.met, notMet: fertilityVerdict.notMet, notMetByBound: fertilityVerdict.notMet, near: fertilityVerdict.near,
-  belowUndecided: fertilityVerdict.notApplicable, aboveUndecided: fertilityVerdict.notApplicable, missing: fertilityVerdict.notMeasured,
+  met: fertilityVerdict.met,
+  metByBound: fertilityVerdict.met,
+  notMet: fertilityVerdict.notMet,
+  notMetByBound: fertilityVerdict.notMet,
+  near: fertilityVerdict.near,
+  belowUndecided: fertilityVerdict.notApplicable,
+  aboveUndecided: fertilityVerdict.notApplicable,
+  missing: fertilityVerdict.notMeasured,
 });
 
 const reasonOfFinding: readonly number[] = table({
-  met: fertilityReason.none, metByBound: fertilityReason.byBound, notMet: fertilityReason.none, notMetByBound: fertilityReason.byBound, near: fertilityReason.none,
-  belowUndecided: fertilityReason.belowDetection, aboveUndecided: fertilityReason.aboveRange, missing: fertilityReason.missing,
+  met: fertilityReason.none,
+  metByBound: fertilityReason.byBound,
+  notMet: fertilityReason.none,
+  notMetByBound: fertilityReason.byBound,
+  near: fertilityReason.none,
+  belowUndecided: fertilityReason.belowDetection,
+  aboveUndecided: fertilityReason.aboveRange,
+  missing: fertilityReason.missing,
 });
 
 function table(of: Readonly<Record<keyof typeof finding, number>>): readonly number[] {

@@ -22,9 +22,12 @@ export function proportionInterval(
 ): { readonly low: number; readonly high: number } {
   const { method = 'wilson', confidence = 0.95 } = options;
   if (!Number.isInteger(asked) || asked < 0) throw new RangeError(`proportionInterval: asked must be a whole number from 0 up, not ${asked}.`);
-  if (!Number.isInteger(met) || met < 0 || met > asked) throw new RangeError(`proportionInterval: met must be a whole number from 0 to asked (${asked}), not ${met}.`);
-  if (method !== 'wilson' && method !== 'clopper-pearson') throw new RangeError(`proportionInterval: method must be "wilson" or "clopper-pearson", not "${String(method)}".`);
-  if (!(confidence > 0 && confidence < 1)) throw new RangeError(`proportionInterval: confidence must lie between 0 and 1, such as 0.95, not ${confidence}.`);
+  if (!Number.isInteger(met) || met < 0 || met > asked)
+    throw new RangeError(`proportionInterval: met must be a whole number from 0 to asked (${asked}), not ${met}.`);
+  if (method !== 'wilson' && method !== 'clopper-pearson')
+    throw new RangeError(`proportionInterval: method must be "wilson" or "clopper-pearson", not "${String(method)}".`);
+  if (!(confidence > 0 && confidence < 1))
+    throw new RangeError(`proportionInterval: confidence must lie between 0 and 1, such as 0.95, not ${confidence}.`);
   if (asked === 0) return { low: 0, high: 1 };
   const tail = (1 - confidence) / 2;
   if (method === 'clopper-pearson') {

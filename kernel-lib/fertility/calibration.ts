@@ -70,8 +70,10 @@ export function calibrateFertility(options: WeightingOptions & { readonly labell
     const rows = evidence.grouping.rows[group];
     const own = new Set(Array.from(rows, (row) => labels[row]));
     const [label] = own;
-    if (own.size > 1) throw new RangeError(`calibrateFertility: the district "${district}" has both labels; a label belongs to a district, not to a sample.`);
-    if (label !== 'fertile' && label !== 'barren') throw new RangeError(`calibrateFertility: the district "${district}" has the label "${label}"; give "fertile" or "barren".`);
+    if (own.size > 1)
+      throw new RangeError(`calibrateFertility: the district "${district}" has both labels; a label belongs to a district, not to a sample.`);
+    if (label !== 'fertile' && label !== 'barren')
+      throw new RangeError(`calibrateFertility: the district "${district}" has the label "${label}"; give "fertile" or "barren".`);
     return { district, label: label as 'fertile' | 'barren', samples: rows.length, ...scoreGroup(evidence.tallies[group], weighted, settings.cut) };
   });
   const asked = found.filter(({ score }) => !Number.isNaN(score));
@@ -91,9 +93,14 @@ export function calibrateFertility(options: WeightingOptions & { readonly labell
   const statement = sayHowGood(districts, hits, falseAlarms, enough);
   const lineage = [
     ...labelled.lineage,
-    step('calibrateFertility', { weights: settings.weights, basis: settings.basis, districts: districts.length, hits: hits.count, falseAlarms: falseAlarms.count }, {
-      sources: ['clopper_pearson_1934'], tables: fertilityTables,
-    }),
+    step(
+      'calibrateFertility',
+      { weights: settings.weights, basis: settings.basis, districts: districts.length, hits: hits.count, falseAlarms: falseAlarms.count },
+      {
+        sources: ['clopper_pearson_1934'],
+        tables: fertilityTables,
+      },
+    ),
   ];
   return showAs({ districts, hits, falseAlarms, enough, statement, lineage }, () => ({
     title: 'The score on labelled districts, one left out at a time',
@@ -122,10 +129,13 @@ function bestCut(districts: readonly { readonly label: string; readonly score: n
 
 function sayHowGood(districts: readonly DistrictTrial[], hits: TrialRate, falseAlarms: TrialRate, enough: boolean): string {
   const percent = (share: number) => `${Math.round(100 * share)}`;
-  const say = ({ count, of, low, high }: TrialRate) => (of === 0 ? 'none could be asked' : `${count} of ${of} (95 %: ${percent(low)}–${percent(high)} %)`);
+  const say = ({ count, of, low, high }: TrialRate) =>
+    of === 0 ? 'none could be asked' : `${count} of ${of} (95 %: ${percent(low)}–${percent(high)} %)`;
   const left = districts.filter(({ called }) => called === 'not asked').length;
-  const trial = `Checked on ${districts.length} labelled districts, each called by a cut set without it: fertile found ${say(hits)}; barren called fertile ${say(falseAlarms)}${left === 0 ? '' : `; ${left} could not be asked`}.`;
+  const rates = `fertile found ${say(hits)}; barren called fertile ${say(falseAlarms)}${left === 0 ? '' : `; ${left} could not be asked`}`;
+  const trial = `Checked on ${districts.length} labelled districts, each called by a cut set without it: ${rates}.`;
   return enough
     ? trial
-    : `${trial} These are too few districts to state a hit or false-alarm rate (at least ${fewestDistricts} of each kind would be needed): read the score as an order of evidence, not as a probability.`;
+    : `${trial} These are too few districts to state a hit or false-alarm rate (at least ${fewestDistricts} of each kind would be needed): ` +
+        'read the score as an order of evidence, not as a probability.';
 }

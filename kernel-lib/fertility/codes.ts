@@ -13,11 +13,30 @@ export const fertilityVerdictNames = ['met', 'not met', 'near', 'not applicable'
  * does not decide · 8 above range, and the bound does not decide · 9 an analyte is missing · 10 a bound decided the verdict.
  */
 export const fertilityReason = {
-  none: 0, silicaOutside: 1, silicaUnknown: 2, altered: 3, weathered: 4, cumulate: 5, total: 6, belowDetection: 7, aboveRange: 8, missing: 9, byBound: 10,
+  none: 0,
+  silicaOutside: 1,
+  silicaUnknown: 2,
+  altered: 3,
+  weathered: 4,
+  cumulate: 5,
+  total: 6,
+  belowDetection: 7,
+  aboveRange: 8,
+  missing: 9,
+  byBound: 10,
 } as const;
 
 /** Names of the reason codes, by number, for reports. */
 export const fertilityReasonNames = [
-  '', 'silica outside the window', 'no silica on this basis', 'altered: struck out', 'weathered: struck out', 'cumulate', 'total out of range',
-  'below detection: the bound does not decide', 'above range: the bound does not decide', 'not measured', 'decided by a detection or range bound',
+  '',
+  'silica outside the window',
+  'no silica on this basis',
+  'altered: struck out',
+  'weathered: struck out',
+  'cumulate',
+  'total out of range',
+  'below detection: the bound does not decide',
+  'above range: the bound does not decide',
+  'not measured',
+  'decided by a detection or range bound',
 ] as const;

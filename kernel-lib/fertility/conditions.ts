@@ -121,6 +121,15 @@ export class ConditionReader {
 
 /** How strongly a finding settles "all must hold", by its number. */
 const precedence: readonly number[] = (() => {
-  const order = [finding.met, finding.metByBound, finding.near, finding.belowUndecided, finding.aboveUndecided, finding.missing, finding.notMetByBound, finding.notMet];
+  const order = [
+    finding.met,
+    finding.metByBound,
+    finding.near,
+    finding.belowUndecided,
+    finding.aboveUndecided,
+    finding.missing,
+    finding.notMetByBound,
+    finding.notMet,
+  ];
   return Array.from({ length: order.length }, (_, code) => order.findIndex((each) => each === code));
 })();

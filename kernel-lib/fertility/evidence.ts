@@ -19,7 +19,13 @@ export interface Evidence {
 }
 
 /** @internal Asks every indicator of every sample and counts the answers by group. */
-export function gatherEvidence(suite: Suite, label: string, indicators: readonly FertilityIndicator[], basis: FertilityBasis, interval: IntervalChoice): Evidence {
+export function gatherEvidence(
+  suite: Suite,
+  label: string,
+  indicators: readonly FertilityIndicator[],
+  basis: FertilityBasis,
+  interval: IntervalChoice,
+): Evidence {
   const grounds = groundsOf(suite, basis);
   const guarding = guardSamples(grounds);
   const answers = indicators.map((indicator) => askIndicator(indicator, grounds, guarding));

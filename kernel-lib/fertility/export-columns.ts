@@ -20,7 +20,8 @@ export interface ExportTable {
 }
 
 const powers = [1, 10, 100, 1e3, 1e4, 1e5, 1e6];
-const rounded = (value: number, digits: number): number | null => (Number.isFinite(value) ? Math.round(value * powers[digits]) / powers[digits] : null);
+const rounded = (value: number, digits: number): number | null =>
+  Number.isFinite(value) ? Math.round(value * powers[digits]) / powers[digits] : null;
 
 /** @internal The table of groups, or of samples. */
 export function exportTable(screen: FertilityScreen, rows: FertilityRows): ExportTable {
@@ -38,13 +39,15 @@ export function exportTable(screen: FertilityScreen, rows: FertilityRows): Expor
 function groupTable(screen: FertilityScreen): ExportTable {
   const { groups } = screen;
   const column = (head: string, of: (group: (typeof groups)[number]) => TableCell): ExportColumn => ({ head, at: (row) => of(groups[row]) });
-  const criteria = screen.answers.filter(({ indicator }) => indicator.kind === 'criterion').flatMap(({ indicator: { key } }, k) => [
-    column(`${key} met`, ({ tallies }) => tallies[k].met),
-    column(`${key} near`, ({ tallies }) => tallies[k].near),
-    column(`${key} asked`, ({ tallies }) => tallies[k].asked),
-    column(`${key} low`, ({ tallies }) => (tallies[k].asked === 0 ? null : rounded(tallies[k].low, 4))),
-    column(`${key} high`, ({ tallies }) => (tallies[k].asked === 0 ? null : rounded(tallies[k].high, 4))),
-  ]);
+  const criteria = screen.answers
+    .filter(({ indicator }) => indicator.kind === 'criterion')
+    .flatMap(({ indicator: { key } }, k) => [
+      column(`${key} met`, ({ tallies }) => tallies[k].met),
+      column(`${key} near`, ({ tallies }) => tallies[k].near),
+      column(`${key} asked`, ({ tallies }) => tallies[k].asked),
+      column(`${key} low`, ({ tallies }) => (tallies[k].asked === 0 ? null : rounded(tallies[k].low, 4))),
+      column(`${key} high`, ({ tallies }) => (tallies[k].asked === 0 ? null : rounded(tallies[k].high, 4))),
+    ]);
   const values = (groups[0]?.values ?? []).flatMap(({ indicator }, k) => [
     column(`${indicator} median`, (group) => rounded(group.values[k].median, 4)),
     column(`${indicator} n`, (group) => group.values[k].samples),
@@ -53,14 +56,29 @@ function groupTable(screen: FertilityScreen): ExportTable {
   return {
     rows: groups.length,
     columns: [
-      column('rank', ({ rank }) => rank), column(screen.label, ({ group }) => group), column('verdict', ({ verdict }) => verdict), column('because', ({ because }) => because),
-      column('score', ({ score }) => rounded(score, 4)), column('score low', ({ low }) => rounded(low, 4)), column('score high', ({ high }) => rounded(high, 4)),
-      column('samples', ({ samples }) => samples), column('asked', ({ asked }) => asked), column('struck out', ({ struckOut }) => struckOut), column('left out', ({ leftOut }) => leftOut),
-      column('lines of evidence', ({ agreement }) => agreement), column('rank if weights vary', ranksText), column('share of draws among first', ({ ranks }) => rounded(ranks.amongFirst, 3)),
-      column('smallest further measurement', furtherText), ...criteria, ...values, ...trends,
+      column('rank', ({ rank }) => rank),
+      column(screen.label, ({ group }) => group),
+      column('verdict', ({ verdict }) => verdict),
+      column('because', ({ because }) => because),
+      column('score', ({ score }) => rounded(score, 4)),
+      column('score low', ({ low }) => rounded(low, 4)),
+      column('score high', ({ high }) => rounded(high, 4)),
+      column('samples', ({ samples }) => samples),
+      column('asked', ({ asked }) => asked),
+      column('struck out', ({ struckOut }) => struckOut),
+      column('left out', ({ leftOut }) => leftOut),
+      column('lines of evidence', ({ agreement }) => agreement),
+      column('rank if weights vary', ranksText),
+      column('share of draws among first', ({ ranks }) => rounded(ranks.amongFirst, 3)),
+      column('smallest further measurement', furtherText),
+      ...criteria,
+      ...values,
+      ...trends,
       // 1e-6 degrees is 0.1 m on the ground.
-      column('latitude', ({ latitude }) => rounded(latitude, 6)), column('longitude', ({ longitude }) => rounded(longitude, 6)),
-      column('check on labelled districts', () => screen.calibration.statement), column('caution', () => standingCautions.join(' ')),
+      column('latitude', ({ latitude }) => rounded(latitude, 6)),
+      column('longitude', ({ longitude }) => rounded(longitude, 6)),
+      column('check on labelled districts', () => screen.calibration.statement),
+      column('caution', () => standingCautions.join(' ')),
     ],
   };
 }
@@ -74,12 +92,23 @@ function sampleTable(screen: FertilityScreen): ExportTable {
   const verdictOf = (verdict: number, reason: number, withoutGuards: number): string => {
     const code = (verdict * 16 + reason) * 8 + withoutGuards;
     let text = texts.get(code);
-    if (text === undefined) texts.set(code, (text = verdictText(verdict, reason, withoutGuards) + (verdict > 2 && fertilityReasonNames[reason] !== fertilityVerdictNames[verdict] ? ` – ${fertilityReasonNames[reason]}` : '')));
+    if (text === undefined)
+      texts.set(
+        code,
+        (text =
+          verdictText(verdict, reason, withoutGuards) +
+          (verdict > 2 && fertilityReasonNames[reason] !== fertilityVerdictNames[verdict] ? ` – ${fertilityReasonNames[reason]}` : '')),
+      );
     return text;
   };
-  const criteria = answers.filter(({ indicator }) => indicator.kind === 'criterion').map(({ indicator, verdicts, reasons, withoutGuards }): ExportColumn => ({
-    head: indicator.key, at: (row) => verdictOf(verdicts[row], reasons[row], withoutGuards[row]),
-  }));
+  const criteria = answers
+    .filter(({ indicator }) => indicator.kind === 'criterion')
+    .map(
+      ({ indicator, verdicts, reasons, withoutGuards }): ExportColumn => ({
+        head: indicator.key,
+        at: (row) => verdictOf(verdicts[row], reasons[row], withoutGuards[row]),
+      }),
+    );
   const seen = new Set<string>();
   const values = answers.flatMap(({ indicator, values: column }): ExportColumn[] => {
     if (column === undefined || indicator.kind === 'trend' || seen.has(indicator.expression)) return [];
@@ -93,9 +122,16 @@ function sampleTable(screen: FertilityScreen): ExportTable {
   return {
     rows: suite.size,
     columns: [
-      { head: 'sample', at: (row) => suite.samples[row] }, { head: screen.label, at: (row) => label[row] },
-      { head: `${screen.label} verdict`, at: (row) => byName.get(label[row])?.verdict ?? '' }, { head: `${screen.label} rank`, at: (row) => byName.get(label[row])?.rank ?? null },
-      { head: 'flags', at: (row) => flagsOf(guards, row) }, ...criteria, ...values, ...position('latitude'), ...position('longitude'), { head: 'caution', at: () => shortCaution },
+      { head: 'sample', at: (row) => suite.samples[row] },
+      { head: screen.label, at: (row) => label[row] },
+      { head: `${screen.label} verdict`, at: (row) => byName.get(label[row])?.verdict ?? '' },
+      { head: `${screen.label} rank`, at: (row) => byName.get(label[row])?.rank ?? null },
+      { head: 'flags', at: (row) => flagsOf(guards, row) },
+      ...criteria,
+      ...values,
+      ...position('latitude'),
+      ...position('longitude'),
+      { head: 'caution', at: () => shortCaution },
     ],
   };
 }

@@ -10,7 +10,8 @@ export interface SavedScreen {
 
 /** @internal Checks what every save function takes. */
 export function checkSave(what: string, path: unknown, ending: string, rows: unknown): void {
-  if (typeof path !== 'string' || !path.toLowerCase().endsWith(ending)) throw new RangeError(`${what}: the path must be a file name that ends in ${ending}, not "${String(path)}".`);
+  if (typeof path !== 'string' || !path.toLowerCase().endsWith(ending))
+    throw new RangeError(`${what}: the path must be a file name that ends in ${ending}, not "${String(path)}".`);
   if (rows !== 'groups' && rows !== 'samples') throw new RangeError(`${what}: rows must be "groups" or "samples", not "${String(rows)}".`);
 }
 

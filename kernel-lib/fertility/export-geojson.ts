@@ -11,7 +11,10 @@ export type GeoPosition = readonly [number, number];
 export interface FertilityFeature {
   readonly type: 'Feature';
   readonly id: string;
-  readonly geometry: { readonly type: 'Point'; readonly coordinates: GeoPosition } | { readonly type: 'MultiPoint'; readonly coordinates: readonly GeoPosition[] } | null;
+  readonly geometry:
+    | { readonly type: 'Point'; readonly coordinates: GeoPosition }
+    | { readonly type: 'MultiPoint'; readonly coordinates: readonly GeoPosition[] }
+    | null;
   readonly properties: Readonly<Record<string, string | number | boolean | null>>;
 }
 
@@ -62,7 +65,13 @@ export function fertilityGeoJson(screen: FertilityScreen, options: { readonly ro
     features.push({ type: 'Feature', id: `${rows === 'groups' ? 'group' : 'sample'}-${row + 1}`, geometry, properties });
   }
   const bbox = box.asBbox();
-  return { type: 'FeatureCollection', ...(bbox === undefined ? {} : { bbox }), cautions: screen.cautions, sources: screen.sources.map(shortSource), features };
+  return {
+    type: 'FeatureCollection',
+    ...(bbox === undefined ? {} : { bbox }),
+    cautions: screen.cautions,
+    sources: screen.sources.map(shortSource),
+    features,
+  };
 }
 
 /**

@@ -44,7 +44,12 @@ interface GroupState {
 }
 
 /** @internal Looks for the fewest measurements that could settle the verdict of one group; samples in hand before new ones. */
-export function furtherMeasurement(group: GroupState, answers: readonly IndicatorAnswers[], rows: Int32Array, grounds: Grounds): FurtherMeasurement | undefined {
+export function furtherMeasurement(
+  group: GroupState,
+  answers: readonly IndicatorAnswers[],
+  rows: Int32Array,
+  grounds: Grounds,
+): FurtherMeasurement | undefined {
   const { tallies, weighted, cut } = group;
   // More of a criterion that is clear of the cut already would settle nothing but its own case.
   const open = weighted.flatMap(({ weight }, k) => (weight > 0 && tallies[k].low <= cut && tallies[k].high >= cut ? [k] : []));
@@ -74,23 +79,39 @@ function candidatesInHand(k: number, of: Weighted, answers: IndicatorAnswers, ro
   const lacking = new Map<string, number>();
   for (const row of rows) {
     if (answers.verdicts[row] !== fertilityVerdict.notMeasured) continue;
-    const missing = operands.filter(([, column]) => column === undefined || column.states[row] === cellState.missing).map(([symbol]) => symbol).join(' ');
+    const missing = operands
+      .filter(([, column]) => column === undefined || column.states[row] === cellState.missing)
+      .map(([symbol]) => symbol)
+      .join(' ');
     if (missing !== '') lacking.set(missing, (lacking.get(missing) ?? 0) + 1);
   }
   return [...lacking].map(([missing, available]) => ({ criteria: [k], analytes: missing.split(' '), available }));
 }
 
-function settle({ criteria, analytes, available }: Candidate, most: number, on: FurtherMeasurement['on'], group: GroupState): FurtherMeasurement | undefined {
+function settle(
+  { criteria, analytes, available }: Candidate,
+  most: number,
+  on: FurtherMeasurement['on'],
+  group: GroupState,
+): FurtherMeasurement | undefined {
   const { tallies, weighted } = group;
   const conditions: FurtherOutcome['if'][] = criteria.every((k) => tallies[k].asked > 0) ? ['as so far'] : ['all met', 'none met'];
   for (let n = 1; n <= most; n++) {
     const outcomes = conditions.map((condition): FurtherOutcome => ({ if: condition, verdict: verdictWith(n, condition, criteria, group) }));
     if (!outcomes.some(({ verdict }) => verdict === 'supported' || verdict === 'not supported')) continue;
     const what = analytes.length > 1 ? `${analytes.slice(0, -1).join(', ')} and ${analytes.at(-1)}` : analytes[0];
-    const where = on === 'samples in hand' ? `${n} of ${available} samples that lack ${analytes.length > 1 ? 'them' : 'it'}` : `${n} new fresh sample${n === 1 ? '' : 's'} in the silica window`;
+    const where =
+      on === 'samples in hand'
+        ? `${n} of ${available} samples that lack ${analytes.length > 1 ? 'them' : 'it'}`
+        : `${n} new fresh sample${n === 1 ? '' : 's'} in the silica window`;
     const names = criteria.map((k) => weighted[k].indicator.name).join('; ');
     return {
-      indicators: criteria.map((k) => weighted[k].indicator.key), analytes, samples: n, on, available, outcomes,
+      indicators: criteria.map((k) => weighted[k].indicator.key),
+      analytes,
+      samples: n,
+      on,
+      available,
+      outcomes,
       text: `${what} on ${where} (${names}: ${outcomes.map((each) => `${each.if} → ${each.verdict}`).join('; ')})`,
     };
   }
@@ -98,7 +119,12 @@ function settle({ criteria, analytes, available }: Candidate, most: number, on: 
 }
 
 /** The verdict after n more answers to each of some criteria. */
-function verdictWith(n: number, condition: FurtherOutcome['if'], criteria: readonly number[], { tallies, weighted, cut, interval }: GroupState): GroupVerdict {
+function verdictWith(
+  n: number,
+  condition: FurtherOutcome['if'],
+  criteria: readonly number[],
+  { tallies, weighted, cut, interval }: GroupState,
+): GroupVerdict {
   const changed = tallies.map((tally, k) => {
     if (!criteria.includes(k)) return tally;
     const met = tally.asked > 0 ? Math.round(n * tally.share) : condition === 'all met' ? n : 0;

@@ -44,5 +44,8 @@ function totalsOf(suite: Suite, dry: Suite): ReadonlyMap<string, Column> {
     else if (loss !== undefined && loss.states[i] === cellState.belowDetection) checked[i] = sum[i];
     else open[i] = sum[i];
   }
-  return new Map([['CheckedTotal', derivedColumn('CheckedTotal', checked, 'wt%')], ['OpenSum', derivedColumn('OpenSum', open, 'wt%')]]);
+  return new Map([
+    ['CheckedTotal', derivedColumn('CheckedTotal', checked, 'wt%')],
+    ['OpenSum', derivedColumn('OpenSum', open, 'wt%')],
+  ]);
 }

@@ -38,8 +38,11 @@ export function groupValues({ indicator, values, usable }: IndicatorAnswers, row
   if (count === 0) return { indicator: indicator.key, samples: 0, median: NaN, lowerQuartile: NaN, upperQuartile: NaN };
   const sorted = picked.subarray(0, count).sort() as unknown as number[];
   return {
-    indicator: indicator.key, samples: count,
-    median: quantileSorted(sorted, 0.5), lowerQuartile: quantileSorted(sorted, 0.25), upperQuartile: quantileSorted(sorted, 0.75),
+    indicator: indicator.key,
+    samples: count,
+    median: quantileSorted(sorted, 0.5),
+    lowerQuartile: quantileSorted(sorted, 0.25),
+    upperQuartile: quantileSorted(sorted, 0.75),
   };
 }
 
@@ -58,7 +61,16 @@ export function groupTrend({ indicator, values, usable }: IndicatorAnswers, rows
   }
   const samples = x.length;
   const spreads = samples >= fewestForTrend && x.some((each) => each !== x[0]) && y.some((each) => each !== y[0]);
-  if (!spreads) return { indicator: indicator.key, samples, correlation: NaN, low: NaN, high: NaN, direction: 'too few samples', reading: 'too few samples for a trend' };
+  if (!spreads)
+    return {
+      indicator: indicator.key,
+      samples,
+      correlation: NaN,
+      low: NaN,
+      high: NaN,
+      direction: 'too few samples',
+      reading: 'too few samples for a trend',
+    };
   const correlation = sampleCorrelation(x, y);
   // Fisher's transformation: atanh(r) is near normal with standard error 1/√(n − 3).
   const half = 1.959964 / Math.sqrt(samples - 3);

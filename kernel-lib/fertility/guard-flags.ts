@@ -26,7 +26,12 @@ export interface Guarding {
 /** Texts that a sheet uses to say that a rock is not altered. */
 const saysFresh = /^\s*(none|no|fresh|unaltered|least[- ]altered|false|0|-)?\s*$/i;
 
-const reasonOf = { alteration: fertilityReason.altered, weathering: fertilityReason.weathered, cumulate: fertilityReason.cumulate, total: fertilityReason.total } as const;
+const reasonOf = {
+  alteration: fertilityReason.altered,
+  weathering: fertilityReason.weathered,
+  cumulate: fertilityReason.cumulate,
+  total: fertilityReason.total,
+} as const;
 
 /** @internal Asks every guard of every sample. */
 export function guardSamples(grounds: Grounds): Guarding {

@@ -16,8 +16,17 @@ export { labelledDistricts } from './labelled';
 export type { EvidenceScore, FamilyStance, GroupVerdict } from './score';
 export { rankGroups, screenFertility, type FertilityScreen, type GroupEvidence, type ScreenOptions } from './screen';
 export type { RankingOptions, WeightingOptions } from './settings';
-export { fertilityGuards, fertilityIndicators, fertilityWeights, type FertilityComparison, type FertilityCondition, type FertilityGuard, type FertilityIndicator, type FertilityWeight,
-  type SilicaWindow } from './tables';
+export {
+  fertilityGuards,
+  fertilityIndicators,
+  fertilityWeights,
+  type FertilityComparison,
+  type FertilityCondition,
+  type FertilityGuard,
+  type FertilityIndicator,
+  type FertilityWeight,
+  type SilicaWindow,
+} from './tables';
 export type { IndicatorTally } from './tally';
 export { explainFertility } from './view';
 export type { RankRange } from './weight-sensitivity';

@@ -6,10 +6,19 @@ import { field, once, readCsvTable } from '../tables';
 const file = 'fertility/labelled-districts.csv';
 const texts = ['district', 'label', 'basis', 'sample', 'alteration', 'rock', 'georoc_references', 'source', 'standing'];
 
-const rowSchema = z.object({
-  district: field.text, label: z.enum(['fertile', 'barren']), basis: field.text, sample: field.text, alteration: field.optionalText, rock: field.optionalText,
-  georoc_references: field.text, source: field.text, standing: field.standing,
-}).catchall(field.optionalNumber);
+const rowSchema = z
+  .object({
+    district: field.text,
+    label: z.enum(['fertile', 'barren']),
+    basis: field.text,
+    sample: field.text,
+    alteration: field.optionalText,
+    rock: field.optionalText,
+    georoc_references: field.text,
+    source: field.text,
+    standing: field.standing,
+  })
+  .catchall(field.optionalNumber);
 
 const read = once((): Suite => {
   const rows = readCsvTable(file, rowSchema as z.ZodType<Record<string, string | number | undefined>>);

@@ -57,7 +57,16 @@ export function scoreGroup(tallies: readonly IndicatorTally[], weighted: readonl
     family.low += weight * tally.low;
     family.high += weight * tally.high;
   }
-  if (sum === 0) return { score: NaN, low: 0, high: 1, families: [], agreement: 'none', verdict: 'cannot be asked', because: 'no sample could be asked a weighted criterion' };
+  if (sum === 0)
+    return {
+      score: NaN,
+      low: 0,
+      high: 1,
+      families: [],
+      agreement: 'none',
+      verdict: 'cannot be asked',
+      because: 'no sample could be asked a weighted criterion',
+    };
   const families = [...byFamily].map(([family, total]): FamilyStance => {
     const ends = { share: total.share / total.weight, low: total.low / total.weight, high: total.high / total.weight };
     return { family, stance: ends.low > cut ? 'for' : ends.high < cut ? 'against' : 'open', ...ends };
@@ -81,11 +90,16 @@ function verdictOf(
   cut: number,
 ): { verdict: GroupVerdict; because: string } {
   if (ends.high < cut) {
-    return { verdict: 'not supported', because: families.length === 1 ? `one line of evidence (${families[0].family}), against` : 'the whole interval lies below the cut' };
+    return {
+      verdict: 'not supported',
+      because: families.length === 1 ? `one line of evidence (${families[0].family}), against` : 'the whole interval lies below the cut',
+    };
   }
-  if (ends.low <= cut) return { verdict: 'undecided', because: agreement === 'disagree' ? 'independent lines disagree' : 'the interval spans the cut' };
+  if (ends.low <= cut)
+    return { verdict: 'undecided', because: agreement === 'disagree' ? 'independent lines disagree' : 'the interval spans the cut' };
   if (agreement === 'one line only') return { verdict: 'undecided', because: `one line of evidence only (${families[0].family})` };
   if (families.some(({ stance }) => stance === 'against')) return { verdict: 'undecided', because: 'independent lines disagree' };
-  if (families.filter(({ stance }) => stance === 'for').length < 2) return { verdict: 'undecided', because: 'only one line of evidence is clear of the cut' };
+  if (families.filter(({ stance }) => stance === 'for').length < 2)
+    return { verdict: 'undecided', because: 'only one line of evidence is clear of the cut' };
   return { verdict: 'supported', because: 'the whole interval lies above the cut and independent lines agree' };
 }

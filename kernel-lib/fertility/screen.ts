@@ -10,7 +10,7 @@ import { groupPosition, groupTrend, groupValues, type IndicatorTrend, type Indic
 import type { GuardFlags } from './guard-flags';
 import { scoreGroup, type EvidenceScore, type Weighted } from './score';
 import { readSettings, type RankingOptions, type Settings } from './settings';
-import { fertilityIndicators, fertilityTables, indicatorLanguage } from './tables';
+import { conditionsText, fertilityIndicators, fertilityTables, indicatorLanguage } from './tables';
 import type { IndicatorTally } from './tally';
 import { screenView } from './view';
 import { rankRanges, type RankRange } from './weight-sensitivity';
@@ -88,7 +88,9 @@ const evidenceOf = new WeakMap<FertilityScreen, { readonly evidence: Evidence; r
 export function screenFertility(suite: Suite, options: ScreenOptions): FertilityScreen {
   const settings = readSettings('screenFertility', options, ['group', 'labelled']);
   if (typeof options.group !== 'string' || !suite.labels.has(options.group)) {
-    throw new RangeError(`screenFertility: group must name a label of the suite, not "${String(options.group)}". It has: ${[...suite.labels.keys()].join(', ')}.`);
+    throw new RangeError(
+      `screenFertility: group must name a label of the suite, not "${String(options.group)}". It has: ${[...suite.labels.keys()].join(', ')}.`,
+    );
   }
   const evidence = gatherEvidence(suite, options.group, fertilityIndicators(), settings.basis, settings.interval);
   return weigh(evidence, settings, options);
@@ -108,7 +110,8 @@ export function rankGroups(screen: FertilityScreen, options: RankingOptions = {}
   const made = evidenceOf.get(screen);
   if (made === undefined) throw new RangeError('rankGroups: the first argument must be what screenFertility returned, not a copy of it.');
   for (const name of ['basis', 'interval', 'confidence'] as const) {
-    if (options[name] !== undefined && options[name] !== made.options[name]) throw new RangeError(`rankGroups: another ${name} asks the samples anew; call screenFertility with it.`);
+    if (options[name] !== undefined && options[name] !== made.options[name])
+      throw new RangeError(`rankGroups: another ${name} asks the samples anew; call screenFertility with it.`);
   }
   const merged = { ...made.options, ...options, weights: { ...made.options.weights, ...options.weights } };
   return weigh(made.evidence, readSettings('rankGroups', merged, ['group', 'labelled']), merged);
@@ -133,23 +136,68 @@ function weigh(evidence: Evidence, settings: Settings, options: ScreenOptions): 
     const undecided = scores[group].verdict === 'undecided' || scores[group].verdict === 'cannot be asked';
     const further = undecided ? furtherMeasurement({ tallies: tallies[group], weighted, cut, interval }, criteria, rows, grounds) : undefined;
     return {
-      rank, group: grouping.names[group], samples: rows.length, asked: asked[group], leftOut: count(guarding.excluded, rows),
-      struckOut: count(guarding.struck, rows), tallies: tallies[group], ...scores[group], ranks: ranges[group], ...(further === undefined ? {} : { further }),
-      values: shown.map((each) => groupValues(each, rows)), trends: trends.map((each) => groupTrend(each, rows, evidence)), ...groupPosition(evidence, rows),
+      rank,
+      group: grouping.names[group],
+      samples: rows.length,
+      asked: asked[group],
+      leftOut: count(guarding.excluded, rows),
+      struckOut: count(guarding.struck, rows),
+      tallies: tallies[group],
+      ...scores[group],
+      ranks: ranges[group],
+      ...(further === undefined ? {} : { further }),
+      values: shown.map((each) => groupValues(each, rows)),
+      trends: trends.map((each) => groupTrend(each, rows, evidence)),
+      ...groupPosition(evidence, rows),
     };
   });
   const { weights: given, cut: cutGiven, basis, interval: method, confidence, labelled } = options;
   const calibration = calibrateFertility(defined({ weights: given, cut: cutGiven, basis, interval: method, confidence, labelled }));
-  const sources = [...new Set([...answers.map(({ indicator }) => indicator.source), ...guarding.guards.map(({ guard }) => guard.source).filter((source) => source !== ''),
-    method === 'clopper-pearson' ? 'clopper_pearson_1934' : 'wilson_1927', 'georoc_convergent_margins_2022', ...referenceSources()])];
-  const because = step('screenFertility', {
-    group: grouping.label, basis: settings.basis, cut, interval: interval.method, confidence: interval.confidence, rankBy, weights: { ...weights }, seed: variation.seed,
-    draws: variation.draws, spread: variation.spread, samples: grouping.of.length, groups: groups.length,
-    supported: groups.filter(({ verdict }) => verdict === 'supported').length, calibration: calibration.statement,
-  }, { sources, tables: [...fertilityTables, 'fertility/labelled-districts.csv', 'reservoirs.csv', 'named-quantities.csv'], fromMemory: limitsFromMemory(answers), says: methodsText(evidence, settings) });
+  const sources = [
+    ...new Set([
+      ...answers.map(({ indicator }) => indicator.source),
+      ...guarding.guards.map(({ guard }) => guard.source).filter((source) => source !== ''),
+      method === 'clopper-pearson' ? 'clopper_pearson_1934' : 'wilson_1927',
+      'georoc_convergent_margins_2022',
+      ...referenceSources(),
+    ]),
+  ];
+  const because = step(
+    'screenFertility',
+    {
+      group: grouping.label,
+      basis: settings.basis,
+      cut,
+      interval: interval.method,
+      confidence: interval.confidence,
+      rankBy,
+      weights: { ...weights },
+      seed: variation.seed,
+      draws: variation.draws,
+      spread: variation.spread,
+      samples: grouping.of.length,
+      groups: groups.length,
+      supported: groups.filter(({ verdict }) => verdict === 'supported').length,
+      calibration: calibration.statement,
+    },
+    {
+      sources,
+      tables: [...fertilityTables, 'fertility/labelled-districts.csv', 'reservoirs.csv', 'named-quantities.csv'],
+      fromMemory: limitsFromMemory(answers),
+      says: methodsText(evidence, settings),
+    },
+  );
   const content: Omit<FertilityScreen, keyof Showable> = {
-    label: grouping.label, suite: grounds.suite, groups, answers, guards: guarding.guards, weights, calibration, sources,
-    cautions: [...cautionsOf(evidence, weights), calibration.statement], lineage: [...grounds.suite.lineage, because],
+    label: grouping.label,
+    suite: grounds.suite,
+    groups,
+    answers,
+    guards: guarding.guards,
+    weights,
+    calibration,
+    sources,
+    cautions: [...cautionsOf(evidence, weights), calibration.statement],
+    lineage: [...grounds.suite.lineage, because],
   };
   const screen: FertilityScreen = showAs(content, () => screenView(screen));
   evidenceOf.set(screen, { evidence, settings, options });
@@ -166,12 +214,19 @@ function referenceSources(): string[] {
 function limitsFromMemory(answers: readonly IndicatorAnswers[]): string[] {
   return answers
     .filter(({ indicator }) => indicator.kind === 'criterion' && indicator.standing === 'from memory')
-    .map(({ indicator }) => `${indicator.name}: ${indicator.conditions.map(({ expression, is, limit }) => `${expression} ${is} ${limit}`).join(', ')} (${shortSource(indicator.source)})`);
+    .map(({ indicator }) => `${indicator.name}: ${conditionsText(indicator)} (${shortSource(indicator.source)})`);
 }
 
 function methodsText({ criteria }: Evidence, { weights, cut, interval, basis }: Settings): string {
-  const used = criteria.filter(({ indicator }) => weights[indicator.key] > 0).map(({ indicator }) => `${indicator.name} (${shortSource(indicator.source)}; weight ${weights[indicator.key]})`);
-  return `Groups were ranked by the weighted share of samples that meet ${used.join(', ')}, on ${basis === 'as given' ? 'oxides as given' : 'volatile-free oxides'}, with ${interval.method === 'wilson' ? 'Wilson' : 'Clopper–Pearson'} ${Math.round(100 * interval.confidence)} % intervals and a cut of ${cut}; samples flagged as altered, weathered or cumulate, or with a total out of range, were not counted.`;
+  const used = criteria
+    .filter(({ indicator }) => weights[indicator.key] > 0)
+    .map(({ indicator }) => `${indicator.name} (${shortSource(indicator.source)}; weight ${weights[indicator.key]})`);
+  const oxides = basis === 'as given' ? 'oxides as given' : 'volatile-free oxides';
+  const intervals = `${interval.method === 'wilson' ? 'Wilson' : 'Clopper–Pearson'} ${Math.round(100 * interval.confidence)} % intervals`;
+  return (
+    `Groups were ranked by the weighted share of samples that meet ${used.join(', ')}, on ${oxides}, with ${intervals} and a cut of ${cut}. ` +
+    'Cumulates and samples with a total out of range were not counted; altered and weathered ones were not counted in criteria on mobile elements.'
+  );
 }
 
 function count(flags: Uint8Array, rows: Int32Array): number {

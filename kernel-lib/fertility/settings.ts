@@ -47,16 +47,29 @@ const known = ['weights', 'cut', 'interval', 'confidence', 'basis', 'rankBy', 'd
 
 /** @internal Checks the options of a public function and fills in the defaults. `more`: further option names that it takes. */
 export function readSettings(what: string, options: RankingOptions, more: readonly string[] = ['labelled']): Settings {
-  if (typeof options !== 'object' || options === null) throw new RangeError(`${what}: the options must be an object such as { weights: { 'v-sc-2014': 2 } }, not ${String(options)}.`);
+  if (typeof options !== 'object' || options === null)
+    throw new RangeError(`${what}: the options must be an object such as { weights: { 'v-sc-2014': 2 } }, not ${String(options)}.`);
   for (const name of Object.keys(options)) {
-    if (!known.includes(name) && !more.includes(name)) throw new RangeError(`${what}: there is no option "${name}". Known: ${[...more, ...known].join(', ')}.`);
+    if (!known.includes(name) && !more.includes(name))
+      throw new RangeError(`${what}: there is no option "${name}". Known: ${[...more, ...known].join(', ')}.`);
   }
-  const { cut = 0.5, interval = 'wilson', confidence = 0.95, basis = 'volatile-free', rankBy = 'low', draws = 1000, spread = 3, seed = 7946, first = 5 } = options;
+  const {
+    cut = 0.5,
+    interval = 'wilson',
+    confidence = 0.95,
+    basis = 'volatile-free',
+    rankBy = 'low',
+    draws = 1000,
+    spread = 3,
+    seed = 7946,
+    first = 5,
+  } = options;
   const number = (name: string, value: unknown, ok: (value: number) => boolean, wanted: string) => {
     if (typeof value !== 'number' || !ok(value)) throw new RangeError(`${what}: ${name} must be ${wanted}, not ${String(value)}.`);
   };
   const oneOf = (name: string, value: unknown, choices: readonly string[]) => {
-    if (!choices.includes(value as string)) throw new RangeError(`${what}: ${name} must be ${choices.map((choice) => `"${choice}"`).join(' or ')}, not "${String(value)}".`);
+    if (!choices.includes(value as string))
+      throw new RangeError(`${what}: ${name} must be ${choices.map((choice) => `"${choice}"`).join(' or ')}, not "${String(value)}".`);
   };
   number('cut', cut, (value) => value > 0 && value < 1, 'a number between 0 and 1');
   number('confidence', confidence, (value) => value > 0 && value < 1, 'a number between 0 and 1, such as 0.95');
@@ -69,7 +82,12 @@ export function readSettings(what: string, options: RankingOptions, more: readon
   oneOf('rankBy', rankBy, ['low', 'score']);
   const criteria = fertilityIndicators().filter(({ kind }) => kind === 'criterion');
   return {
-    criteria, weights: readWeights(what, options.weights, criteria), cut, interval: { method: interval, confidence }, basis, rankBy,
+    criteria,
+    weights: readWeights(what, options.weights, criteria),
+    cut,
+    interval: { method: interval, confidence },
+    basis,
+    rankBy,
     variation: { draws, spread, seed, first },
   };
 }
@@ -77,12 +95,16 @@ export function readSettings(what: string, options: RankingOptions, more: readon
 function readWeights(what: string, given: unknown, criteria: readonly FertilityIndicator[]): Readonly<Record<string, number>> {
   const weights: Record<string, number> = Object.fromEntries(criteria.map(({ key }) => [key, 0]));
   for (const { indicator, weight } of fertilityWeights()) weights[indicator] = weight;
-  if (given !== undefined && (typeof given !== 'object' || given === null)) throw new RangeError(`${what}: weights must be an object by indicator key, not ${String(given)}.`);
+  if (given !== undefined && (typeof given !== 'object' || given === null))
+    throw new RangeError(`${what}: weights must be an object by indicator key, not ${String(given)}.`);
   for (const [key, weight] of Object.entries((given ?? {}) as Record<string, unknown>)) {
-    if (!Object.hasOwn(weights, key)) throw new RangeError(`${what}: weights: there is no criterion "${key}". Known: ${Object.keys(weights).join(', ')}.`);
-    if (typeof weight !== 'number' || !(weight >= 0) || !Number.isFinite(weight)) throw new RangeError(`${what}: weights: ${key} must be a number from 0 up, not ${String(weight)}.`);
+    if (!Object.hasOwn(weights, key))
+      throw new RangeError(`${what}: weights: there is no criterion "${key}". Known: ${Object.keys(weights).join(', ')}.`);
+    if (typeof weight !== 'number' || !(weight >= 0) || !Number.isFinite(weight))
+      throw new RangeError(`${what}: weights: ${key} must be a number from 0 up, not ${String(weight)}.`);
     weights[key] = weight;
   }
-  if (Object.values(weights).every((weight) => weight === 0)) throw new RangeError(`${what}: all weights are 0; give at least one criterion a weight above 0.`);
+  if (Object.values(weights).every((weight) => weight === 0))
+    throw new RangeError(`${what}: all weights are 0; give at least one criterion a weight above 0.`);
   return weights;
 }

@@ -77,25 +77,53 @@ const condition = z.strictObject({ expression: text, is: z.enum(['>', '>=', '<',
 const basis = z.enum(['volatile-free', 'as given']).default('volatile-free');
 const silica = z.strictObject({ over: z.number().optional(), from: z.number().optional(), below: z.number().optional(), to: z.number().optional() });
 
-const indicatorSchema = z.strictObject({
-  key: z.string().regex(/^[a-z0-9-]+$/, 'a key is lower case letters, digits and -'),
-  name: text, kind: z.enum(['criterion', 'shown', 'trend']), family: text, expression: text, against: text.optional(),
-  towards: z.enum(['rising', 'falling']).optional(), rising: text.optional(), falling: text.optional(), flat: text.optional(),
-  conditions: z.array(condition).default([]), basis, silica, window: z.enum(['published', 'own convention']), mobile: z.array(text),
-  onAltered: z.enum(['strike', 'count']), source: text, standing: z.enum(standings), limits: text,
-}).check(({ value, issues }) => {
-  if ((value.kind === 'criterion') !== value.conditions.length > 0) issues.push({ code: 'custom', input: value, message: `${value.key}: a criterion has conditions, and nothing else has` });
-  if ((value.kind === 'trend') !== (value.against !== undefined)) issues.push({ code: 'custom', input: value, message: `${value.key}: a trend has "against", and nothing else has` });
-});
+const indicatorSchema = z
+  .strictObject({
+    key: z.string().regex(/^[a-z0-9-]+$/, 'a key is lower case letters, digits and -'),
+    name: text,
+    kind: z.enum(['criterion', 'shown', 'trend']),
+    family: text,
+    expression: text,
+    against: text.optional(),
+    towards: z.enum(['rising', 'falling']).optional(),
+    rising: text.optional(),
+    falling: text.optional(),
+    flat: text.optional(),
+    conditions: z.array(condition).default([]),
+    basis,
+    silica,
+    window: z.enum(['published', 'own convention']),
+    mobile: z.array(text),
+    onAltered: z.enum(['strike', 'count']),
+    source: text,
+    standing: z.enum(standings),
+    limits: text,
+  })
+  .check(({ value, issues }) => {
+    if ((value.kind === 'criterion') !== value.conditions.length > 0)
+      issues.push({ code: 'custom', input: value, message: `${value.key}: a criterion has conditions, and nothing else has` });
+    if ((value.kind === 'trend') !== (value.against !== undefined))
+      issues.push({ code: 'custom', input: value, message: `${value.key}: a trend has "against", and nothing else has` });
+  });
 
 const indicatorsSchema = z.strictObject({ about: text, reference: text, indicators: z.array(indicatorSchema) });
 
 const guardsSchema = z.strictObject({
   about: text,
-  guards: z.array(z.strictObject({
-    key: text, name: text, kind: z.enum(['alteration', 'weathering', 'cumulate', 'total']), effect: z.enum(['strike', 'exclude', 'caution']), label: text.optional(),
-    conditions: z.array(condition).default([]), basis, source: z.string(), standing: z.enum(standings), note: text,
-  })),
+  guards: z.array(
+    z.strictObject({
+      key: text,
+      name: text,
+      kind: z.enum(['alteration', 'weathering', 'cumulate', 'total']),
+      effect: z.enum(['strike', 'exclude', 'caution']),
+      label: text.optional(),
+      conditions: z.array(condition).default([]),
+      basis,
+      source: z.string(),
+      standing: z.enum(standings),
+      note: text,
+    }),
+  ),
 });
 
 const weightsSchema = z.strictObject({ about: text, weights: z.array(z.strictObject({ indicator: text, weight: z.number().min(0), why: text })) });
@@ -135,4 +163,9 @@ export function fertilityGuards(): readonly FertilityGuard[] {
 /** The default weights of the evidence score, with the reason for each. Indicators that are not named here weigh nothing. */
 export function fertilityWeights(): readonly FertilityWeight[] {
   return weightTable().weights;
+}
+
+/** @internal Conditions in words, as the sources sheet and the lineage give them. */
+export function conditionsText({ conditions }: { readonly conditions: readonly FertilityCondition[] }): string {
+  return conditions.map(({ expression, is, limit }) => `${expression} ${is} ${limit}`).join('; ');
 }

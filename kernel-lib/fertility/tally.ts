@@ -65,10 +65,20 @@ export interface IntervalChoice {
 }
 
 /** @internal The share met and its interval. */
-export function shareOf(met: number, near: number, notMet: number, interval: IntervalChoice): { asked: number; share: number; low: number; high: number } {
+export function shareOf(
+  met: number,
+  near: number,
+  notMet: number,
+  interval: IntervalChoice,
+): { asked: number; share: number; low: number; high: number } {
   const asked = met + near + notMet;
   if (asked === 0) return { asked, share: NaN, low: 0, high: 1 };
-  return { asked, share: (met + near / 2) / asked, low: proportionInterval(met, asked, interval).low, high: proportionInterval(met + near, asked, interval).high };
+  return {
+    asked,
+    share: (met + near / 2) / asked,
+    low: proportionInterval(met, asked, interval).low,
+    high: proportionInterval(met + near, asked, interval).high,
+  };
 }
 
 /** @internal Counts of one criterion in every group: one entry a group. */
@@ -88,8 +98,14 @@ export function tallyByGroup(answers: IndicatorAnswers, grouping: Grouping, inte
     const count = (verdict: number) => counts[group * kinds + verdict];
     const [met, near, notMet] = [count(fertilityVerdict.met), count(fertilityVerdict.near), count(fertilityVerdict.notMet)];
     return {
-      indicator: answers.indicator.key, met, near, notMet, ...shareOf(met, near, notMet, interval),
-      notApplicable: count(fertilityVerdict.notApplicable), guarded: guarded[group], notMeasured: count(fertilityVerdict.notMeasured),
+      indicator: answers.indicator.key,
+      met,
+      near,
+      notMet,
+      ...shareOf(met, near, notMet, interval),
+      notApplicable: count(fertilityVerdict.notApplicable),
+      guarded: guarded[group],
+      notMeasured: count(fertilityVerdict.notMeasured),
     };
   });
 }

@@ -34,15 +34,43 @@ export function screenView(screen: FertilityScreen): TableView {
   const criteria = weightedCriteria(screen);
   return {
     title: `Copper-gold screening of ${screen.suite.size} samples by ${screen.label}`,
-    columns: ['rank', screen.label, 'verdict', 'score', '95 % from', 'to', 'samples', 'asked', 'struck out', 'left out', ...criteria.map(({ name }) => name), 'lines of evidence',
-      'rank if weights vary', 'smallest further measurement'],
+    columns: [
+      'rank',
+      screen.label,
+      'verdict',
+      'score',
+      '95 % from',
+      'to',
+      'samples',
+      'asked',
+      'struck out',
+      'left out',
+      ...criteria.map(({ name }) => name),
+      'lines of evidence',
+      'rank if weights vary',
+      'smallest further measurement',
+    ],
     rows: screen.groups.map((group) => [
-      group.rank, group.group, group.verdict, two(group.score), two(group.low), two(group.high), group.samples, group.asked, group.struckOut, group.leftOut,
-      ...criteria.map(({ at }) => shareText(group, at)), group.agreement, ranksText(group), furtherText(group),
+      group.rank,
+      group.group,
+      group.verdict,
+      two(group.score),
+      two(group.low),
+      two(group.high),
+      group.samples,
+      group.asked,
+      group.struckOut,
+      group.leftOut,
+      ...criteria.map(({ at }) => shareText(group, at)),
+      group.agreement,
+      ranksText(group),
+      furtherText(group),
     ]),
     notes: screen.cautions,
   };
 }
+
+const effectText = { strike: 'struck out', exclude: 'left out', caution: 'counted, with caution' } as const;
 
 /**
  * Every indicator's word on one sample, with what was struck out and why.
@@ -56,9 +84,11 @@ export function screenView(screen: FertilityScreen): TableView {
 export function explainFertility(screen: FertilityScreen, sample: string): TableView {
   const rows = screen.suite.samples.flatMap((name, row) => (name === sample ? [row] : []));
   if (rows.length !== 1) {
-    throw new RangeError(rows.length === 0
-      ? `explainFertility: there is no sample "${sample}". The first names are: ${screen.suite.samples.slice(0, 8).join(', ')}.`
-      : `explainFertility: "${sample}" names ${rows.length} rows (${rows.map((row) => row + 1).join(', ')}); give every sample its own name.`);
+    throw new RangeError(
+      rows.length === 0
+        ? `explainFertility: there is no sample "${sample}". The first names are: ${screen.suite.samples.slice(0, 8).join(', ')}.`
+        : `explainFertility: "${sample}" names ${rows.length} rows (${rows.map((row) => row + 1).join(', ')}); give every sample its own name.`,
+    );
   }
   const [row] = rows;
   const flagged = screen.guards.filter(({ flags }) => flags[row] === 1);
@@ -66,14 +96,19 @@ export function explainFertility(screen: FertilityScreen, sample: string): Table
     title: `${sample}: what the screening asked`,
     columns: ['indicator', 'value', 'verdict', 'why', 'limits of use', 'source', 'standing'],
     rows: screen.answers.map(({ indicator, values, verdicts, reasons, withoutGuards }) => [
-      indicator.name, values?.values[row] ?? null,
-      indicator.kind === 'criterion' ? verdictText(verdicts[row], reasons[row], withoutGuards[row]) : indicator.kind === 'shown' ? 'shown only' : 'read on the group',
-      fertilityReasonNames[reasons[row]], indicator.limits, shortSource(indicator.source), indicator.standing,
+      indicator.name,
+      values?.values[row] ?? null,
+      indicator.kind === 'criterion'
+        ? verdictText(verdicts[row], reasons[row], withoutGuards[row])
+        : indicator.kind === 'shown'
+          ? 'shown only'
+          : 'read on the group',
+      fertilityReasonNames[reasons[row]],
+      indicator.limits,
+      shortSource(indicator.source),
+      indicator.standing,
     ]),
-    notes: [
-      ...flagged.map(({ guard }) => `Flagged: ${guard.name} (${guard.effect === 'strike' ? 'struck out' : guard.effect === 'exclude' ? 'left out' : 'counted, with caution'}). ${guard.note}`),
-      ...screen.cautions,
-    ],
+    notes: [...flagged.map(({ guard }) => `Flagged: ${guard.name} (${effectText[guard.effect]}). ${guard.note}`), ...screen.cautions],
   };
 }
 

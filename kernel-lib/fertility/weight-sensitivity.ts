@@ -27,13 +27,20 @@ export interface WeightVariation {
  * @param tallies by group, each in the order of `weighted`
  * @param by which end of the score decides the rank
  */
-export function rankRanges(tallies: readonly (readonly IndicatorTally[])[], weighted: readonly Weighted[], by: 'low' | 'score', variation: WeightVariation): RankRange[] {
+export function rankRanges(
+  tallies: readonly (readonly IndicatorTally[])[],
+  weighted: readonly Weighted[],
+  by: 'low' | 'score',
+  variation: WeightVariation,
+): RankRange[] {
   const groups = tallies.length;
   const { draws, spread, seed, first } = variation;
   const generator = xoroshiro128plus(seed);
   const used = weighted.map(({ weight }, k) => ({ weight, k })).filter(({ weight }) => weight > 0);
   // Flat copies of what each draw reads: shares by group, NaN where a criterion could not be asked.
-  const parts = used.map(({ k }) => Float64Array.from(tallies, (group) => (group[k].asked === 0 ? NaN : by === 'low' ? group[k].low : group[k].share)));
+  const parts = used.map(({ k }) =>
+    Float64Array.from(tallies, (group) => (group[k].asked === 0 ? NaN : by === 'low' ? group[k].low : group[k].share)),
+  );
   const ranks = new Int32Array(groups * draws);
   const scores = new Float64Array(groups);
   const order = new Uint32Array(groups);

@@ -47,8 +47,9 @@ const groups = [
 
 /** Chondrite values of the normalising reference, for rare earths given as normalised ratios. */
 const chondrite = Object.fromEntries(
-  Papa.parse(readFileSync(join(here, '../../reference-tables/reservoirs.csv'), 'utf8'), { header: true, skipEmptyLines: true }).data
-    .filter((row) => row.reservoir === 'chondrite-c1-1989').map((row) => [row.analyte, Number(row.value)]),
+  Papa.parse(readFileSync(join(here, '../../reference-tables/reservoirs.csv'), 'utf8'), { header: true, skipEmptyLines: true })
+    .data.filter((row) => row.reservoir === 'chondrite-c1-1989')
+    .map((row) => [row.analyte, Number(row.value)]),
 );
 const rareEarths = ['La', 'Ce', 'Nd', 'Sm', 'Eu', 'Gd', 'Dy', 'Yb'];
 
@@ -67,8 +68,16 @@ const draw = ([mean, sd], least = 0.1) => Math.max(least, normal(mean, sd));
 function majors(silica, potassium) {
   const s = silica - 54;
   const oxides = {
-    SiO2: silica, TiO2: 1.05 - 0.04 * s, Al2O3: 17.6 - 0.14 * s, FeOT: 8.4 - 0.4 * s, MnO: 0.16 - 0.007 * s, MgO: 4.6 - 0.24 * s, CaO: 8.1 - 0.36 * s, Na2O: 3.3 + 0.06 * s,
-    K2O: potassium * (1.0 + 0.11 * s), P2O5: 0.24 - 0.008 * s,
+    SiO2: silica,
+    TiO2: 1.05 - 0.04 * s,
+    Al2O3: 17.6 - 0.14 * s,
+    FeOT: 8.4 - 0.4 * s,
+    MnO: 0.16 - 0.007 * s,
+    MgO: 4.6 - 0.24 * s,
+    CaO: 8.1 - 0.36 * s,
+    Na2O: 3.3 + 0.06 * s,
+    K2O: potassium * (1.0 + 0.11 * s),
+    P2O5: 0.24 - 0.008 * s,
   };
   for (const oxide of Object.keys(oxides)) if (oxide !== 'SiO2') oxides[oxide] = Math.max(0.02, measured(oxides[oxide], 0.05));
   const rest = Object.entries(oxides).reduce((sum, [oxide, value]) => sum + (oxide === 'SiO2' ? 0 : value), 0);
@@ -90,11 +99,21 @@ function sampleOf(group, number) {
   normalised.La = normalised.Yb * laYb;
   // Straight in the logarithm from La to Yb, sagging a little in the middle, as hornblende makes it; Eu by its anomaly.
   const place = { Ce: 0.12, Nd: 0.3, Sm: 0.48, Gd: 0.62, Dy: 0.78 };
-  for (const [element, along] of Object.entries(place)) normalised[element] = normalised.La * laYb ** -along * (1 - 0.3 * along * (1 - along) - (element === 'Dy' ? 0.008 * (silica - 60) : 0));
+  for (const [element, along] of Object.entries(place))
+    normalised[element] = normalised.La * laYb ** -along * (1 - 0.3 * along * (1 - along) - (element === 'Dy' ? 0.008 * (silica - 60) : 0));
   normalised.Eu = draw(kind.eu, 0.4) * Math.sqrt(normalised.Sm * normalised.Gd);
   const elements = {
-    Sc: scandium, V: vanadium, Cr: 6 + 12 * Math.max(0, oxides.MgO), Ni: 4 + 6 * Math.max(0, oxides.MgO), Cu: group.kind === 'fertile' ? draw([62, 18], 8) : draw([14 + 12 * oxides.MgO, 8], 3),
-    Rb: 22 + 12 * oxides.K2O * 1.6, Sr: strontium, Y: yttrium, Zr: 95 + 3 * (silica - 54), Ba: 300 + 180 * oxides.K2O, ...Object.fromEntries(rareEarths.map((element) => [element, normalised[element] * chondrite[element]])),
+    Sc: scandium,
+    V: vanadium,
+    Cr: 6 + 12 * Math.max(0, oxides.MgO),
+    Ni: 4 + 6 * Math.max(0, oxides.MgO),
+    Cu: group.kind === 'fertile' ? draw([62, 18], 8) : draw([14 + 12 * oxides.MgO, 8], 3),
+    Rb: 22 + 12 * oxides.K2O * 1.6,
+    Sr: strontium,
+    Y: yttrium,
+    Zr: 95 + 3 * (silica - 54),
+    Ba: 300 + 180 * oxides.K2O,
+    ...Object.fromEntries(rareEarths.map((element) => [element, normalised[element] * chondrite[element]])),
   };
   let loss = Math.max(0.1, normal(1.1, 0.5));
   let note = '';
@@ -126,13 +145,26 @@ const fixed = (value, digits) => Number(value.toFixed(digits));
 const limits = { Sc: 3, V: 5, Cr: 10, Ni: 5, Cu: 5 };
 
 function row({ group, number, asGiven, loss, elements, note, latitude, longitude }) {
-  const out = { Sample: `${group.name.slice(0, 2).toUpperCase()}-${String(number).padStart(3, '0')}`, Intrusion: group.name, Latitude: fixed(latitude, 5), Longitude: fixed(longitude, 5), Alteration: note };
-  for (const [oxide, value] of Object.entries(asGiven)) out[oxide === 'FeOT' ? 'FeO* (wt%)' : `${oxide} (wt%)`] = fixed(value, oxide === 'MnO' || oxide === 'P2O5' ? 3 : 2);
+  const out = {
+    Sample: `${group.name.slice(0, 2).toUpperCase()}-${String(number).padStart(3, '0')}`,
+    Intrusion: group.name,
+    Latitude: fixed(latitude, 5),
+    Longitude: fixed(longitude, 5),
+    Alteration: note,
+  };
+  for (const [oxide, value] of Object.entries(asGiven))
+    out[oxide === 'FeOT' ? 'FeO* (wt%)' : `${oxide} (wt%)`] = fixed(value, oxide === 'MnO' || oxide === 'P2O5' ? 3 : 2);
   out['LOI (wt%)'] = fixed(loss, 2);
   for (const [element, value] of Object.entries(elements)) {
     const given = measured(value, 0.03);
     const lacking = group.lacks.includes(element) || (group.lacks.includes('rare earths') && rareEarths.includes(element));
-    out[`${element} (ppm)`] = lacking ? '' : given < (limits[element] ?? 0) ? `<${limits[element]}` : given >= 100 ? fixed(given, 0) : fixed(given, 2);
+    out[`${element} (ppm)`] = lacking
+      ? ''
+      : given < (limits[element] ?? 0)
+        ? `<${limits[element]}`
+        : given >= 100
+          ? fixed(given, 0)
+          : fixed(given, 2);
   }
   return out;
 }
@@ -148,4 +180,7 @@ function write(file, text) {
   renameSync(join(here, `${file}.part`), join(here, file));
 }
 write('oruvai-intrusions.csv', `${Papa.unparse(samples.map(row), { newline: '\n' })}\n`);
-write('oruvai-intrusions-truth.json', `${JSON.stringify({ seed, groups: groups.map(({ name, kind, n, lacks, altered }) => ({ name, kind, samples: n, lacks, altered })) }, null, 1)}\n`);
+write(
+  'oruvai-intrusions-truth.json',
+  `${JSON.stringify({ seed, groups: groups.map(({ name, kind, n, lacks, altered }) => ({ name, kind, samples: n, lacks, altered })) }, null, 1)}\n`,
+);

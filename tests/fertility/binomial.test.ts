@@ -34,16 +34,24 @@ describe('proportionInterval', () => {
   });
 
   it('holds the share, narrows with more samples, and mirrors', () => {
-    fc.assert(fc.property(fc.integer({ min: 1, max: 400 }), fc.double({ min: 0, max: 1, noNaN: true }), fc.constantFrom('wilson' as const, 'clopper-pearson' as const), (asked, part, method) => {
-      const met = Math.round(part * asked);
-      const { low, high } = proportionInterval(met, asked, { method });
-      const mirrored = proportionInterval(asked - met, asked, { method });
-      const more = proportionInterval(10 * met, 10 * asked, { method });
-      expect(low).toBeLessThanOrEqual(met / asked + 1e-12);
-      expect(high).toBeGreaterThanOrEqual(met / asked - 1e-12);
-      expect(mirrored.low).toBeCloseTo(1 - high, 6);
-      expect(more.high - more.low).toBeLessThan(high - low + 1e-9);
-    }), { numRuns: 150 });
+    fc.assert(
+      fc.property(
+        fc.integer({ min: 1, max: 400 }),
+        fc.double({ min: 0, max: 1, noNaN: true }),
+        fc.constantFrom('wilson' as const, 'clopper-pearson' as const),
+        (asked, part, method) => {
+          const met = Math.round(part * asked);
+          const { low, high } = proportionInterval(met, asked, { method });
+          const mirrored = proportionInterval(asked - met, asked, { method });
+          const more = proportionInterval(10 * met, 10 * asked, { method });
+          expect(low).toBeLessThanOrEqual(met / asked + 1e-12);
+          expect(high).toBeGreaterThanOrEqual(met / asked - 1e-12);
+          expect(mirrored.low).toBeCloseTo(1 - high, 6);
+          expect(more.high - more.low).toBeLessThan(high - low + 1e-9);
+        },
+      ),
+      { numRuns: 150 },
+    );
   });
 
   it('refuses counts that are not counts', () => {

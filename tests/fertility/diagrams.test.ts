@@ -13,7 +13,10 @@ function rowsOf(spec: unknown): Record<string, number | string>[] {
   return Array.isArray(values) ? (values as Record<string, number | string>[]) : Object.values(spec).flatMap(rowsOf);
 }
 
-const vertices = (spec: unknown) => rowsOf(spec).filter((row) => 'i' in row).map(({ x, y }) => [x, y]);
+const vertices = (spec: unknown) =>
+  rowsOf(spec)
+    .filter((row) => 'i' in row)
+    .map(({ x, y }) => [x, y]);
 
 describe('diagrams of the screening criteria', () => {
   it('draws the published limits as numbers of the tables', () => {
@@ -29,21 +32,26 @@ describe('diagrams of the screening criteria', () => {
     expect(silica).toContainEqual([56, 20]);
   });
 
-  it.each(['strontiumYttrium', 'lanthanumYtterbium', 'vanadiumScandium', 'strontiumYttriumSilica'] as const)('%s names its sources and counts every sample', async (name) => {
-    const diagram = diagrams[name](screen);
-    expect(diagram.counts.plotted + diagram.counts.notPlotted).toBe(3000);
-    const caption = (diagram.spec as { title: { text: readonly string[] } }).title.text.join(' ');
-    expect(caption).toContain('it does not find ore');
-    expect(caption).toMatch(/Loucks 2014|Martin 1986/);
-    expect(sources(diagram).keys.length).toBeGreaterThan(3);
-    expect(await diagrams.specWarnings(diagram.spec)).toEqual([]);
-    expect((await diagram.png()).length).toBeGreaterThan(10_000);
-  });
+  it.each(['strontiumYttrium', 'lanthanumYtterbium', 'vanadiumScandium', 'strontiumYttriumSilica'] as const)(
+    '%s names its sources and counts every sample',
+    async (name) => {
+      const diagram = diagrams[name](screen);
+      expect(diagram.counts.plotted + diagram.counts.notPlotted).toBe(3000);
+      const caption = (diagram.spec as { title: { text: readonly string[] } }).title.text.join(' ');
+      expect(caption).toContain('it does not find ore');
+      expect(caption).toMatch(/Loucks 2014|Martin 1986/);
+      expect(sources(diagram).keys.length).toBeGreaterThan(3);
+      expect(await diagrams.specWarnings(diagram.spec)).toEqual([]);
+      expect((await diagram.png()).length).toBeGreaterThan(10_000);
+    },
+  );
 
   it('draws guarded samples open, and colours by verdict', () => {
     const rows = rowsOf(diagrams.strontiumYttrium(screen).spec).filter((row) => 'g' in row);
     expect(new Set(rows.map(({ g }) => g))).toEqual(new Set(['supported', 'undecided', 'not supported']));
-    const guarded = Array.from({ length: suite.size }, (_, i) => screen.guards.some(({ guard, flags }) => guard.effect !== 'caution' && flags[i] === 1)).filter(Boolean).length;
+    const guarded = Array.from({ length: suite.size }, (_, i) =>
+      screen.guards.some(({ guard, flags }) => guard.effect !== 'caution' && flags[i] === 1),
+    ).filter(Boolean).length;
     expect(rows.filter((row) => 'o' in row)).toHaveLength(guarded);
   });
 

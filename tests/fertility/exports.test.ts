@@ -5,7 +5,15 @@ import { join } from 'node:path';
 import Papa from 'papaparse';
 import { readSheet } from 'read-excel-file/node';
 import { describe, expect, it } from 'vitest';
-import { column, fertilityGeoJson, saveFertilityCsv, saveFertilityGeoJson, saveFertilityWorkbook, screenFertility, standingCautions } from 'wedgework';
+import {
+  column,
+  fertilityGeoJson,
+  saveFertilityCsv,
+  saveFertilityGeoJson,
+  saveFertilityWorkbook,
+  screenFertility,
+  standingCautions,
+} from 'wedgework';
 import { intrusions, suiteLike } from './made-suites';
 
 const folder = mkdtempSync(join(tmpdir(), 'fertility-'));
@@ -15,7 +23,10 @@ const hostile = ['=HYPERLINK("x")', '+1', '-1', '@sum', '\t=1', 'plain, with "qu
 
 const placed = (latitude: readonly number[], longitude: readonly number[]) => {
   const base = suiteLike(latitude.map(() => ({})));
-  return screenFertility(base.with([column({ symbol: 'latitude', values: latitude, unit: '°' }), column({ symbol: 'longitude', values: longitude, unit: '°' })]), { group: 'unit' });
+  return screenFertility(
+    base.with([column({ symbol: 'latitude', values: latitude, unit: '°' }), column({ symbol: 'longitude', values: longitude, unit: '°' })]),
+    { group: 'unit' },
+  );
 };
 
 describe('GeoJSON', () => {
@@ -42,7 +53,11 @@ describe('GeoJSON', () => {
 
   it('carries verdict, rank and evidence of each group', () => {
     const of = fertilityGeoJson(screen).features.find(({ properties }) => properties.intrusion === 'Ambrel stock')!;
-    expect(of.properties).toMatchObject({ verdict: 'supported', 'sr-y-2014 met': expect.any(Number), 'check on labelled districts': screen.calibration.statement });
+    expect(of.properties).toMatchObject({
+      verdict: 'supported',
+      'sr-y-2014 met': expect.any(Number),
+      'check on labelled districts': screen.calibration.statement,
+    });
     expect(of.geometry).toMatchObject({ type: 'MultiPoint' });
     expect((of.geometry as { coordinates: readonly unknown[] }).coordinates).toHaveLength(180);
   });
@@ -83,9 +98,19 @@ describe('CSV', () => {
 
   it('makes texts inert that a spreadsheet would run, and quotes what needs it', () => {
     const path = join(folder, 'hostile.csv');
-    saveFertilityCsv(screenFertility(suiteLike(hostile.map(() => ({})), { labels: { sample: hostile, unit: hostile } }), { group: 'unit' }), path, { rows: 'samples' });
+    saveFertilityCsv(
+      screenFertility(
+        suiteLike(
+          hostile.map(() => ({})),
+          { labels: { sample: hostile, unit: hostile } },
+        ),
+        { group: 'unit' },
+      ),
+      path,
+      { rows: 'samples' },
+    );
     const { data } = Papa.parse<Record<string, string>>(readFileSync(path, 'utf8'), { header: true, skipEmptyLines: true });
-    expect(data.map((row) => row.sample)).toEqual(["'=HYPERLINK(\"x\")", "'+1", "'-1", "'@sum", "'\t=1", 'plain, with "quotes"']);
+    expect(data.map((row) => row.sample)).toEqual(['\'=HYPERLINK("x")', "'+1", "'-1", "'@sum", "'\t=1", 'plain, with "quotes"']);
     expect(data.every((row) => !/^[=+@]/.test(row.unit))).toBe(true);
   });
 });
@@ -107,7 +132,16 @@ describe('workbook', () => {
 
   it('makes texts inert that a spreadsheet would run', async () => {
     const path = join(folder, 'hostile.xlsx');
-    await saveFertilityWorkbook(screenFertility(suiteLike(hostile.map(() => ({})), { labels: { sample: hostile, unit: hostile } }), { group: 'unit' }), path);
+    await saveFertilityWorkbook(
+      screenFertility(
+        suiteLike(
+          hostile.map(() => ({})),
+          { labels: { sample: hostile, unit: hostile } },
+        ),
+        { group: 'unit' },
+      ),
+      path,
+    );
     const names = (await readSheet(path, 'Verdicts')).slice(1).map((row) => String(row[1]));
     expect(names.every((name) => !/^\s*[=+\-@]/.test(name))).toBe(true);
   });

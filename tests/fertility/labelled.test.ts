@@ -5,7 +5,10 @@ import { describe, expect, it } from 'vitest';
 import { calibrateFertility, classify, fertilityVerdict, labelledDistricts, screenFertility, suiteOf, volatileFree } from 'wedgework';
 import { suiteLike } from './made-suites';
 
-const answers = Papa.parse<Record<string, string>>(readFileSync(join(__dirname, '../data/fertility/labelled-answers.csv'), 'utf8'), { header: true, skipEmptyLines: true }).data;
+const answers = Papa.parse<Record<string, string>>(readFileSync(join(__dirname, '../data/fertility/labelled-answers.csv'), 'utf8'), {
+  header: true,
+  skipEmptyLines: true,
+}).data;
 
 describe('the published analyses', () => {
   const suite = labelledDistricts();
@@ -19,7 +22,13 @@ describe('the published analyses', () => {
   });
 
   // Independently computed from the printed analyses; tolerance is half of the last digit given.
-  it.each([['sr-y-2014', 'Sr/Y', 2], ['v-sc-2014', 'V/Sc', 2], ['la-yb-1986', '(La/Yb)N', 3], ['eu-anomaly', 'Eu/Eu*', 3], ['sr-mno', 'Sr/MnO', 0]] as const)('%s: %s', (key, column, digits) => {
+  it.each([
+    ['sr-y-2014', 'Sr/Y', 2],
+    ['v-sc-2014', 'V/Sc', 2],
+    ['la-yb-1986', '(La/Yb)N', 3],
+    ['eu-anomaly', 'Eu/Eu*', 3],
+    ['sr-mno', 'Sr/MnO', 0],
+  ] as const)('%s: %s', (key, column, digits) => {
     const { values } = of(key).values!;
     let compared = 0;
     answers.forEach((row, i) => {
@@ -57,13 +66,15 @@ describe('the published analyses', () => {
   it('meet the 1990 list where the independent answer says so', () => {
     answers.forEach((row, i) => {
       const verdict = of('high-sr-y-1990').verdicts[i];
-      if (verdict === fertilityVerdict.met || verdict === fertilityVerdict.notMet) expect(verdict === fertilityVerdict.met).toBe(row['high Sr/Y 1990'] === 'True');
+      if (verdict === fertilityVerdict.met || verdict === fertilityVerdict.notMet)
+        expect(verdict === fertilityVerdict.met).toBe(row['high Sr/Y 1990'] === 'True');
     });
   });
 
   it('separate Grasberg from the three barren arcs by score, and not Baguio (one sample)', () => {
     const scores = new Map(screen.groups.map(({ group, score }) => [group, score]));
-    for (const barren of ['Seguam, Aleutians', 'Ijen, Java', 'Santorini, Aegean']) expect(scores.get('Grasberg Cu-Au, Papua')!).toBeGreaterThan(scores.get(barren)! + 0.3);
+    for (const barren of ['Seguam, Aleutians', 'Ijen, Java', 'Santorini, Aegean'])
+      expect(scores.get('Grasberg Cu-Au, Papua')!).toBeGreaterThan(scores.get(barren)! + 0.3);
     expect(scores.get('Baguio district, Luzon')).toBe(0);
   });
 });
@@ -83,23 +94,54 @@ describe('calibrateFertility', () => {
 
   it('sets the cut without the district that is called', () => {
     // Scores 1, 1, 0, 0 would give the cut 0.5 to all; without the only two of a kind there is none to set.
-    const [sound, poor] = [{ SiO2: 62, Sr: 700, Y: 10 }, { SiO2: 62, Sr: 200, Y: 20 }];
-    const of = (kinds: readonly (readonly [string, object])[]) => calibrateFertility({
-      labelled: suiteOf({ ...suiteLike(kinds.map(([, change]) => change as never)), labels: { district: kinds.map((_, i) => `D${i}`), label: kinds.map(([label]) => label) }, columns: suiteLike(kinds.map(([, change]) => change as never)).columns.values() }),
-      weights: { 'v-sc-2014': 0, 'la-yb-1986': 0 },
-    });
-    const even = of([['fertile', sound], ['fertile', sound], ['barren', poor], ['barren', poor]]);
-    expect(even.districts.map(({ cut, called }) => [cut, called])).toEqual([[0.5, 'fertile'], [0.5, 'fertile'], [0.5, 'barren'], [0.5, 'barren']]);
-    const lone = of([['fertile', sound], ['barren', poor], ['barren', poor]]);
+    const [sound, poor] = [
+      { SiO2: 62, Sr: 700, Y: 10 },
+      { SiO2: 62, Sr: 200, Y: 20 },
+    ];
+    const of = (kinds: readonly (readonly [string, object])[]) =>
+      calibrateFertility({
+        labelled: suiteOf({
+          ...suiteLike(kinds.map(([, change]) => change as never)),
+          labels: { district: kinds.map((_, i) => `D${i}`), label: kinds.map(([label]) => label) },
+          columns: suiteLike(kinds.map(([, change]) => change as never)).columns.values(),
+        }),
+        weights: { 'v-sc-2014': 0, 'la-yb-1986': 0 },
+      });
+    const even = of([
+      ['fertile', sound],
+      ['fertile', sound],
+      ['barren', poor],
+      ['barren', poor],
+    ]);
+    expect(even.districts.map(({ cut, called }) => [cut, called])).toEqual([
+      [0.5, 'fertile'],
+      [0.5, 'fertile'],
+      [0.5, 'barren'],
+      [0.5, 'barren'],
+    ]);
+    const lone = of([
+      ['fertile', sound],
+      ['barren', poor],
+      ['barren', poor],
+    ]);
     expect(lone.districts.map(({ called }) => called)).toEqual(['not asked', 'barren', 'barren']);
     expect(lone.statement).toContain('none could be asked');
     // A fertile district that scores like a barren one is missed: the cut of the others does not know it.
-    expect(of([['fertile', sound], ['fertile', poor], ['barren', poor], ['barren', poor]]).hits).toMatchObject({ count: 1, of: 2 });
+    expect(
+      of([
+        ['fertile', sound],
+        ['fertile', poor],
+        ['barren', poor],
+        ['barren', poor],
+      ]).hits,
+    ).toMatchObject({ count: 1, of: 2 });
   });
 
   it('speaks of rates with ten districts of each kind', () => {
     const kinds = Array.from({ length: 20 }, (_, i) => (i % 2 === 0 ? { SiO2: 62, Sr: 700, Y: 10 } : { SiO2: 62, Sr: 200, Y: 20 }));
-    const suite = suiteLike(kinds, { labels: { district: kinds.map((_, i) => `D${i}`), label: kinds.map((_, i) => (i % 2 === 0 ? 'fertile' : 'barren')) } });
+    const suite = suiteLike(kinds, {
+      labels: { district: kinds.map((_, i) => `D${i}`), label: kinds.map((_, i) => (i % 2 === 0 ? 'fertile' : 'barren')) },
+    });
     const found = calibrateFertility({ labelled: suite });
     expect([found.enough, found.hits.count, found.falseAlarms.count]).toEqual([true, 10, 0]);
     expect(found.statement).not.toContain('too few');

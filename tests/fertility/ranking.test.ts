@@ -1,6 +1,15 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { explainFertility, fertilityIndicators, fertilityWeights, findSource, rankGroups, screenFertility, sources, standingCautions } from 'wedgework';
+import {
+  explainFertility,
+  fertilityIndicators,
+  fertilityWeights,
+  findSource,
+  rankGroups,
+  screenFertility,
+  sources,
+  standingCautions,
+} from 'wedgework';
 import { intrusions, suiteLike } from './made-suites';
 
 const sound = { SiO2: 62, Sr: 700, Y: 10, V: 150, Sc: 10, La: 25, Yb: 1 };
@@ -17,12 +26,22 @@ describe('the planted batch of 3,000 assays', () => {
   });
 
   it('ranks the four fertile groups first', () => {
-    expect(screen.groups.slice(0, 4).map(({ group }) => group).sort()).toEqual([...fertile].sort());
+    expect(
+      screen.groups
+        .slice(0, 4)
+        .map(({ group }) => group)
+        .sort(),
+    ).toEqual([...fertile].sort());
     for (const group of screen.groups.slice(0, 4)) expect(group.ranks.worst).toBeLessThanOrEqual(4);
   });
 
   it('supports those that two independent lines speak for, and no other', () => {
-    expect(screen.groups.filter(({ verdict }) => verdict === 'supported').map(({ group }) => group).sort()).toEqual(['Ambrel stock', 'Ludrin dykes', 'Torvane porphyry']);
+    expect(
+      screen.groups
+        .filter(({ verdict }) => verdict === 'supported')
+        .map(({ group }) => group)
+        .sort(),
+    ).toEqual(['Ambrel stock', 'Ludrin dykes', 'Torvane porphyry']);
   });
 
   it('names what the group without Sc is missing', () => {
@@ -60,7 +79,8 @@ describe('the planted batch of 3,000 assays', () => {
 
   it('gives the same bytes again, whatever the order of the rows', () => {
     const again = screenFertility(suite.rows(Array.from({ length: suite.size }, (_, i) => suite.size - 1 - i)), { group: 'intrusion' });
-    const plain = (groups: typeof screen.groups) => groups.map(({ group, rank, score, low, high, verdict }) => ({ group, rank, score, low, high, verdict }));
+    const plain = (groups: typeof screen.groups) =>
+      groups.map(({ group, rank, score, low, high, verdict }) => ({ group, rank, score, low, high, verdict }));
     expect(plain(again.groups)).toEqual(plain(screen.groups));
     expect(JSON.stringify(screenFertility(suite, { group: 'intrusion' }).groups)).toBe(JSON.stringify(screen.groups));
   });
@@ -88,19 +108,35 @@ describe('the score', () => {
 
   it('lies between 0 and 1 inside its interval, and never falls when a sample turns from not met to met', () => {
     const asked = fc.array(fc.record({ srY: fc.boolean(), vSc: fc.boolean(), laYb: fc.boolean() }), { minLength: 1, maxLength: 12 });
-    fc.assert(fc.property(asked, fc.nat(11), (samples, at) => {
-      const scoreOf = (of: typeof samples) => screenFertility(suiteLike(of.map(({ srY, vSc, laYb }) => ({ SiO2: 62, ...(srY ? { Sr: 700, Y: 10 } : { Sr: 250, Y: 22 }), V: vSc ? 150 : 60, Sc: 10, La: laYb ? 25 : 5, Yb: 1 }))),
-        { group: 'unit', draws: 1 }).groups[0];
-      const before = scoreOf(samples);
-      const after = scoreOf(samples.map((sample, i) => (i === at % samples.length ? { srY: true, vSc: true, laYb: true } : sample)));
-      expect(before.score).toBeGreaterThanOrEqual(before.low - 1e-12);
-      expect(before.score).toBeLessThanOrEqual(before.high + 1e-12);
-      expect(after.score).toBeGreaterThanOrEqual(before.score - 1e-12);
-    }), { numRuns: 40 });
+    fc.assert(
+      fc.property(asked, fc.nat(11), (samples, at) => {
+        const scoreOf = (of: typeof samples) =>
+          screenFertility(
+            suiteLike(
+              of.map(({ srY, vSc, laYb }) => ({
+                SiO2: 62,
+                ...(srY ? { Sr: 700, Y: 10 } : { Sr: 250, Y: 22 }),
+                V: vSc ? 150 : 60,
+                Sc: 10,
+                La: laYb ? 25 : 5,
+                Yb: 1,
+              })),
+            ),
+            { group: 'unit', draws: 1 },
+          ).groups[0];
+        const before = scoreOf(samples);
+        const after = scoreOf(samples.map((sample, i) => (i === at % samples.length ? { srY: true, vSc: true, laYb: true } : sample)));
+        expect(before.score).toBeGreaterThanOrEqual(before.low - 1e-12);
+        expect(before.score).toBeLessThanOrEqual(before.high + 1e-12);
+        expect(after.score).toBeGreaterThanOrEqual(before.score - 1e-12);
+      }),
+      { numRuns: 40 },
+    );
   });
 
   it('supports with two lines, stays open with one, and says against', () => {
-    const verdict = (change: object, count = 6) => screenFertility(suiteLike(Array.from({ length: count }, () => change as never)), { group: 'unit' }).groups[0];
+    const verdict = (change: object, count = 6) =>
+      screenFertility(suiteLike(Array.from({ length: count }, () => change as never)), { group: 'unit' }).groups[0];
     expect(verdict(sound).verdict).toBe('supported');
     expect(verdict({ ...sound, Sc: NaN, Yb: NaN })).toMatchObject({ verdict: 'undecided', because: 'one line of evidence only (Sr–Y)' });
     expect(verdict(poor).verdict).toBe('not supported');
@@ -112,16 +148,27 @@ describe('the score', () => {
   it('asks for new samples where those in hand cannot settle it', () => {
     const [group] = screenFertility(suiteLike([sound, sound]), { group: 'unit' }).groups;
     // Two of two give a Wilson low end of 0.342; four of four is the fewest over 0.5 (0.5101), so two more that are like them.
-    expect(group.further).toMatchObject({ on: 'new samples', samples: 2, analytes: ['Sr', 'Y', 'V', 'Sc', 'La', 'Yb'], outcomes: [{ if: 'as so far', verdict: 'supported' }] });
+    expect(group.further).toMatchObject({
+      on: 'new samples',
+      samples: 2,
+      analytes: ['Sr', 'Y', 'V', 'Sc', 'La', 'Yb'],
+      outcomes: [{ if: 'as so far', verdict: 'supported' }],
+    });
   });
 });
 
 describe('weights', () => {
-  const suite = suiteLike([...Array(6).fill({ ...sound, V: 60 }), ...Array(6).fill({ ...sound, Sr: 250, Y: 22, La: 5 })], { labels: { unit: [...Array(6).fill('high Sr/Y'), ...Array(6).fill('high V/Sc')] } });
+  const suite = suiteLike([...Array(6).fill({ ...sound, V: 60 }), ...Array(6).fill({ ...sound, Sr: 250, Y: 22, La: 5 })], {
+    labels: { unit: [...Array(6).fill('high Sr/Y'), ...Array(6).fill('high V/Sc')] },
+  });
   const screen = screenFertility(suite, { group: 'unit' });
 
   it('change the rank, and the table of weights is what is used', () => {
-    expect(fertilityWeights().map(({ indicator, weight }) => [indicator, weight])).toEqual([['sr-y-2014', 1], ['v-sc-2014', 1], ['la-yb-1986', 0.5]]);
+    expect(fertilityWeights().map(({ indicator, weight }) => [indicator, weight])).toEqual([
+      ['sr-y-2014', 1],
+      ['v-sc-2014', 1],
+      ['la-yb-1986', 0.5],
+    ]);
     expect(screen.groups.map(({ group }) => group)).toEqual(['high Sr/Y', 'high V/Sc']);
     expect(screen.groups[0].score).toBeCloseTo(1.5 / 2.5, 12);
     const other = rankGroups(screen, { weights: { 'v-sc-2014': 5 } });
@@ -132,8 +179,14 @@ describe('weights', () => {
   });
 
   it('are varied to show how firm a rank is, by a seed in the lineage', () => {
-    expect(screen.groups.map(({ ranks }) => [ranks.best, ranks.worst])).toEqual([[1, 2], [1, 2]]);
-    expect(rankGroups(screen, { spread: 1 }).groups.map(({ ranks }) => [ranks.best, ranks.worst])).toEqual([[1, 1], [2, 2]]);
+    expect(screen.groups.map(({ ranks }) => [ranks.best, ranks.worst])).toEqual([
+      [1, 2],
+      [1, 2],
+    ]);
+    expect(rankGroups(screen, { spread: 1 }).groups.map(({ ranks }) => [ranks.best, ranks.worst])).toEqual([
+      [1, 1],
+      [2, 2],
+    ]);
     expect(screen.lineage.at(-1)!.detail).toMatchObject({ seed: 7946, draws: 1000, weights: expect.objectContaining({ 'sr-y-2014': 1 }) });
     const share = (seed: number) => rankGroups(screen, { seed, first: 1 }).groups[0].ranks.amongFirst;
     expect(share(1)).toBe(share(1));

@@ -22,7 +22,11 @@ await ww.saveFertilityWorkbook(screen, workbook);
 
 function convert(to) {
   // A profile of its own, so that a LibreOffice that is open does not take the work over and refuse it.
-  execFileSync('soffice', [`-env:UserInstallation=file://${join(folder, 'profile')}`, '--headless', '--convert-to', to, '--outdir', folder, workbook], { stdio: 'pipe', timeout: 180_000 });
+  execFileSync(
+    'soffice',
+    [`-env:UserInstallation=file://${join(folder, 'profile')}`, '--headless', '--convert-to', to, '--outdir', folder, workbook],
+    { stdio: 'pipe', timeout: 180_000 },
+  );
 }
 convert('pdf');
 convert('csv:Text - txt - csv (StarCalc):44,34,76,1');
