@@ -13,3 +13,4 @@ export { immobileAffinity, type ImmobileAffinity } from './immobile-affinity';
 export { arcMagmaKinds, type ArcMagmaKinds } from './arc-magma-kinds';
 export { consensus, type Consensus, type ConsensusOptions } from './consensus';
 export { explain, type Explanation, type ExplanationStep } from './explain';
+export { typicalDoubt } from './typical-doubt';

@@ -67,7 +67,8 @@ function touched(scheme: Scheme): readonly string[] {
   return [...new Set([...needs, ...iron, ...(scheme.basis === 'volatile-free' || scheme.criteria.some(({ basis }) => basis === 'volatile-free') ? sumOxides : [])])];
 }
 
-function uncertainSymbols(raw: Suite, schemes: readonly Scheme[]): readonly string[] {
+/** Columns with a 1σ that reaches one of the schemes. */
+export function uncertainSymbols(raw: Suite, schemes: readonly Scheme[]): readonly string[] {
   const wanted = new Set(schemes.flatMap(touched));
   return [...raw.columns.values()].filter(({ symbol, sigma }) => wanted.has(symbol) && sigma !== undefined && sigma.some((each) => each > 0)).map(({ symbol }) => symbol);
 }
@@ -135,7 +136,8 @@ function analytic(raw: Suite, iron: IronBasis, verdicts: readonly SchemeVerdict[
   return found;
 }
 
-function boundMasses({ bounds, axes }: Scheme, value: number, sigma: number, out: Float64Array): void {
+/** Masses of a normal between the bounds of a one-axis scheme. */
+export function boundMasses({ bounds, axes }: Scheme, value: number, sigma: number, out: Float64Array): void {
   if (!(sigma > 0) || !Number.isFinite(value)) {
     out.fill(NaN);
     return;

@@ -74,7 +74,7 @@ function outlinesOf(made: SchemeFile, frame: Frame, points: readonly SchemePoint
       return { outlines, lines, ranges: whole };
     }
     case 'criteria':
-      return { outlines: made.fields.map(() => []), lines: criterionLines(made, frame), ranges: whole };
+      return { outlines: made.fields.map(() => []), lines: [...criterionLines(made, frame), ...made.lines.map((line): SchemeLine => ({ name: line.name, points: linePoints(line, made, fail), published: true }))], ranges: whole };
     case 'points':
       return { outlines: made.fields.map(() => []), lines: linesThroughPoints(made, frame, points, fail), ranges: whole };
   }

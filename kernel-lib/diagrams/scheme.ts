@@ -1,4 +1,4 @@
-import { classify, findScheme, probabilityText, schemeColumns, verdictOf, type Scheme, type SchemeVerdict } from '../classify';
+import { classify, findScheme, probabilityText, schemeColumns, typicalDoubt, verdictOf, type Scheme, type SchemeVerdict, type Uncertainty } from '../classify';
 import type { IronBasis } from '../recast';
 import { column, step, type Column, type Suite } from '../suite';
 import { bibliography, shortSource } from '../tables';
@@ -12,9 +12,11 @@ import { markersLayer, pathsLayer } from './layers/markers';
 import { linesLayer } from './layers/lines';
 import { namesLayer } from './layers/names';
 import { samplesLayer } from './layers/samples';
+import { shadingLayer } from './layers/shading';
+import type { Layer } from './layer';
 import { pathShapes, type PathInput } from './model-paths';
 import { checkSampleOptions, samplePoints, type SampleOptions } from './sample-points';
-import { ternaryFrame, ternaryLayer, ternaryPoint, type TernaryCorner } from './ternary';
+import { ternaryFrame, ternaryLayer, ternaryPoint, ternaryShares, type TernaryCorner } from './ternary';
 
 /** What the diagram of a classification scheme takes, besides what all diagrams take. */
 export interface SchemeDiagramOptions extends SampleOptions {
@@ -26,6 +28,10 @@ export interface SchemeDiagramOptions extends SampleOptions {
   readonly also?: readonly string[];
   /** Whether hovering says how likely each field is, where 1σ is known (default false: it takes time). */
   readonly howSure?: boolean;
+  /** `doubt` shades where a sample with the usual errors of the suite may as well lie in another field (needs 1σ; default `none`). */
+  readonly shading?: 'none' | 'doubt';
+  /** 1σ by analyte for `howSure` and `shading`, where the suite has none: `{ K2O: { relative: 0.03 } }`. */
+  readonly uncertainty?: Uncertainty;
 }
 
 /** @internal What the well-known diagrams add to a scheme's own words. */
@@ -57,8 +63,9 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
   const { who } = words;
   checkSampleOptions(who, suite, options);
   const chosen = typeof which === 'string' ? findScheme(which) : which;
-  const { iron, howSure = false } = options;
-  const verdicts = classify(suite, chosen, { ...(iron === undefined ? {} : { iron }), ...(howSure ? {} : { probability: 'none' as const }) });
+  const { iron, howSure = false, shading = 'none', uncertainty = {} } = options;
+  if (shading !== 'none' && shading !== 'doubt') throw new RangeError(`${who}: shading must be "none" or "doubt", not "${String(shading)}".`);
+  const verdicts = classify(suite, chosen, { uncertainty, ...(iron === undefined ? {} : { iron }), ...(howSure ? {} : { probability: 'none' as const }) });
   const verdict = verdictOf(verdicts, chosen.key);
   // A suite of no samples has no columns to speak of, and draws the empty diagram.
   const { x = emptyColumn(suite), y = emptyColumn(suite) } = verdict;
@@ -74,7 +81,7 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
     reason: (row) => reasonOf(chosen, verdict.remarks[row]),
   }, options);
   const paths = pathShapes(who, options.paths, (liquid) => onScheme(who, liquid, chosen, place, iron));
-  const frame = isTernary ? ternaryFrame(options.width ?? words.width) : schemeFrame(chosen, titles, [columns.x.values, columns.y.values], paths.shapes, set, options, words);
+  const frame = isTernary ? ternaryFrame(options.width ?? words.width) : schemeFrame(chosen, titles, set.points, paths.shapes, options, words);
   const others = (options.also ?? []).map(findScheme);
   const fields = chosen.fields.filter(({ vertices }) => vertices.length > 0).map(({ symbol, name, vertices, label }) => {
     const [lx, ly] = place([label.x, label.y]);
@@ -84,7 +91,9 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
   const letters = words.corners;
   const corners = isTernary ? (chosen.axes.map((axis, i): TernaryCorner => (letters === undefined ? { name: drawable(axis.title) } : { name: letters[i], meaning: drawable(axis.title) })) as unknown as [TernaryCorner, TernaryCorner, TernaryCorner]) : undefined;
   if (chosen.mirrored) corners?.reverse();
+  const shade = shading === 'doubt' ? doubtLayer(who, suite, chosen, options) : undefined;
   const layers = [
+    ...(shade === undefined ? [] : [shade]),
     ...(corners === undefined ? [] : [ternaryLayer(corners)]),
     // Lines that divide no fields say themselves what they are.
     ...(fields.length > 0 ? [] : [linesLayer(chosen.lines.map(({ points, name, published }) => ({ points: points.map(place), label: drawable(name), ...(published ? {} : { dash: [4, 3] }) })))]),
@@ -101,7 +110,7 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
     name: chosen.title,
     title: options.title,
     panels: [{ frame, layers }],
-    caption: [`${chosen.kind === 'points' ? 'Reference points' : chosen.kind === 'criteria' ? 'Criteria' : 'Boundaries'}: ${sources.map(cite).join('; ')}.`, basisSentence(chosen, suite, iron, isTernary, titles), ...dashed, ...paths.notes, ...set.notes],
+    caption: [`${chosen.kind === 'points' ? 'Reference points' : chosen.kind === 'criteria' ? 'Criteria' : 'Boundaries'}: ${sources.map(cite).join('; ')}.`, basisSentence(chosen, suite, iron, isTernary, titles), ...dashed, ...(shade === undefined ? [] : ['Grey: chance of another field for a sample of median error, up to one half.']), ...paths.notes, ...set.notes],
     counts: set.counts(frame),
     legendWidth: set.legendWidth,
     lineage: [...verdicts.lineage, step(`diagrams.${who}`, { scheme: chosen.key, also: others.map(({ key }) => key) }, {
@@ -109,6 +118,23 @@ export function schemeDiagram(suite: Suite, which: string | Scheme, options: Sch
       tables: [chosen, ...others].filter(({ origin }) => origin === 'built in').map(({ key }) => `schemes/${key}.json`),
       fromMemory: [chosen, ...others].filter(({ standing }) => standing === 'from memory').map(({ title, sources: from }) => `boundaries of ${title} (${from.map(cite).join('; ')})`),
     })],
+  });
+}
+
+/** Doubt of the field over the whole frame. */
+function doubtLayer(who: string, suite: Suite, chosen: Scheme, { iron, uncertainty }: SchemeDiagramOptions): Layer {
+  const known = typicalDoubt(suite, chosen, { x: [], y: [] }, { iron, uncertainty });
+  if (known === undefined) {
+    throw new RangeError(`${who}: shading needs 1σ of what "${chosen.key}" reads, and a scheme with fields. Give uncertainty: { SiO2: { relative: 0.01 }, … }, or run the audit, which gives columns their 1σ.`);
+  }
+  const toAxes = ([x, y]: Point): Point => {
+    if (chosen.plane !== 'ternary') return [x, y];
+    const [first, second] = ternaryShares(x, y);
+    return [chosen.mirrored ? 100 - first - second : first, second];
+  };
+  return shadingLayer((points) => {
+    const on = points.map(toAxes);
+    return typicalDoubt(suite, chosen, { x: on.map(([x]) => x), y: on.map(([, y]) => y) }, { iron, uncertainty })!;
   });
 }
 
@@ -166,21 +192,21 @@ function onScheme(who: string, liquid: Suite, chosen: Scheme, place: (point: Poi
 }
 
 function schemeFrame(
-  chosen: Scheme, titles: readonly string[], [xs, ys]: readonly [Float64Array, Float64Array], paths: readonly { points: readonly Point[] }[], set: { points: { x: Float64Array; y: Float64Array } },
+  chosen: Scheme, titles: readonly string[], samples: { readonly x: Float64Array; readonly y: Float64Array }, paths: readonly { points: readonly Point[] }[],
   { window = 'data', width, height }: SchemeDiagramOptions, words: SchemeWords,
 ): Frame {
-  const axis = (side: 'x' | 'y', values: Float64Array): Axis => {
+  const axis = (side: 'x' | 'y'): Axis => {
     const at = side === 'x' ? 0 : 1;
     const { scale } = chosen.axes[at];
     const whole = chosen.window[side];
     // A little more than the samples, so that their fields can be told; never beyond the frame that fields are closed on.
     const leastSpan = scale === 'log' ? Math.max(4, (whole[1] / whole[0]) ** 0.35) : (whole[1] - whole[0]) * 0.3;
-    const within = mostlyInside(values, whole) ? whole : chosen.frame[side];
-    const around = () => windowAround([values, set.points[side], ...paths.map(({ points }) => points.map((point) => point[at]))], { scale, whole, leastSpan, within });
+    const within = mostlyInside(samples[side], whole) ? whole : chosen.frame[side];
+    const around = () => windowAround([samples[side], ...paths.map(({ points }) => points.map((point) => point[at]))], { scale, whole, leastSpan, within });
     const limits = typeof window === 'object' ? (window[side] ?? around()) : window === 'whole' ? whole : around();
     return { title: titles[at], scale, window: limits };
   };
-  return { width: width ?? words.width ?? 500, height: height ?? words.height ?? 380, x: axis('x', xs), y: axis('y', ys) };
+  return { width: width ?? words.width ?? 500, height: height ?? words.height ?? 380, x: axis('x'), y: axis('y') };
 }
 
 /** Of many samples, a few far outliers do not squeeze the rest: where 95 % lie in the usual window, it bounds the diagram, and the rest are counted. */

@@ -16,6 +16,12 @@ export function ternaryPoint(first: number, second: number): Point {
   return [100 - first - second / 2, (second * height) / 100];
 }
 
+/** The way back from `ternaryPoint`: per cent of the first and the second corner. */
+export function ternaryShares(x: number, y: number): Point {
+  const second = (100 * y) / height;
+  return [100 - x - second / 2, second];
+}
+
 /** The frame of a triangle `side` pixels wide. */
 export function ternaryFrame(side = 440): Frame {
   const hidden = { title: '', shown: false } as const;
