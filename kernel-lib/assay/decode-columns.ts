@@ -9,7 +9,7 @@ import type { ImportedColumn } from './report';
 
 /** Rows decoded together: small enough that a block of the file stays in the processor's cache while its columns are read. */
 const blockRows = 512;
-const mostListed = 50;
+const mostListed = 1000;
 
 /** Rows and columns of the grid whose cells may stand in the wrong place. */
 export interface Withheld {

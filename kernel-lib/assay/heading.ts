@@ -99,6 +99,11 @@ function takeUnit(text: string): { rest: string; unit?: SpelledUnit; unitText: s
     const first = units.get(spellingKey(pieces.slice(0, count).join(' ')));
     if (first !== undefined) return { rest: pieces.slice(count).join(' '), unit: first, unitText: pieces.slice(0, count).join(' ') };
   }
+  // `Sr_ppm_MS81`: a unit between the analyte and a code.
+  for (let at = 1; at < pieces.length - 1; at++) {
+    const unit = units.get(spellingKey(pieces[at]));
+    if (unit !== undefined) return { rest: pieces.filter((_, i) => i !== at).join(' '), unit, unitText: pieces[at] };
+  }
   const glued = /^(.*?[A-Za-z0-9)*+])[-/]?(wt\.?%|wt\.?-%|mass%|ppm|ppb|ppt|%)$/i.exec(text) ?? /^([A-Z][A-Za-z0-9()*]*)\/(ppm|ppb|ppt|wt\.?%|mg\/kg|μg\/g)$/.exec(text);
   if (glued !== null) return { rest: glued[1], unit: units.get(spellingKey(glued[2])), unitText: glued[2] };
   return { rest: text, unitText: '' };

@@ -26,6 +26,8 @@ export interface Layout {
 
 /** Number columns of written sheets. */
 const ownNumbers = / \[(number|1 sigma)\]$/;
+/** What a single letter counts towards a head row: `B` and `K` are more often names of samples than boron and potassium. */
+const loneLetter = 0.1;
 const searchRows = 60;
 const searchColumns = 600;
 
@@ -91,15 +93,16 @@ function bestHeadRow(grid: Grid, reader: HeadingReader, only?: number): HeadRow 
     }
     const lettered = texts.filter((text) => /\p{L}{2}/u.test(text));
     const upperCase = lettered.length >= 3 && lettered.every((text) => !/\p{Ll}/u.test(text.replace(/\b(wt|ppm|ppb|pct)\b/gi, '')));
-    const analytes = new Set<string>();
+    const analytes = new Map<string, number>();
     let labels = 0;
     for (const text of texts) {
       const symbol = ownTag.test(text) ? text : reader.names(text, upperCase);
-      if (symbol !== undefined) analytes.add(symbol);
+      if (symbol !== undefined) analytes.set(symbol, Math.max(analytes.get(symbol) ?? 0, text.length === 1 ? loneLetter : 1));
       else if (/label|quantity/.test(reader.read(text, upperCase).role)) labels++;
     }
     // A sheet of places without any analyte is known by two heads such as latitude and sample.
-    const count = analytes.size > 0 ? analytes.size + (labels > 0 ? 0.5 : 0) : labels > 1 ? 0.01 * labels : 0;
+    const named = [...analytes.values()].reduce((sum, weight) => sum + weight, 0);
+    const count = named > 0 ? named + (labels > 0 ? 0.5 : 0) : labels > 1 ? 0.01 * labels : 0;
     if (count > 0 && count > (best?.analytes ?? 0)) best = { row, analytes: count, upperCase };
   }
   return best;

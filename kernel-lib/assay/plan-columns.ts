@@ -42,6 +42,8 @@ export interface PlanOptions {
   readonly columns: Readonly<Record<string, ColumnSetting>>;
   readonly prefer: Readonly<Record<string, string>>;
   readonly unknown: 'labels' | 'quantities';
+  /** Columns from here on stand beyond the head row of a text file: rows that reach there are uneven, and told as such. */
+  readonly columnsWithHeads?: number;
 }
 
 const signedAnalytes = new Set(['LOI', 'epsilon-Nd', 'epsilon-Hf']);
@@ -62,7 +64,7 @@ export function planColumns(layout: Layout, options: PlanOptions, used: Set<stri
     const place = columnPlace(layout, index);
     const setting = settingFor(options.columns, head, place, used);
     const filled = columnHas(layout, index);
-    if (head === '' && !filled && setting === undefined) return;
+    if (head === '' && setting === undefined && (!filled || index >= (options.columnsWithHeads ?? Infinity))) return;
     if (layout.samplesIn === 'columns' && !filled && head !== '' && setting === undefined) {
       const unit = unitWithin(head);
       if (unit !== undefined || readHeading(head).role !== 'analyte') {

@@ -31,7 +31,8 @@ const mostSkippedListed = 40;
 export function readSheet(sheet: OpenSheet, layout: Layout, options: SheetOptions, where: string, used: Set<string>): ReadSheet {
   const decimal = options.decimal ?? decimalMark(layout);
   if (sheet.grid instanceof DelimitedGrid) sheet.grid.useDecimal(decimal);
-  const { columns, notes } = planColumns(layout, options, used);
+  const columnsWithHeads = sheet.grid instanceof DelimitedGrid && layout.samplesIn === 'rows' ? sheet.grid.width(layout.header.analyte) : Infinity;
+  const { columns, notes } = planColumns(layout, { ...options, columnsWithHeads }, used);
   const inferred = [...notes.inferred];
   if (options.decimal === undefined && decimal === ',') inferred.push('the decimal mark is a comma');
   const said = legend(layout.prose);
