@@ -23,3 +23,4 @@ export { primaryMelt, type PrimaryMelt, type PrimaryMeltOptions } from './primar
 export type { DescentProcess } from './descent-laws';
 export { fitDescent, type CompanionTest, type DescentElement, type DescentFit, type DescentRival, type DescentSample, type FitDescentOptions } from './fit-descent';
 export { fitAssemblage, type AssemblageFit, type FitAssemblageOptions, type FittedPhase } from './fit-assemblage';
+export { spreadOfPath, type PathSpread, type PathSpreadOptions } from './path-spread';
