@@ -5,7 +5,7 @@ import type { Diagram, DiagramCounts } from './diagram';
 import { figure, type Panel } from './figure';
 import { windowAround, type Axis, type Frame } from './frame';
 import { pathsLayer } from './layers/markers';
-import { samplesLayer } from './layers/samples';
+import { mostInBin, samplesLayer } from './layers/samples';
 import { pathShapes, type PathInput } from './model-paths';
 import { checkSampleOptions, samplePoints, type SampleOptions, type SampleSet } from './sample-points';
 
@@ -61,10 +61,13 @@ export function harker(suite: Suite, options: HarkerOptions = {}): Diagram {
   const named = shown.length === 1 || paths[0].shapes.length > 1;
   const pathX = paths.flatMap(({ shapes }) => shapes.map(({ points }) => points.map(([x]) => x)));
   const xWindow = windowAround([...sets.map(({ points }) => points.x), ...pathX]);
-  const panels = sets.map((set, i): Panel => {
+  const frames = sets.map((set, i): Frame => {
     const y: Axis = { title: set.points.axisTitles[1], window: windowAround([set.points.y, ...paths[i].shapes.map(({ points }) => points.map((point) => point[1]))]) };
-    const frame: Frame = { ...size, x: { title: set.points.axisTitles[0], window: xWindow }, y };
-    return { frame, layers: [samplesLayer(set.points, { errors: options.errors, binAbove, inPanel: true }), pathsLayer(named ? paths[i].shapes : paths[i].shapes.map((shape) => ({ ...shape, label: undefined })))] };
+    return { ...size, x: { title: set.points.axisTitles[0], window: xWindow }, y };
+  });
+  const binMost = binAbove === 0 ? Math.max(...sets.map(({ points }, i) => mostInBin(frames[i], points))) : 0;
+  const panels = sets.map((set, i): Panel => {
+    return { frame: frames[i], layers: [samplesLayer(set.points, { errors: options.errors, binAbove, binMost, inPanel: true }), pathsLayer(named ? paths[i].shapes : paths[i].shapes.map((shape) => ({ ...shape, label: undefined })))] };
   });
   const counts = sets.map((set, i) => set.counts(panels[i].frame));
   return figure({

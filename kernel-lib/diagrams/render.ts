@@ -31,16 +31,21 @@ function startIdsAnew(vega: typeof import('vega')): void {
 /**
  * Draws a Vega-Lite specification as SVG text, without a browser, a canvas, or the network.
  *
- * @throws Error when the specification cannot be compiled; the message is Vega's
+ * @throws Error when the specification cannot be compiled or drawn; the message is Vega's
  */
 export async function renderSvg(spec: VegaSpec): Promise<string> {
   const { vega } = drawingLibraries();
   // Nothing may be fetched: diagrams carry their data.
   const loader = { load: refuse, sanitize: refuse, http: refuse, file: refuse } as never as ReturnType<typeof vega.loader>;
-  const view = new vega.View(vega.parse(compileSpec(spec) as Parameters<typeof vega.parse>[0]), { renderer: 'none', loader, logger: quietLogger() as never });
+  const failures: string[] = [];
+  const logger = quietLogger(() => {}, (text) => failures.push(text));
+  const view = new vega.View(vega.parse(compileSpec(spec) as Parameters<typeof vega.parse>[0]), { renderer: 'none', loader, logger: logger as never });
   try {
     startIdsAnew(vega);
-    return await view.toSVG();
+    const svg = await view.toSVG();
+    // Vega goes on after an error and draws what is left; half a diagram is worse than none.
+    if (failures.length > 0) throw new Error(`The diagram could not be drawn: ${failures[0]}`);
+    return svg;
   } finally {
     view.finalize();
   }
@@ -51,12 +56,12 @@ function refuse(): Promise<never> {
 }
 
 /** A logger that hands warnings and errors on, and prints nothing: a notebook's output is its user's. */
-function quietLogger(heard: (text: string) => void = () => {}): object {
-  const hear = (...parts: readonly unknown[]): object => {
-    heard(parts.map(String).join(' '));
+function quietLogger(heard: (text: string) => void = () => {}, failed = heard): object {
+  const hear = (tell: (text: string) => void) => (...parts: readonly unknown[]): object => {
+    tell(parts.map(String).join(' '));
     return logger;
   };
-  const logger: object = { level: () => logger, error: hear, warn: hear, info: () => logger, debug: () => logger };
+  const logger: object = { level: () => logger, error: hear(failed), warn: hear(heard), info: () => logger, debug: () => logger };
   return logger;
 }
 

@@ -31,6 +31,8 @@ export interface SamplesOptions {
   readonly errors?: 'none' | 'bars' | 'ellipses';
   /** Above this many samples, bins with a count scale are drawn instead (default 5,000). */
   readonly binAbove?: number;
+  /** Top of the count scale, for panels that share one (default: the fullest bin). */
+  readonly binMost?: number;
   /** Smaller markers, for one of several small panels; the first panel carries the filter of the legend that all share. */
   readonly inPanel?: boolean;
   /** Zoom and pan by mouse (default true); triangles have none, because their ticks and corners stand outside the frame. */
@@ -157,18 +159,28 @@ function errorUnit(frame: Frame, points: SamplePoints, kind: 'bars' | 'ellipses'
 
 const binSize = 7;
 
-/** Counts in square bins of the frame, coloured on a log scale. */
-function drawBins({ frame, panel }: Canvas, { x, y }: SamplePoints, options: SamplesOptions): VegaSpec[] {
+/** Samples in each square bin of the frame, row by row. */
+function countBins(frame: Frame, { x, y }: SamplePoints): { readonly counts: Uint32Array; readonly columns: number } {
   const columns = Math.ceil(frame.width / binSize);
-  const rows = Math.ceil(frame.height / binSize);
-  const counts = new Uint32Array(columns * rows);
+  const counts = new Uint32Array(columns * Math.ceil(frame.height / binSize));
   for (let i = 0; i < x.length; i++) {
     if (!isDrawable(frame, x[i], y[i])) continue;
     const [px, py] = toPixels(frame, [x[i], y[i]]);
     if (px >= 0 && py >= 0 && px < frame.width && py < frame.height) counts[Math.floor(py / binSize) * columns + Math.floor(px / binSize)]++;
   }
+  return { counts, columns };
+}
+
+/** The fullest bin of a frame, so that panels can share one scale. */
+export function mostInBin(frame: Frame, points: SamplePoints): number {
+  return countBins(frame, points).counts.reduce((most, count) => Math.max(most, count), 0);
+}
+
+/** Counts in square bins of the frame, coloured on a log scale. */
+function drawBins({ frame, panel }: Canvas, points: SamplePoints, options: SamplesOptions): VegaSpec[] {
+  const { counts, columns } = countBins(frame, points);
   const bins: object[] = [];
-  let most = 1;
+  let most = options.binMost ?? 0;
   counts.forEach((count, at) => {
     if (count === 0) return;
     if (count > most) most = count;
@@ -185,7 +197,7 @@ function drawBins({ frame, panel }: Canvas, { x, y }: SamplePoints, options: Sam
     encoding: {
       ...positionChannels(frame),
       x2: { field: 'x2' }, y2: { field: 'y2' },
-      color: { field: 'n', type: 'quantitative', scale: { type: 'log', scheme: 'viridis', reverse: true, ...(most < 2 ? { domain: [1, 2] } : { domainMin: 1 }) }, legend },
+      color: { field: 'n', type: 'quantitative', scale: { type: 'log', scheme: 'viridis', reverse: true, domain: [1, Math.max(2, most)] }, legend },
       tooltip: [{ field: 'n', type: 'quantitative', title: 'samples' }],
     },
     params: zoomParam(panel, options),
