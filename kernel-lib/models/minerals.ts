@@ -65,8 +65,11 @@ export function mineralOf(name: string): string {
 }
 
 function lookUp(name: string, choice: string): Omit<ChosenMineral, 'name' | 'oxides'> & { raw: ReadonlyMap<string, number> } {
+  const listed = (mineral: string, label: string) => mineralCompositions().some((entry) => entry.mineral === mineral && entry.label === label);
   const named = mineralOf(choice);
-  const [mineral, label] = named !== choice && known(named) ? [named, choice.slice(named.length + 1)] : [mineralOf(name), choice];
+  // A label may itself begin with a mineral's name (biotite "biotite Mg#0.60"), so the label as it stands is tried first.
+  const isNamed = named !== choice && known(named) && !listed(mineralOf(name), choice);
+  const [mineral, label] = isNamed ? [named, choice.slice(named.length + 1)] : [mineralOf(name), choice];
   const point = solidSolution(mineral, label);
   if (point !== undefined) return { mineral, label, raw: point, source: 'prohaska_2022', standing: 'computed' };
   const entry = mineralComposition(mineral, label);

@@ -4,6 +4,7 @@ import { readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
 import { massBalance, mineralCompositions, solidSolution } from 'wedgework';
+import { chooseMineral } from '../../kernel-lib/models/minerals';
 import { NonNegativeSolver } from '../../kernel-lib/models/non-negative';
 import { daughterOf, noisy, plantedParent, seededDraws } from './planted';
 
@@ -63,6 +64,13 @@ describe('solidSolution', () => {
       for (const [oxide, value] of oxides) expect(Math.abs(value - point.get(oxide)!), `${mineral} ${label} ${oxide}`).toBeLessThan(0.0101);
     }
     expect(compared).toBeGreaterThan(35);
+  });
+
+  it('finds every composition of the table by its own label, and by mineral and label', () => {
+    for (const { mineral, label } of mineralCompositions()) {
+      expect(chooseMineral(mineral, label, 'test')).toMatchObject({ mineral });
+      expect(chooseMineral('phase 1', `${mineral} ${label}`, 'test')).toMatchObject({ mineral });
+    }
   });
 
   it('refuses points outside the solid solution', () => {
