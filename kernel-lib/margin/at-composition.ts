@@ -1,7 +1,7 @@
 import { showAs, type Showable } from '../display';
 import { evaluate, step, type Step, type Suite } from '../suite';
 import { reservoir } from '../tables';
-import { huberLine, medianOf, quantileOf, randomSource, robustLine, robustSpread, type RobustMethod } from './regression';
+import { medianOf, quantileOf, randomSource, robustLine, robustSpread, type RobustMethod } from './regression';
 import { round } from './slab-below';
 
 /** Regression of one quantity to a fixed value of another within a window. */
@@ -179,26 +179,30 @@ export function resampledValues(samples: GroupSamples, options: ArcValueOptions,
   return out;
 }
 
+/** @internal Why a group gives no value, or undefined when it gives one. */
+export function unfitGroup({ values, index }: GroupSamples, options: ArcValueOptions): string | undefined {
+  const { at } = options;
+  if (values.length < fewest(options)) return `needs ${fewest(options)} samples${at === undefined ? '' : ` with ${at.index} ${at.window[0]}–${at.window[1]}`}`;
+  if (index === undefined || at === undefined) return undefined;
+  const [from, to] = [quantileOf(index, 0), quantileOf(index, 1)];
+  if (to - from < (at.window[1] - at.window[0]) / 5) return `${at.index} of the samples varies too little for a line`;
+  // A line carries a little way beyond its samples, and no further than half their own range.
+  const outside = Math.max(from - at.value, at.value - to);
+  return outside > (to - from) / 2 ? `${at.index} of the samples (${from.toFixed(1)}–${to.toFixed(1)}) is too far from ${at.value}` : undefined;
+}
+
 function describe(samples: GroupSamples, options: ArcValueOptions, draw: () => number): ArcValue {
   const { group, values, index, rows } = samples;
   const { at, method = 'theil-sen' } = options;
-  const base = { group, used: values.length, of: rows.length };
-  if (values.length < fewest(options)) {
-    return { ...base, value: NaN, sigma: NaN, note: `needs ${fewest(options)} samples${at === undefined ? '' : ` with ${at.index} ${at.window[0]}–${at.window[1]}`}` };
-  }
-  if (index === undefined || at === undefined) {
-    return { ...base, value: medianOf(values), sigma: robustDeviation(resampledValues(samples, options, draw, 400)), note: '' };
-  }
-  const line = method === 'huber' ? huberLine(index, values) : robustLine('theil-sen', index, values);
-  const from = quantileOf(index, 0);
-  const to = quantileOf(index, 1);
-  const narrow = to - from < (at.window[1] - at.window[0]) / 5;
-  if (Number.isNaN(line.slope) || narrow) return { ...base, value: NaN, sigma: NaN, from, to, note: `${at.index} of the samples varies too little for a line` };
-  const outside = at.value < from ? from - at.value : at.value > to ? at.value - to : 0;
-  return {
-    ...base, value: line.intercept + line.slope * at.value, sigma: robustDeviation(resampledValues(samples, options, draw, 400)), slope: line.slope, from, to,
-    note: outside > 0 ? `extrapolated by ${outside.toFixed(1)} ${at.index}` : '',
-  };
+  const ends = index === undefined || index.length === 0 ? {} : { from: quantileOf(index, 0), to: quantileOf(index, 1) };
+  const base = { group, used: values.length, of: rows.length, ...ends };
+  const unfit = unfitGroup(samples, options);
+  if (unfit !== undefined) return { ...base, value: NaN, sigma: NaN, note: unfit };
+  const sigma = robustDeviation(resampledValues(samples, options, draw, 400));
+  const value = groupValue(values, index, at, method);
+  if (index === undefined || at === undefined) return { ...base, value, sigma, note: '' };
+  const outside = Math.max(ends.from! - at.value, at.value - ends.to!);
+  return { ...base, value, sigma, slope: robustLine(method, index, values).slope, note: outside > 0 ? `extrapolated by ${outside.toFixed(1)} ${at.index}` : '' };
 }
 
 /** Half the central 68.3 % of re-sampled values: 1σ that a few wild draws do not blow up. */

@@ -1,6 +1,6 @@
 import { showAs, type Showable } from '../display';
 import { step, type Step, type Suite } from '../suite';
-import { compositionIndex, fewest, gatherGroups, groupValue, resampledValues, type AtComposition, type CompositionIndex, type GroupSamples, type ArcValueOptions } from './at-composition';
+import { compositionIndex, gatherGroups, groupValue, resampledValues, unfitGroup, type AtComposition, type CompositionIndex, type GroupSamples, type ArcValueOptions } from './at-composition';
 import { kendall, medianOf, quantileOf, randomSource, robustLine, type Line, type RobustMethod } from './regression';
 import { round } from './slab-below';
 
@@ -79,9 +79,9 @@ export function crossArcTrend(suite: Suite, options: ArcTrendOptions | Compositi
   const used: { readonly samples: GroupSamples; readonly x: number; readonly y: number }[] = [];
   for (const each of samples) {
     const x = medianOf(each.rows.map((i) => column.values[i]));
-    const y = each.values.length >= fewest(wanted) ? groupValue(each.values, each.index, at, method) : NaN;
-    if (Number.isFinite(x) && Number.isFinite(y)) used.push({ samples: each, x, y });
-    else left.push(`${each.group} (${Number.isFinite(x) ? `${each.values.length} usable samples` : `no ${against}`})`);
+    const unfit = Number.isFinite(x) ? unfitGroup(each, wanted) : `no ${against}`;
+    if (unfit === undefined) used.push({ samples: each, x, y: groupValue(each.values, each.index, at, method) });
+    else left.push(`${each.group} (${unfit})`);
   }
   if (left.length > 0) notes.push(`Not used: ${left.length > 12 ? `${left.slice(0, 12).join(', ')} and ${left.length - 12} more` : left.join(', ')}.`);
   if (used.length < fewestGroups) {

@@ -72,7 +72,7 @@ export function volcanoesAbove(suite: Suite, options: { readonly by?: string } =
     .sort((a, b) => (Number.isNaN(a.trenchDistance) ? a.depth - b.depth : a.trenchDistance - b.trenchDistance));
   const gaps = gapsAlong(volcanoes.filter((one) => one.front));
   const notes = [
-    ...gaps.map(({ from, to, length }) => `A gap of ${length.toFixed(0)} km in the volcanic front between ${from} and ${to}.`),
+    ...gaps.map(({ from, to, length }) => `A gap of ${length.toFixed(0)} km in the volcanic front of these samples, between ${from} and ${to}.`),
     `Usual ranges (common practice): ${[...plausibleRanges().values()].filter(({ key }) => key.startsWith('front') || key === 'slab-dip').map(({ name, from, to, unit }) => `${name} ${from}–${to} ${unit}`).join(', ')}.`,
     'Nothing here forecasts eruptions.',
   ];

@@ -43,8 +43,11 @@ describe('one value a volcano', () => {
     expect(few.groups.every(({ value, note }) => Number.isNaN(value) && note.includes('needs 5 samples'))).toBe(true);
     const narrow = atComposition(arc({ rise: 1 }), { of: 'K2O', at: { index: 'SiO2', value: 75, window: [70, 80] } });
     expect(narrow.groups[0].note).toMatch(/needs 5 samples with SiO2 70–80/);
-    const beyond = atComposition(arc({ rise: 1 }), { of: 'K2O', at: { index: 'SiO2', value: 70, window: [54, 72] } });
+    const beyond = atComposition(arc({ rise: 1 }), { of: 'K2O', at: { index: 'SiO2', value: 68, window: [54, 72] } });
     expect(beyond.groups[0].note).toMatch(/extrapolated by/);
+    const far = atComposition(arc({ rise: 1 }), { of: 'K2O', at: { index: 'SiO2', value: 75, window: [54, 76] } });
+    expect(far.groups[0].note).toMatch(/is too far from 75/);
+    expect(far.groups[0].value).toBeNaN();
   });
 
   test('bad options say what is allowed', () => {
