@@ -1,4 +1,4 @@
-import { cellState, step, type Column, type Step, type StepDetail, type Suite } from '../suite';
+import { derivedColumn, step, type Column, type Step, type StepDetail, type Suite } from '../suite';
 import { bibliography } from '../tables';
 import { axisValues, isVolatileFree, operandsOf, whyMissing, type AxisValues, type IronBasis, type Operands } from './axes';
 import { findScheme } from './catalogue';
@@ -115,9 +115,7 @@ function planeValues(scheme: Scheme, axes: readonly AxisValues[]): { x?: Column;
     x[i] = (100 * a.values[i]) / sum;
     y[i] = (100 * b.values[i]) / sum;
   }
-  const states = x.map((value) => (Number.isFinite(value) ? cellState.derived : cellState.missing));
-  const share = (values: Float64Array, symbol: string): Column => ({ symbol, kind: 'quantity', unit: '%', values, states: Uint8Array.from(states) });
-  return { x: share(x, a.symbol), y: share(y, b.symbol) };
+  return { x: derivedColumn(a.symbol, x, '%'), y: derivedColumn(b.symbol, y, '%') };
 }
 
 function judgePlane(
@@ -129,7 +127,10 @@ function judgePlane(
   const logY = scheme.axes[1].scale === 'log';
   const ternary = scheme.plane === 'ternary';
   const halfRootThree = Math.sqrt(3) / 2;
-  const { frame } = scheme;
+  const outside = outsideTexts(scheme);
+  const beyond = scheme.fields.map(({ published: [from, to] }) => `beyond the published range of the boundary (${scheme.axes[0].title} ${from}–${to})`);
+  const from = Float64Array.from(scheme.fields, ({ published }) => published[0]);
+  const to = Float64Array.from(scheme.fields, ({ published }) => published[1]);
   const xs = plane.x?.values;
   const ys = plane.y?.values;
   for (let i = 0; i < size; i++) {
@@ -144,12 +145,11 @@ function judgePlane(
     const k = fieldAt(flat, px, py);
     field[i] = k;
     if (k < 0) {
-      book.note(i, whereOutside(scheme, frame, x, y));
+      book.note(i, x < outside.x[0] || x >= outside.x[1] ? outside.xText : y < outside.y[0] || y >= outside.y[1] ? outside.yText : 'in no field of the scheme');
       continue;
     }
     distance[i] = distanceToEdge(flat, k, px, py);
-    const [from, to] = scheme.fields[k].published;
-    if (x < from || x > to) book.note(i, `beyond the published range of the boundary (${scheme.axes[0].title} ${from}–${to})`);
+    if (x < from[k] || x > to[k]) book.note(i, beyond[k]);
   }
 }
 
@@ -158,12 +158,12 @@ function whyNoPoint(operands: Operands, scheme: Scheme, axes: readonly AxisValue
   return whyMissing(operands, failing, scheme.basis, row);
 }
 
-function whereOutside(scheme: Scheme, { x: [xa, xb], y: [ya, yb] }: Scheme['frame'], x: number, y: number): string {
-  const range = scheme.fields.reduce(([low, high], { vertices }) => [Math.min(low, ...vertices.map((v) => v[0])), Math.max(high, ...vertices.map((v) => v[0]))], [Infinity, -Infinity]);
-  const [first, second] = scheme.axes;
-  if (x < Math.max(xa, range[0]) || x >= Math.min(xb, range[1])) return `outside the range of the scheme: ${first.title} is not within ${Math.max(xa, range[0])}–${Math.min(xb, range[1])}`;
-  if (y < ya || y >= yb) return `outside the range of the scheme: ${second.title} is not within ${ya}–${yb}`;
-  return 'in no field of the scheme';
+/** The range that the fields cover, and what is said of a point outside it; made once a scheme. */
+function outsideTexts({ axes: [first, second], frame, fields }: Scheme): { x: readonly [number, number]; y: readonly [number, number]; xText: string; yText: string } {
+  const xs = fields.flatMap(({ vertices }) => vertices.map(([x]) => x));
+  const x = [Math.max(frame.x[0], Math.min(...xs)), Math.min(frame.x[1], Math.max(...xs))] as const;
+  const text = (title: string, [low, high]: readonly [number, number]) => `outside the range of the scheme: ${title} is not within ${low}–${high}`;
+  return { x, y: frame.y, xText: text(first.title, x), yText: text(second.title, frame.y) };
 }
 
 function judgeBounds(operands: Operands, scheme: Scheme, axes: readonly AxisValues[], field: Int16Array, distance: Float64Array, book: RemarkBook): void {

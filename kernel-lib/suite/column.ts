@@ -56,7 +56,7 @@ export function column(input: ColumnInput): Column {
       throw new RangeError(`Column ${symbol}: ${name} has ${array.length} cells, values has ${values.length}; give one of each a sample.`);
     }
   }
-  const states = input.states ?? Uint8Array.from(values, (value) => (Number.isFinite(value) ? cellState.measured : cellState.missing));
+  const states = input.states ?? measuredStates(values);
   return {
     symbol,
     kind: input.kind ?? known?.kind ?? 'quantity',
@@ -66,6 +66,13 @@ export function column(input: ColumnInput): Column {
     ...(limits === undefined ? {} : { limits }),
     ...(sigma === undefined ? {} : { sigma }),
   };
+}
+
+function measuredStates(values: Float64Array): Uint8Array {
+  const { measured, missing } = cellState;
+  const states = new Uint8Array(values.length);
+  for (let i = 0; i < values.length; i++) states[i] = Number.isFinite(values[i]) ? measured : missing;
+  return states;
 }
 
 /** A column of computed values: finite is `derived`, anything else `missing` and NaN. The array is taken over. */
