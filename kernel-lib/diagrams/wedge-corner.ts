@@ -2,7 +2,7 @@ import { step } from '../suite';
 import { wedgeEstimateText, type OneWedgeFit, type WedgeFit, type WedgeParameterName } from '../tracers';
 import type { Diagram } from './diagram';
 import { figure, type Panel } from './figure';
-import { windowAround, type Axis, type Frame } from './frame';
+import { roundStep, tidy, windowAround, type Axis, type Frame } from './frame';
 import { lineUnit, specNumber, unit, type Layer } from './layer';
 import { fontStack, groupColours, ink, textSize } from './theme';
 
@@ -38,7 +38,10 @@ export function wedgeCorner(fit: WedgeFit, options: WedgeCornerOptions = {}): Di
   const percent = one.draws.map((draws) => draws.map((value) => 100 * value));
   const best = one.fitted.map((name) => 100 * one.parameters[name].value);
   const count = one.fitted.length;
-  const axes = percent.map((values, k): Axis => ({ title: titles[one.fitted[k]], window: windowAround([values, [best[k]]], { within: [0, 100], leastSpan: 0.02 * best[k] || 0.1 }) }));
+  const axes = percent.map((values, k): Axis => {
+    const window = windowAround([values, [best[k]]], { within: [0, 100], leastSpan: 0.02 * best[k] || 0.1 });
+    return { title: titles[one.fitted[k]], window, ticks: ticksOf(window) };
+  });
   const panels: Panel[] = [];
   for (let row = 0; row < count; row++) {
     for (let column = 0; column < count; column++) {
@@ -62,6 +65,14 @@ export function wedgeCorner(fit: WedgeFit, options: WedgeCornerOptions = {}): Di
     ],
     lineage: [...fit.lineage, step('diagrams.wedgeCorner', { name: one.name })],
   });
+}
+
+/** About three round ticks: a panel is too small for the usual spacing. */
+function ticksOf([low, high]: readonly [number, number]): number[] {
+  const step = roundStep(high - low, 3);
+  const ticks: number[] = [];
+  for (let k = Math.ceil(low / step - 1e-9); k * step <= high * (1 + 1e-9); k++) ticks.push(tidy(k * step));
+  return ticks;
 }
 
 function histogramPanel(frame: Frame, values: Float64Array, fit: OneWedgeFit, k: number): Panel {

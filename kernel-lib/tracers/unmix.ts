@@ -208,19 +208,20 @@ function solveShares(mixture: Mixture, observed: Float64Array, sigma: Float64Arr
 
 function sharesView(result: Omit<MixingShares, keyof Showable>): TableView {
   const percent = (value: number) => Number((100 * value).toPrecision(3));
-  const shown = Math.min(result.samples.length, 60);
+  const solved = [...result.chiSquare.keys()].filter((i) => !Number.isNaN(result.chiSquare[i]));
+  const unsolved = result.samples.length - solved.length;
   return {
     title: `Mixing proportions from ${result.ratios.join(', ')} (% by weight, 95 % intervals)`,
-    columns: ['sample', ...result.components, 'χ²'],
-    rows: Array.from({ length: shown }, (_, i) => [
+    columns: ['sample', ...result.components, ...(result.degreesOfFreedom > 0 ? ['χ²'] : [])],
+    rows: solved.slice(0, 60).map((i) => [
       result.samples[i],
       ...result.components.map((name) => {
         const [share, low, high] = [result.shares, result.low, result.high].map((of) => of.get(name)![i]);
-        return Number.isNaN(share) ? null : `${percent(share)} (${percent(low)}–${percent(high)})`;
+        return `${percent(share)} (${percent(low)}–${percent(high)})`;
       }),
-      Number.isNaN(result.chiSquare[i]) ? null : Number(result.chiSquare[i].toPrecision(3)),
+      ...(result.degreesOfFreedom > 0 ? [Number(result.chiSquare[i].toPrecision(3))] : []),
     ]),
-    totalRows: result.samples.length,
-    notes: result.notes,
+    totalRows: solved.length,
+    notes: [...result.notes, ...(unsolved > 0 ? [`${unsolved} samples without all of the ratios.`] : [])],
   };
 }
