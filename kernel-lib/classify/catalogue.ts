@@ -6,16 +6,21 @@ import { schemeNeeds } from './needs';
 import type { Scheme } from './scheme';
 import { readScheme } from './scheme-file';
 
-const builtIn = once((): ReadonlyMap<string, Scheme> => {
-  const found = new Map<string, Scheme>();
-  for (const file of readdirSync(join(referenceFolder(), 'schemes')).sort()) {
-    if (!file.endsWith('.json')) continue;
-    const scheme = readScheme(`schemes/${file}`);
-    if (`${scheme.key}.json` !== file) throw new ReferenceTableError(`schemes/${file}: the file of scheme "${scheme.key}" must be named ${scheme.key}.json.`);
-    found.set(scheme.key, scheme);
+/** Keys of the built-in schemes: the file of a scheme is named after its key. */
+const builtInKeys = once((): readonly string[] => readdirSync(join(referenceFolder(), 'schemes')).filter((file) => file.endsWith('.json')).map((file) => file.slice(0, -'.json'.length)).sort());
+
+const builtIn = new Map<string, Scheme>();
+
+/** A built-in scheme, read when it is first asked for. */
+function readBuiltIn(key: string): Scheme {
+  let scheme = builtIn.get(key);
+  if (scheme === undefined) {
+    scheme = readScheme(`schemes/${key}.json`);
+    if (scheme.key !== key) throw new ReferenceTableError(`schemes/${key}.json: the file of scheme "${scheme.key}" must be named ${scheme.key}.json.`);
+    builtIn.set(key, scheme);
   }
-  return found;
-});
+  return scheme;
+}
 
 const loaded = new Map<string, Scheme>();
 
@@ -26,13 +31,14 @@ const loaded = new Map<string, Scheme>();
  * @example findScheme('tas').fields.map((field) => field.symbol)
  */
 export function findScheme(key: string): Scheme {
-  const found = loaded.get(key) ?? builtIn().get(key);
-  if (found === undefined) throw new RangeError(`There is no scheme "${key}". Known: ${allSchemes().map((scheme) => scheme.key).join(', ')}.`);
-  return found;
+  const own = loaded.get(key);
+  if (own !== undefined) return own;
+  if (!builtInKeys().includes(key)) throw new RangeError(`There is no scheme "${String(key)}". Known: ${[...builtInKeys(), ...loaded.keys()].join(', ')}.`);
+  return readBuiltIn(key);
 }
 
 function allSchemes(): readonly Scheme[] {
-  return [...builtIn().values(), ...loaded.values()];
+  return [...builtInKeys().map(readBuiltIn), ...loaded.values()];
 }
 
 /** A source as a reader wants it: short where the bibliography has it, as written where an own scheme cites something else. */
@@ -59,7 +65,7 @@ function list(): SchemeList {
 function load(path: string): Scheme {
   if (typeof path !== 'string' || path.trim() === '') throw new RangeError('schemes.load takes the path of a scheme file (JSON), e.g. schemes.load("my-scheme.json").');
   const scheme = readScheme(isAbsolute(path) ? path : resolve(path), { absolute: true });
-  if (builtIn().has(scheme.key)) throw new RangeError(`${path}: the key "${scheme.key}" is taken by a built-in scheme; choose another.`);
+  if (builtInKeys().includes(scheme.key)) throw new RangeError(`${path}: the key "${scheme.key}" is taken by a built-in scheme; choose another.`);
   loaded.set(scheme.key, scheme);
   return scheme;
 }

@@ -45,6 +45,9 @@ function realEdges(scheme: Scheme): (a: PlanePoint, b: PlanePoint) => boolean {
 }
 
 function onSegment([xa, ya]: PlanePoint, [xb, yb]: PlanePoint, [x, y]: PlanePoint): boolean {
+  // Most pairs are far apart: a look at the extents decides them.
+  const slack = 1e-9 * (1 + Math.abs(x) + Math.abs(y));
+  if (x < Math.min(xa, xb) - slack || x > Math.max(xa, xb) + slack || y < Math.min(ya, yb) - slack || y > Math.max(ya, yb) + slack) return false;
   const size = Math.hypot(xb - xa, yb - ya);
   const away = Math.abs((xb - xa) * (y - ya) - (yb - ya) * (x - xa)) / size;
   const along = ((x - xa) * (xb - xa) + (y - ya) * (yb - ya)) / size;

@@ -1,6 +1,7 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { classify, column, findScheme, schemes, suiteOf, verdictOf, volatileFree } from 'wedgework';
+import { checkTiling } from '../../kernel-lib/classify/scheme-check';
 import { rock, suiteFrom } from './suites';
 
 const tas = findScheme('tas');
@@ -166,6 +167,16 @@ describe('thresholds, criteria, points', () => {
     expect(at(moles(1.05, 0.5, 0.5))).toBe('P');
     expect(at(moles(0.95, 0.5, 0.5))).toBe('M');
     expect(at(moles(0.95, 0.2, 1))).toBe('PA');
+  });
+});
+
+describe('built-in schemes', () => {
+  it('have fields with an area, inside their frame, that do not overlap', () => {
+    for (const scheme of schemes.list().schemes) {
+      checkTiling(scheme, (why) => {
+        throw new Error(`${scheme.key}: ${why}`);
+      });
+    }
   });
 });
 
