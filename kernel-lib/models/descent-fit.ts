@@ -2,7 +2,7 @@ import { jStat } from 'jstat';
 import { findAnalyte } from '../chemistry';
 import { resolveColumn, type Suite } from '../suite';
 import { assimilationModel, crystallisationModel, mixingModel, type DescentData, type DescentModel, type DescentProcess } from './descent-laws';
-import { isotopeElement } from './isotopes';
+import { isotopeElement, usualRatioError } from './isotopes';
 import { fitLatent, fitSample, sampleMisfit } from './latent-fit';
 import { amountOf } from './one-analysis';
 
@@ -15,7 +15,7 @@ export interface DescentInput extends DescentData {
 }
 
 /** @internal Gathers logs of elements and isotope ratios with their σ; samples with too few elements are left out by name. */
-export function gatherDescent(suite: Suite, wanted: readonly string[] | undefined, ratios: readonly string[] | undefined, errors: { relative: number; scatter: number; ratio: number }, who: string): DescentInput {
+export function gatherDescent(suite: Suite, wanted: readonly string[] | undefined, ratios: readonly string[] | undefined, errors: { relative: number; scatter: number; ratio: number | undefined }, who: string): DescentInput {
   const usableShare = (symbol: string) => {
     const column = resolveColumn(suite, symbol);
     return column === undefined ? 0 : column.values.reduce((count, value) => count + (value > 0 ? 1 : 0), 0) / suite.size;
@@ -50,7 +50,7 @@ export function gatherDescent(suite: Suite, wanted: readonly string[] | undefine
     if (!(value > 0)) return;
     const own = column.sigma?.[row] ?? NaN;
     values[s * J + j] = j < elements.length ? Math.log(value) : value;
-    sigma[s * J + j] = j < elements.length ? Math.hypot(own > 0 ? own / value : errors.relative, errors.scatter) : Math.max(own > 0 ? own : 0, errors.ratio * value);
+    sigma[s * J + j] = j < elements.length ? Math.hypot(own > 0 ? own / value : errors.relative, errors.scatter) : Math.max(own > 0 ? own : 0, (errors.ratio ?? usualRatioError(column.symbol)) * value);
   }));
   return { samples: rows.length, elements, isotopes: all, carriers: all.map((symbol) => elements.indexOf(isotopeElement(symbol)!)), values, sigma, rows, names: rows.map((row) => suite.samples[row]), left };
 }
@@ -73,7 +73,7 @@ export interface FittedProcess {
  * @internal Fits a process again and again, leaving out the samples that it cannot explain, until the same ones are out twice. A sample is out
  * when its misfit has a probability below level/samples: with all samples in line, a false alarm anywhere has the probability `level`.
  */
-export function fitRobustly(input: DescentInput, level: number, make: (counted: Uint8Array) => DescentModel): FittedProcess {
+export function fitRobustly(input: DescentInput, level: number, make: (counted: Uint8Array) => DescentModel, mostRounds = 12): FittedProcess {
   const { samples, values } = input;
   const J = input.elements.length + input.isotopes.length;
   const freedom = new Int32Array(samples);
@@ -91,7 +91,7 @@ export function fitRobustly(input: DescentInput, level: number, make: (counted: 
   const counted = new Uint8Array(samples).fill(1);
   let model = make(counted);
   let misfits = fitLatent(model.problem, model.scan);
-  for (let round = 0; round < 12; round++) {
+  for (let round = 0; round < mostRounds; round++) {
     const out = Array.from(misfits, (misfit, s) => ({ s, over: misfit / limits[s] })).filter(({ over }) => over > 1).sort((a, b) => b.over - a.over);
     // The worst go first and at most a fifth at once, for one bad sample can make good ones look bad.
     const allowed = Math.max(1, Math.floor(samples / 5)) + (samples - counted.reduce((sum, each) => sum + each, 0));
@@ -139,12 +139,13 @@ export function fitRivals(input: DescentInput, level: number, assimilant: Suite 
   const rock = { amounts: Float64Array.from(input.elements, (symbol) => amountOf(assimilant, symbol)), ratios: Float64Array.from(input.isotopes, (symbol) => amountOf(assimilant, symbol)) };
   let best: { r: number; fit: FittedProcess } | undefined;
   const attempt = (r: number) => {
-    const fit = fitRobustly(input, level, (counted) => assimilationModel(input, counted, rock, r));
+    // The rate is chosen by one fit each; samples are left out at the chosen one alone.
+    const fit = fitRobustly(input, level, (counted) => assimilationModel(input, counted, rock, r), 0);
     if (best === undefined || fit.bic < best.fit.bic) best = { r, fit };
   };
   for (const r of [0.05, 0.15, 0.3, 0.5, 0.7]) attempt(r);
   const around = best!.r;
   for (const r of [around * 0.75, around * 1.25]) attempt(r);
-  fits.set('assimilation', best!.fit);
+  fits.set('assimilation', fitRobustly(input, level, (counted) => assimilationModel(input, counted, rock, best!.r)));
   return { fits, r: best!.r, notes };
 }

@@ -23,7 +23,7 @@ export interface FitDescentOptions {
   readonly relativeError?: number;
   /** Relative scatter of the lavas themselves around one line, added in quadrature (default 0.03). */
   readonly scatter?: number;
-  /** Relative 1σ of isotope ratios (default 0.00003), at least. */
+  /** Relative 1σ of isotope ratios, at least (default 0.00003 for Sr, Nd and Hf, 0.001 for Pb and Os). */
   readonly ratioError?: number;
   /** Probability of flagging any sample at all when every one is in line (default 0.01). */
   readonly level?: number;
@@ -209,7 +209,7 @@ export function fitDescent(suite: Suite, options: FitDescentOptions = {}): Desce
   const who = 'fitDescent';
   if (!(suite instanceof Suite)) throw new TypeError(`${who}: the first argument must be a suite.`);
   const fraction = (value: number | undefined, name: string, usual: number) => readNumber(value ?? usual, who, name, { from: 0, to: 1, open: 'to' });
-  const errors = { relative: fraction(options.relativeError, 'relativeError', 0.05), scatter: fraction(options.scatter, 'scatter', 0.03), ratio: fraction(options.ratioError, 'ratioError', 3e-5) };
+  const errors = { relative: fraction(options.relativeError, 'relativeError', 0.05), scatter: fraction(options.scatter, 'scatter', 0.03), ratio: options.ratioError === undefined ? undefined : fraction(options.ratioError, 'ratioError', 0) };
   if (errors.relative + errors.scatter === 0) throw new RangeError(`${who}: relativeError and scatter are both 0; something must be uncertain.`);
   const level = readNumber(options.level ?? 0.01, who, 'level', { from: 0, to: 1, open: 'both' });
   const input = gatherDescent(suite, options.analytes, options.isotopes, errors, who);
@@ -235,7 +235,7 @@ export function fitDescent(suite: Suite, options: FitDescentOptions = {}): Desce
     atTheEnd(line.samples) ? 'They are the most evolved ones, all together: a change in the crystallising assemblage would look the same, so fit the two segments apart before calling them foreign.' : '',
   ].filter((text) => text !== '').join(' ');
   const because = step(
-    who, { samples: input.samples, elements: [...input.elements], isotopes: [...input.isotopes], ...errors, level, incompatible: input.elements[line.reference], incompatibleD: options.incompatibleD ?? 0, parent: line.parentName, preferred },
+    who, { samples: input.samples, elements: [...input.elements], isotopes: [...input.isotopes], relative: errors.relative, scatter: errors.scatter, ratio: errors.ratio ?? 'usual', level, incompatible: input.elements[line.reference], incompatibleD: options.incompatibleD ?? 0, parent: line.parentName, preferred },
     { sources: ['allegre_1977', 'minster_allegre_1978', 'langmuir_1978', 'kass_raftery_1995', ...(assimilant === undefined ? [] : ['depaolo_1981'])] },
   );
   const lineage = [...joinLineage(suite.lineage, assimilant?.lineage ?? []), because];

@@ -4,7 +4,7 @@ export type { BalanceErrors, BalanceMinerals, BalanceOptions, MineralRange } fro
 export { crystalliseInSitu, refillChamber, refineByZones, type InSituOptions, type RefilledChamberOptions, type ZoneRefiningOptions } from './chambers';
 export { MissingCoefficientsError, type Assemblage, type MissingCoefficient, type OwnCoefficient, type OwnCoefficients, type UsedCoefficient } from './coefficients';
 export { crystallise, type CrystalliseOptions } from './crystallise';
-export { isotopeElement } from './isotopes';
+export { isotopeElement, usualRatioError } from './isotopes';
 export { massBalance, type BalanceEstimate, type BalancePhase, type BalanceResidual, type MassBalance, type MassBalanceOptions } from './mass-balance';
 export { melt, type MeltingFacies, type MeltOptions } from './melt';
 export { mineralOf, solidSolution, type ChosenMineral, type MineralChoice } from './minerals';
@@ -13,7 +13,7 @@ export type { Composition } from './one-analysis';
 export type { ModelPath } from './path';
 export type { TraceModelOptions } from './trace-setup';
 export { rankAssemblages, type AssemblageRanking, type RankAssemblagesOptions, type RankedAssemblage } from './rank-assemblages';
-export { silicaOfMeltTypes, testTraces, type TraceTest, type TraceTestElement, type TraceTestOptions } from './trace-test';
+export { silicaOfMeltTypes, testTraces, type TraceTest, type TraceTestElement, type TraceTestOptions, type TraceTestRatio } from './trace-test';
 export { withLiquidProperties, type LiquidConditions, type LiquidRedox, type LiquidThermometer } from './liquid-properties';
 export { suspensionFactor } from './melt-viscosity';
 export { apatiteSolubility, apatiteTemperature, withSaturationTemperatures, zirconiumInZircon, zirconSolubility, zirconTemperature, type ZirconModel } from './saturation';

@@ -4,6 +4,7 @@ import { step, type Suite, type Traced } from '../suite';
 import { coefficientRange, meltTypes, partitionMinerals, type MeltType } from '../tables';
 import { checkOwnCoefficients, findCoefficient, MissingCoefficientsError, readMeltTypes, sourcesOf, type MissingCoefficient, type OwnCoefficients, type UsedCoefficient } from './coefficients';
 import type { MassBalance } from './mass-balance';
+import { isotopeElement, usualRatioError } from './isotopes';
 import { amountOf, errorOf } from './one-analysis';
 import { readNumber } from './trace-setup';
 
@@ -27,6 +28,17 @@ export interface TraceTestOptions {
    * is not known exactly.
    */
   readonly leastSpread?: number;
+  /** Relative 1σ of isotope ratios, at least (default 0.00003 for Sr, Nd and Hf, 0.001 for Pb and Os). */
+  readonly ratioError?: number;
+}
+
+/** One isotope ratio of the test: crystallisation in a closed system leaves it as it is. */
+export interface TraceTestRatio {
+  readonly ratio: string;
+  readonly parent: number;
+  readonly daughter: number;
+  /** Daughter less parent, in 1σ of both together. */
+  readonly off: number;
 }
 
 /** One element of the test (ppm). */
@@ -59,6 +71,7 @@ export interface TraceTest extends Traced, Showable {
   /** The verdict in words, with the elements that decide it. */
   readonly why: string;
   readonly elements: readonly TraceTestElement[];
+  readonly ratios: readonly TraceTestRatio[];
   readonly coefficients: readonly UsedCoefficient[];
   /** Coefficients that kept an element out of the test. */
   readonly missing: readonly MissingCoefficient[];
@@ -111,7 +124,7 @@ const share = (values: readonly number[], p: number) => values[Math.min(values.l
  * the solution's own uncertainty.
  *
  * Rejected: an element more than 3σ outside its range, or more than one in ten (and more than one) beyond 2σ, or majors that do not fit
- * (probability below 1 %). Accepted: no such thing, and at least four elements agree with ranges narrow enough to tell, one that the
+ * (probability below 1 %), or an isotope ratio that moved by more than 3σ. Accepted: no such thing, and at least four elements agree with ranges narrow enough to tell, one that the
  * crystals take up (D > 1) and one that they do not (D < 0.5) among them. Otherwise undecided. The rule is the library's own.
  *
  * @param balance a solved mass balance whose parent and daughter hold elements in ppm (oxides are left to the majors)
@@ -188,7 +201,8 @@ export function testTraces(balance: MassBalance, options: TraceTestOptions = {})
     });
   }
   if (missing.length > 0 && options.analytes !== undefined) throw new MissingCoefficientsError(who, missing, elements.map(({ element }) => element));
-  const { verdict, why } = judge(balance, elements);
+  const ratios = compareRatios(parent, daughter, options.ratioError === undefined ? undefined : readNumber(options.ratioError, who, 'ratioError', { from: 0, to: 1, open: 'both' }));
+  const { verdict, why } = judge(balance, elements, ratios);
   const borrowed = used.filter(({ meltType }) => meltType !== 'supplied' && !sets.includes(meltType));
   const notes = [
     `Coefficients of ${sets.join(' to ')} melts; each range is widened to at least ±${100 * leastSpread} %. Elements without 1σ of their own: ${100 * relativeError} %.`,
@@ -199,23 +213,35 @@ export function testTraces(balance: MassBalance, options: TraceTestOptions = {})
     who, { mode, meltTypes: [...sets], relativeError, leastSpread, verdict, coefficients: used.map(({ mineral, analyte, meltType, value, low, high, source, standing }) => [mineral, analyte, meltType, value, low, high, source, standing]) },
     { sources: [...new Set([mode === 'rayleigh' ? 'neumann_1954' : 'shaw_1970', ...sourcesOf(used)])], tables: ['partition-coefficients.csv'] },
   );
-  return showAs({ verdict, why, elements, coefficients: used, missing, notes, lineage: [...balance.lineage, because] }, (it) => ({
+  return showAs({ verdict, why, elements, ratios, coefficients: used, missing, notes, lineage: [...balance.lineage, because] }, (it) => ({
     title: it.why,
     columns: ['Element', 'Parent (ppm)', 'Observed (ppm)', '1σ', 'Predicted (ppm)', 'from', 'to', 'D', 'D from', 'D to', 'Outside by (σ)', 'Finding'],
     rows: it.elements.map((each): TableCell[] => [each.element, each.parent, each.observed, each.observedSigma, each.predicted, each.low, each.high, each.bulk, each.bulkLow, each.bulkHigh, each.outside, each.finding]),
-    notes: it.notes,
+    notes: [...(it.ratios.length > 0 ? [`Isotope ratios, daughter less parent: ${it.ratios.map(({ ratio, off }) => `${ratio} ${off.toFixed(1)}σ`).join(', ')}.`] : []), ...it.notes],
   }));
 }
 
-function judge(balance: MassBalance, elements: readonly TraceTestElement[]): { verdict: TraceTest['verdict']; why: string } {
+function compareRatios(parent: Suite, daughter: Suite, least: number | undefined): TraceTestRatio[] {
+  const both = parent.analytes.filter((symbol) => isotopeElement(symbol) !== undefined && !symbol.startsWith('epsilon') && amountOf(parent, symbol) > 0 && amountOf(daughter, symbol) > 0);
+  return both.map((ratio) => {
+    const [before, after] = [amountOf(parent, ratio), amountOf(daughter, ratio)];
+    const sigmaOf = (analysis: Suite) => Math.max(errorOf(analysis, ratio) || 0, (least ?? usualRatioError(ratio)) * amountOf(analysis, ratio));
+    return { ratio, parent: before, daughter: after, off: (after - before) / Math.hypot(sigmaOf(parent), sigmaOf(daughter)) };
+  });
+}
+
+function judge(balance: MassBalance, elements: readonly TraceTestElement[], ratios: readonly TraceTestRatio[]): { verdict: TraceTest['verdict']; why: string } {
   const pair = `${balance.daughter.samples[0]} from ${balance.parent.samples[0]} by crystallisation`;
   const off = elements.filter(({ finding }) => finding === 'disagrees').sort((a, b) => Math.abs(b.outside) - Math.abs(a.outside));
   const far = off.filter(({ outside }) => Math.abs(outside) > 3);
   const told = elements.filter(({ finding }) => finding === 'agrees');
   const say = (list: readonly TraceTestElement[]) => list.slice(0, 6).map(({ element, observed, low, high, outside }) => `${element} (observed ${format(observed)}, predicted ${format(low)}–${format(high)} ppm, ${Math.abs(outside).toFixed(1)}σ ${outside > 0 ? 'above' : 'below'})`).join('; ');
-  if (balance.probability < 0.01) {
-    return { verdict: 'rejected', why: `Rejected: ${pair}. The majors do not fit (chi-square ${balance.chiSquare.toPrecision(3)}, probability ${balance.probability.toPrecision(2)})${off.length > 0 ? `; nor do ${say(off)}` : ''}.` };
-  }
+  const moved = ratios.filter((each) => Math.abs(each.off) > 3);
+  const against = [
+    ...(balance.probability < 0.01 ? [`The majors do not fit (chi-square ${balance.chiSquare.toPrecision(3)}, probability ${balance.probability.toPrecision(2)})`] : []),
+    ...(moved.length > 0 ? [`The system was not closed: ${moved.map(({ ratio, parent, daughter, off: by }) => `${ratio} went from ${parent} to ${daughter} (${Math.abs(by).toFixed(1)}σ)`).join(', ')}`] : []),
+  ];
+  if (against.length > 0) return { verdict: 'rejected', why: `Rejected: ${pair}. ${against.join('. ')}.${off.length > 0 ? ` Outside what the published coefficients allow: ${say(off)}.` : ''}` };
   if (balance.F.value >= 0.99) return { verdict: 'undecided', why: `Undecided: ${pair}. Next to nothing crystallised (F = ${balance.F.value.toFixed(3)}), so nothing is tested.` };
   if (far.length > 0 || off.length > Math.max(1, 0.1 * elements.length)) return { verdict: 'rejected', why: `Rejected: ${pair}. Outside what the published coefficients allow: ${say(off)}.` };
   const compatible = told.some(({ bulk }) => bulk > 1);

@@ -1,6 +1,8 @@
+import { readFileSync } from 'node:fs';
+import { join } from 'node:path';
+import Papa from 'papaparse';
 import { describe, expect, it } from 'vitest';
-import { massBalance, MissingCoefficientsError, rankAssemblages, testTraces } from 'wedgework';
-import { coefficientsFor } from 'wedgework';
+import { coefficientsFor, massBalance, MissingCoefficientsError, rankAssemblages, testTraces } from 'wedgework';
 import type { SeededRandom } from '../../kernel-lib/chemistry';
 import { daughterOf, noisy, plantedParent, scaled, seededDraws, type Analysis } from './planted';
 
@@ -96,6 +98,23 @@ describe('testTraces', () => {
     expect(testTraces(balance, { analytes: ['Cs'], coefficients: { olivine: { Cs: 0.001 }, plagioclase: { Cs: 0.03 } } }).elements).toHaveLength(1);
     expect(() => testTraces(balance, { analytes: ['Th'] })).toThrow(/do not both have/);
     expect(() => testTraces({} as never)).toThrow(/solved mass balance/);
+  });
+});
+
+describe('a published pair', () => {
+  it('fits in the majors and fails in the isotopes and the heavy rare earths', () => {
+    // Salina, Fossa delle Felci: GEOROC compilation, Convergent Margins, doi:10.25625/PVFZCE, CC BY-SA 4.0 (notebooks/data/salina-pair.csv).
+    const text = readFileSync(join(__dirname, '../../notebooks/data/salina-pair.csv'), 'utf8');
+    const [basalt, dacite] = Papa.parse<Record<string, string>>(text, { header: true, skipEmptyLines: true }).data.map((row) =>
+      Object.fromEntries(Object.entries(row).flatMap(([head, cell]) => (/\((wt%|ppm)\)$|^\d+\w+\/\d+\w+$/.test(head) && !head.startsWith('LOI') ? [[head.split(' ')[0], Number(cell)]] : []))));
+    const minerals = { plagioclase: { between: ['An45', 'An92'] }, amphibole: 'magnesiohornblende, Sierra Nevada batholith', orthopyroxene: 'Wo3En67Fs30', magnetite: 'Usp30', apatite: 'fluorapatite Ca5(PO4)3F' } as const;
+    const balance = massBalance({ parent: basalt, daughter: dacite, minerals });
+    expect(balance.probability).toBeGreaterThan(0.05);
+    expect(balance.sumOfSquares).toBeLessThan(0.5);
+    const test = testTraces(balance);
+    expect(test.verdict).toBe('rejected');
+    expect(test.ratios.find(({ ratio }) => ratio === '87Sr/86Sr')!.off).toBeGreaterThan(3);
+    expect(test.why).toMatch(/not closed/);
   });
 });
 
