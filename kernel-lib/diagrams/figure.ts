@@ -95,11 +95,16 @@ function headUnit(text: string, y: number, fontSize: number): VegaSpec {
   };
 }
 
+/** A count with its thousands apart: 12,345. */
+export function countText(count: number): string {
+  return String(count).replace(/\B(?=(\d{3})+$)/g, ',');
+}
+
 /** `120 samples plotted; 3 not plotted (2 no K₂O, 1 below detection).` */
 export function countsText({ plotted, notPlotted, reasons }: DiagramCounts, counted = 'sample'): string {
-  const whys = Object.entries(reasons).filter(([, count]) => count > 0).map(([reason, count]) => `${count} ${reason}`);
-  const left = notPlotted === 0 ? '' : `; ${notPlotted} not plotted${whys.length === 0 ? '' : ` (${whys.join(', ')})`}`;
-  return `${plotted} ${counted}${plotted === 1 ? '' : 's'} plotted${left}.`;
+  const whys = Object.entries(reasons).filter(([, count]) => count > 0).map(([reason, count]) => `${countText(count)} ${reason}`);
+  const left = notPlotted === 0 ? '' : `; ${countText(notPlotted)} not plotted${whys.length === 0 ? '' : ` (${whys.join(', ')})`}`;
+  return `${countText(plotted)} ${counted}${plotted === 1 ? '' : 's'} plotted${left}.`;
 }
 
 /** Room that a legend with these entries takes on the right of a figure, in pixels. */

@@ -57,10 +57,19 @@ export function samplesLayer(points: SamplePoints, options: SamplesOptions = {})
         if (!isDrawable(frame, x[i], y[i])) continue;
         const [px, py] = toPixels(frame, [x[i], y[i]]);
         placer.avoidPoint(px, py);
+        if (options.errors === 'bars') avoidBars(placer, frame, points, i);
       }
     },
     draw: (canvas) => (drawn > (options.binAbove ?? 5000) ? drawBins(canvas, points, options) : drawMarkers(canvas, points, options, drawn)),
   };
+}
+
+/** Error bars are kept clear like the samples themselves. */
+function avoidBars(placer: Canvas['placer'], frame: Frame, { x, y, sigmaX, sigmaY }: SamplePoints, i: number): void {
+  for (const part of [-1, -0.75, -0.5, -0.25, 0.25, 0.5, 0.75, 1]) {
+    if (sigmaX !== undefined && sigmaX[i] > 0) placer.avoidPoint(...toPixels(frame, [x[i] + part * sigmaX[i], y[i]]));
+    if (sigmaY !== undefined && sigmaY[i] > 0) placer.avoidPoint(...toPixels(frame, [x[i], y[i] + part * sigmaY[i]]));
+  }
 }
 
 function drawMarkers({ frame, panel }: Canvas, points: SamplePoints, options: SamplesOptions, drawn: number): VegaSpec[] {
@@ -121,7 +130,7 @@ function boundedUnits(frame: Frame, rows: readonly object[], area: number, toolt
   const fill = { field: 'c', type: 'nominal', scale: null };
   return Object.values(pointSide).flatMap((side) => {
     const these = rows.filter((row) => (row as { d: number }).d === side);
-    return these.length === 0 ? [] : [unit(frame, { type: 'point', shape: arrows[side], size: Math.max(44, area), strokeWidth: 0 }, these, { fill, ...opacity, tooltip })];
+    return these.length === 0 ? [] : [unit(frame, { type: 'point', shape: arrows[side], size: Math.max(110, area * 2.4), strokeWidth: 0 }, these, { fill, ...opacity, tooltip })];
   });
 }
 

@@ -116,7 +116,7 @@ function limitUnits({ frame }: Canvas, series: readonly SeriesShape[], colourOf:
     .map((row) => ({ ...row, y: specNumber(row.y) }));
   const arrow = 'M-0.7,-0.15L0.7,-0.15L0.7,0.1L0.12,0.1L0.12,1L0.5,1L0,1.8L-0.5,1L-0.12,1L-0.12,0.1L-0.7,0.1Z';
   const tooltip = [{ field: 'name', type: 'nominal', title: 'sample' }, { field: 'y', type: 'quantitative', title: 'below', format: '.3~g' }];
-  return rows.length === 0 ? [] : [unit(frame, { type: 'point', filled: true, shape: arrow, size: 44 }, rows, { fill: { field: 'c', type: 'nominal', scale: null }, tooltip, ...filtered })];
+  return rows.length === 0 ? [] : [unit(frame, { type: 'point', filled: true, shape: arrow, size: 80 }, rows, { fill: { field: 'c', type: 'nominal', scale: null }, tooltip, ...filtered })];
 }
 
 interface MarkerStyle {
