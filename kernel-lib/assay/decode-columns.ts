@@ -27,6 +27,7 @@ class Filling {
   readonly unreadable: { address: string; text: string; why: string }[] = [];
   readonly remarks = new Map<string, { count: number; first: string }>();
   private readonly divisor: number;
+  private readonly tens: boolean;
 
   constructor(readonly plan: PlannedColumn, size: number) {
     this.values = new Float64Array(size);
@@ -34,9 +35,12 @@ class Filling {
     // 12.3 ppb is 12.3 / 1000 ppm: dividing by a whole number is correctly rounded, multiplying by 0.001 is not.
     const inverse = 1 / plan.factor;
     this.divisor = plan.factor !== 1 && Math.abs(plan.factor) < 1 && Math.abs(inverse - Math.round(inverse)) < 1e-9 * inverse ? Math.round(inverse) : 0;
+    this.tens = plan.factor >= 10 && Number.isInteger(Math.log10(plan.factor));
   }
 
   convert(value: number): number {
+    // 5.137 % is 51370 ppm, not 51369.99999999999.
+    if (this.tens) return Number((value * this.plan.factor).toPrecision(15));
     return this.divisor !== 0 ? value / this.divisor : value * this.plan.factor;
   }
 

@@ -26,6 +26,21 @@ const codeLike = /^(?=.*\d)(?=.*[A-Z]{2})[A-Z0-9]+(?:-[A-Z0-9]+)*$/;
  * @param upperCase the head row is written in capitals throughout, so case says nothing
  */
 export function readHeading(text: string, upperCase = false): Heading {
+  const key = upperCase ? `^${text}` : `_${text}`;
+  let heading = known.get(key);
+  if (heading === undefined) {
+    heading = parseHeading(text, upperCase);
+    if (known.size > mostKnown) known.clear();
+    known.set(key, heading);
+  }
+  return heading;
+}
+
+/** Heads repeat within a sheet and between sheets of one laboratory, so readings are kept. */
+const known = new Map<string, Heading>();
+const mostKnown = 20_000;
+
+function parseHeading(text: string, upperCase: boolean): Heading {
   const plain = plainSigns(text);
   if (plain === '') return { role: 'unknown' };
   const words = vocabulary();

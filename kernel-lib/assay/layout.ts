@@ -1,6 +1,6 @@
 import { cellLook, TurnedGrid, type Grid } from './grid';
 import { unguarded } from './guarded';
-import { ownTag, readHeading, type Heading } from './heading';
+import { ownTag, readHeading } from './heading';
 import { plainSigns, spellingKey, vocabulary } from './spellings';
 
 /** Where things stand in a sheet. Rows and columns are counted from 0 in `grid`, which is turned where the samples stand in columns. */
@@ -39,25 +39,11 @@ export interface LayoutOptions {
   readonly settings?: Readonly<Record<string, unknown>>;
 }
 
-/** Headings are read once for each text: a sheet repeats them. */
-class HeadingReader {
-  private readonly known = new Map<string, Heading>();
-
-  constructor(private readonly settings: Readonly<Record<string, unknown>>) {}
-
-  /** Whether a text names an analyte, or a column that the user has settled. */
-  names(text: string, upperCase: boolean): string | undefined {
-    if (Object.hasOwn(this.settings, text)) return text;
-    const heading = this.read(text, upperCase);
-    return heading.role === 'analyte' ? heading.symbol : undefined;
-  }
-
-  read(text: string, upperCase = false): Heading {
-    const key = upperCase ? `^${text}` : text;
-    let heading = this.known.get(key);
-    if (heading === undefined) this.known.set(key, (heading = readHeading(text, upperCase)));
-    return heading;
-  }
+/** What a text names: an analyte, or a column that the user has settled (which counts like one). */
+function nameOf(text: string, upperCase: boolean, settings: Readonly<Record<string, unknown>>): string | undefined {
+  if (Object.hasOwn(settings, text)) return text;
+  const heading = readHeading(text, upperCase);
+  return heading.role === 'analyte' ? heading.symbol : undefined;
 }
 
 interface HeadRow {
@@ -72,17 +58,17 @@ interface HeadRow {
  * @returns undefined when no row and no column names an analyte
  */
 export function findLayout(sheet: Grid, options: LayoutOptions = {}): Layout | undefined {
-  const reader = new HeadingReader(options.settings ?? {});
+  const { settings = {} } = options;
   const turned = new TurnedGrid(sheet);
-  const inRows = options.samplesIn === 'columns' ? undefined : bestHeadRow(sheet, reader, options.headerRow);
-  const inColumns = options.samplesIn === 'rows' || options.headerRow !== undefined ? undefined : bestHeadRow(turned, reader);
+  const inRows = options.samplesIn === 'columns' ? undefined : bestHeadRow(sheet, settings, options.headerRow);
+  const inColumns = options.samplesIn === 'rows' || options.headerRow !== undefined ? undefined : bestHeadRow(turned, settings);
   if (inRows === undefined && inColumns === undefined) return undefined;
   // Sample names can look like analytes (`B`, `V-51`), so a column must name clearly more of them than any row does.
-  if (inColumns !== undefined && inColumns.analytes > 1.5 * (inRows?.analytes ?? 0)) return layOut(turned, inColumns, reader, 'columns');
-  return layOut(sheet, inRows!, reader, 'rows');
+  if (inColumns !== undefined && inColumns.analytes > 1.5 * (inRows?.analytes ?? 0)) return layOut(turned, inColumns, settings, 'columns');
+  return layOut(sheet, inRows!, settings, 'rows');
 }
 
-function bestHeadRow(grid: Grid, reader: HeadingReader, only?: number): HeadRow | undefined {
+function bestHeadRow(grid: Grid, settings: Readonly<Record<string, unknown>>, only?: number): HeadRow | undefined {
   let best: HeadRow | undefined;
   const columns = Math.min(grid.columns, searchColumns);
   for (let row = only ?? 0; row < Math.min(grid.rows, only === undefined ? searchRows : only + 1); row++) {
@@ -96,9 +82,9 @@ function bestHeadRow(grid: Grid, reader: HeadingReader, only?: number): HeadRow 
     const analytes = new Map<string, number>();
     let labels = 0;
     for (const text of texts) {
-      const symbol = ownTag.test(text) ? text : reader.names(text, upperCase);
+      const symbol = ownTag.test(text) ? text : nameOf(text, upperCase, settings);
       if (symbol !== undefined) analytes.set(symbol, Math.max(analytes.get(symbol) ?? 0, text.length === 1 ? loneLetter : 1));
-      else if (/label|quantity/.test(reader.read(text, upperCase).role)) labels++;
+      else if (/label|quantity/.test(readHeading(text, upperCase).role)) labels++;
     }
     // A sheet of places without any analyte is known by two heads such as latitude and sample.
     const named = [...analytes.values()].reduce((sum, weight) => sum + weight, 0);
@@ -108,12 +94,12 @@ function bestHeadRow(grid: Grid, reader: HeadingReader, only?: number): HeadRow 
   return best;
 }
 
-function layOut(grid: Grid, head: HeadRow, reader: HeadingReader, samplesIn: 'rows' | 'columns'): Layout {
+function layOut(grid: Grid, head: HeadRow, settings: Readonly<Record<string, unknown>>, samplesIn: 'rows' | 'columns'): Layout {
   const columns = grid.columns;
   const words = vocabulary();
   const rowTexts = (row: number) => Array.from({ length: columns }, (_, column) => grid.text(row, column));
   const heads = rowTexts(head.row).map(unguarded);
-  const isAnalyte = heads.map((text) => reader.names(text, head.upperCase) !== undefined || ownNumbers.test(text));
+  const isAnalyte = heads.map((text) => nameOf(text, head.upperCase, settings) !== undefined || ownNumbers.test(text));
   const kindOf = (row: number) => headerKind(grid, row, isAnalyte, words);
   const header: { analyte: number; unit?: number; method?: number; limit?: number; upperLimit?: number } = { analyte: head.row };
   let top = head.row;

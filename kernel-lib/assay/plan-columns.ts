@@ -46,7 +46,8 @@ export interface PlanOptions {
   readonly columnsWithHeads?: number;
 }
 
-const signedAnalytes = new Set(['LOI', 'epsilon-Nd', 'epsilon-Hf']);
+/** Water not told apart is often loss on ignition by another name, and so can be negative like it. */
+const signedAnalytes = new Set(['LOI', 'H2O', 'epsilon-Nd', 'epsilon-Hf']);
 
 type Draft = { -readonly [Key in keyof PlannedColumn]: PlannedColumn[Key] } & { knownUnit: boolean; rank: number; settled: boolean };
 

@@ -1,3 +1,4 @@
+import { cellState } from '../suite';
 import type { CellConventions } from './cells';
 import { decodeColumns, type DecodedSheet, type Withheld } from './decode-columns';
 import { DelimitedGrid } from './delimited';
@@ -52,7 +53,16 @@ export function readSheet(sheet: OpenSheet, layout: Layout, options: SheetOption
     ...skipped.slice(0, mostSkippedListed).map(({ row, why, text }) => `${layout.samplesIn === 'rows' ? 'row' : 'column'} ${row + 1}: ${why}${text === '' ? '' : ` ("${text.slice(0, 80)}")`}`),
     ...(skipped.length > mostSkippedListed ? [`${skipped.length - mostSkippedListed} more rows`] : []),
   ];
-  return { name: sheet.name, layout, decoded, conventions, inferred, ignored, pleaseCheck: [...sheet.remarks, ...remarks, ...notes.pleaseCheck, ...decoded.remarks] };
+  return { name: sheet.name, layout, decoded, conventions, inferred, ignored, pleaseCheck: [...sheet.remarks, ...remarks, ...notes.pleaseCheck, ...nameless(layout, decoded), ...decoded.remarks] };
+}
+
+/** Rows that hold values but no sample name: often half of a row that was broken in two. */
+function nameless({ body, samplesIn }: Layout, { labels, columns }: DecodedSheet): string[] {
+  const names = labels.get('sample');
+  if (names === undefined) return [];
+  const rows = names.flatMap((name, i) => (name === '' && columns.some(({ states }) => states[i] !== cellState.missing) ? [i] : []));
+  const one = samplesIn === 'rows' ? 'row' : 'column';
+  return rows.length === 0 ? [] : [`no sample name in ${rows.slice(0, 20).map((i) => `${one} ${body[i] + 1}`).join(', ')}${rows.length > 20 ? ` and ${rows.length - 20} more` : ''}`];
 }
 
 /** The decimal mark of the sheet: a comma where cells such as `52,1` outnumber cells such as `52.1`. */
@@ -100,15 +110,21 @@ function unevenRows(sheet: OpenSheet, layout: Layout, where: string): { withheld
     if (width < wanted) short.push(row);
     else if (width > wanted && hasMore(grid, row, wanted)) long.push(row);
   }
-  if (long.length > 0.8 * layout.body.length && layout.body.length > 1) {
-    throw new AssayError(`${where}: the head row has ${wanted} cells but the rows below it have ${grid.width(long[0])}, so heads do not stand over their columns. Add the missing heads, or check the delimiter and the decimal mark.`);
+  const misfit = [long, sameWidth(grid, short)].find((rows) => rows.length > 0.8 * layout.body.length && layout.body.length > 1);
+  if (misfit !== undefined) {
+    throw new AssayError(`${where}: the head row has ${wanted} cells but the rows below it have ${grid.width(misfit[0])}, so heads do not stand over their columns. Add the missing heads, or check the delimiter and the decimal mark.`);
   }
   const trimmed = short.length >= 3 && short.length > 0.05 * layout.body.length;
   const rows = new Set([...long, ...(trimmed ? [] : short)]);
   const remarks = [...rows].sort((a, b) => a - b).slice(0, 20).map((row) => `row ${row + 1} has ${grid.width(row)} cells under ${wanted} heads: its numbers are not taken`);
   if (rows.size > 20) remarks.push(`${rows.size - 20} more rows have too many or too few cells: their numbers are not taken`);
-  if (trimmed) remarks.push(`${short.length} rows end before the last head: taken as empty cells left off`);
+  if (trimmed) remarks.push(`${short.length} rows end before the last head: taken as empty cells left off (rows ${short.slice(0, 20).map((row) => row + 1).join(', ')}${short.length > 20 ? ' …' : ''})`);
   return { withheld: { rows, columns: new Set() }, remarks };
+}
+
+/** The short rows, if all are short by the same number of cells: then it is rather the head row that has one too many. */
+function sameWidth(grid: DelimitedGrid, short: readonly number[]): readonly number[] {
+  return short.every((row) => grid.width(row) === grid.width(short[0])) ? short : [];
 }
 
 function hasMore(grid: DelimitedGrid, row: number, from: number): boolean {
