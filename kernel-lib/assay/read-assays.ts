@@ -28,7 +28,7 @@ export interface Assays extends Traced, Showable {
  * @param options see `ReadAssaysOptions`; `columns: { 'Zr XRF': 'ignore', 'Au': { unit: 'ppb' } }` settles single columns
  * @returns `suite` (n samples), `report` (what every column became, what was inferred, left out, and should be checked), `lineage`
  * @throws AssayError for a file that cannot be opened or understood; RangeError for an unknown option
- * @example const { suite, report } = await readAssays('notebooks/data/oruvai-arc.csv')
+ * @example const { suite, report } = await readAssays('data/oruvai-arc.xlsx')
  */
 export async function readAssays(path: string, options: ReadAssaysOptions = {}): Promise<Assays> {
   checkReadOptions(path, options);

@@ -33,7 +33,7 @@ export function marginTitle(symbol: string, unit: string): string {
  * @param trend from `crossArcTrend`
  * @param options `names`, `title`, `width`, `height`
  * @throws TypeError for anything that is not a trend
- * @example diagrams.arcTrendPlot(crossArcTrend(placed, 'K60'))
+ * @example diagrams.arcTrendPlot(crossArcTrend(placed, { of: 'Ba/Th', against: 'SlabDepth' }))
  */
 export function arcTrendPlot(trend: ArcTrend, options: ArcTrendPlotOptions = {}): Diagram {
   if (typeof trend !== 'object' || trend === null || !Array.isArray(trend.points) || trend.band === undefined) throw new TypeError('arcTrendPlot: the first argument must be what crossArcTrend returned.');

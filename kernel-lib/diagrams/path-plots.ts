@@ -59,7 +59,7 @@ export function pathPatterns(path: ModelPath, options: PathPatternOptions = {}):
  * @param path the result of `crystallise`, `wholeRockPath` or another model that keeps its crystals
  * @param options `show` analytes (default the oxides of the path, or its first six elements); `columns`, `title`, `width` and `height` of one panel
  * @throws TypeError for something that is no path; RangeError when it keeps no crystals or lacks an analyte
- * @example diagrams.cumulateComposition(wholeRockPath({ … }), { show: ['SiO2', 'MgO', 'Al2O3'] })
+ * @example diagrams.cumulateComposition(wholeRock, { show: ['SiO2', 'MgO', 'Al2O3'] })
  */
 export function cumulateComposition(path: ModelPath, options: ResultDiagramOptions & { readonly show?: readonly string[]; readonly columns?: number } = {}): Diagram {
   const who = 'cumulateComposition';

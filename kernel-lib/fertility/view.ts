@@ -79,7 +79,7 @@ const effectText = { strike: 'struck out', exclude: 'left out', caution: 'counte
  * @param sample the sample's name
  * @returns a table to show: indicator, value, verdict, reason, basis, limits of use, source
  * @throws RangeError when the screening has no such sample, or more than one
- * @example explainFertility(screen, 'KE-12').rows
+ * @example explainFertility(screen, 'AM-001').rows
  */
 export function explainFertility(screen: FertilityScreen, sample: string): TableView {
   const rows = screen.suite.samples.flatMap((name, row) => (name === sample ? [row] : []));

@@ -48,7 +48,7 @@ const isEarthquake = (type: string): boolean => type === '' || /earthquake|^eq$|
  *
  * @param path CSV file
  * @throws PointTableError naming file, line and column
- * @example const quakes = await readHypocentres('data/hypocentres.csv')
+ * @example const quakes = await readHypocentres('data/oruvai-hypocentres.csv')
  */
 export async function readHypocentres(path: string): Promise<Hypocentres & Showable> {
   const table = await readPointTable(

@@ -204,7 +204,7 @@ export function freedom(input: BalanceInput, solver: BalanceSolver): number {
  * @returns F, masses and shares of the phases with intervals, residuals by oxide (wt %), ΣR², chi-square with its probability, correlations
  * @throws RangeError or TypeError naming the argument and what is allowed
  * @source Bryan et al. 1969; Wright & Doherty 1970; Bro & De Jong 1997 (non-negative least squares)
- * @example massBalance({ parent: suite.sample('KE-3'), daughter: suite.sample('KE-12'), minerals: { olivine: 'Fo80', clinopyroxene: 'Wo42En46Fs12', plagioclase: { between: ['An50', 'An90'] } } })
+ * @example massBalance({ parent: suite.sample('KE-20'), daughter: suite.sample('KE-10'), minerals: { olivine: 'Fo80', clinopyroxene: 'Wo42En46Fs12', plagioclase: { between: ['An50', 'An90'] } } })
  */
 export function massBalance(options: MassBalanceOptions): MassBalance {
   const who = 'massBalance';

@@ -65,7 +65,7 @@ export interface PrimaryMelt extends Traced, Showable {
  * @throws RangeError naming the bad argument, or when the target is not reached with `most` olivine, or is already passed
  * @source Roeder & Emslie 1970 (exchange); Putirka et al. 2007, Putirka 2008 (temperature). Holds for lavas on the olivine-only part of
  *   their descent, commonly MgO above 8 wt %: below that it is flagged
- * @example primaryMelt({ from: suite.sample('KE-1'), until: { Fo: 90 }, redox: 0.2, pressure: 15000, water: 3 }).temperature
+ * @example primaryMelt({ from: suite.sample('KE-25'), until: { Fo: 90 }, redox: 0.2, pressure: 15000, water: 3 }).temperature
  */
 export function primaryMelt(options: PrimaryMeltOptions): PrimaryMelt {
   const who = 'primaryMelt';

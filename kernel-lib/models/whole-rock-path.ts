@@ -84,7 +84,7 @@ function setsAlong(options: WholeRockOptions, majorsPath: MajorsPath, who: strin
  *   viscosity where conditions are given, and the labels `coefficient set`, `assemblage`, `liquid range`; `solid` of each step; `cumulate`
  * @throws MissingCoefficientsError with all that is missing over the whole path; RangeError naming the bad argument
  * @source Bryan et al. 1969 (majors); Gast 1968 (traces); Roeder & Emslie 1970; Harrison & Watson 1984; Watson & Harrison 1983; Boehnke et al. 2013
- * @example wholeRockPath({ from: suite.sample('KE-3'), assemblage: { olivine: 0.2, clinopyroxene: 0.3, plagioclase: 0.5 }, downTo: 0.6,
+ * @example wholeRockPath({ from: suite.sample('KE-20'), assemblage: { olivine: 0.2, clinopyroxene: 0.3, plagioclase: 0.5 }, downTo: 0.6,
  *   compositions: { olivine: 'Fo80', clinopyroxene: 'Wo42En46Fs12', plagioclase: 'An75' }, analytes: ['Sr', 'Ba'], meltType: 'basalt' })
  */
 export function wholeRockPath(options: WholeRockOptions): ModelPath {

@@ -81,7 +81,7 @@ const mantleSource = 'mckenzie_onions_1991';
  * @returns concentrations in ppm and dimensionless coefficients, one an element
  * @throws RangeError for an unknown key, a fraction outside 0–1, or an element that an end member has no value of
  * @source Kessel et al. 2005, Xiong 2006, Kelemen et al. 2003 (as recast in Eiler et al. 2007); McKenzie & O'Nions 1991; Johnson et al. 1990; Walter 1998
- * @example wedgeEndMembers({ sediment: 'subducting-sediment-2014' }).sedimentMelt
+ * @example wedgeEndMembers({ sediment: 'subducting-sediment-1998' }).sedimentMelt
  */
 export function wedgeEndMembers(options: WedgeEndMemberOptions = {}): WedgeEndMembers {
   const { elements = wedgeElements, fluidFraction = 0.05, sedimentMeltFraction = 0.2, fluidResidue = 'eclogite-with-rutile' } = options;

@@ -51,7 +51,7 @@ export interface VerifyOptions {
  * @param path of an executed notebook, with its `.record.json` beside it
  * @returns the verdict, what changed since (inputs by cell, tables by line, notebook by line, versions), which values differ and by how much
  * @throws RunRecordError when there is no usable record
- * @example (await ww.verifyRun('results/oruvai-arc/named-suite.ipynb')).verdict // 'identical'
+ * @example (await ww.verifyRun('results/oruvai-arc/01-named-suite.ipynb')).verdict // 'identical'
  */
 export async function verifyRun(path: string, options: VerifyOptions = {}): Promise<Verification> {
   if (typeof path !== 'string' || path === '') throw new TypeError('verifyRun takes the path of an executed notebook.');
