@@ -1,5 +1,5 @@
 import { longitudeNear, slabContours, type Hypocentres, type SlabSurface, type TrenchLine } from '../margin';
-import { evaluate, step, type Suite } from '../suite';
+import { evaluate, joinLineages, step, type Suite } from '../suite';
 import { reservoir } from '../tables';
 import { marginTitle } from './arc-trend-plot';
 import type { Diagram } from './diagram';
@@ -89,7 +89,7 @@ export function arcMap(slab: SlabSurface, suite: Suite, options: ArcMapOptions =
     counts: { plotted: placed.length, notPlotted: marks.length - placed.length, reasons: { 'without a position': marks.length - placed.length } },
     counted: 'volcanic centre',
     legendWidth: value === undefined ? 0 : legendRoom(marginTitle(colour!, value.unit), []),
-    lineage: [...suite.lineage, ...slab.lineage, step('diagrams.arcMap', { by, colour: colour ?? null, contours: [...depths] })],
+    lineage: [...joinLineages(suite.lineage, slab.lineage), step('diagrams.arcMap', { by, colour: colour ?? null, contours: [...depths] })],
   });
 }
 

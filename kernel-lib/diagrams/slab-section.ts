@@ -1,5 +1,5 @@
 import { eventKindNames, geodesic, pointAt, slabBelow, slabSupport, type HypocentreSlab, type Hypocentres, type SlabSurface } from '../margin';
-import { step, type Suite } from '../suite';
+import { joinLineages, step, type Suite } from '../suite';
 import { volcanoMarks } from './arc-map';
 import type { Diagram } from './diagram';
 import { figure, legendRoom } from './figure';
@@ -96,7 +96,7 @@ export function slabSection(slab: SlabSurface, suite: Suite, options: SlabSectio
     counts: { plotted: shown.length, notPlotted: marks.length - shown.length, reasons: { 'outside the strip': marks.length - shown.length } },
     counted: 'volcanic centre',
     legendWidth: events?.points.groups === undefined ? 0 : legendRoom(events.points.groups.title, events.points.groups.names),
-    lineage: [...suite.lineage, ...slab.lineage, step('diagrams.slabSection', { longitude, latitude, azimuth, swath })],
+    lineage: [...joinLineages(suite.lineage, slab.lineage), step('diagrams.slabSection', { longitude, latitude, azimuth, swath })],
   });
 }
 

@@ -110,7 +110,9 @@ export function atComposition(suite: Suite, options: CompositionIndex | ArcValue
   const sources = ['theil_1950', 'sen_1968', 'efron_1979', ...(method === 'huber' ? ['huber_1964'] : []), ...(at?.index === 'MgO' ? ['plank_langmuir_1988'] : at?.index === 'SiO2' ? ['dickinson_1975'] : [])];
   const result: ArcValues = {
     of, unit, by, ...(at === undefined ? {} : { at }), groups, notes,
-    lineage: [...suite.lineage, step('atComposition', { of, by, at: at === undefined ? null : { index: at.index, value: at.value, window: [...at.window] }, method, seed, groups: groups.length }, { sources })],
+    lineage: [...suite.lineage, step('atComposition', { of, by, at: at === undefined ? null : { index: at.index, value: at.value, window: [...at.window] }, method, seed, groups: groups.length }, {
+      sources, says: at === undefined ? '' : `${of} was brought to ${at.value} % ${at.index} by a robust line through the samples of each ${by} within ${at.window[0]}–${at.window[1]} %.`,
+    })],
   };
   const what = at === undefined ? `Median ${of}` : `${of} at ${at.value} ${at.index}`;
   return showAs(result, () => ({

@@ -53,7 +53,9 @@ export function slabFromDepths(points: SlabPoints, options: PublishedSlabOptions
   notes.push(`1σ of ${sigma} km for the published depths is ${options.sigma === undefined ? 'an assumption' : 'as given'}; the file carries none.`);
   const slab: SlabSurface = {
     kind: 'published depths', name: points.slab, ...(trench === undefined ? {} : { trench }), extent, depthRange, notes,
-    lineage: [...points.lineage, step('slabFromDepths', { points: points.size, sigma, reach, line: trench?.name ?? null })],
+    lineage: [...points.lineage, step('slabFromDepths', { points: points.size, sigma, reach, line: trench?.name ?? null }, {
+      says: `A surface was laid through ${points.size} published slab depths${points.slab === '' ? '' : ` (${points.slab})`} on Delaunay triangles with slopes from local quadratic fits; their 1σ was taken as ${sigma} km.`,
+    })],
     depthAt: (longitudes, latitudes) => at(longitudes, latitudes).depth,
     at,
   };

@@ -43,6 +43,8 @@ export interface CrustalThickness {
   readonly lineage: readonly Step[];
 }
 
+/** Thickness of oceanic crust, km (common practice): nothing thinner is the crust of an arc. */
+const oceanicCrust = 7;
 /** Calibrations further apart than this are pointed out, km. */
 const disagreement = 10;
 
@@ -78,7 +80,11 @@ export function crustalThickness(suite: Suite, options: CrustOptions = {}): Crus
   if (fromMemory.length > 0) warnings.push(`Coefficients recalled and not checked against the print: ${fromMemory.join(', ')}.`);
   const result: CrustalThickness = {
     estimates, warnings,
-    lineage: [...suite.lineage, step('crustalThickness', { calibrations: [...keys], by: by ?? null, minimum, seed }, { sources: [...new Set(keys.flatMap((key) => known.get(key)!.sources))], tables: ['crustal-thickness.json', 'reservoirs.csv'] })],
+    lineage: [...suite.lineage, step('crustalThickness', { calibrations: [...keys], by: by ?? null, minimum, seed }, {
+      sources: [...new Set(keys.flatMap((key) => known.get(key)!.sources))], tables: ['crustal-thickness.json', 'reservoirs.csv'],
+      fromMemory: fromMemory.map((key) => `calibration ${known.get(key)!.name} of crustal thickness (${known.get(key)!.sources.map(shortSource).join('; ')})`),
+      says: 'Thickness of the crust was read from suite medians of filtered samples by each published calibration apart.',
+    })],
   };
   return showAs(result, () => ({
     title: 'Thickness of the crust',
@@ -106,7 +112,7 @@ function estimate(suite: Suite, group: string, calibration: CrustCalibration, ho
       const values = optional && !suite.has(of) ? undefined : evaluate(suite, of).values;
       if (values === undefined) continue;
       rows = rows.filter((i) => (optional && Number.isNaN(values[i])) || (values[i] >= from && values[i] <= to));
-      counts.push({ step: `${of} ${Number.isFinite(from) ? from : ''}–${Number.isFinite(to) ? to : ''}`, left: rows.length });
+      counts.push({ step: Number.isFinite(from) && Number.isFinite(to) ? `${of} ${from}–${to}` : Number.isFinite(from) ? `${of} ≥ ${from}` : `${of} ≤ ${to}`, left: rows.length });
     }
     const ratios = calibration.terms.map(({ of }) => evaluate(suite, of, { reference }).values);
     rows = rows.filter((i) => ratios.every((values) => values[i] > 0 && Number.isFinite(values[i])));
@@ -124,7 +130,7 @@ function estimate(suite: Suite, group: string, calibration: CrustCalibration, ho
     const drawn = Float64Array.from({ length: 1000 }, () => thicknessFromRatios(calibration.key, statistic(rows.map(() => rows[Math.floor(draw() * rows.length)]))));
     const thickness = thicknessFromRatios(calibration.key, found);
     const errors = coefficientNote(calibration);
-    const note = [thickness <= 0 ? 'the ratio is below the range of the calibration' : '', errors].filter((text) => text !== '').join('; ');
+    const note = [thickness < oceanicCrust ? `thinner than oceanic crust (some ${oceanicCrust} km): the ratio is below the range of the calibration` : '', errors].filter((text) => text !== '').join('; ');
     return { ...base, thickness: thickness <= 0 ? NaN : thickness, interval: [quantileOf(drawn, 0.025), quantileOf(drawn, 0.975)], ratios: found, counts, used: rows.length, note };
   } catch (error) {
     if (error instanceof ExpressionError) return nothing(`not determined: ${error.message}`, counts);

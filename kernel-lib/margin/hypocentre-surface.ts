@@ -240,7 +240,10 @@ function finish(made: Finish): HypocentreSlab & Showable {
         area: options.area === undefined ? null : { ...options.area }, crustDepth: options.crustDepth, trenchDepth: trench === undefined ? null : options.trenchDepth,
         systematic: options.systematic, follow: options.follow, raisedBy: Number(raisedBy.toPrecision(4)), knotSpacing: grid.step, terms: grid.size, effectiveTerms: Number(fit.effectiveTerms.toPrecision(4)), rounds: fit.rounds,
         stiffness: Number(fit.stiffness.toPrecision(4)), scatter: Number(fit.mixture.spread.toPrecision(4)), counts: { ...counts },
-      }, { sources: ['eilers_marx_1996', 'wood_fasiolo_2017', 'dempster_1977', 'silverman_1985'] }),
+      }, {
+        sources: ['eilers_marx_1996', 'wood_fasiolo_2017', 'dempster_1977', 'silverman_1985'],
+        says: `A slab surface was fitted to ${counts.slab} of ${fit.kinds.length} hypocentres as a penalised spline, events being weighted by their probability of belonging to the ${options.follow} of the upper seismic plane${separation === undefined ? '' : ` (a lower plane lies ${separation.toFixed(0)} km below)`}; events scatter by ${fit.mixture.spread.toFixed(1)} km (1σ) across it, and ${options.systematic} km were added for bias common to all depths.`,
+      }),
     ],
     depthAt: (longitudes, latitudes) => at(longitudes, latitudes).depth,
     at,

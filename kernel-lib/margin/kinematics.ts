@@ -163,6 +163,9 @@ export function withKinematics(suite: Suite, given: { readonly motion: PlateMoti
   ].filter((note) => note !== undefined);
   return suite.with(
     [derivedColumn('ConvergenceNormal', normal, 'mm/yr'), derivedColumn('Obliquity', obliquity, '°'), derivedColumn('DescentRate', descent, 'km/Ma'), derivedColumn('ThermalParameter', phi, 'km')],
-    step('withKinematics', { ...(fixed ?? { pole: JSON.stringify((motion as { pole: unknown }).pole) }), age, strike: given.strike ?? null, notes }, { sources: ['kirby_1991', 'syracuse_abers_2006'], tables: ['plausible-ranges.json'] }),
+    step('withKinematics', { ...(fixed ?? { pole: JSON.stringify((motion as { pole: unknown }).pole) }), age, strike: given.strike ?? null, notes }, {
+      sources: ['kirby_1991', 'syracuse_abers_2006'], tables: ['plausible-ranges.json'],
+      says: `Descent rate and thermal parameter were taken from ${fixed === undefined ? 'plate rotation about a pole' : `convergence of ${fixed.rate} mm/yr towards ${fixed.azimuth}°`}, the slab's dip and strike below each sample, and ${typeof age === 'number' ? `a plate age of ${age} Ma` : `the plate ages of column ${age}`}.`,
+    }),
   );
 }

@@ -1,5 +1,5 @@
 import { showAs, type Showable } from '../display';
-import { column, derivedColumn, step, type Column, type Step, type Suite, Suite as SuiteClass } from '../suite';
+import { column, derivedColumn, joinLineages, step, Suite, suiteOf, type Column, type Step } from '../suite';
 import { wrapLongitude } from './geodesy';
 import { emptyBelow, slabSupport, slabSupportNames, type SlabBelow, type SlabSurface } from './slab';
 import { checkedPoints } from './table-input';
@@ -39,7 +39,7 @@ export function slabBelow(
   slab: SlabSurface, target: Suite | { readonly longitude: ArrayLike<number>; readonly latitude: ArrayLike<number> }, options: { readonly trench?: TrenchLine } = {},
 ): Suite | (SlabBelowPoints & Showable) {
   if (typeof slab?.at !== 'function') throw new RangeError('slabBelow: the first argument must be a slab surface, from slabFromDepths or slabFromHypocentres.');
-  if (target instanceof SuiteClass) return joinToSuite(slab, target, options);
+  if (target instanceof Suite) return joinToSuite(slab, target, options);
   checkedPoints(target?.longitude, target?.latitude, 'slabBelow');
   const below = slab.at(target.longitude, target.latitude);
   const { trenchDistance, arcPosition, notes } = measured(slab, target.longitude, target.latitude, options.trench);
@@ -117,8 +117,14 @@ function joinToSuite(slab: SlabSurface, suite: Suite, options: { readonly trench
     slab: slab.name, kind: slab.kind, samples: size, ...supportCounts(below.support), withoutPosition: lon.reduce((n, value) => n + (Number.isNaN(value) ? 1 : 0), 0), outsideTheGlobe: outside,
     line: (options.trench ?? slab.trench)?.name ?? null, notes,
   };
-  const labelled = suite.withLabels({ slabSupport: Array.from(below.support, (support) => slabSupportNames[support]) }, step('slabSupport', {}));
-  return labelled.with(columns, step('slabBelow', detail, { sources: ['karney_2013', 'snyder_1987'] }));
+  const all = new Map(suite.columns);
+  for (const each of columns) all.set(each.symbol, each);
+  const labels = new Map(suite.labels).set('slabSupport', Array.from(below.support, (support) => slabSupportNames[support]));
+  const because = step('slabBelow', detail, {
+    sources: ['karney_2013', 'snyder_1987'],
+    says: `Slab depth, dip and strike were read below each sample${detail.line === null ? '' : `, and distances taken as geodesics on the WGS84 ellipsoid from the ${detail.line}`}.`,
+  });
+  return suiteOf({ columns: all.values(), labels, lineage: [...joinLineages(suite.lineage, slab.lineage), because] });
 }
 
 /** @internal Longitude and latitude of a suite (degrees, n each). */

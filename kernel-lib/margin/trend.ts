@@ -105,7 +105,7 @@ export function crossArcTrend(suite: Suite, options: ArcTrendOptions | Compositi
     lineage: [
       ...suite.lineage,
       step('crossArcTrend', { of, against, by, at: at === undefined ? null : { index: at.index, value: at.value, window: [...at.window] }, method, seed, draws, confidence, groups: used.length, notUsed: left.length, verdict },
-        { sources: ['theil_1950', 'sen_1968', 'kendall_1938', 'efron_1979', ...(method === 'huber' ? ['huber_1964'] : []), ...(at?.index === 'SiO2' ? ['dickinson_1975'] : [])] }),
+        { sources: ['theil_1950', 'sen_1968', 'kendall_1938', 'efron_1979', ...(method === 'huber' ? ['huber_1964'] : []), ...(at?.index === 'SiO2' ? ['dickinson_1975'] : [])], says: sentence }),
     ],
   };
   return showAs(result, () => ({
@@ -178,9 +178,9 @@ function plainSentence(t: {
   const names: Readonly<Record<string, string>> = { SlabDepth: 'slab depth', ThermalParameter: 'thermal parameter', TrenchDistance: 'distance from the trench', ArcPosition: 'position along the arc', SlabDip: 'slab dip' };
   const versus = names[t.against] ?? t.against;
   const what = nameOf(t.of, t.at);
-  const number = (value: number) => Number(value.toPrecision(3)).toString();
+  const number = (value: number) => Number(value.toPrecision(3)).toString().replace('-', '−');
   const unit = `${t.unit === '' ? '' : ` ${t.unit === 'wt%' ? 'wt %' : t.unit}`} per 100 ${t.againstUnit || 'units'}`;
-  const figures = `${number(100 * t.line.slope)}${unit}, ${Math.round(100 * t.confidence)} % interval ${number(100 * t.interval[0])} to ${number(100 * t.interval[1])}; Kendall's τ ${t.tau.toFixed(2)}, p ${t.p < 0.001 ? '< 0.001' : t.p.toPrecision(2)}`;
+  const figures = `${number(100 * t.line.slope)}${unit}, ${Math.round(100 * t.confidence)} % interval ${number(100 * t.interval[0])} to ${number(100 * t.interval[1])}; Kendall's τ ${t.tau.toFixed(2).replace('-', '−')}, p ${t.p < 0.001 ? '< 0.001' : t.p.toPrecision(2)}`;
   const groups = `${t.count} ${t.by === 'volcano' ? 'volcanoes' : 'groups'}`;
   const way = t.line.slope > 0 ? 'rises' : 'falls';
   if (t.verdict === 'trend') return `${what} ${way} with ${versus} across ${groups} (${figures}).`;
