@@ -15,6 +15,7 @@ import { ratios, type RatioOptions, type RatioTable } from './ratios';
  * @example anomalies(suite, ['Eu/Eu*'], { formulas: { 'Eu/Eu*': 'arithmetic' } }).columns.get('Eu/Eu*').values
  */
 export function anomalies(suite: Suite, names: readonly string[] = namedQuantities(), options: RatioOptions = {}): RatioTable {
+  if (!Array.isArray(names)) throw new TypeError(`anomalies takes a list of names such as ['Eu/Eu*'], not ${JSON.stringify(names)}.`);
   for (const name of names) {
     if (!namedQuantities().includes(name)) throw new RangeError(`There is no anomaly "${name}". Known: ${namedQuantities().join(', ')}.`);
   }

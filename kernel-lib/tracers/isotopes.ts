@@ -1,6 +1,7 @@
 import { showAs, type Showable, type TableCell, type TableView } from '../display';
 import { derivedColumn, resolveColumn, step, type Column, type Step, type Suite } from '../suite';
 import { publishedConstant, reservoir, type Reservoir } from '../tables';
+import { checkCall } from './check-call';
 import { decayConstant, decaySystems, usualDecayConstants, type DecaySystem } from './decay-systems';
 import type { NotDetermined } from './ratios';
 
@@ -43,6 +44,7 @@ const defaultChur = { neodymium: 'chur-1980', hafnium: 'chur-2008' } as const;
  * @example isotopes(suite).columns.get('epsilon-Nd').values
  */
 export function isotopes(suite: Suite, options: IsotopeOptions = {}): IsotopeTable {
+  checkCall('isotopes', suite, options);
   const { age = 0, chur = {}, decay = {} } = options;
   for (const key of Object.keys(decay)) {
     if (!decaySystems().has(key)) throw new RangeError(`isotopes: decay names "${key}"; it knows ${[...decaySystems().keys()].join(', ')}.`);

@@ -2,6 +2,7 @@ import { findAnalyte } from '../chemistry';
 import { showAs, type Showable, type TableCell, type TableView } from '../display';
 import { cellState, resolveColumn, step, type Column, type Step, type Suite } from '../suite';
 import { elementOrder } from '../tables';
+import { checkCall } from './check-call';
 import { censoredQuantiles } from './censored-quantiles';
 import { referenceComposition, usualReferences, type CaesiumLeadChoice, type ReferenceComposition } from './reference';
 import { shownCell } from './shown-cell';
@@ -84,6 +85,7 @@ export interface PatternTable extends Showable {
  * @example pattern(suite, { order: 'rare-earths', group: 'volcano' }).elements[0] // 'La'
  */
 export function pattern(suite: Suite, options: PatternOptions = {}): PatternTable {
+  checkCall('pattern', suite, options);
   const { order = 'rare-earths', group, band = [0.25, 0.75], caesiumAndLead } = options;
   const wanted = elementsOf(order);
   const isRareEarths = order === 'rare-earths';

@@ -1,6 +1,7 @@
 import { rareEarths } from '../chemistry';
 import { showAs, type Showable, type TableCell, type TableView } from '../display';
 import { derivedColumn, resolveColumn, step, type Column, type Step, type Suite } from '../suite';
+import { checkCall } from './check-call';
 import { ionicRadius } from './ionic-radii';
 import { referenceComposition, usualReferences, type ReferenceComposition } from './reference';
 
@@ -78,6 +79,7 @@ export function rareEarthPolynomials(): readonly Float64Array[] {
  * @example rareEarthShapes(suite).columns.get('lambda-1').values
  */
 export function rareEarthShapes(suite: Suite, options: ShapeOptions = {}): RareEarthShapes {
+  checkCall('rareEarthShapes', suite, options);
   const { degree = 3, exclude = ['Eu'], error = 0.03, outlyingBeyond = 3 } = options;
   if (degree !== 1 && degree !== 2 && degree !== 3) throw new RangeError(`rareEarthShapes: degree must be 1, 2 or 3, not ${String(degree)}.`);
   if (!(error > 0 && error < 1)) throw new RangeError(`rareEarthShapes: error is ${String(error)}; give a relative 1σ above 0 and below 1.`);

@@ -3,6 +3,7 @@ import { showAs, type Showable, type TableCell, type TableView } from '../displa
 import {
   cellState, evaluate, ExpressionError, expressionSymbols, parseExpression, resolveColumn, step, type Column, type ExpressionNode, type Step, type Suite,
 } from '../suite';
+import { checkCall } from './check-call';
 import { quantitiesIn, quantityFormula, type FormulaChoices } from './named-quantities';
 import { referenceComposition, usualReferences, type CaesiumLeadChoice, type Reference, type ReferenceComposition } from './reference';
 import { shownCell } from './shown-cell';
@@ -55,6 +56,7 @@ export interface RatioTable extends Showable {
  * @example ratios(suite, ['Ba/Th', '(La/Sm)N']).columns.get('Ba/Th').values
  */
 export function ratios(suite: Suite, expressions: readonly string[] = usualRatios(), options: RatioOptions = {}): RatioTable {
+  checkCall('ratios', suite, options);
   if (!Array.isArray(expressions) || expressions.some((each) => typeof each !== 'string')) {
     throw new TypeError(`ratios takes a list of expressions such as ['Ba/Th', '(La/Sm)N'], not ${JSON.stringify(expressions)}.`);
   }
@@ -80,6 +82,7 @@ export function ratios(suite: Suite, expressions: readonly string[] = usualRatio
  * @example ratio(suite, 'Eu/Eu*', { formulas: { 'Eu/Eu*': 'arithmetic' } }).values
  */
 export function ratio(suite: Suite, expression: string, options: RatioOptions = {}): Column {
+  checkCall('ratio', suite, options);
   const record = new Bookkeeping(options);
   const lacking = whatIsLacking(suite, expression, record);
   if (lacking !== undefined) throw new ExpressionError(`"${expression}" ${lacking}. The suite holds: ${suite.analytes.join(', ')}.`);

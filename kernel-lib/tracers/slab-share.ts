@@ -1,5 +1,6 @@
 import { showAs, type Showable, type TableCell, type TableView } from '../display';
 import { cellState, derivedColumn, resolveColumn, step, type Column, type Step, type Suite } from '../suite';
+import { checkCall } from './check-call';
 import { applyFilter, basaltFilter, type SampleFilter } from './basalt-filter';
 import { quantileOfSorted } from './censored-quantiles';
 import { arrayBasis, mantleArray, type ArrayLine, type ArrayOptions } from './mantle-array';
@@ -59,6 +60,7 @@ export const slabShareElements: readonly string[] = ['Cs', 'Rb', 'Ba', 'Pb', 'Sr
  * @example slabShares(suite, { group: 'volcano' }).shares.get('Ba').values
  */
 export function slabShares(suite: Suite, options: SlabShareOptions = {}): SlabShares {
+  checkCall('slabShares', suite, options);
   const { filter = basaltFilter, group, through, others } = options;
   const wanted = options.elements ?? slabShareElements.filter((element) => resolveColumn(suite, element) !== undefined);
   const needed = ['Nb', 'Yb', ...(options.elements ?? [])].filter((element) => resolveColumn(suite, element) === undefined);

@@ -1,6 +1,7 @@
 import { setImmediate as nextTurn } from 'node:timers/promises';
 import { showAs, type Showable, type TableView } from '../display';
 import { resolveColumn, step, type Column, type Step, type Suite } from '../suite';
+import { checkCall } from './check-call';
 import { fitWithinBounds, type BoundedProblem } from './bounded-fit';
 import { quantileOfSorted } from './censored-quantiles';
 import { checkSeed, randomStream } from './random';
@@ -70,6 +71,7 @@ const drawsAtATime = 40;
  * @example (await unmix(suite, [{ name: 'mantle', composition: 'depleted-mantle-2005' }, { name: 'sediment', composition: 'subducting-sediment-1998' }])).shares
  */
 export async function unmix(suite: Suite, components: readonly MixingComponent[], options: UnmixOptions = {}): Promise<MixingShares> {
+  checkCall('unmix', suite, options);
   const { error = {}, draws = 200, seed = 1, signal, progress } = options;
   if (!Array.isArray(components) || components.length < 2 || components.length > 4) throw new RangeError('unmix takes two to four components.');
   if (new Set(components.map(({ name }) => name)).size !== components.length) throw new RangeError('unmix: every component needs a name of its own.');

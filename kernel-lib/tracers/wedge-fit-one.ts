@@ -1,4 +1,5 @@
 import { jStat } from 'jstat';
+import { showAs, type Showable, type TableView } from '../display';
 import { sampleCorrelation } from 'simple-statistics';
 import { fitWithinBounds, linearSigma, type BoundedProblem, type BoundedSolution } from './bounded-fit';
 import { quantileOfSorted } from './censored-quantiles';
@@ -20,8 +21,8 @@ export interface WedgeEstimate {
   readonly status: WedgeStatus;
 }
 
-/** One fit of the fluxed wedge. */
-export interface OneWedgeFit {
+/** One fit of the fluxed wedge. Shows itself element by element. */
+export interface OneWedgeFit extends Showable {
   readonly name: string;
   readonly samples: number;
   readonly parameters: Readonly<Record<WedgeParameterName, WedgeEstimate>>;
@@ -177,12 +178,12 @@ export function finishWedge(prepared: PreparedWedge, best: BestWedge | undefined
     }),
   ) as Record<WedgeParameterName, WedgeEstimate>;
   const { fromWedge, fromFluid, fromSediment } = model.shares(whole);
-  return {
+  return showAs({
     name, samples, parameters, elements, unused, observed, modelled, residual, residualPercent: observed.map((value, i) => 100 * (value / modelled[i] - 1)),
     worstElement: elements[worst], chiSquare: best.chiSquare, degreesOfFreedom, widened, fromWedge, fromFluid, fromSediment,
     fitted: free, correlations: columns.map((a) => columns.map((b) => correlation(a, b))), draws: columns,
     verdict: verdictOf(parameters, free, widened, elements[worst], residual[worst]),
-  };
+  }, oneFitView);
 }
 
 const words: Readonly<Record<WedgeParameterName, string>> = { melt: 'melt fraction', fluid: 'slab fluid', sediment: 'sediment melt', priorMelt: 'prior melting' };
@@ -226,11 +227,11 @@ function hopeless({ observation, free, setup, unscale, problem }: PreparedWedge)
         : { value: whole[p], low: whole[p], high: whole[p], status: 'fixed' },
     ]),
   ) as Record<WedgeParameterName, WedgeEstimate>;
-  return {
+  return showAs({
     name, samples, parameters, elements, unused, observed, modelled: blank(), residual: blank(), residualPercent: blank(), chiSquare: NaN,
     degreesOfFreedom: elements.length - free.length, widened: 1, fromWedge: blank(), fromFluid: blank(), fromSediment: blank(), fitted: free, correlations: [], draws: [],
     verdict: `Not resolvable: ${elements.length} usable elements for ${free.length} parameters.`,
-  };
+  }, oneFitView);
 }
 
 function verdictOf(
@@ -244,4 +245,18 @@ function verdictOf(
     ...(widened > 1 ? [`Misfit beyond the errors (worst ${worst}, ${residual.toFixed(1).replace('-', '−')} σ): intervals widened ×${widened.toFixed(1)}; other end members may be needed.`] : []),
   ];
   return parts.join(' ');
+}
+
+function oneFitView(fit: Omit<OneWedgeFit, keyof Showable>): TableView {
+  const short = (value: number, digits = 3) => (Number.isNaN(value) ? null : Number(value.toPrecision(digits)));
+  const percent = (value: number) => (Number.isNaN(value) ? null : Math.round(100 * value));
+  return {
+    title: `Fluxed wedge fitted to ${fit.name}: residual of each element, and where it came from`,
+    columns: ['element', 'observed (ppm)', 'modelled (ppm)', 'residual (%)', 'residual (σ)', 'from wedge (%)', 'from fluid (%)', 'from sediment melt (%)'],
+    rows: fit.elements.map((element, e) => [
+      element, short(fit.observed[e], 4), short(fit.modelled[e], 4), short(fit.residualPercent[e]), short(fit.residual[e], 2), percent(fit.fromWedge[e]), percent(fit.fromFluid[e]),
+      percent(fit.fromSediment[e]),
+    ]),
+    notes: [fit.verdict, ...(fit.unused.length > 0 ? [`No usable value: ${fit.unused.join(', ')}.`] : [])],
+  };
 }

@@ -1,6 +1,7 @@
 import { setImmediate as nextTurn } from 'node:timers/promises';
 import { showAs, type Showable, type TableView } from '../display';
 import { step, type Step, type Suite } from '../suite';
+import { checkCall } from './check-call';
 import { checkedWedgeOptions, wedgeParameterNames, type FluxedWedgeOptions, type WedgeParameterName } from './fluxed-wedge';
 import { checkSeed } from './random';
 import { wedgeObservations } from './wedge-data';
@@ -61,6 +62,7 @@ const primitiveMgO = 6;
  * @example (await fitFluxedWedge(suite, { group: 'volcano', draws: 200 })).fits[0].parameters.fluid.value
  */
 export async function fitFluxedWedge(suite: Suite, options: WedgeFitOptions = {}): Promise<WedgeFit> {
+  checkCall('fitFluxedWedge', suite, options);
   const caller = 'fitFluxedWedge';
   const { facies, style, endMembers } = checkedWedgeOptions(caller, options);
   const { group, error = 0.05, draws = 1000, seed = 1, resolvedWithin = 4, signal, progress } = options;

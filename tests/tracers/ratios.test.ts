@@ -99,6 +99,10 @@ describe('ratios', () => {
     expect(() => ww.ratios(lavas, ['LaN'], { reference: { La: -1 } })).toThrow(/positive number/);
     expect(() => ww.ratio(lavas, 'Ba/Th')).toThrow(/needs Ba, Th/);
     expect(() => ww.anomalies(lavas, ['Xx/Xx*'])).toThrow(/no anomaly/);
+    expect(() => ww.anomalies(lavas, 'Eu/Eu*' as never)).toThrow(/list of names/);
+    expect(() => ww.ratios({ suite: lavas } as never)).toThrow(/must be a Suite.*add \.suite/);
+    expect(() => ww.pattern(3 as never)).toThrow(/pattern: the first argument must be a Suite/);
+    expect(() => ww.slabShares(lavas, null as never)).toThrow(/slabShares: options must be an object/);
   });
 
   it('shows itself as a table, and adds itself to a suite', () => {
