@@ -4,3 +4,4 @@ export * from './mime';
 export * from './table';
 export * from './show-as';
 export * from './write-whole';
+export * from './zip-times';

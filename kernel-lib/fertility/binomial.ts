@@ -36,10 +36,18 @@ export function proportionInterval(
       high: met === asked ? 1 : jStat.beta.inv(1 - tail, met + 1, asked - met),
     };
   }
-  const z = jStat.normal.inv(1 - tail, 0, 1);
+  const z = normalQuantile(1 - tail);
   const share = met / asked;
   const spread = 1 + (z * z) / asked;
   const centre = share + (z * z) / (2 * asked);
   const half = z * Math.sqrt((share * (1 - share)) / asked + (z * z) / (4 * asked * asked));
   return { low: met === 0 ? 0 : (centre - half) / spread, high: met === asked ? 1 : (centre + half) / spread };
+}
+
+let known = { probability: NaN, quantile: NaN };
+
+/** The same confidence is asked over and over, and the inverse takes far longer than the rest. */
+function normalQuantile(probability: number): number {
+  if (known.probability !== probability) known = { probability, quantile: jStat.normal.inv(probability, 0, 1) };
+  return known.quantile;
 }

@@ -14,6 +14,7 @@ export interface Ground {
 /** @internal Evaluates conditions on whole columns, each distinct one once. */
 export class ConditionReader {
   private readonly findings = new Map<string, Uint8Array>();
+  private readonly read = new Map<string, readonly string[]>();
   private readonly quantities = new Map<string, Column | undefined>();
   private readonly named = indicatorLanguage().named;
   private readonly normal: (symbol: string) => number;
@@ -30,7 +31,9 @@ export class ConditionReader {
 
   /** The symbols an expression reads, named expressions written out. */
   symbols(expression: string): readonly string[] {
-    return expressionSymbols(parseExpression(expression, this.named));
+    let known = this.read.get(expression);
+    if (known === undefined) this.read.set(expression, (known = expressionSymbols(parseExpression(expression, this.named))));
+    return known;
   }
 
   /** The values of an expression with 1σ and bounds, each distinct one evaluated once; undefined when the suite lacks a column that it needs. */

@@ -1,9 +1,9 @@
-import { escapeSpreadsheet, writeWhole, type TableCell } from '../display';
+import { escapeSpreadsheet, withoutZipTimes, writeWhole, type TableCell } from '../display';
 import { findSource, formatSource } from '../tables';
 import { checkSave, type SavedScreen } from './export-csv';
 import { exportTable } from './export-columns';
 import type { FertilityScreen } from './screen';
-import { conditionsText } from './tables';
+import { conditionsText, type FertilityIndicator } from './tables';
 import { furtherText, ranksText, shareText, weightedCriteria } from './view';
 
 interface StyledCell {
@@ -85,7 +85,7 @@ export async function saveFertilityWorkbook(
   // eslint-disable-next-line @typescript-eslint/no-require-imports
   const write = (require('write-excel-file/node') as { default: WriteWorkbook }).default;
   const sheets = [verdictSheet(screen), evidenceSheet(screen), ...(samples ? [sampleSheet(screen)] : []), cautionSheet(screen), sourceSheet(screen)];
-  writeWhole(path, await write(sheets, { fontFamily: 'Arial', fontSize: 10, features: [fitPageWidth] }).toBuffer());
+  writeWhole(path, withoutZipTimes(await write(sheets, { fontFamily: 'Arial', fontSize: 10, features: [fitPageWidth] }).toBuffer()));
   return { path, rows: screen.groups.length };
 }
 
@@ -173,6 +173,16 @@ function verdictSheet(screen: FertilityScreen): Sheet {
   );
 }
 
+function indicatorOf(screen: FertilityScreen, key: string): FertilityIndicator {
+  return screen.answers.find(({ indicator }) => indicator.key === key)!.indicator;
+}
+
+/** A row of the evidence sheet that gives a value with its range, and no counts. */
+function readingRow(group: string, name: string, family: string, samples: number, values: readonly number[], reading: string): Cell[] {
+  const numbers = values.map((value) => cell(value, { format: '0.00' }));
+  return [cell(group), cell(name), cell(family), null, null, null, null, cell(samples), ...numbers, null, null, null, cell(reading)];
+}
+
 function evidenceSheet(screen: FertilityScreen): Sheet {
   const criteria = screen.answers.filter(({ indicator }) => indicator.kind === 'criterion');
   const rows = screen.groups.flatMap((group) => [
@@ -196,45 +206,20 @@ function evidenceSheet(screen: FertilityScreen): Sheet {
         null,
       ];
     }),
-    ...group.values.map(({ indicator, median, lowerQuartile, upperQuartile, samples }) => {
-      const { indicator: of } = screen.answers.find((each) => each.indicator.key === indicator)!;
-      return [
-        cell(group.group),
-        cell(`${of.expression}, median and quartiles`),
-        cell(of.family),
-        null,
-        null,
-        null,
-        null,
-        cell(samples),
-        cell(median, { format: '0.00' }),
-        cell(lowerQuartile, { format: '0.00' }),
-        cell(upperQuartile, { format: '0.00' }),
-        null,
-        null,
-        null,
-        cell('value, no verdict'),
-      ];
+    ...group.values.map(({ indicator, samples, median, lowerQuartile, upperQuartile }) => {
+      const of = indicatorOf(screen, indicator);
+      return readingRow(
+        group.group,
+        `${of.expression}, median and quartiles`,
+        of.family,
+        samples,
+        [median, lowerQuartile, upperQuartile],
+        'value, no verdict',
+      );
     }),
-    ...group.trends.map(({ indicator, correlation, low, high, samples, reading }) => {
-      const { indicator: of } = screen.answers.find((each) => each.indicator.key === indicator)!;
-      return [
-        cell(group.group),
-        cell(`${of.name}, correlation`),
-        cell(of.family),
-        null,
-        null,
-        null,
-        null,
-        cell(samples),
-        cell(correlation, { format: '0.00' }),
-        cell(low, { format: '0.00' }),
-        cell(high, { format: '0.00' }),
-        null,
-        null,
-        null,
-        cell(reading),
-      ];
+    ...group.trends.map(({ indicator, samples, correlation, low, high, reading }) => {
+      const of = indicatorOf(screen, indicator);
+      return readingRow(group.group, `${of.name}, correlation`, of.family, samples, [correlation, low, high], reading);
     }),
   ]);
   return sheet(

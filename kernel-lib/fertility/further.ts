@@ -96,9 +96,14 @@ function settle(
 ): FurtherMeasurement | undefined {
   const { tallies, weighted } = group;
   const conditions: FurtherOutcome['if'][] = criteria.every((k) => tallies[k].asked > 0) ? ['as so far'] : ['all met', 'none met'];
+  const outcomesOf = (n: number) =>
+    conditions.map((condition): FurtherOutcome => ({ if: condition, verdict: verdictWith(n, condition, criteria, group) }));
+  const settles = (outcomes: readonly FurtherOutcome[]) => outcomes.some(({ verdict }) => verdict === 'supported' || verdict === 'not supported');
+  // Intervals narrow with every sample: what all of them cannot settle, fewer cannot.
+  if (most < 1 || !settles(outcomesOf(most))) return undefined;
   for (let n = 1; n <= most; n++) {
-    const outcomes = conditions.map((condition): FurtherOutcome => ({ if: condition, verdict: verdictWith(n, condition, criteria, group) }));
-    if (!outcomes.some(({ verdict }) => verdict === 'supported' || verdict === 'not supported')) continue;
+    const outcomes = outcomesOf(n);
+    if (!settles(outcomes)) continue;
     const what = analytes.length > 1 ? `${analytes.slice(0, -1).join(', ')} and ${analytes.at(-1)}` : analytes[0];
     const where =
       on === 'samples in hand'

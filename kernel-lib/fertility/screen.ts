@@ -63,6 +63,9 @@ export interface FertilityScreen extends Showable {
   readonly lineage: readonly Step[];
 }
 
+/** A ranking of more groups than this is no ranking that anyone reads, and its sensitivity would take minutes. */
+const mostGroups = 5000;
+
 const evidenceOf = new WeakMap<FertilityScreen, { readonly evidence: Evidence; readonly settings: Settings; readonly options: ScreenOptions }>();
 
 /**
@@ -77,10 +80,10 @@ const evidenceOf = new WeakMap<FertilityScreen, { readonly evidence: Evidence; r
  * @param suite n samples; oxides in wt %, elements in ppm; 1σ where known (for `near`); the label `alteration` from the audit ('' = none);
  *   optional columns `latitude`, `longitude` (°)
  * @param options `group`: label name (needed); `weights`: by indicator key over the defaults; `cut` 0–1 (0.5); `interval`: `wilson` or
- *   `clopper-pearson`; `confidence` (0.95); `basis`: `volatile-free` or `as given`; `rankBy`: `low` or `score`; `draws` (1000), `spread`
+ *   `clopper-pearson`; `confidence` (0.95); `basis`: `volatile-free` or `as given`; `rankBy`: `low` or `score`; `draws` (1000; fewer beyond 1,000 groups), `spread`
  *   (3), `seed` (7946), `first` (5) for the sensitivity; `labelled`: your own labelled districts
  * @returns ranked groups, verdict and reason codes of every sample (n), guards, calibration, cautions, lineage
- * @throws RangeError for an unknown label or option, naming what is allowed
+ * @throws RangeError for an unknown label or option, naming what is allowed; for more than 5,000 groups
  * @source the works named by each indicator; Wilson 1927, Clopper & Pearson 1934 (intervals)
  * Valid for whole-rock analyses of arc suites inside each criterion's silica window; it screens provinces and suites and does not find ore.
  * @example screenFertility(suite, { group: 'volcano' }).groups[0].group
@@ -90,6 +93,12 @@ export function screenFertility(suite: Suite, options: ScreenOptions): Fertility
   if (typeof options.group !== 'string' || !suite.labels.has(options.group)) {
     throw new RangeError(
       `screenFertility: group must name a label of the suite, not "${String(options.group)}". It has: ${[...suite.labels.keys()].join(', ')}.`,
+    );
+  }
+  const groups = new Set(suite.label(options.group)).size;
+  if (groups > mostGroups) {
+    throw new RangeError(
+      `screenFertility: the label "${options.group}" makes ${groups} groups; at most ${mostGroups} are ranked. Group by what samples share, such as an intrusion.`,
     );
   }
   const evidence = gatherEvidence(suite, options.group, fertilityIndicators(), settings.basis, settings.interval);
@@ -119,13 +128,18 @@ export function rankGroups(screen: FertilityScreen, options: RankingOptions = {}
 
 function weigh(evidence: Evidence, settings: Settings, options: ScreenOptions): FertilityScreen {
   const { grouping, criteria, tallies, answers, guarding, grounds } = evidence;
-  const { weights, cut, interval, rankBy, variation } = settings;
+  const { weights, cut, interval, rankBy } = settings;
+  // Many groups need fewer draws to be as well known, and a sort of all of them each.
+  const variation = {
+    ...settings.variation,
+    draws: Math.min(settings.variation.draws, Math.max(100, Math.floor(1e6 / Math.max(1, tallies.length)))),
+  };
   const weighted: Weighted[] = criteria.map(({ indicator }) => ({ indicator, weight: weights[indicator.key] }));
   const scores = tallies.map((each) => scoreGroup(each, weighted, cut));
   const ranges = rankRanges(tallies, weighted, rankBy, variation);
   const order = grouping.names.map((_, group) => group);
   const key = (group: number) => (Number.isNaN(scores[group].score) ? -1 : scores[group][rankBy]);
-  order.sort((a, b) => key(b) - key(a) || grouping.names[a].localeCompare(grouping.names[b]));
+  order.sort((a, b) => key(b) - key(a) || (grouping.names[a] < grouping.names[b] ? -1 : 1));
   const asked = askedByGroup(evidence, weighted);
   const shown = answers.filter(({ indicator }) => indicator.kind === 'shown' || weights[indicator.key] > 0);
   const trends = answers.filter(({ indicator }) => indicator.kind === 'trend');

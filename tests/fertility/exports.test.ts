@@ -4,7 +4,7 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import Papa from 'papaparse';
 import { readSheet } from 'read-excel-file/node';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import {
   column,
   fertilityGeoJson,
@@ -144,6 +144,19 @@ describe('workbook', () => {
     );
     const names = (await readSheet(path, 'Verdicts')).slice(1).map((row) => String(row[1]));
     expect(names.every((name) => !/^\s*[=+\-@]/.test(name))).toBe(true);
+  });
+});
+
+describe('bytes', () => {
+  it('are the same whenever the same screening is written', async () => {
+    const small = screenFertility(suiteLike([{}, { Sr: 900, Y: 9 }]), { group: 'unit' });
+    const paths = ['first.xlsx', 'second.xlsx'].map((name) => join(folder, name));
+    await saveFertilityWorkbook(small, paths[0]);
+    vi.useFakeTimers({ now: Date.UTC(2031, 4, 17, 9, 30), toFake: ['Date'] });
+    await saveFertilityWorkbook(small, paths[1]);
+    vi.useRealTimers();
+    expect(readFileSync(paths[0]).equals(readFileSync(paths[1]))).toBe(true);
+    expect(await readSheet(paths[1], 'Verdicts')).toHaveLength(2);
   });
 });
 

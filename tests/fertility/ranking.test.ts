@@ -243,6 +243,11 @@ describe('bad input', () => {
     expect(() => screenFertility(suite, options as never)).toThrow(message);
   });
 
+  it('refuses a label that makes every sample a group of its own in a large suite', () => {
+    const large = suite.rows(new Int32Array(5001)).withLabels({ unit: Array.from({ length: 5001 }, (_, i) => `U${i}`) });
+    expect(() => screenFertility(large, { group: 'unit' })).toThrow('makes 5001 groups; at most 5000 are ranked');
+  });
+
   it('asks for the screening itself, and for a new one where samples must be asked anew', () => {
     const screen = screenFertility(suite, { group: 'unit' });
     expect(() => rankGroups({ ...screen })).toThrow('not a copy of it');
