@@ -12,15 +12,21 @@ export function alterationFlags(suite: Suite): readonly string[] | undefined {
 
 /** Words by which a flag names the element that moved. */
 const named: Readonly<Record<string, RegExp>> = {
-  K2O: /\bK(2O)?\b|potass|seric|alkali/i, Na2O: /\bNa(2O)?\b|sod|alkali|spilit|albit/i, CaO: /\bCa(O)?\b|lime|carbonat|calcit/i, Rb: /\bRb\b/, Sr: /\bSr\b/, Ba: /\bBa\b/,
+  K2O: /\bK(2O)?\b|potass|seric|alkali/i,
+  Na2O: /\bNa(2O)?\b|sod|alkali|spilit|albit/i,
+  CaO: /\bCa(O)?\b|lime|carbonat|calcit/i,
+  Rb: /\bRb\b/,
+  Sr: /\bSr\b/,
+  Ba: /\bBa\b/,
 };
 
 /**
- * Which of the elements that a scheme reads are flagged as moved: those that the flag names, or every mobile one when the flag names none.
+ * Which of the elements that a scheme reads are flagged as moved. A flag may hold several reasons (`LOI 4 above 2.5; Na2O 0.6 below 1`):
+ * one that names an element speaks of that element, one that names none (loss on ignition, an index) of every mobile one.
  */
 export function movedFor(scheme: Scheme, flag: string): readonly string[] {
-  if (flag === '') return [];
+  if (flag.trim() === '') return [];
   const read = schemeNeeds(scheme).filter((symbol) => mobile.includes(symbol));
-  const spoken = mobile.filter((symbol) => named[symbol].test(flag));
-  return spoken.length === 0 ? read : read.filter((symbol) => spoken.includes(symbol));
+  const spoken = flag.split(';').map((reason) => mobile.filter((symbol) => named[symbol].test(reason)));
+  return spoken.some((symbols) => symbols.length === 0) ? read : read.filter((symbol) => spoken.some((symbols) => symbols.includes(symbol)));
 }

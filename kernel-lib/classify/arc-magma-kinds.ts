@@ -64,8 +64,19 @@ export function arcMagmaKinds(suite: Suite, options: { readonly iron?: IronBasis
     disagreements[i] = apart.join('. ');
   }
   const sources = [...new Set(keys.flatMap((key) => findScheme(key).sources))].filter((key) => bibliography().has(key));
-  const because = step('arcMagmaKinds', { schemes: keys, iron }, { sources: [...sources, 'pearce_2008'], tables: keys.map((key) => `schemes/${key}.json`) });
-  const made = { suite, schemes: verdicts, kinds, disagreements, aboveMantleAxis: aboveMantleAxis(suite), lineage: [...operands.onBasis('volatile-free').lineage, because] };
+  const because = step(
+    'arcMagmaKinds',
+    { schemes: keys, iron },
+    { sources: [...sources, 'pearce_2008'], tables: keys.map((key) => `schemes/${key}.json`) },
+  );
+  const made = {
+    suite,
+    schemes: verdicts,
+    kinds,
+    disagreements,
+    aboveMantleAxis: aboveMantleAxis(suite),
+    lineage: [...operands.onBasis('volatile-free').lineage, because],
+  };
   return showAs(made, kindTable);
 }
 
@@ -80,10 +91,19 @@ function aboveMantleAxis(suite: Suite): Float64Array {
 
 function kindTable({ suite, kinds, disagreements, aboveMantleAxis: above }: Omit<ArcMagmaKinds, 'toMimeBundle'>) {
   const rows = Array.from({ length: Math.min(60, suite.size) }, (_, i): TableCell[] => [
-    suite.samples[i], kinds[i] === '' ? 'none of those asked' : kinds[i], disagreements[i], Number.isFinite(above[i]) ? Number(above[i].toFixed(2)) : null,
+    suite.samples[i],
+    kinds[i] === '' ? 'none of those asked' : kinds[i],
+    disagreements[i],
+    Number.isFinite(above[i]) ? Number(above[i].toFixed(2)) : null,
   ]);
   return {
-    title: 'Kinds of arc magma by published criteria', columns: ['sample', 'criteria met', 'lists that disagree', 'log Th/Yb above the mantle axis'], rows, totalRows: suite.size,
-    notes: ['Criteria describe chemistry; they do not prove melting of the slab. The mantle axis is derived from N-MORB and OIB and is no published boundary.'],
+    title: 'Kinds of arc magma by published criteria',
+    columns: ['sample', 'criteria met', 'lists that disagree', 'log Th/Yb above the mantle axis'],
+    rows,
+    totalRows: suite.size,
+    notes: [
+      'Criteria describe chemistry; they do not prove melting of the slab.',
+      'The mantle axis is derived from N-MORB and OIB and is no published boundary.',
+    ],
   };
 }

@@ -1,5 +1,15 @@
 import { volatileFree, totalIron, withMagnesiumNumber, type IronBasis } from '../recast';
-import { cellState, evaluate, ExpressionError, expressionSymbols, parseExpression, resolveColumn, scaleColumn, type Column, type Suite } from '../suite';
+import {
+  cellState,
+  evaluate,
+  ExpressionError,
+  expressionSymbols,
+  parseExpression,
+  resolveColumn,
+  scaleColumn,
+  type Column,
+  type Suite,
+} from '../suite';
 import { cationsPerFormula, massFactor, molarMass } from '../tables';
 import type { SchemeBasis } from './scheme';
 
@@ -33,10 +43,15 @@ const operandsBySuite = new WeakMap<Suite, Map<IronBasis, Operands>>();
 function makeOperands(suite: Suite, iron: IronBasis): Operands {
   const known = new Map<string, Column | undefined>();
   let recast: Suite | undefined;
-  const onBasis = (basis: SchemeBasis) => (basis === 'as-analysed' ? suite : (recast ??= isVolatileFree(suite) ? suite : volatileFree(suite, { iron })));
+  const onBasis = (basis: SchemeBasis) =>
+    basis === 'as-analysed' ? suite : (recast ??= isVolatileFree(suite) ? suite : volatileFree(suite, { iron }));
   const operand = (basis: SchemeBasis, symbol: string): Column | undefined => {
     const key = `${basis} ${symbol}`;
-    if (!known.has(key)) known.set(key, find(onBasis(basis), symbol, (other) => operand(basis, other)));
+    if (!known.has(key))
+      known.set(
+        key,
+        find(onBasis(basis), symbol, (other) => operand(basis, other)),
+      );
     return known.get(key);
   };
   return { suite, iron, operand, onBasis };
@@ -54,7 +69,8 @@ function find(base: Suite, symbol: string, other: (symbol: string) => Column | u
     if (counts.none === base.size && !column.states.includes(cellState.belowDetection)) return undefined;
     return symbol === 'FeOT' ? column : scaleColumn(column, massFactor('FeO', 'Fe2O3'), { symbol, kind: 'oxide', unit: 'wt%' });
   }
-  if (symbol === 'Mg-number') return other('MgO') === undefined || other('FeOT') === undefined ? undefined : withMagnesiumNumber(base).column('Mg-number');
+  if (symbol === 'Mg-number')
+    return other('MgO') === undefined || other('FeOT') === undefined ? undefined : withMagnesiumNumber(base).column('Mg-number');
   return resolveColumn(base, symbol);
 }
 
@@ -98,7 +114,8 @@ export function whyMissing(operands: Operands, axes: readonly AxisValues[], basi
     const name = plainSymbol(symbol);
     const column = symbol === 'Mg-number' ? undefined : operands.operand('as-analysed', name);
     const state = column?.states[row] ?? cellState.missing;
-    const list = state === cellState.missing ? lacking : state === cellState.belowDetection ? below : state === cellState.aboveRange ? above : undefined;
+    const list =
+      state === cellState.missing ? lacking : state === cellState.belowDetection ? below : state === cellState.aboveRange ? above : undefined;
     if (list !== undefined && !list.includes(name)) list.push(name);
   };
   symbols.filter((symbol) => symbol !== 'Mg-number').forEach(look);

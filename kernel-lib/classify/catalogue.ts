@@ -7,7 +7,12 @@ import type { Scheme } from './scheme';
 import { readScheme } from './scheme-file';
 
 /** Keys of the built-in schemes: the file of a scheme is named after its key. */
-const builtInKeys = once((): readonly string[] => readdirSync(join(referenceFolder(), 'schemes')).filter((file) => file.endsWith('.json')).map((file) => file.slice(0, -'.json'.length)).sort());
+const builtInKeys = once((): readonly string[] =>
+  readdirSync(join(referenceFolder(), 'schemes'))
+    .filter((file) => file.endsWith('.json'))
+    .map((file) => file.slice(0, -'.json'.length))
+    .sort(),
+);
 
 const builtIn = new Map<string, Scheme>();
 
@@ -16,7 +21,8 @@ function readBuiltIn(key: string): Scheme {
   let scheme = builtIn.get(key);
   if (scheme === undefined) {
     scheme = readScheme(`schemes/${key}.json`);
-    if (scheme.key !== key) throw new ReferenceTableError(`schemes/${key}.json: the file of scheme "${scheme.key}" must be named ${scheme.key}.json.`);
+    if (scheme.key !== key)
+      throw new ReferenceTableError(`schemes/${key}.json: the file of scheme "${scheme.key}" must be named ${scheme.key}.json.`);
     builtIn.set(key, scheme);
   }
   return scheme;
@@ -33,7 +39,8 @@ const loaded = new Map<string, Scheme>();
 export function findScheme(key: string): Scheme {
   const own = loaded.get(key);
   if (own !== undefined) return own;
-  if (!builtInKeys().includes(key)) throw new RangeError(`There is no scheme "${String(key)}". Known: ${[...builtInKeys(), ...loaded.keys()].join(', ')}.`);
+  if (!builtInKeys().includes(key))
+    throw new RangeError(`There is no scheme "${String(key)}". Known: ${[...builtInKeys(), ...loaded.keys()].join(', ')}.`);
   return readBuiltIn(key);
 }
 
@@ -56,14 +63,21 @@ function list(): SchemeList {
     title: 'Schemes',
     columns: ['key', 'title', 'kind', 'needs', 'basis', 'source', 'geometry', 'limits of use'],
     rows: made.schemes.map((scheme) => [
-      scheme.key, scheme.title, scheme.kind, schemeNeeds(scheme).join(', '), scheme.basis, scheme.sources.map(sourceText).join('; '),
-      scheme.standingNote === '' ? scheme.standing : `${scheme.standing}: ${scheme.standingNote}`, scheme.limits.join(' '),
+      scheme.key,
+      scheme.title,
+      scheme.kind,
+      schemeNeeds(scheme).join(', '),
+      scheme.basis,
+      scheme.sources.map(sourceText).join('; '),
+      scheme.standingNote === '' ? scheme.standing : `${scheme.standing}: ${scheme.standingNote}`,
+      scheme.limits.join(' '),
     ]),
   }));
 }
 
 function load(path: string): Scheme {
-  if (typeof path !== 'string' || path.trim() === '') throw new RangeError('schemes.load takes the path of a scheme file (JSON), e.g. schemes.load("my-scheme.json").');
+  if (typeof path !== 'string' || path.trim() === '')
+    throw new RangeError('schemes.load takes the path of a scheme file (JSON), e.g. schemes.load("my-scheme.json").');
   const scheme = readScheme(isAbsolute(path) ? path : resolve(path), { absolute: true });
   if (builtInKeys().includes(scheme.key)) throw new RangeError(`${path}: the key "${scheme.key}" is taken by a built-in scheme; choose another.`);
   loaded.set(scheme.key, scheme);

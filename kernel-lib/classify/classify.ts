@@ -28,18 +28,28 @@ export interface ClassifyOptions {
 const ironBases: readonly IronBasis[] = ['measured', 'total-as-FeO', 'total-as-Fe2O3'];
 
 /** @internal Checks the options once, into a complete set. */
-export function classifyOptions(options: ClassifyOptions, by: string): Required<Omit<ClassifyOptions, 'probability'>> & Pick<ClassifyOptions, 'probability'> {
+export function classifyOptions(
+  options: ClassifyOptions,
+  by: string,
+): Required<Omit<ClassifyOptions, 'probability'>> & Pick<ClassifyOptions, 'probability'> {
   const { iron = 'measured', probability, uncertainty = {}, draws = 2000, seed = 1 } = options;
   if (!ironBases.includes(iron)) throw new RangeError(`${by}: iron must be one of ${ironBases.join(', ')}, not "${String(iron)}".`);
   if (probability !== undefined && !['analytic', 'sampled', 'none'].includes(probability)) {
     throw new RangeError(`${by}: probability must be "analytic", "sampled" or "none", not "${String(probability)}".`);
   }
-  if (!Number.isInteger(draws) || draws < 10 || draws > 1e6) throw new RangeError(`${by}: draws must be a whole number from 10 to 1,000,000, not ${String(draws)}.`);
+  if (!Number.isInteger(draws) || draws < 10 || draws > 1e6)
+    throw new RangeError(`${by}: draws must be a whole number from 10 to 1,000,000, not ${String(draws)}.`);
   if (!Number.isInteger(seed)) throw new RangeError(`${by}: seed must be a whole number, not ${String(seed)}.`);
   for (const [symbol, each] of Object.entries(uncertainty)) {
-    const bad = each === null || typeof each !== 'object' || [each.relative, each.absolute].every((value) => value === undefined) ||
+    const bad =
+      each === null ||
+      typeof each !== 'object' ||
+      [each.relative, each.absolute].every((value) => value === undefined) ||
       [each.relative, each.absolute].some((value) => value !== undefined && !(value >= 0 && Number.isFinite(value)));
-    if (bad) throw new RangeError(`${by}: uncertainty of ${symbol} must be { relative: fraction } or { absolute: value in the column's unit }, each 0 or more.`);
+    if (bad)
+      throw new RangeError(
+        `${by}: uncertainty of ${symbol} must be { relative: fraction } or { absolute: value in the column's unit }, each 0 or more.`,
+      );
   }
   return { iron, probability, uncertainty, draws, seed };
 }
@@ -70,7 +80,11 @@ export function classify(suite: Suite, which: string | Scheme | readonly (string
   for (const scheme of asked) found.set(scheme.key, judge(operands, scheme));
   const chance = probabilities(suite, [...found.values()], settings);
   for (const [key, probability] of chance.byScheme) found.set(key, { ...found.get(key)!, probability });
-  const detail: StepDetail = { schemes: asked.map(({ key }) => key), iron: isVolatileFree(suite) ? 'as recast before' : settings.iron, ...chance.detail };
+  const detail: StepDetail = {
+    schemes: asked.map(({ key }) => key),
+    iron: isVolatileFree(suite) ? 'as recast before' : settings.iron,
+    ...chance.detail,
+  };
   const because: Step = step('classify', detail, {
     sources: [...new Set(asked.flatMap(({ sources }) => sources))].filter((key) => bibliography().has(key)),
     tables: asked.filter(({ origin }) => origin === 'built in').map(({ key }) => `schemes/${key}.json`),
@@ -119,7 +133,13 @@ function planeValues(scheme: Scheme, axes: readonly AxisValues[]): { x?: Column;
 }
 
 function judgePlane(
-  operands: Operands, scheme: Scheme, axes: readonly AxisValues[], plane: { x?: Column; y?: Column }, field: Int16Array, distance: Float64Array, book: RemarkBook,
+  operands: Operands,
+  scheme: Scheme,
+  axes: readonly AxisValues[],
+  plane: { x?: Column; y?: Column },
+  field: Int16Array,
+  distance: Float64Array,
+  book: RemarkBook,
 ): void {
   const { size } = operands.suite;
   const { flat } = compileScheme(scheme);
@@ -128,7 +148,9 @@ function judgePlane(
   const ternary = scheme.plane === 'ternary';
   const halfRootThree = Math.sqrt(3) / 2;
   const outside = outsideTexts(scheme);
-  const beyond = scheme.fields.map(({ published: [from, to] }) => `beyond the published range of the boundary (${scheme.axes[0].title} ${from}–${to})`);
+  const beyond = scheme.fields.map(
+    ({ published: [from, to] }) => `beyond the published range of the boundary (${scheme.axes[0].title} ${from}–${to})`,
+  );
   const from = Float64Array.from(scheme.fields, ({ published }) => published[0]);
   const to = Float64Array.from(scheme.fields, ({ published }) => published[1]);
   const xs = plane.x?.values;
@@ -145,7 +167,10 @@ function judgePlane(
     const k = fieldAt(flat, px, py);
     field[i] = k;
     if (k < 0) {
-      book.note(i, x < outside.x[0] || x >= outside.x[1] ? outside.xText : y < outside.y[0] || y >= outside.y[1] ? outside.yText : 'in no field of the scheme');
+      book.note(
+        i,
+        x < outside.x[0] || x >= outside.x[1] ? outside.xText : y < outside.y[0] || y >= outside.y[1] ? outside.yText : 'in no field of the scheme',
+      );
       continue;
     }
     distance[i] = distanceToEdge(flat, k, px, py);
@@ -159,14 +184,26 @@ function whyNoPoint(operands: Operands, scheme: Scheme, axes: readonly AxisValue
 }
 
 /** The range that the fields cover, and what is said of a point outside it; made once a scheme. */
-function outsideTexts({ axes: [first, second], frame, fields }: Scheme): { x: readonly [number, number]; y: readonly [number, number]; xText: string; yText: string } {
+function outsideTexts({ axes: [first, second], frame, fields }: Scheme): {
+  x: readonly [number, number];
+  y: readonly [number, number];
+  xText: string;
+  yText: string;
+} {
   const xs = fields.flatMap(({ vertices }) => vertices.map(([x]) => x));
   const x = [Math.max(frame.x[0], Math.min(...xs)), Math.min(frame.x[1], Math.max(...xs))] as const;
   const text = (title: string, [low, high]: readonly [number, number]) => `outside the range of the scheme: ${title} is not within ${low}–${high}`;
   return { x, y: frame.y, xText: text(first.title, x), yText: text(second.title, frame.y) };
 }
 
-function judgeBounds(operands: Operands, scheme: Scheme, axes: readonly AxisValues[], field: Int16Array, distance: Float64Array, book: RemarkBook): void {
+function judgeBounds(
+  operands: Operands,
+  scheme: Scheme,
+  axes: readonly AxisValues[],
+  field: Int16Array,
+  distance: Float64Array,
+  book: RemarkBook,
+): void {
   const [, axis] = axes;
   const { bounds } = scheme;
   const log = scheme.axes[1].scale === 'log';

@@ -31,17 +31,23 @@ function compile(scheme: Scheme): CompiledScheme {
   const toPlane =
     scheme.plane === 'ternary' ? ternaryPlane : (x: number, y: number): PlanePoint => [logX ? Math.log10(x) : x, logY ? Math.log10(y) : y];
   const real = realEdges(scheme);
-  const edges = scheme.fields.filter(({ vertices }) => vertices.length > 0).map(({ vertices }): readonly Edge[] => {
-    const flags = vertices.map((a, i) => real(a, vertices[(i + 1) % vertices.length]));
-    return outlineEdges(vertices.map(([x, y]) => toPlane(x, y)), () => true).map((edge, i) => ({ ...edge, real: flags[i] }));
-  });
+  const edges = scheme.fields
+    .filter(({ vertices }) => vertices.length > 0)
+    .map(({ vertices }): readonly Edge[] => {
+      const flags = vertices.map((a, i) => real(a, vertices[(i + 1) % vertices.length]));
+      return outlineEdges(
+        vertices.map(([x, y]) => toPlane(x, y)),
+        () => true,
+      ).map((edge, i) => ({ ...edge, real: flags[i] }));
+    });
   return { flat: flattenFields(edges), toPlane, single: (field) => flattenFields([edges[field]]) };
 }
 
 /** An edge is real when it runs along one of the scheme's lines. */
 function realEdges(scheme: Scheme): (a: PlanePoint, b: PlanePoint) => boolean {
   const onLines = scheme.lines.map(({ points }) => points);
-  return (a, b) => onLines.some((points) => points.some((_, i) => i > 0 && onSegment(points[i - 1], points[i], a) && onSegment(points[i - 1], points[i], b)));
+  return (a, b) =>
+    onLines.some((points) => points.some((_, i) => i > 0 && onSegment(points[i - 1], points[i], a) && onSegment(points[i - 1], points[i], b)));
 }
 
 function onSegment([xa, ya]: PlanePoint, [xb, yb]: PlanePoint, [x, y]: PlanePoint): boolean {

@@ -70,7 +70,9 @@ export function consensus(suite: Suite, options: ConsensusOptions = {}): Consens
   const settings = classifyOptions(rest, 'consensus');
   const operands = operandsOf(suite, settings.iron);
   const names = nameWith(operands, normIron, 'flag');
-  const found = new Map<string, SchemeVerdict>(keys.map((key) => [key, key === 'tas' ? names.tas : key === 'potassium-silica' ? names.potassium : judge(operands, findScheme(key))]));
+  const found = new Map<string, SchemeVerdict>(
+    keys.map((key) => [key, key === 'tas' ? names.tas : key === 'potassium-silica' ? names.potassium : judge(operands, findScheme(key))]),
+  );
   const chance = probabilities(suite, [...found.values()], settings);
   for (const [key, probability] of chance.byScheme) found.set(key, { ...found.get(key)!, probability });
   const affinity = immobileAffinity(suite);
@@ -95,11 +97,27 @@ export function consensus(suite: Suite, options: ConsensusOptions = {}): Consens
     because[i] = row.because;
   }
   const made = step(
-    'consensus', { iron: settings.iron, movedWeight, clearMajority: 'two thirds of the weight', audited: flags !== undefined, ...chance.detail },
-    { sources: [...new Set([...keys.flatMap((key) => findScheme(key).sources), 'ross_bedard_2009'])], tables: keys.map((key) => `schemes/${key}.json`) },
+    'consensus',
+    { iron: settings.iron, movedWeight, clearMajority: 'two thirds of the weight', audited: flags !== undefined, ...chance.detail },
+    {
+      sources: [...new Set([...keys.flatMap((key) => findScheme(key).sources), 'ross_bedard_2009'])],
+      tables: keys.map((key) => `schemes/${key}.json`),
+    },
   );
   const lineage = [...joinLineages(names.lineage, affinity.lineage), made];
-  const result = { suite, names, verdicts: verdictsOf(suite, found, lineage), affinity, alteration: flags, agree, against, notAsked, reading, because, lineage };
+  const result = {
+    suite,
+    names,
+    verdicts: verdictsOf(suite, found, lineage),
+    affinity,
+    alteration: flags,
+    agree,
+    against,
+    notAsked,
+    reading,
+    because,
+    lineage,
+  };
   return showAs(result, consensusTable);
 }
 
@@ -143,7 +161,10 @@ function readRow(i: number, found: ReadonlyMap<string, SchemeVerdict>, affinity:
   const alkalinity = found.get('alkalinity')!;
   const immobile = found.get('alkalinity-nb-y')!;
   const alkaline: Voice[] = [];
-  for (const [verdict, who] of [[alkalinity, 'alkalinity'], [immobile, 'Nb/Y']] as const) {
+  for (const [verdict, who] of [
+    [alkalinity, 'alkalinity'],
+    [immobile, 'Nb/Y'],
+  ] as const) {
     // Nb/Y is a guide for altered rocks; on a fresh one the alkalis themselves speak.
     if (who === 'Nb/Y' && flag === '') continue;
     if (verdict.field[i] < 0) notAsked.push(`${who}: ${verdict.remarks[i]}`);
@@ -168,22 +189,41 @@ function readRow(i: number, found: ReadonlyMap<string, SchemeVerdict>, affinity:
   if (potassium.field[i] < 0) notAsked.push(`potassium: ${potassium.remarks[i]}`);
   else if (potassiumMoved) setBack.push('potassium (K2O moved)');
   const agree = side === undefined || isAlkaline ? [] : voices.filter(({ vote }) => vote === side).map(({ who }) => who);
-  const against = side === undefined || isAlkaline ? [] : voices.filter(({ vote }) => vote !== side && (side !== 0 || vote !== 0)).map(({ who }) => who);
+  const against =
+    side === undefined || isAlkaline ? [] : voices.filter(({ vote }) => vote !== side && (side !== 0 || vote !== 0)).map(({ who }) => who);
   const parts = isAlkaline ? ['alkaline'] : [potassiumMoved ? '' : potassic, sideName];
   const reading = parts.filter((part) => part !== '').join(', ');
   const written = { agree: agree.join(', '), against: against.join(', '), notAsked: notAsked.join('; ') };
   return { ...written, reading, because: sentence({ isAlkaline, alkaline, voices, side, agree, against, setBack, flag, sideName }) };
 }
 
+const sideWords = ['tholeiitic', 'transitional', 'calc-alkaline'];
+
 function sentence(from: {
-  isAlkaline: boolean; alkaline: readonly Voice[]; voices: readonly Voice[]; side: number | undefined; agree: readonly string[]; against: readonly string[];
-  setBack: readonly string[]; flag: string; sideName: string;
+  isAlkaline: boolean;
+  alkaline: readonly Voice[];
+  voices: readonly Voice[];
+  side: number | undefined;
+  agree: readonly string[];
+  against: readonly string[];
+  setBack: readonly string[];
+  flag: string;
+  sideName: string;
 }): string {
   const { isAlkaline, alkaline, voices, side, agree, against, setBack, flag, sideName } = from;
   const parts: string[] = [];
-  if (isAlkaline) parts.push(`alkaline by ${alkaline.filter(({ vote }) => vote > 0).map(({ who }) => who).join(' and ')}, so the subalkaline series are not asked`);
+  if (isAlkaline)
+    parts.push(
+      `alkaline by ${alkaline
+        .filter(({ vote }) => vote > 0)
+        .map(({ who }) => who)
+        .join(' and ')}, so the subalkaline series are not asked`,
+    );
   else if (side === undefined) parts.push('no scheme of the subalkaline series could be asked');
-  else if (side === 0) parts.push(`${voices.map(({ who, vote }) => `${who} ${vote > 0 ? 'calc-alkaline' : vote < 0 ? 'tholeiitic' : 'transitional'}`).join(', ')}: no clear majority`);
+  else if (side === 0)
+    parts.push(
+      `${voices.map(({ who, vote }) => `${who} ${sideWords[Math.sign(vote) + 1]}`).join(', ')}: no clear majority`,
+    );
   else parts.push(`${sideName} by ${agree.join(', ')}${against.length === 0 ? '' : `, against ${against.join(', ')}`}`);
   if (flag !== '') parts.push(`flagged as altered (${flag})${setBack.length === 0 ? '' : `; counted less: ${setBack.join(', ')}`}`);
   const [first] = parts;
@@ -194,16 +234,45 @@ function consensusTable(made: Omit<Consensus, 'toMimeBundle'>) {
   const { suite, names, verdicts, affinity, alteration, agree, against, notAsked, reading, because } = made;
   const by = (key: string, i: number) => verdicts.schemes.get(key)!.symbols[i];
   const rows = Array.from({ length: Math.min(60, suite.size) }, (_, i): TableCell[] => [
-    suite.samples[i], names.names[i] === '' ? 'not named' : names.names[i], by('potassium-silica', i), by('potassium-silica-1976', i), by('iron-enrichment', i), by('afm', i),
-    by('alkalinity', i), affinity.affinity[i], reading[i], agree[i], against[i], notAsked[i], alteration?.[i] ?? '', because[i],
+    suite.samples[i],
+    names.names[i] === '' ? 'not named' : names.names[i],
+    by('potassium-silica', i),
+    by('potassium-silica-1976', i),
+    by('iron-enrichment', i),
+    by('afm', i),
+    by('alkalinity', i),
+    affinity.affinity[i],
+    reading[i],
+    agree[i],
+    against[i],
+    notAsked[i],
+    alteration?.[i] ?? '',
+    because[i],
   ]);
   return {
     title: 'Names and series',
-    columns: ['sample', 'name', 'K2O', 'K2O 1976', 'FeO*/MgO', 'AFM', 'alkalinity', 'immobile', 'reading', 'agree', 'against', 'not asked', 'altered', 'because'],
-    rows, totalRows: suite.size,
+    columns: [
+      'sample',
+      'name',
+      'K2O',
+      'K2O 1976',
+      'FeO*/MgO',
+      'AFM',
+      'alkalinity',
+      'immobile',
+      'reading',
+      'agree',
+      'against',
+      'not asked',
+      'altered',
+      'because',
+    ],
+    rows,
+    totalRows: suite.size,
     notes: [
       ...(alteration === undefined ? ['The suite has no label "alteration": it was not audited, and no scheme was counted less.'] : []),
-      'low, medium, high: potassium (Le Maitre et al. 2002); IAT, CA, HKCA, SHO: Peccerillo & Taylor 1976; TH, CA: Miyashiro 1974 and Irvine & Baragar 1971; S, A: subalkaline, alkaline.',
+      'low, medium, high: potassium (Le Maitre et al. 2002); IAT, CA, HKCA, SHO: Peccerillo & Taylor 1976.',
+      'TH, CA: Miyashiro 1974 and Irvine & Baragar 1971; S, A: subalkaline, alkaline.',
     ],
   };
 }

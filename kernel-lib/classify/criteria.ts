@@ -6,7 +6,11 @@ import type { CriterionOutcome } from './verdicts';
 
 /** Field 0 when every required criterion is met, 1 when one fails, none when one is unknown and none fails. */
 export function judgeCriteria(operands: Operands, scheme: Scheme, field: Int16Array, book: RemarkBook): readonly CriterionOutcome[] {
-  const found = scheme.criteria.map((criterion): CriterionOutcome => ({ criterion, met: outcomes(operands, criterion), values: axisValues(operands, criterion.expression, criterion.basis).column?.values }));
+  const found = scheme.criteria.map((criterion): CriterionOutcome => ({
+    criterion,
+    met: outcomes(operands, criterion),
+    values: axisValues(operands, criterion.expression, criterion.basis).column?.values,
+  }));
   for (let i = 0; i < field.length; i++) {
     const failed: string[] = [];
     const unknown: CriterionOutcome[] = [];
@@ -21,7 +25,9 @@ export function judgeCriteria(operands: Operands, scheme: Scheme, field: Int16Ar
     field[i] = failed.length > 0 ? 1 : unknown.length > 0 ? -1 : 0;
     if (failed.length > 0) book.note(i, `fails ${failed.join(', ')}`);
     else if (unknown.length > 0) {
-      const why = unknown.map(({ criterion }) => whyMissing(operands, [axisValues(operands, criterion.expression, criterion.basis)], criterion.basis, i));
+      const why = unknown.map(({ criterion }) =>
+        whyMissing(operands, [axisValues(operands, criterion.expression, criterion.basis)], criterion.basis, i),
+      );
       book.note(i, [...new Set(why)].join('; '));
     } else if (unusual.length > 0) book.note(i, `met, though not as usual: ${unusual.join(', ')}`);
   }

@@ -40,7 +40,8 @@ export interface Explanation extends Showable {
  * @example explain(classify(suite, ['tas']), 'KE-12')
  */
 export function explain(result: Verdicts | RockNames | Consensus, sample: string | number): Explanation {
-  if (result === null || typeof result !== 'object' || !('suite' in result)) throw new TypeError('explain takes what classify, nameRocks or consensus gave, and the name of a sample.');
+  if (result === null || typeof result !== 'object' || !('suite' in result))
+    throw new TypeError('explain takes what classify, nameRocks or consensus gave, and the name of a sample.');
   const i = rowOf(result.suite, sample, 'explain');
   const isConsensus = 'reading' in result;
   const names = isConsensus ? result.names : 'potassium' in result ? result : undefined;
@@ -84,11 +85,18 @@ function cellSteps(suite: Suite, asked: readonly SchemeVerdict[], i: number): Ex
     .map(({ symbol, unit, values, states, limits, sigma }): ExplanationStep => {
       const known = sigma !== undefined && Number.isFinite(sigma[i]);
       const limit = limits?.[i] ?? NaN;
-      const value = Number.isFinite(values[i]) ? three(values[i], 5) : Number.isFinite(limit) ? `${states[i] === cellState.belowDetection ? '<' : '>'}${three(limit)}` : 'none';
+      const value = Number.isFinite(values[i])
+        ? three(values[i], 5)
+        : Number.isFinite(limit)
+          ? `${states[i] === cellState.belowDetection ? '<' : '>'}${three(limit)}`
+          : 'none';
       const turned = isVolatileFree(suite) && sumOxides.includes(symbol) ? ['turned back from the recast value'] : [];
       return {
-        stage: 'cell', what: symbol, value: `${value} ${unit === 'wt%' ? 'wt %' : unit}${known ? ` ± ${three(sigma[i], 2)}` : ''}`.trim(),
-        detail: [cellStateNames[states[i]], ...turned, known ? '' : 'no 1σ', from].filter((part) => part !== '').join('; '), sources: '',
+        stage: 'cell',
+        what: symbol,
+        value: `${value} ${unit === 'wt%' ? 'wt %' : unit}${known ? ` ± ${three(sigma[i], 2)}` : ''}`.trim(),
+        detail: [cellStateNames[states[i]], ...turned, known ? '' : 'no 1σ', from].filter((part) => part !== '').join('; '),
+        sources: '',
       };
     });
 }
@@ -97,25 +105,36 @@ function recastSteps(suite: Suite, asked: readonly SchemeVerdict[], i: number): 
   if (!asked.some(({ scheme }) => scheme.basis === 'volatile-free')) return [];
   const base = operandsOf(suite, 'measured').onBasis('volatile-free');
   const sum = base.values('SumAsGiven')[i];
-  return [{
-    stage: 'recast', what: 'to 100 % free of volatiles', value: Number.isFinite(sum) ? `× ${three(100 / sum)}` : 'none',
-    detail: Number.isFinite(sum) ? `oxides sum to ${three(sum)} wt % as given` : 'a needed oxide is missing', sources: sourceText('le_maitre_2002'),
-  }];
+  return [
+    {
+      stage: 'recast',
+      what: 'to 100 % free of volatiles',
+      value: Number.isFinite(sum) ? `× ${three(100 / sum)}` : 'none',
+      detail: Number.isFinite(sum) ? `oxides sum to ${three(sum)} wt % as given` : 'a needed oxide is missing',
+      sources: sourceText('le_maitre_2002'),
+    },
+  ];
 }
 
 function axisSteps({ scheme, x, y }: SchemeVerdict, i: number): ExplanationStep[] {
   if (scheme.kind === 'criteria') return [];
   const axes = scheme.kind === 'thresholds' ? [[scheme.axes[1], y] as const] : [[scheme.axes[0], x] as const, [scheme.axes[1], y] as const];
   return axes.map(([axis, column]): ExplanationStep => ({
-    stage: 'axis', what: axis.title, value: `${three(column?.values[i] ?? NaN, 5)}${scheme.plane === 'ternary' ? ' %' : axis.unit === '' ? '' : ` ${axis.unit}`}`,
-    detail: `${axis.expression}, ${scheme.basis}${scheme.plane === 'ternary' ? ', the three corners closed to 100' : ''}`, sources: scheme.sources.map(sourceText).join('; '),
+    stage: 'axis',
+    what: axis.title,
+    value: `${three(column?.values[i] ?? NaN, 5)}${scheme.plane === 'ternary' ? ' %' : axis.unit === '' ? '' : ` ${axis.unit}`}`,
+    detail: `${axis.expression}, ${scheme.basis}${scheme.plane === 'ternary' ? ', the three corners closed to 100' : ''}`,
+    sources: scheme.sources.map(sourceText).join('; '),
   }));
 }
 
 function criterionSteps({ scheme, criteria }: SchemeVerdict, i: number): ExplanationStep[] {
   return criteria.map(({ criterion, met, values }): ExplanationStep => ({
-    stage: 'rule', what: criterion.text, value: met[i] === 1 ? 'met' : met[i] === 0 ? 'not met' : 'not known',
-    detail: `${three(values?.[i] ?? NaN)} (${criterion.expression}, ${criterion.basis}${criterion.weight === 'usual' ? '; usual, does not decide' : ''})`, sources: scheme.sources.map(sourceText).join('; '),
+    stage: 'rule',
+    what: criterion.text,
+    value: met[i] === 1 ? 'met' : met[i] === 0 ? 'not met' : 'not known',
+    detail: `${three(values?.[i] ?? NaN)} (${criterion.expression}, ${criterion.basis}${criterion.weight === 'usual' ? '; usual, does not decide' : ''})`,
+    sources: scheme.sources.map(sourceText).join('; '),
   }));
 }
 
@@ -123,8 +142,12 @@ function verdictStep(verdict: SchemeVerdict, i: number): ExplanationStep {
   const { scheme, field, symbols, names, distance, remarks } = verdict;
   const chance = probabilityText(verdict, i);
   return {
-    stage: 'verdict', what: scheme.title, value: field[i] < 0 ? 'not determined' : scheme.kind === 'criteria' ? names[i] : `${symbols[i]}: ${names[i]}`,
-    detail: [Number.isNaN(distance[i]) ? '' : `${three(distance[i], 3)} from the nearest boundary`, chance, remarks[i]].filter((part) => part !== '').join('; '),
+    stage: 'verdict',
+    what: scheme.title,
+    value: field[i] < 0 ? 'not determined' : scheme.kind === 'criteria' ? names[i] : `${symbols[i]}: ${names[i]}`,
+    detail: [Number.isNaN(distance[i]) ? '' : `${three(distance[i], 3)} from the nearest boundary`, chance, remarks[i]]
+      .filter((part) => part !== '')
+      .join('; '),
     sources: `${scheme.sources.map(sourceText).join('; ')} (${scheme.standing})`,
   };
 }
@@ -132,12 +155,29 @@ function verdictStep(verdict: SchemeVerdict, i: number): ExplanationStep {
 function nameSteps(names: RockNames, i: number): ExplanationStep[] {
   const { steps, name } = namingChain(names, i);
   return [
-    ...steps.map(({ text, finding, outcome, source, standing }): ExplanationStep => ({ stage: 'rule', what: text, value: outcome, detail: finding, sources: `${sourceText(source)} (${standing})` })),
-    { stage: 'verdict', what: 'name by the IUGS rules', value: name === '' ? 'not named' : name, detail: names.remarks[i], sources: sourceText('le_maitre_2002') },
+    ...steps.map(({ text, finding, outcome, source, standing }): ExplanationStep => ({
+      stage: 'rule',
+      what: text,
+      value: outcome,
+      detail: finding,
+      sources: `${sourceText(source)} (${standing})`,
+    })),
+    {
+      stage: 'verdict',
+      what: 'name by the IUGS rules',
+      value: name === '' ? 'not named' : name,
+      detail: names.remarks[i],
+      sources: sourceText('le_maitre_2002'),
+    },
   ];
 }
 
 function readingSteps({ reading, because, agree, against, notAsked }: Consensus, i: number): ExplanationStep[] {
-  const detail = [because[i].replace(/\.$/, ''), agree[i] === '' ? '' : `agree: ${agree[i]}`, against[i] === '' ? '' : `against: ${against[i]}`, notAsked[i] === '' ? '' : `not asked: ${notAsked[i]}`];
+  const detail = [
+    because[i].replace(/\.$/, ''),
+    agree[i] === '' ? '' : `agree: ${agree[i]}`,
+    against[i] === '' ? '' : `against: ${against[i]}`,
+    notAsked[i] === '' ? '' : `not asked: ${notAsked[i]}`,
+  ];
   return [{ stage: 'reading', what: 'overall', value: reading[i], detail: detail.filter((part) => part !== '').join('. '), sources: '' }];
 }

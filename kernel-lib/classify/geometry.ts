@@ -50,8 +50,13 @@ export function flattenFields(fields: readonly (readonly Edge[])[]): FlatFields 
   });
   const pick = (of: (edge: Edge) => number) => Float64Array.from(edges, of);
   return {
-    count: fields.length, start, boxes,
-    x1: pick(({ x1 }) => x1), y1: pick(({ y1 }) => y1), x2: pick(({ x2 }) => x2), y2: pick(({ y2 }) => y2),
+    count: fields.length,
+    start,
+    boxes,
+    x1: pick(({ x1 }) => x1),
+    y1: pick(({ y1 }) => y1),
+    x2: pick(({ x2 }) => x2),
+    y2: pick(({ y2 }) => y2),
     real: Uint8Array.from(edges, ({ real }) => (real ? 1 : 0)),
     forward: Uint8Array.from(edges, ({ forward }) => (forward ? 1 : 0)),
   };
@@ -119,7 +124,10 @@ export function outlineArea(vertices: readonly PlanePoint[]): number {
  * A place for a name inside an outline: the point of a grid that is farthest from all edges, measured in fractions of the window. The part
  * of the outline outside the window is not used.
  */
-export function labelPlace(vertices: readonly PlanePoint[], window: { readonly x: readonly [number, number]; readonly y: readonly [number, number] }): PlanePoint {
+export function labelPlace(
+  vertices: readonly PlanePoint[],
+  window: { readonly x: readonly [number, number]; readonly y: readonly [number, number] },
+): PlanePoint {
   const width = window.x[1] - window.x[0];
   const height = window.y[1] - window.y[0];
   const unit = vertices.map(([x, y]): PlanePoint => [(x - window.x[0]) / width, (y - window.y[0]) / height]);

@@ -52,11 +52,19 @@ export function immobileAffinity(suite: Suite): ImmobileAffinity {
     // Rows with all three ratios fall into 27 kinds; the others have reasons of their own.
     if (key >= 0) byFields.set(key, { affinity: affinity[i], because: because[i] });
   }
-  const made = step('immobileAffinity', { ratios: [...ratioNames] }, { sources: ['ross_bedard_2009'], tables: keys.map((key) => `schemes/${key}.json`) });
+  const made = step(
+    'immobileAffinity',
+    { ratios: [...ratioNames] },
+    { sources: ['ross_bedard_2009'], tables: keys.map((key) => `schemes/${key}.json`) },
+  );
   return showAs({ suite, affinity, because, ratios, lineage: [...suite.lineage, made] }, (shown) => ({
     title: 'Affinity by immobile elements',
     columns: ['sample', 'affinity', 'because'],
-    rows: Array.from({ length: Math.min(60, suite.size) }, (_, i): TableCell[] => [suite.samples[i], shown.affinity[i] === '' ? 'not determined' : shown.affinity[i], shown.because[i]]),
+    rows: Array.from({ length: Math.min(60, suite.size) }, (_, i): TableCell[] => [
+      suite.samples[i],
+      shown.affinity[i] === '' ? 'not determined' : shown.affinity[i],
+      shown.because[i],
+    ]),
     totalRows: suite.size,
   }));
 }

@@ -63,7 +63,8 @@ const highMagnesiumNames = ['', 'boninite', 'komatiite', 'meimechite', 'picrite'
 export function nameRocks(suite: Suite, options: NameOptions = {}): RockNames {
   const { normIron = {}, volatiles = 'flag' } = options;
   const { iron } = classifyOptions({ iron: options.iron }, 'nameRocks');
-  if (volatiles !== 'flag' && volatiles !== 'withhold') throw new RangeError(`nameRocks: volatiles must be "flag" or "withhold", not "${String(volatiles)}".`);
+  if (volatiles !== 'flag' && volatiles !== 'withhold')
+    throw new RangeError(`nameRocks: volatiles must be "flag" or "withhold", not "${String(volatiles)}".`);
   return nameWith(operandsOf(suite, iron), normIron, volatiles);
 }
 
@@ -114,13 +115,17 @@ export function nameWith(operands: Operands, normIron: IronSplitOptions, volatil
     'nameRocks',
     { iron: isVolatileFree(suite) ? 'as recast before' : operands.iron, volatiles, rows: size, named, failedVolatileScreen: screened },
     {
-      sources: ['le_maitre_2002', 'le_bas_1986', 'le_bas_2000'], tables: ['naming-rules.json', 'schemes/tas.json', 'schemes/potassium-silica.json'],
+      sources: ['le_maitre_2002', 'le_bas_1986', 'le_bas_2000'],
+      tables: ['naming-rules.json', 'schemes/tas.json', 'schemes/potassium-silica.json'],
       fromMemory: Object.values(namingRules()).flatMap((rule) => (typeof rule === 'object' && rule.standing === 'from memory' ? [rule.text] : [])),
       says: 'Rocks were named by the IUGS rules (Le Maitre et al. 2002).',
     },
   );
   const lineage = [...joinLineages(operands.onBasis('volatile-free').lineage, made.lineage), because];
-  return showAs({ suite, names, roots, fields: tas.symbols, remarks, tas, potassium, norm: made, highMagnesium, volatileScreen, normRow, lineage }, nameTable);
+  return showAs(
+    { suite, names, roots, fields: tas.symbols, remarks, tas, potassium, norm: made, highMagnesium, volatileScreen, normRow, lineage },
+    nameTable,
+  );
 }
 
 const cumulateRemark = 'if it is a lava: peridotites and rocks with accumulated olivine meet this rule too';
@@ -140,8 +145,14 @@ const fieldsByNorm = new Set(['B', 'U1', 'F', 'T']);
 
 /** The oxides of some rows. */
 function majorsOf(suite: Suite, rows: Int32Array): Suite {
-  const oxides = [...suite.columns.values()].filter(({ kind, symbol }) => kind === 'oxide' || symbol === 'Ti' || symbol === 'K' || symbol === 'Mn' || symbol === 'P');
-  return suiteOf({ columns: oxides.map((each) => gatherColumn(each, rows)), labels: { sample: Array.from(rows, (i) => suite.samples[i]) }, lineage: suite.lineage });
+  const oxides = [...suite.columns.values()].filter(
+    ({ kind, symbol }) => kind === 'oxide' || symbol === 'Ti' || symbol === 'K' || symbol === 'Mn' || symbol === 'P',
+  );
+  return suiteOf({
+    columns: oxides.map((each) => gatherColumn(each, rows)),
+    labels: { sample: Array.from(rows, (i) => suite.samples[i]) },
+    lineage: suite.lineage,
+  });
 }
 
 /** Columns that the TAS rules read, volatile-free, and the norm. */
@@ -175,7 +186,10 @@ export function quartzShare({ norm: { weights }, normRow }: NamingValues, i: num
 /** The name inside a TAS field, by the field's own rule. */
 function rootName(symbol: string, fieldName: string, values: NamingValues, i: number): { name: string; prefix: boolean; remark: string } {
   const rules = namingRules();
-  const { norm: { weights, reasons }, normRow } = values;
+  const {
+    norm: { weights, reasons },
+    normRow,
+  } = values;
   const row = normRow[i];
   const plain = { name: fieldName, prefix: false, remark: '' };
   const noNorm = row >= 0 && reasons[row] !== '';
@@ -219,7 +233,9 @@ function comenditic({ alumina, iron }: NamingValues, i: number): boolean {
 /** High-magnesium rocks, on the volatile-free basis. */
 function screenMagnesium(operands: Operands): Uint8Array {
   const found = new Uint8Array(operands.suite.size);
-  const [silica, magnesia, titania, soda, potash] = ['SiO2', 'MgO', 'TiO2', 'Na2O', 'K2O'].map((symbol) => operands.operand('volatile-free', symbol)?.values);
+  const [silica, magnesia, titania, soda, potash] = ['SiO2', 'MgO', 'TiO2', 'Na2O', 'K2O'].map(
+    (symbol) => operands.operand('volatile-free', symbol)?.values,
+  );
   if (silica === undefined || magnesia === undefined) return found;
   const { boninite, komatiite, picrite } = namingRules();
   const inside = (value: number, { silicaFrom, silicaTo }: { silicaFrom: number; silicaTo: number }) => value > silicaFrom && value < silicaTo;
@@ -253,6 +269,11 @@ function screenVolatiles(suite: Suite): Uint8Array {
 const rowsShown = 60;
 
 function nameTable({ suite, names, fields, remarks }: Omit<RockNames, 'toMimeBundle'>) {
-  const rows = Array.from({ length: Math.min(suite.size, rowsShown) }, (_, i): TableCell[] => [suite.samples[i], names[i] === '' ? 'not named' : names[i], fields[i], remarks[i]]);
+  const rows = Array.from({ length: Math.min(suite.size, rowsShown) }, (_, i): TableCell[] => [
+    suite.samples[i],
+    names[i] === '' ? 'not named' : names[i],
+    fields[i],
+    remarks[i],
+  ]);
   return { title: 'Names by the IUGS rules', columns: ['sample', 'name', 'TAS field', 'remark'], rows, totalRows: suite.size };
 }

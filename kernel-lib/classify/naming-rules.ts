@@ -24,4 +24,5 @@ const schema = z.strictObject({
 export const namingRules = once(() => readJsonTable('naming-rules.json', schema));
 
 /** The rules, by the name they have in a chain. */
-export type NamingRule = 'volatiles' | 'boninite' | 'komatiite' | 'picrite' | 'sodic' | 'basanite' | 'nephelinite' | 'trachyte' | 'basalt' | 'peralkaline' | 'potassium';
+export type NamingRule =
+  'volatiles' | 'boninite' | 'komatiite' | 'picrite' | 'sodic' | 'basanite' | 'nephelinite' | 'trachyte' | 'basalt' | 'peralkaline' | 'potassium';

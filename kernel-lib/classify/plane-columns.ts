@@ -4,7 +4,9 @@ import type { Scheme } from './scheme';
 
 /** The suite without 1σ, one column replaced: what a moved analysis looks like. */
 export function bareSuite(raw: Suite, replaced: ReadonlyMap<string, Float64Array>): Suite {
-  const columns = [...raw.columns.values()].map(({ sigma: _sigma, ...each }): Column => (replaced.has(each.symbol) ? { ...each, values: replaced.get(each.symbol)! } : each));
+  const columns = [...raw.columns.values()].map(({ sigma: _sigma, ...each }): Column =>
+    replaced.has(each.symbol) ? { ...each, values: replaced.get(each.symbol)! } : each,
+  );
   return suiteOf({ columns, labels: raw.labels });
 }
 

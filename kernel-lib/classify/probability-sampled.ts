@@ -17,7 +17,11 @@ const rowsAtOnce = 20_000;
  * drawn analysis is recast and asked anew. The same draws serve every scheme.
  */
 export function sampledProbabilities(
-  raw: Suite, iron: IronBasis, verdicts: readonly SchemeVerdict[], uncertain: readonly string[], { draws, seed }: ProbabilitySettings,
+  raw: Suite,
+  iron: IronBasis,
+  verdicts: readonly SchemeVerdict[],
+  uncertain: readonly string[],
+  { draws, seed }: ProbabilitySettings,
 ): ReadonlyMap<string, FieldProbabilities> {
   const { size } = raw;
   const schemes = verdicts.map(({ scheme }) => scheme);
@@ -25,7 +29,7 @@ export function sampledProbabilities(
   const asked = schemes.map(() => new Float64Array(size));
   const { normal } = seededRandom(seed, 'classify');
   const copies = Math.max(1, Math.min(draws, Math.floor(rowsAtOnce / Math.max(1, size))));
-  for (let done = 0; done < draws; ) {
+  for (let done = 0; done < draws;) {
     const now = Math.min(copies, draws - done);
     const rows = new Int32Array(size * now);
     for (let r = 0; r < rows.length; r++) rows[r] = r % size;

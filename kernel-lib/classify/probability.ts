@@ -49,11 +49,20 @@ export function probabilities(suite: Suite, verdicts: readonly SchemeVerdict[], 
   if (settings.probability === 'none') return { byScheme: new Map(), detail: { probability: 'none' } };
   const wanted = verdicts.filter(({ scheme: { kind } }) => kind !== 'points');
   const raw = rawAnalysis(suite, settings.uncertainty);
-  const uncertain = uncertainSymbols(raw, wanted.map(({ scheme }) => scheme));
-  if (uncertain.length === 0) return { byScheme: new Map(), detail: { probability: settings.probability === undefined ? 'none: no 1σ known' : 'none: no 1σ known or given' } };
+  const uncertain = uncertainSymbols(
+    raw,
+    wanted.map(({ scheme }) => scheme),
+  );
+  if (uncertain.length === 0)
+    return { byScheme: new Map(), detail: { probability: 'none: no 1σ known' } };
   const method = settings.probability ?? 'analytic';
   const unknown = [...new Set(wanted.flatMap(({ scheme }) => touched(scheme)))].filter((symbol) => raw.has(symbol) && !uncertain.includes(symbol));
-  const detail = { probability: method, uncertain, ...(unknown.length === 0 ? {} : { takenAsExact: unknown }), ...(method === 'sampled' ? { draws: settings.draws, seed: settings.seed } : {}) };
+  const detail = {
+    probability: method,
+    uncertain,
+    ...(unknown.length === 0 ? {} : { takenAsExact: unknown }),
+    ...(method === 'sampled' ? { draws: settings.draws, seed: settings.seed } : {}),
+  };
   // A suite that was recast keeps its own way with iron: its iron columns say which.
   const iron = isVolatileFree(suite) ? (suite.has('Fe2O3T') ? 'total-as-Fe2O3' : 'measured') : settings.iron;
   const byScheme = method === 'analytic' ? analytic(raw, iron, wanted, uncertain) : sampledProbabilities(raw, iron, wanted, uncertain, settings);
@@ -64,13 +73,21 @@ export function probabilities(suite: Suite, verdicts: readonly SchemeVerdict[], 
 function touched(scheme: Scheme): readonly string[] {
   const needs = schemeNeeds(scheme).flatMap((symbol) => (symbol === 'Mg-number' ? ['MgO', 'FeOT'] : [symbol]));
   const iron = needs.some((symbol) => symbol === 'FeOT') ? ['FeOT', 'Fe2O3T', 'FeO', 'Fe2O3'] : [];
-  return [...new Set([...needs, ...iron, ...(scheme.basis === 'volatile-free' || scheme.criteria.some(({ basis }) => basis === 'volatile-free') ? sumOxides : [])])];
+  return [
+    ...new Set([
+      ...needs,
+      ...iron,
+      ...(scheme.basis === 'volatile-free' || scheme.criteria.some(({ basis }) => basis === 'volatile-free') ? sumOxides : []),
+    ]),
+  ];
 }
 
 /** Columns with a 1σ that reaches one of the schemes. */
 export function uncertainSymbols(raw: Suite, schemes: readonly Scheme[]): readonly string[] {
   const wanted = new Set(schemes.flatMap(touched));
-  return [...raw.columns.values()].filter(({ symbol, sigma }) => wanted.has(symbol) && sigma !== undefined && sigma.some((each) => each > 0)).map(({ symbol }) => symbol);
+  return [...raw.columns.values()]
+    .filter(({ symbol, sigma }) => wanted.has(symbol) && sigma !== undefined && sigma.some((each) => each > 0))
+    .map(({ symbol }) => symbol);
 }
 
 interface Spread {
@@ -112,7 +129,12 @@ export function axisSpreads(raw: Suite, iron: IronBasis, schemes: readonly Schem
   return spreads;
 }
 
-function analytic(raw: Suite, iron: IronBasis, verdicts: readonly SchemeVerdict[], uncertain: readonly string[]): ReadonlyMap<string, FieldProbabilities> {
+function analytic(
+  raw: Suite,
+  iron: IronBasis,
+  verdicts: readonly SchemeVerdict[],
+  uncertain: readonly string[],
+): ReadonlyMap<string, FieldProbabilities> {
   const found = new Map<string, FieldProbabilities>();
   const schemes = verdicts.map(({ scheme }) => scheme).filter(({ kind }) => kind !== 'criteria');
   for (const spread of axisSpreads(raw, iron, schemes, uncertain)) {

@@ -50,7 +50,13 @@ function turnedBack(suite: Suite): Suite {
     into[i] = Math.sqrt(Math.max(0, variance - others));
   }
   const back = parts.map((part, j) =>
-    column({ symbol: part.symbol, values: part.values.map((value, i) => (value * sum.values[i]) / 100), states: part.states, limits: part.limits?.map((limit, i) => (limit * sum.values[i]) / 100), ...(sigma[j] === undefined ? {} : { sigma: sigma[j] }) }),
+    column({
+      symbol: part.symbol,
+      values: part.values.map((value, i) => (value * sum.values[i]) / 100),
+      states: part.states,
+      limits: part.limits?.map((limit, i) => (limit * sum.values[i]) / 100),
+      ...(sigma[j] === undefined ? {} : { sigma: sigma[j] }),
+    }),
   );
   const kept = [...suite.columns.values()].filter(({ symbol }) => symbol !== 'SumAsGiven' && !sumOxides.includes(symbol));
   return suiteOf({ columns: [...back, ...kept], labels: suite.labels, lineage: suite.lineage });

@@ -23,12 +23,32 @@ export function buildFields(made: SchemeFile, origin: string, fail: Fail): Schem
     return { symbol, name, vertices, label: { x, y, text: label?.text ?? breakName(name) }, published: ranges[k] };
   });
   const condition = <Of extends Omit<SchemeCondition, 'basis' | 'text'> & { basis?: SchemeBasis; text?: string }>(each: Of) => ({
-    ...each, basis: each.basis ?? made.basis, text: each.text ?? conditionText(each),
+    ...each,
+    basis: each.basis ?? made.basis,
+    text: each.text ?? conditionText(each),
   });
   return {
-    key: made.key, title: made.title, kind: made.kind, plane: made.plane, mirrored: made.mirrored, sources: made.sources, basis: made.basis, axes: made.axes,
-    frame, window, fields, lines, points, bounds: made.bounds, criteria: made.criteria.map(condition), beyond: made.beyond,
-    conditions: made.conditions.map(condition), limits: made.limits, standing: made.standing, standingNote: made.standingNote, origin,
+    key: made.key,
+    title: made.title,
+    kind: made.kind,
+    plane: made.plane,
+    mirrored: made.mirrored,
+    sources: made.sources,
+    basis: made.basis,
+    axes: made.axes,
+    frame,
+    window,
+    fields,
+    lines,
+    points,
+    bounds: made.bounds,
+    criteria: made.criteria.map(condition),
+    beyond: made.beyond,
+    conditions: made.conditions.map(condition),
+    limits: made.limits,
+    standing: made.standing,
+    standingNote: made.standingNote,
+    origin,
   };
 }
 
@@ -41,7 +61,11 @@ function conditionText({ expression, is, value }: Omit<SchemeCondition, 'basis' 
 
 function breakName(name: string): readonly string[] {
   const words = name.split(' ');
-  return words.length === 1 ? [name] : words.length === 2 ? words : [words.slice(0, Math.ceil(words.length / 2)).join(' '), words.slice(Math.ceil(words.length / 2)).join(' ')];
+  return words.length === 1
+    ? [name]
+    : words.length === 2
+      ? words
+      : [words.slice(0, Math.ceil(words.length / 2)).join(' '), words.slice(Math.ceil(words.length / 2)).join(' ')];
 }
 
 /** The place for a name, found as the reader sees the field: on a log axis in logarithms, and inside the drawing window. */
@@ -49,7 +73,10 @@ function placeOnScale(vertices: readonly PlanePoint[], window: Frame, log: reado
   const onto = (value: number, j: number) => (log[j] ? Math.log10(value) : value);
   const back = (value: number, j: number) => (log[j] ? 10 ** value : value);
   const range = (ends: readonly [number, number], j: number) => [onto(ends[0], j), onto(ends[1], j)] as const;
-  const [x, y] = labelPlace(vertices.map(([a, b]): PlanePoint => [onto(a, 0), onto(b, 1)]), { x: range(window.x, 0), y: range(window.y, 1) });
+  const [x, y] = labelPlace(
+    vertices.map(([a, b]): PlanePoint => [onto(a, 0), onto(b, 1)]),
+    { x: range(window.x, 0), y: range(window.y, 1) },
+  );
   return [Number(back(x, 0).toPrecision(4)), Number(back(y, 1).toPrecision(4))];
 }
 
@@ -69,12 +96,31 @@ function outlinesOf(made: SchemeFile, frame: Frame, points: readonly SchemePoint
     case 'thresholds': {
       const levels = [frame.y[0], ...made.bounds, frame.y[1]];
       const [xa, xb] = frame.x;
-      const outlines = made.fields.map((_, k): PlanePoint[] => [[xa, levels[k]], [xb, levels[k]], [xb, levels[k + 1]], [xa, levels[k + 1]]]);
-      const lines = made.bounds.map((y, k): SchemeLine => ({ name: `${made.fields[k].name} | ${made.fields[k + 1].name}`, points: [[xa, y], [xb, y]], published: true }));
+      const outlines = made.fields.map((_, k): PlanePoint[] => [
+        [xa, levels[k]],
+        [xb, levels[k]],
+        [xb, levels[k + 1]],
+        [xa, levels[k + 1]],
+      ]);
+      const lines = made.bounds.map((y, k): SchemeLine => ({
+        name: `${made.fields[k].name} | ${made.fields[k + 1].name}`,
+        points: [
+          [xa, y],
+          [xb, y],
+        ],
+        published: true,
+      }));
       return { outlines, lines, ranges: whole };
     }
     case 'criteria':
-      return { outlines: made.fields.map(() => []), lines: [...criterionLines(made, frame), ...made.lines.map((line): SchemeLine => ({ name: line.name, points: linePoints(line, made, fail), published: true }))], ranges: whole };
+      return {
+        outlines: made.fields.map(() => []),
+        lines: [
+          ...criterionLines(made, frame),
+          ...made.lines.map((line): SchemeLine => ({ name: line.name, points: linePoints(line, made, fail), published: true })),
+        ],
+        ranges: whole,
+      };
     case 'points':
       return { outlines: made.fields.map(() => []), lines: linesThroughPoints(made, frame, points, fail), ranges: whole };
   }
@@ -84,7 +130,8 @@ function outlinesOf(made: SchemeFile, frame: Frame, points: readonly SchemePoint
 export function conventionTest(frame: Frame, conventionEdges: SchemeFile['conventionEdges']): (a: PlanePoint, b: PlanePoint) => boolean {
   const same = (a: PlanePoint, b: readonly number[]) => a[0] === b[0] && a[1] === b[1];
   return ([xa, ya], [xb, yb]) =>
-    (xa === xb && (xa === frame.x[0] || xa === frame.x[1])) || (ya === yb && (ya === frame.y[0] || ya === frame.y[1])) ||
+    (xa === xb && (xa === frame.x[0] || xa === frame.x[1])) ||
+    (ya === yb && (ya === frame.y[0] || ya === frame.y[1])) ||
     conventionEdges.some(([c, d]) => (same([xa, ya], c) && same([xb, yb], d)) || (same([xa, ya], d) && same([xb, yb], c)));
 }
 
@@ -117,7 +164,8 @@ function linePoints(line: SchemeFile['lines'][number], made: SchemeFile, fail: F
     });
   } else if (line.points !== undefined) {
     points = line.points.map(([x, y, z]): PlanePoint => {
-      if (made.plane === 'ternary' && (z === undefined || Math.abs(x + y + z - 100) > 0.11)) fail(`line "${line.name}": a ternary point is three per cents that sum to 100, not ${[x, y, z].join(', ')}.`);
+      if (made.plane === 'ternary' && (z === undefined || Math.abs(x + y + z - 100) > 0.11))
+        fail(`line "${line.name}": a ternary point is three per cents that sum to 100, not ${[x, y, z].join(', ')}.`);
       return [x, y];
     });
   } else return fail(`line "${line.name}" needs points [[x, y], …] or a curve.`);
@@ -133,7 +181,10 @@ function fieldsBetweenLines(made: SchemeFile, frame: Frame, fail: Fail): Outline
     return [from, to];
   });
   // A refused range is cut off; otherwise lines are continued straight to the frame.
-  const [xa, xb] = made.beyond === 'refuse' ? [Math.max(frame.x[0], ...published.map(([from]) => from)), Math.min(frame.x[1], ...published.map(([, to]) => to))] : frame.x;
+  const [xa, xb] =
+    made.beyond === 'refuse'
+      ? [Math.max(frame.x[0], ...published.map(([from]) => from)), Math.min(frame.x[1], ...published.map(([, to]) => to))]
+      : frame.x;
   const top = (x: number) => (made.plane === 'ternary' ? 100 - x : frame.y[1]);
   // A continued line may leave the frame before its side is reached: it bends there, and nowhere else.
   const leaves = given.flatMap((points) => [...meets(points, xa, xb, () => frame.y[0]), ...meets(points, xa, xb, top)]);
@@ -155,7 +206,11 @@ function fieldsBetweenLines(made: SchemeFile, frame: Frame, fail: Fail): Outline
   const lines = given.flatMap((points, k): SchemeLine[] => {
     const { name } = made.lines[k];
     const [from, to] = published[k];
-    const piece = (a: number, b: number): PlanePoint[] => [[a, polylineAt(points, a)], ...points.filter(([x]) => x > a && x < b), [b, polylineAt(points, b)]];
+    const piece = (a: number, b: number): PlanePoint[] => [
+      [a, polylineAt(points, a)],
+      ...points.filter(([x]) => x > a && x < b),
+      [b, polylineAt(points, b)],
+    ];
     const pieces: SchemeLine[] = [{ name, points: piece(Math.max(from, xa), Math.min(to, xb)), published: true }];
     if (from > xa) pieces.push({ name, points: piece(xa, from), published: false });
     if (to < xb) pieces.push({ name, points: piece(to, xb), published: false });
@@ -190,8 +245,28 @@ function criterionLines(made: SchemeFile, { x, y }: Frame): readonly SchemeLine[
   const squeeze = (text: string) => text.replace(/\s+/g, '');
   return made.criteria.flatMap(({ expression, value }) =>
     [value].flat().flatMap((limit): SchemeLine[] => {
-      if (squeeze(expression) === squeeze(made.axes[0].expression)) return [{ name: `${made.axes[0].title} ${limit}`, points: [[limit, y[0]], [limit, y[1]]], published: true }];
-      if (squeeze(expression) === squeeze(made.axes[1].expression)) return [{ name: `${made.axes[1].title} ${limit}`, points: [[x[0], limit], [x[1], limit]], published: true }];
+      if (squeeze(expression) === squeeze(made.axes[0].expression))
+        return [
+          {
+            name: `${made.axes[0].title} ${limit}`,
+            points: [
+              [limit, y[0]],
+              [limit, y[1]],
+            ],
+            published: true,
+          },
+        ];
+      if (squeeze(expression) === squeeze(made.axes[1].expression))
+        return [
+          {
+            name: `${made.axes[1].title} ${limit}`,
+            points: [
+              [x[0], limit],
+              [x[1], limit],
+            ],
+            published: true,
+          },
+        ];
       return [];
     }),
   );
@@ -201,7 +276,9 @@ function criterionLines(made: SchemeFile, { x, y }: Frame): readonly SchemeLine[
 function schemePoint({ name, at, reservoir: key }: SchemeFile['points'][number], made: SchemeFile, fail: Fail): SchemePoint {
   if (at !== undefined) return { name, at };
   if (key === undefined) return fail(`the point "${name}" needs "at": [x, y] or a "reservoir".`);
-  const columns = [...reservoir(key).values.values()].map(({ analyte, value, unit }) => column({ symbol: analyte, values: [value], ...(unit === 'ratio' ? {} : { unit }) }));
+  const columns = [...reservoir(key).values.values()].map(({ analyte, value, unit }) =>
+    column({ symbol: analyte, values: [value], ...(unit === 'ratio' ? {} : { unit }) }),
+  );
   const composition = suiteOf({ columns });
   const [x, y] = made.axes.map(({ expression }) => evaluate(composition, expression, { sigma: false }).values[0]);
   return { name, at: [x, y] };
@@ -211,7 +288,9 @@ function schemePoint({ name, at, reservoir: key }: SchemeFile['points'][number],
 function linesThroughPoints(made: SchemeFile, frame: Frame, points: readonly SchemePoint[], fail: Fail): readonly SchemeLine[] {
   return made.lines.map((line): SchemeLine => {
     if (line.through === undefined) return { name: line.name, points: linePoints(line, made, fail), published: true };
-    const [first, second] = line.through.map((name) => points.find((point) => point.name === name) ?? fail(`line "${line.name}": there is no point "${name}".`));
+    const [first, second] = line.through.map(
+      (name) => points.find((point) => point.name === name) ?? fail(`line "${line.name}": there is no point "${name}".`),
+    );
     const on = (value: number, j: number) => (made.axes[j].scale === 'log' ? Math.log10(value) : value);
     const slope = (on(second.at[1], 1) - on(first.at[1], 1)) / (on(second.at[0], 0) - on(first.at[0], 0));
     const at = (x: number): PlanePoint => {

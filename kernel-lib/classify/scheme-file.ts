@@ -8,11 +8,20 @@ import { checkTiling } from './scheme-check';
 const text = z.string().trim().min(1);
 const pair = z.tuple([z.number(), z.number()]);
 const pointSchema = z.array(z.number()).min(2).max(3);
-const axisSchema = z.strictObject({ expression: text, title: text, unit: z.string().default(''), scale: z.enum(['linear', 'log']).default('linear') });
+const axisSchema = z.strictObject({
+  expression: text,
+  title: text,
+  unit: z.string().default(''),
+  scale: z.enum(['linear', 'log']).default('linear'),
+});
 const labelSchema = z.strictObject({ at: pair.optional(), text: z.array(text).min(1).optional() });
 const basisSchema = z.enum(['volatile-free', 'as-analysed']);
 const conditionShape = {
-  expression: text, is: z.enum(['<', '<=', '>', '>=', 'between']), value: z.union([z.number(), pair]), basis: basisSchema.optional(), text: text.optional(),
+  expression: text,
+  is: z.enum(['<', '<=', '>', '>=', 'between']),
+  value: z.union([z.number(), pair]),
+  basis: basisSchema.optional(),
+  text: text.optional(),
 };
 
 /** @internal The JSON form of a scheme. */
@@ -36,7 +45,9 @@ export const schemeSchema = z.strictObject({
         name: text,
         points: z.array(pointSchema).min(2).optional(),
         /** y = c0 + c1·x + c2·x² …, or x of y with `of: "y"`. */
-        curve: z.strictObject({ coefficients: z.array(z.number()).min(2), of: z.enum(['x', 'y']).default('x'), from: z.number(), to: z.number() }).optional(),
+        curve: z
+          .strictObject({ coefficients: z.array(z.number()).min(2), of: z.enum(['x', 'y']).default('x'), from: z.number(), to: z.number() })
+          .optional(),
         /** The straight line through two of the reference points. */
         through: z.tuple([text, text]).optional(),
         published: pair.optional(),
@@ -97,15 +108,19 @@ function checkShape(made: SchemeFile, own: boolean, fail: (why: string) => never
   }
   const wanted: Readonly<Record<SchemeFile['kind'], () => void>> = {
     polygons: () => {
-      if (made.fields.length === 0 || made.fields.some(({ vertices }) => vertices === undefined)) fail('kind "polygons" needs fields, each with vertices [[x, y], …].');
+      if (made.fields.length === 0 || made.fields.some(({ vertices }) => vertices === undefined))
+        fail('kind "polygons" needs fields, each with vertices [[x, y], …].');
       if (made.frame === undefined) fail('kind "polygons" needs a frame { "x": [low, high], "y": [low, high] } on which open fields are closed.');
     },
     lines: () => {
       if (made.lines.length === 0 || made.fields.length !== made.lines.length + 1) {
-        fail(`kind "lines" needs lines from below upward and one field more than lines; it has ${made.lines.length} lines and ${made.fields.length} fields.`);
+        fail(
+          `kind "lines" needs lines from below upward and one field more than lines; it has ${made.lines.length} lines and ${made.fields.length} fields.`,
+        );
       }
       if (made.frame === undefined) fail('kind "lines" needs a frame { "x": [low, high], "y": [low, high] }.');
-      if (made.axes.some(({ scale }) => scale === 'log')) fail('kind "lines" takes linear axes; on a log axis give the fields as polygons, or write log10(…) as the expression.');
+      if (made.axes.some(({ scale }) => scale === 'log'))
+        fail('kind "lines" takes linear axes; on a log axis give the fields as polygons, or write log10(…) as the expression.');
     },
     thresholds: () => {
       if (made.bounds.length === 0 || made.fields.length !== made.bounds.length + 1) {
@@ -116,7 +131,8 @@ function checkShape(made: SchemeFile, own: boolean, fail: (why: string) => never
     },
     criteria: () => {
       if (made.criteria.length === 0 || made.fields.length !== 2) fail('kind "criteria" needs criteria and two fields: met, then not met.');
-      if (made.frame === undefined && made.window === undefined) fail('kind "criteria" needs a window { "x": [low, high], "y": [low, high] } for drawing.');
+      if (made.frame === undefined && made.window === undefined)
+        fail('kind "criteria" needs a window { "x": [low, high], "y": [low, high] } for drawing.');
     },
     points: () => {
       if (made.points.length === 0) fail('kind "points" needs points.');

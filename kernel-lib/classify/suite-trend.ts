@@ -90,19 +90,42 @@ export function suiteTrend(suite: Suite, options: TrendOptions = {}): SuiteTrend
     groups.push(groupTrend(name, x, y, excess, lineSlope, draws, uniform));
   }
   const because = step(
-    'suiteTrend', { group: group ?? null, iron, mostMagnesia, draws, seed, fewest, leastCorrelation },
-    { sources: ['miyashiro_1974', 'peacock_1931'], tables: ['schemes/iron-enrichment.json'], says: 'The series of each suite was read from the slope of its trend in SiO2 against FeO*/MgO (Miyashiro 1974).' },
+    'suiteTrend',
+    { group: group ?? null, iron, mostMagnesia, draws, seed, fewest, leastCorrelation },
+    {
+      sources: ['miyashiro_1974', 'peacock_1931'],
+      tables: ['schemes/iron-enrichment.json'],
+      says: 'The series of each suite was read from the slope of its trend in SiO2 against FeO*/MgO (Miyashiro 1974).',
+    },
   );
   return showAs({ groups, lineage: [...operands.onBasis('volatile-free').lineage, because] }, trendTable);
 }
 
-function groupTrend(group: string, x: Float64Array, y: Float64Array, excess: Float64Array, lineSlope: number, draws: number, uniform: () => number): SuiteTrendGroup {
+function groupTrend(
+  group: string,
+  x: Float64Array,
+  y: Float64Array,
+  excess: Float64Array,
+  lineSlope: number,
+  draws: number,
+  uniform: () => number,
+): SuiteTrendGroup {
   const count = x.length;
   const all = Int32Array.from({ length: count }, (_, i) => i);
   const fit = majorAxis(x, y, all);
   const nothing: TrendValue = { value: NaN, low: NaN, high: NaN };
   if (count < fewest) {
-    return { group, count, slope: { ...nothing, value: count > 2 ? fit.slope : NaN }, correlation: fit.correlation, steeper: NaN, series: 'not decided', because: `fewer than ${fewest} samples`, alkaliLime: nothing, alkaliLimeClass: 'not decided' };
+    return {
+      group,
+      count,
+      slope: { ...nothing, value: count > 2 ? fit.slope : NaN },
+      correlation: fit.correlation,
+      steeper: NaN,
+      series: 'not decided',
+      because: `fewer than ${fewest} samples`,
+      alkaliLime: nothing,
+      alkaliLimeClass: 'not decided',
+    };
   }
   const slopes = new Float64Array(draws);
   const indexes = new Float64Array(draws);
@@ -114,13 +137,18 @@ function groupTrend(group: string, x: Float64Array, y: Float64Array, excess: Flo
   }
   const slope = interval(fit.slope, slopes);
   const steeper = slopes.reduce((sum, each) => sum + (each > lineSlope ? 1 : 0), 0) / draws;
-  const written = `${formatNumber(Number(slope.value.toPrecision(3)))} (${formatNumber(Number(slope.low.toPrecision(3)))} to ${formatNumber(Number(slope.high.toPrecision(3)))}) against ${formatNumber(Number(lineSlope.toPrecision(3)))}`;
+  const three = (value: number) => formatNumber(Number(value.toPrecision(3)));
+  const written = `${three(slope.value)} (${three(slope.low)} to ${three(slope.high)}) against ${three(lineSlope)}`;
   const falls = fit.correlation <= 0;
   const weak = Math.abs(fit.correlation) < leastCorrelation;
   const series = weak || falls ? 'not decided' : slope.low > lineSlope ? 'calc-alkalic' : slope.high < lineSlope ? 'tholeiitic' : 'not decided';
   const because = weak
     ? `SiO2 and FeO*/MgO hardly vary together (r ${fit.correlation.toFixed(2)})`
-    : falls ? 'SiO2 does not rise with FeO*/MgO' : series === 'not decided' ? `the interval of the slope holds the line's: ${written}` : `slope ${written}`;
+    : falls
+      ? 'SiO2 does not rise with FeO*/MgO'
+      : series === 'not decided'
+        ? `the interval of the slope holds the line's: ${written}`
+        : `slope ${written}`;
   const alkaliLime = interval(zeroCrossing(y, excess, all), indexes);
   return { group, count, slope, correlation: fit.correlation, steeper, series, because, alkaliLime, alkaliLimeClass: peacockClass(alkaliLime) };
 }
@@ -175,11 +203,27 @@ function peacockClass({ value, low, high }: TrendValue): SuiteTrendGroup['alkali
 }
 
 function trendTable({ groups }: { readonly groups: readonly SuiteTrendGroup[] }) {
-  const text = ({ value, low, high }: TrendValue, digits: number) => (Number.isNaN(value) ? '' : Number.isNaN(low) ? value.toFixed(digits) : `${value.toFixed(digits)} (${low.toFixed(digits)} to ${high.toFixed(digits)})`);
+  const text = ({ value, low, high }: TrendValue, digits: number) =>
+    Number.isNaN(value)
+      ? ''
+      : Number.isNaN(low)
+        ? value.toFixed(digits)
+        : `${value.toFixed(digits)} (${low.toFixed(digits)} to ${high.toFixed(digits)})`;
   return {
     title: 'Series by the trend of the suite',
     columns: ['group', 'samples', 'SiO2 per FeO*/MgO', 'series', 'because', 'alkali–lime index', 'class'],
-    rows: groups.map(({ group, count, slope, series, because, alkaliLime, alkaliLimeClass }) => [group === '' ? 'all' : group, count, text(slope, 2), series, because, text(alkaliLime, 1), alkaliLimeClass]),
-    notes: ['Slopes by reduced major axis; 95 % intervals from resampling. A trend steeper than the line of Miyashiro (1974), 6.4 % SiO2 for one unit of FeO*/MgO, is calc-alkalic.'],
+    rows: groups.map(({ group, count, slope, series, because, alkaliLime, alkaliLimeClass }) => [
+      group === '' ? 'all' : group,
+      count,
+      text(slope, 2),
+      series,
+      because,
+      text(alkaliLime, 1),
+      alkaliLimeClass,
+    ]),
+    notes: [
+      'Slopes by reduced major axis; 95 % intervals from resampling.',
+      'A trend steeper than the line of Miyashiro (1974), 6.4 % SiO2 for one unit of FeO*/MgO, is calc-alkalic.',
+    ],
   };
 }

@@ -18,7 +18,9 @@ import type { Scheme } from './scheme';
  * @example typicalDoubt(suite, findScheme('tas'), { x: [57], y: [4] })
  */
 export function typicalDoubt(
-  suite: Suite, scheme: Scheme, at: { readonly x: ArrayLike<number>; readonly y: ArrayLike<number> },
+  suite: Suite,
+  scheme: Scheme,
+  at: { readonly x: ArrayLike<number>; readonly y: ArrayLike<number> },
   options: { readonly iron?: IronBasis; readonly uncertainty?: Uncertainty } = {},
 ): Float64Array | undefined {
   const { iron = 'measured', uncertainty = {} } = options;

@@ -51,7 +51,15 @@ const rowsShown = 60;
 
 function verdictTable(suite: Suite, schemes: ReadonlyMap<string, SchemeVerdict>) {
   const all = [...schemes.values()];
-  const columns = ['sample', ...all.flatMap(({ scheme, probability }) => [scheme.key, ...(probability === undefined ? [] : [`${scheme.key}: how sure`]), 'distance', 'remark'])];
+  const columns = [
+    'sample',
+    ...all.flatMap(({ scheme, probability }) => [
+      scheme.key,
+      ...(probability === undefined ? [] : [`${scheme.key}: how sure`]),
+      'distance',
+      'remark',
+    ]),
+  ];
   const rows = Array.from({ length: Math.min(suite.size, rowsShown) }, (_, i): TableCell[] => [
     suite.samples[i],
     ...all.flatMap((verdict): TableCell[] => [
@@ -63,8 +71,9 @@ function verdictTable(suite: Suite, schemes: ReadonlyMap<string, SchemeVerdict>)
   ]);
   const notes = all.map(({ scheme, field }) => {
     const determined = field.reduce((count, each) => count + (each >= 0 ? 1 : 0), 0);
-    return `${scheme.key}: ${scheme.title}; ${determined} of ${suite.size} determined. Distance in axis units; a point on a boundary belongs to the field of higher x.`;
+    return `${scheme.key}: ${scheme.title}; ${determined} of ${suite.size} determined.`;
   });
+  notes.push('Distance in axis units; a point on a boundary belongs to the field of higher x.');
   return { title: 'Verdicts', columns, rows, totalRows: suite.size, notes };
 }
 

@@ -42,7 +42,9 @@ export function probabilityBars(suite: Suite, which: string | Scheme, options: P
   const verdicts = classify(suite, chosen, { probability: chosen.kind === 'criteria' ? 'sampled' : 'analytic', ...asking });
   const { probability } = verdictOf(verdicts, chosen.key);
   if (probability === undefined) {
-    throw new RangeError(`probabilityBars: no 1σ is known for what "${chosen.key}" reads. Give uncertainty: { SiO2: { relative: 0.01 }, … }, or run the audit, which gives columns their 1σ.`);
+    throw new RangeError(
+      `probabilityBars: no 1σ is known for what "${chosen.key}" reads. Give uncertainty: { SiO2: { relative: 0.01 }, … }, or run the audit, which gives columns their 1σ.`,
+    );
   }
   const rows = samples === undefined ? leastSure(probability.values) : samples.map((name) => rowOf(suite, name));
   if (rows.length === 0) throw new RangeError(`probabilityBars: no sample has a probability for "${chosen.key}": each lacks an analyte or its 1σ.`);
@@ -59,27 +61,49 @@ export function probabilityBars(suite: Suite, which: string | Scheme, options: P
   };
   const pieces = rows.flatMap((i, place) => {
     let from = 0;
-    const parts = [...shown.map(({ k, field }) => ({ name: drawable(field.name), share: probability.values[k][i] })), ...(hasRest ? [{ name: rest, share: NaN }] : [])];
+    const parts = [
+      ...shown.map(({ k, field }) => ({ name: drawable(field.name), share: probability.values[k][i] })),
+      ...(hasRest ? [{ name: rest, share: NaN }] : []),
+    ];
     return parts.flatMap(({ name, share }) => {
       const part = Number.isNaN(share) ? 1 - from : share;
       if (!(part > 0.001)) return [];
-      const piece = { y: place - 0.38, y2: place + 0.38, x: specNumber(100 * from), x2: specNumber(100 * Math.min(1, from + part)), g: name, p: specNumber(100 * part), s: suite.samples[i] };
+      const piece = {
+        y: place - 0.38,
+        y2: place + 0.38,
+        x: specNumber(100 * from),
+        x2: specNumber(100 * Math.min(1, from + part)),
+        g: name,
+        p: specNumber(100 * part),
+        s: suite.samples[i],
+      };
       from += part;
       return [piece];
     });
   });
   const layer: Layer = {
-    draw: () => [unit(frame, { type: 'rect', opacity: 0.92, stroke: '#ffffff', strokeWidth: 0.7 }, pieces, {
-      x2: { field: 'x2' }, y2: { field: 'y2' },
-      fill: { field: 'g', type: 'nominal', scale: scale.colours, legend: { ...scale.legend, symbolType: 'square' } },
-      tooltip: [{ field: 's', type: 'nominal', title: 'sample' }, { field: 'g', type: 'nominal', title: 'field' }, { field: 'p', type: 'quantitative', title: 'probability (%)', format: '.0f' }],
-    })],
+    draw: () => [
+      unit(frame, { type: 'rect', opacity: 0.92, stroke: '#ffffff', strokeWidth: 0.7 }, pieces, {
+        x2: { field: 'x2' },
+        y2: { field: 'y2' },
+        fill: { field: 'g', type: 'nominal', scale: scale.colours, legend: { ...scale.legend, symbolType: 'square' } },
+        tooltip: [
+          { field: 's', type: 'nominal', title: 'sample' },
+          { field: 'g', type: 'nominal', title: 'field' },
+          { field: 'p', type: 'quantitative', title: 'probability (%)', format: '.0f' },
+        ],
+      }),
+    ],
   };
   const cited = chosen.sources.map((key) => (bibliography().has(key) ? shortSource(key) : key)).join('; ');
-  const how = probability.method === 'analytic' ? 'from the errors of the analysis, moved through the recasting' : `from ${options.draws ?? 2000} drawn analyses a sample`;
+  const how =
+    probability.method === 'analytic'
+      ? 'from the errors of the analysis, moved through the recasting'
+      : `from ${options.draws ?? 2000} drawn analyses a sample`;
   const which25 = samples === undefined && suite.size > rows.length ? ` The ${rows.length} samples least sure of ${suite.size}.` : '';
   return figure({
-    name: `${chosen.title}: probabilities`, title,
+    name: `${chosen.title}: probabilities`,
+    title,
     panels: [{ frame, layers: [layer] }],
     caption: [`Probability of each field, ${how}. ${chosen.title}: ${cited}.${which25}`],
     counts: { plotted: rows.length, notPlotted: suite.size - rows.length, reasons: {} },
@@ -91,12 +115,18 @@ export function probabilityBars(suite: Suite, which: string | Scheme, options: P
 
 function rowOf(suite: Suite, name: string): number {
   const row = suite.samples.indexOf(name);
-  if (row < 0) throw new RangeError(`probabilityBars: there is no sample "${String(name)}". The first names are: ${suite.samples.slice(0, 8).join(', ')}.`);
+  if (row < 0)
+    throw new RangeError(`probabilityBars: there is no sample "${String(name)}". The first names are: ${suite.samples.slice(0, 8).join(', ')}.`);
   return row;
 }
 
 /** Rows by how unlikely their likeliest field is, the least sure first. */
 function leastSure(values: readonly Float64Array[]): number[] {
   const best = Array.from(values[0], (_, i) => Math.max(...values.map((each) => each[i])));
-  return best.map((share, i) => ({ share, i })).filter(({ share }) => Number.isFinite(share)).sort((a, b) => a.share - b.share).slice(0, mostBars).map(({ i }) => i);
+  return best
+    .map((share, i) => ({ share, i }))
+    .filter(({ share }) => Number.isFinite(share))
+    .sort((a, b) => a.share - b.share)
+    .slice(0, mostBars)
+    .map(({ i }) => i);
 }

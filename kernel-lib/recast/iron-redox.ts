@@ -19,7 +19,8 @@ export const oxygenBuffers: readonly OxygenBuffer[] = ['FMQ', 'NNO', 'IW'];
  * @example bufferFugacity('NNO', 1200) // −7.56
  */
 export function bufferFugacity(buffer: OxygenBuffer, temperature: number, pressure = 1, offset = 0): number {
-  if (!oxygenBuffers.includes(buffer)) throw new RangeError(`bufferFugacity: buffer must be one of ${oxygenBuffers.join(', ')}, not "${String(buffer)}".`);
+  if (!oxygenBuffers.includes(buffer))
+    throw new RangeError(`bufferFugacity: buffer must be one of ${oxygenBuffers.join(', ')}, not "${String(buffer)}".`);
   if (![temperature, pressure, offset].every(Number.isFinite) || temperature <= -273.15) {
     throw new RangeError(`bufferFugacity: temperature (°C), pressure (bar) and offset must be numbers; got ${temperature}, ${pressure}, ${offset}.`);
   }
@@ -39,7 +40,10 @@ export const meltOxides = ['SiO2', 'TiO2', 'Al2O3', 'FeOT', 'MnO', 'MgO', 'CaO',
  * @returns ln of the molar ratio
  * @source Kress & Carmichael 1991, equation 7; calibrated for natural melts at 1200–1630 °C and 1 bar, with a pressure term
  */
-export function ferricFerrousRatio(oxides: Readonly<Record<string, number>>, state: { temperature: number; pressure: number; log10fO2: number }): number {
+export function ferricFerrousRatio(
+  oxides: Readonly<Record<string, number>>,
+  state: { temperature: number; pressure: number; log10fO2: number },
+): number {
   const { a, b, c, d, e, f, g, h, T0 } = ironTables().meltEquilibrium;
   const T = state.temperature + 273.15;
   const P = state.pressure * 1e5;
@@ -48,7 +52,13 @@ export function ferricFerrousRatio(oxides: Readonly<Record<string, number>>, sta
   let composition = 0;
   for (const [oxide, factor] of Object.entries(d)) composition += (factor * (oxides[oxide] || 0)) / molarMass(oxide) / moles;
   return (
-    a * state.log10fO2 * Math.LN10 + b / T + c + composition +
-    e * (1 - T0 / T - Math.log(T / T0)) + (f * P) / T + (g * (T - T0) * P) / T + (h * P * P) / T
+    a * state.log10fO2 * Math.LN10 +
+    b / T +
+    c +
+    composition +
+    e * (1 - T0 / T - Math.log(T / T0)) +
+    (f * P) / T +
+    (g * (T - T0) * P) / T +
+    (h * P * P) / T
   );
 }

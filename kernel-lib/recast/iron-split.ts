@@ -97,13 +97,17 @@ export function splitIron(suite: Suite, options: IronSplitOptions = {}): Suite {
   columns.set('FeO', column({ symbol: 'FeO', values: feo, states, sigma: sigma(feo) }));
   columns.set('Fe2O3', column({ symbol: 'Fe2O3', values: fe2o3, states: states.slice(), sigma: sigma(fe2o3) }));
   const published = sourceOf[applied]?.();
-  const sources = [...(published === undefined ? [] : [published.source]), ...(options.oxygen !== undefined && 'buffer' in options.oxygen ? [ironTables().buffers.source] : [])];
+  const sources = [
+    ...(published === undefined ? [] : [published.source]),
+    ...(options.oxygen !== undefined && 'buffer' in options.oxygen ? [ironTables().buffers.source] : []),
+  ];
   const { fields: _fields, ...detail } = options;
   const because = step(
     'splitIron',
     { ...(detail as Record<string, never>), method, ...(method === 'measured' ? { otherwise } : {}), rows: counts },
     {
-      sources, tables: published === undefined ? [] : ['iron-oxidation.json'],
+      sources,
+      tables: published === undefined ? [] : ['iron-oxidation.json'],
       fromMemory: published?.standing === 'from memory' ? [published.what] : [],
       says: `Iron: ${inWords[method]}${method === 'measured' && otherwise !== 'none' && counts.split > 0 ? `; where not measured, ${inWords[otherwise]}` : ''}.`,
     },
@@ -152,9 +156,13 @@ function shareOfFerrous(suite: Suite, total: Column, method: Exclude<IronSplitMe
 }
 
 function shareByMelt(suite: Suite, total: Column, { temperature, pressure = 1, oxygen }: IronSplitOptions, share: Float64Array): Float64Array {
-  if (temperature === undefined) throw new RangeError('splitIron: method "kress-carmichael-1991" needs temperature in °C (a number, or the symbol of a column).');
+  if (temperature === undefined)
+    throw new RangeError('splitIron: method "kress-carmichael-1991" needs temperature in °C (a number, or the symbol of a column).');
   const known = oxygen !== undefined && ('log10fO2' in oxygen ? Number.isFinite(oxygen.log10fO2) : oxygenBuffers.includes(oxygen.buffer));
-  if (!known) throw new RangeError(`splitIron: method "kress-carmichael-1991" needs oxygen: { buffer: ${oxygenBuffers.map((name) => `"${name}"`).join(' | ')}, offset } or { log10fO2 }.`);
+  if (!known)
+    throw new RangeError(
+      `splitIron: method "kress-carmichael-1991" needs oxygen: { buffer: ${oxygenBuffers.map((name) => `"${name}"`).join(' | ')}, offset } or { log10fO2 }.`,
+    );
   const at = (given: number | string): ((i: number) => number) => {
     if (typeof given === 'number') return () => given;
     const { values } = suite.column(given);

@@ -9,7 +9,18 @@ const schema = z.strictObject({
   note: z.string(),
   silicaAndAlkalis: z.strictObject({ ...about, constant: number, perSilica: number, perAlkalis: number }),
   ratioByField: z.strictObject({ ...about, ratios: z.record(z.string(), number) }),
-  meltEquilibrium: z.strictObject({ ...about, a: number, b: number, c: number, d: z.record(z.string(), number), e: number, f: number, g: number, h: number, T0: number }),
+  meltEquilibrium: z.strictObject({
+    ...about,
+    a: number,
+    b: number,
+    c: number,
+    d: z.record(z.string(), number),
+    e: number,
+    f: number,
+    g: number,
+    h: number,
+    T0: number,
+  }),
   buffers: z.strictObject({ ...about, FMQ: buffer, NNO: buffer, IW: buffer }),
 });
 

@@ -1,6 +1,30 @@
 /** Normative minerals, in the usual order: salic, then femic. `Cm` (chromite) only where Cr2O3 is used. */
 export const normMinerals = [
-  'Q', 'C', 'Or', 'Ab', 'An', 'Lc', 'Ne', 'Kp', 'Ac', 'Ns', 'Ks', 'Di', 'Wo', 'Hy', 'Ol', 'Cs', 'Mt', 'Cm', 'Hm', 'Il', 'Tn', 'Pf', 'Ru', 'Ap', 'Cc',
+  'Q',
+  'C',
+  'Or',
+  'Ab',
+  'An',
+  'Lc',
+  'Ne',
+  'Kp',
+  'Ac',
+  'Ns',
+  'Ks',
+  'Di',
+  'Wo',
+  'Hy',
+  'Ol',
+  'Cs',
+  'Mt',
+  'Cm',
+  'Hm',
+  'Il',
+  'Tn',
+  'Pf',
+  'Ru',
+  'Ap',
+  'Cc',
 ] as const;
 export type NormMineral = (typeof normMinerals)[number];
 
@@ -32,7 +56,19 @@ const rounding = 1e-12;
 
 /** Makes the norm of one row with the given molar masses (g/mol). */
 export function normRow(mass: (oxide: string) => number, { carbonate, traces }: { carbonate: boolean; traces: boolean }): NormRow {
-  const [mSi, mAl, mFe2, mFe3, mMg, mCa, mNa, mK, mTi, mMn, mP] = ['SiO2', 'Al2O3', 'FeO', 'Fe2O3', 'MgO', 'CaO', 'Na2O', 'K2O', 'TiO2', 'MnO', 'P2O5'].map(mass);
+  const [mSi, mAl, mFe2, mFe3, mMg, mCa, mNa, mK, mTi, mMn, mP] = [
+    'SiO2',
+    'Al2O3',
+    'FeO',
+    'Fe2O3',
+    'MgO',
+    'CaO',
+    'Na2O',
+    'K2O',
+    'TiO2',
+    'MnO',
+    'P2O5',
+  ].map(mass);
   const [mC, mCr, mNi, mSr, mBa] = ['CO2', 'Cr2O3', 'NiO', 'SrO', 'BaO'].map(mass);
   // The optional oxides follow in the order in which they are used; the caller's list has CO2 before the traces.
   const oxides = new Float64Array(16);
@@ -147,10 +183,31 @@ export function normRow(mass: (oxide: string) => number, { carbonate, traces }: 
       if (lack > 1e-9 * total) return false;
     }
 
-    moles[at.Q] = q; moles[at.C] = corundum; moles[at.Or] = or; moles[at.Ab] = ab; moles[at.An] = an; moles[at.Lc] = lc; moles[at.Ne] = ne;
-    moles[at.Kp] = kp; moles[at.Ac] = ac; moles[at.Ns] = ns; moles[at.Ks] = ks; moles[at.Di] = di; moles[at.Wo] = wo; moles[at.Hy] = hy;
-    moles[at.Ol] = ol; moles[at.Cs] = cs; moles[at.Mt] = mt; moles[at.Cm] = cm; moles[at.Hm] = hm; moles[at.Il] = il; moles[at.Tn] = tn;
-    moles[at.Pf] = pf; moles[at.Ru] = ru; moles[at.Ap] = ap; moles[at.Cc] = cc;
+    moles[at.Q] = q;
+    moles[at.C] = corundum;
+    moles[at.Or] = or;
+    moles[at.Ab] = ab;
+    moles[at.An] = an;
+    moles[at.Lc] = lc;
+    moles[at.Ne] = ne;
+    moles[at.Kp] = kp;
+    moles[at.Ac] = ac;
+    moles[at.Ns] = ns;
+    moles[at.Ks] = ks;
+    moles[at.Di] = di;
+    moles[at.Wo] = wo;
+    moles[at.Hy] = hy;
+    moles[at.Ol] = ol;
+    moles[at.Cs] = cs;
+    moles[at.Mt] = mt;
+    moles[at.Cm] = cm;
+    moles[at.Hm] = hm;
+    moles[at.Il] = il;
+    moles[at.Tn] = tn;
+    moles[at.Pf] = pf;
+    moles[at.Ru] = ru;
+    moles[at.Ap] = ap;
+    moles[at.Cc] = cc;
 
     weights[at.Q] = q * mSi;
     weights[at.C] = corundum * mAl;
@@ -188,6 +245,12 @@ export function normRow(mass: (oxide: string) => number, { carbonate, traces }: 
   }
 
   return {
-    oxides, weights, moles, parts, run, magnesiumShare: () => share, remainder: () => remainder,
+    oxides,
+    weights,
+    moles,
+    parts,
+    run,
+    magnesiumShare: () => share,
+    remainder: () => remainder,
   };
 }

@@ -63,7 +63,8 @@ export function norm(suite: Suite, options: NormOptions = {}): Norm {
   const { iron = {}, sum = 'volatile-free', carbonate = false, traces: withTraces = false, molarMasses = {} } = options;
   if (sum !== 'volatile-free' && sum !== 'as-given') throw new RangeError(`norm: sum must be "volatile-free" or "as-given", not "${String(sum)}".`);
   for (const [oxide, mass] of Object.entries(molarMasses)) {
-    if (!(mass > 0 && Number.isFinite(mass))) throw new RangeError(`norm: the molar mass of ${oxide} must be a positive number, not ${String(mass)}.`);
+    if (!(mass > 0 && Number.isFinite(mass)))
+      throw new RangeError(`norm: the molar mass of ${oxide} must be a positive number, not ${String(mass)}.`);
   }
   const split = splitIron(suite, iron);
   const used: readonly string[] = [...needed, ...optional, ...(carbonate ? ['CO2'] : []), ...(withTraces ? traces : [])];
@@ -104,7 +105,10 @@ export function norm(suite: Suite, options: NormOptions = {}): Norm {
     if (trouble !== 0) {
       let text = gaps.get(trouble);
       if (text === undefined) {
-        text = trouble === -1 ? 'less silica than the norm can use' : `needs ${[...new Set(needed.filter((_, j) => (trouble & (1 << j)) !== 0).map((oxide) => (oxide.startsWith('Fe') ? 'iron' : oxide)))].join(', ')}`;
+        text =
+          trouble === -1
+            ? 'less silica than the norm can use'
+            : `needs ${[...new Set(needed.filter((_, j) => (trouble & (1 << j)) !== 0).map((oxide) => (oxide.startsWith('Fe') ? 'iron' : oxide)))].join(', ')}`;
         gaps.set(trouble, text);
       }
       reasons[i] = text;
@@ -126,15 +130,31 @@ export function norm(suite: Suite, options: NormOptions = {}): Norm {
   const without = reasons.reduce((count, reason) => count + (reason === '' ? 0 : 1), 0);
   const because = step(
     'norm',
-    { sum, carbonate, traces: withTraces, molarMasses: molarMasses as StepDetail, rows: size, withoutNorm: without, countedMissingAsZero: incomplete },
     {
-      sources: ['cross_1902', 'johannsen_1931', 'cox_bell_pankhurst_1979'], tables: ['atomic-weights.csv'],
+      sum,
+      carbonate,
+      traces: withTraces,
+      molarMasses: molarMasses as StepDetail,
+      rows: size,
+      withoutNorm: without,
+      countedMissingAsZero: incomplete,
+    },
+    {
+      sources: ['cross_1902', 'johannsen_1931', 'cox_bell_pankhurst_1979'],
+      tables: ['atomic-weights.csv'],
       says: `CIPW norms were computed${sum === 'volatile-free' ? ' on a volatile-free basis' : ''}${carbonate ? ', CO2 made into calcite' : ''}.`,
     },
   );
   const result = {
-    suite, weights: asColumns(normMinerals, weights, 'wt%', 'norm'), moles: asColumns(normMinerals, moles, 'mol', 'norm moles'),
-    parts: asColumns(normParts, parts, 'wt%', 'norm'), magnesiumShare, oxideSum, remainder, reasons, lineage: [...split.lineage, because],
+    suite,
+    weights: asColumns(normMinerals, weights, 'wt%', 'norm'),
+    moles: asColumns(normMinerals, moles, 'mol', 'norm moles'),
+    parts: asColumns(normParts, parts, 'wt%', 'norm'),
+    magnesiumShare,
+    oxideSum,
+    remainder,
+    reasons,
+    lineage: [...split.lineage, because],
   };
   return showAs(result, normTable);
 }
@@ -160,5 +180,11 @@ function normTable({ suite, weights, reasons, lineage }: Omit<Norm, 'toMimeBundl
     }),
     reasons[i],
   ]);
-  return { title: 'CIPW norm (wt %)', columns: ['sample', ...present, 'remark'], rows, totalRows: suite.size, notes: lineage.slice(-2).map(({ says }) => says) };
+  return {
+    title: 'CIPW norm (wt %)',
+    columns: ['sample', ...present, 'remark'],
+    rows,
+    totalRows: suite.size,
+    notes: lineage.slice(-2).map(({ says }) => says),
+  };
 }

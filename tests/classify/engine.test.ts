@@ -8,13 +8,34 @@ const tas = findScheme('tas');
 
 /** Silica and alkalis exactly where they are asked, as a suite that needs no recasting. */
 const placed = (points: readonly (readonly [number, number])[]) =>
-  suiteOf({ columns: [column({ symbol: 'SiO2', values: points.map(([x]) => x) }), column({ symbol: 'Na2O', values: points.map(([, y]) => y) }), column({ symbol: 'K2O', values: points.map(() => 0) }), column({ symbol: 'SumAsGiven', values: points.map(() => 100), unit: 'wt%' })] });
+  suiteOf({
+    columns: [
+      column({ symbol: 'SiO2', values: points.map(([x]) => x) }),
+      column({ symbol: 'Na2O', values: points.map(([, y]) => y) }),
+      column({ symbol: 'K2O', values: points.map(() => 0) }),
+      column({ symbol: 'SumAsGiven', values: points.map(() => 100), unit: 'wt%' }),
+    ],
+  });
 const symbolAt = (x: number, y: number) => verdictOf(classify(placed([[x, y]]), 'tas'), 'tas').symbols[0];
 
 describe('TAS', () => {
   it('has the 15 fields of Le Bas et al. 1986, each with a point inside', () => {
     const inside: Record<string, [number, number]> = {
-      Pc: [43, 1], B: [48, 3], O1: [54, 3], O2: [60, 4], O3: [66, 5], R: [75, 8], S1: [48.7, 5.8], S2: [53, 7], S3: [58, 9], T: [65, 11], U1: [43.5, 6], U2: [49, 9.5], U3: [53, 11.7], Ph: [57, 14.5], F: [40, 8],
+      Pc: [43, 1],
+      B: [48, 3],
+      O1: [54, 3],
+      O2: [60, 4],
+      O3: [66, 5],
+      R: [75, 8],
+      S1: [48.7, 5.8],
+      S2: [53, 7],
+      S3: [58, 9],
+      T: [65, 11],
+      U1: [43.5, 6],
+      U2: [49, 9.5],
+      U3: [53, 11.7],
+      Ph: [57, 14.5],
+      F: [40, 8],
     };
     expect(Object.keys(inside).sort()).toEqual(tas.fields.map(({ symbol }) => symbol).sort());
     for (const [symbol, [x, y]] of Object.entries(inside)) expect(symbolAt(x, y)).toBe(symbol);
@@ -42,7 +63,15 @@ describe('TAS', () => {
     expect(symbolAt(48, 5)).toBe('S1');
     // (54.5, 5.45) lies on the line from (52, 5) to (57, 5.9): the field of higher silica is the one below it.
     expect(symbolAt(54.5, 5.45)).toBe('O1');
-    for (const [x, y] of [[52, 5], [57, 5.9], [49.4, 7.3], [69, 8], [77, 0], [45, 9.4], [61, 13.5]]) {
+    for (const [x, y] of [
+      [52, 5],
+      [57, 5.9],
+      [49.4, 7.3],
+      [69, 8],
+      [77, 0],
+      [45, 9.4],
+      [61, 13.5],
+    ]) {
       const verdict = verdictOf(classify(placed([[x, y]]), 'tas'), 'tas');
       expect(verdict.field[0], `${x}, ${y}`).toBeGreaterThanOrEqual(0);
       expect(verdict.distance[0]).toBe(0);
@@ -50,7 +79,17 @@ describe('TAS', () => {
   });
 
   it('measures distance to real boundaries only', () => {
-    const { distance } = verdictOf(classify(placed([[54, 0.1], [75, 15.9], [54, 4]]), 'tas'), 'tas');
+    const { distance } = verdictOf(
+      classify(
+        placed([
+          [54, 0.1],
+          [75, 15.9],
+          [54, 4],
+        ]),
+        'tas',
+      ),
+      'tas',
+    );
     expect(distance[0]).toBeCloseTo(2, 12);
     expect(distance[1]).toBeCloseTo(Math.hypot(75 - 69, 15.9 - 13), 12);
     expect(distance[2]).toBeCloseTo(Math.abs(5 + 0.18 * 2 - 4) / Math.hypot(0.18, 1), 12);
@@ -64,7 +103,11 @@ describe('TAS', () => {
     expect(remarks[2]).toBe('needs FeOT');
     expect(remarks[3]).toMatch(/outside the range of the scheme: SiO₂ is not within 30–100/);
     expect(verdictOf(classify(suiteFrom([{ SiO2: 50 }]), 'tas'), 'tas').remarks[0]).toBe('needs Na2O, K2O');
-    const below = suiteOf({ columns: [...suiteFrom([rock({})]).columns.values()].map((each) => (each.symbol === 'K2O' ? column({ symbol: 'K2O', values: [NaN], states: Uint8Array.of(1), limits: Float64Array.of(0.01) }) : each)) });
+    const below = suiteOf({
+      columns: [...suiteFrom([rock({})]).columns.values()].map((each) =>
+        each.symbol === 'K2O' ? column({ symbol: 'K2O', values: [NaN], states: Uint8Array.of(1), limits: Float64Array.of(0.01) }) : each,
+      ),
+    });
     expect(verdictOf(classify(below, 'tas'), 'tas').remarks[0]).toBe('K2O below detection');
   });
 });
@@ -73,7 +116,11 @@ describe('lines', () => {
   const symbol = (key: string, cells: Record<string, number>) => verdictOf(classify(suiteFrom([rock(cells)]), key), key);
   it('divide by K2O and flag what lies beyond the published ends (Le Maitre et al. 2002: 48–68 % SiO2)', () => {
     // The lines at 60 % SiO2: 0.84 and 2.34 % K2O.
-    expect(['low', 'medium', 'high'].map((_, k) => symbol('potassium-silica', { SiO2: 60, K2O: [0.8, 0.9, 2.4][k] }).symbols[0])).toEqual(['low', 'medium', 'high']);
+    expect(['low', 'medium', 'high'].map((_, k) => symbol('potassium-silica', { SiO2: 60, K2O: [0.8, 0.9, 2.4][k] }).symbols[0])).toEqual([
+      'low',
+      'medium',
+      'high',
+    ]);
     expect(symbol('potassium-silica', { SiO2: 60, K2O: 1 }).remarks[0]).toBe('');
     expect(symbol('potassium-silica', { SiO2: 72, K2O: 1, CaO: 2, FeOT: 2, MgO: 1 }).remarks[0]).toMatch(/beyond the published range .* 48–68/);
   });
@@ -104,7 +151,10 @@ describe('lines', () => {
 
 describe('thresholds, criteria, points', () => {
   it('bounds are inclusive below', () => {
-    const { symbols, distance } = verdictOf(classify(suiteFrom([{ Zr: 27.9, Y: 10 }, { Zr: 28, Y: 10 }, { Zr: 45, Y: 10 }, { Y: 10 }]), 'affinity-zr-y'), 'affinity-zr-y');
+    const { symbols, distance } = verdictOf(
+      classify(suiteFrom([{ Zr: 27.9, Y: 10 }, { Zr: 28, Y: 10 }, { Zr: 45, Y: 10 }, { Y: 10 }]), 'affinity-zr-y'),
+      'affinity-zr-y',
+    );
     expect(symbols).toEqual(['TH', 'TR', 'CA', '']);
     expect(distance[0]).toBeCloseTo(Math.log10(28 / 27.9), 12);
   });
@@ -112,7 +162,10 @@ describe('thresholds, criteria, points', () => {
   it('criteria: met, failed with what fails, or not known', () => {
     // Defant & Drummond 1990: SiO2 ≥ 56, Al2O3 ≥ 15, Sr ≥ 400, Y ≤ 18, Yb ≤ 1.9 ppm.
     const adakite = { ...rock({ SiO2: 64, FeOT: 4, MgO: 2, CaO: 5, Na2O: 4.5, K2O: 1.5 }), Sr: 800, Y: 9, Yb: 0.9 };
-    const verdict = verdictOf(classify(suiteFrom([adakite, { ...adakite, Y: 19 }, { ...adakite, Yb: NaN }, { ...adakite, Yb: NaN, Y: 19 }]), 'adakite-1990'), 'adakite-1990');
+    const verdict = verdictOf(
+      classify(suiteFrom([adakite, { ...adakite, Y: 19 }, { ...adakite, Yb: NaN }, { ...adakite, Yb: NaN, Y: 19 }]), 'adakite-1990'),
+      'adakite-1990',
+    );
     expect(verdict.symbols).toEqual(['yes', 'no', '', 'no']);
     expect(verdict.remarks[1]).toBe('fails Y ≤ 18');
     expect(verdict.remarks[2]).toBe('needs Yb');
@@ -121,7 +174,8 @@ describe('thresholds, criteria, points', () => {
   it('a below-detection value meets an upper limit above its own', () => {
     const cells = { ...rock({ SiO2: 64, FeOT: 4, MgO: 2, CaO: 5, Na2O: 4.5, K2O: 1.5 }), Sr: 800, Y: 9 };
     const base = [...suiteFrom([cells]).columns.values()];
-    const withYb = (limit: number) => suiteOf({ columns: [...base, column({ symbol: 'Yb', values: [NaN], states: Uint8Array.of(1), limits: Float64Array.of(limit) })] });
+    const withYb = (limit: number) =>
+      suiteOf({ columns: [...base, column({ symbol: 'Yb', values: [NaN], states: Uint8Array.of(1), limits: Float64Array.of(limit) })] });
     expect(verdictOf(classify(withYb(1), 'adakite-1990'), 'adakite-1990').symbols[0]).toBe('yes');
     expect(verdictOf(classify(withYb(3), 'adakite-1990'), 'adakite-1990').symbols[0]).toBe('');
   });
@@ -182,7 +236,9 @@ describe('built-in schemes', () => {
 
 describe('classify', () => {
   it('takes a suite that was recast before as it is', () => {
-    const suite = suiteFrom([{ ...rock({}), LOI: 3 }, rock({ SiO2: 61, MgO: 2 })].map((row) => Object.fromEntries(Object.entries(row).map(([k, v]) => [k, v * 0.97]))));
+    const suite = suiteFrom(
+      [{ ...rock({}), LOI: 3 }, rock({ SiO2: 61, MgO: 2 })].map((row) => Object.fromEntries(Object.entries(row).map(([k, v]) => [k, v * 0.97]))),
+    );
     const [one, two] = [suite, volatileFree(suite, { iron: 'measured' })].map((each) => verdictOf(classify(each, 'tas'), 'tas'));
     two.distance.forEach((distance, i) => expect(distance).toBeCloseTo(one.distance[i], 10));
   });
@@ -214,7 +270,26 @@ describe('classify', () => {
   it('every built-in scheme can be listed, and asked of a rock with everything', () => {
     const { schemes: all } = schemes.list();
     expect(all.length).toBeGreaterThan(38);
-    const everything = { ...rock({}), FeO: 4, Fe2O3: 3, Ba: 300, Rb: 20, Sr: 450, Y: 16, Zr: 80, Nb: 3, La: 9, Yb: 1.7, Th: 2, V: 220, Ni: 40, Cr: 80, Ti: 5000, Sc: 30, '87Sr/86Sr': 0.7035 };
+    const everything = {
+      ...rock({}),
+      FeO: 4,
+      Fe2O3: 3,
+      Ba: 300,
+      Rb: 20,
+      Sr: 450,
+      Y: 16,
+      Zr: 80,
+      Nb: 3,
+      La: 9,
+      Yb: 1.7,
+      Th: 2,
+      V: 220,
+      Ni: 40,
+      Cr: 80,
+      Ti: 5000,
+      Sc: 30,
+      '87Sr/86Sr': 0.7035,
+    };
     const verdicts = classify(suiteFrom([everything]), all);
     for (const [key, { field, remarks }] of verdicts.schemes) if (field[0] < 0) expect(remarks[0], key).toMatch(/no recovered boundary|outside/);
     expect(String(schemes.list().toMimeBundle()['text/plain'])).toContain('from memory');

@@ -18,7 +18,11 @@ describe('four arcs, whole', () => {
   for (const [arc, suite] of fourArcs()) {
     it(`${arc}: every row has a verdict or a reason; counts as reviewed`, () => {
       const made = consensus(suite);
-      const counts: Record<string, Record<string, number>> = { names: count(made.names.names), reading: count(made.reading), immobile: count(made.affinity.affinity) };
+      const counts: Record<string, Record<string, number>> = {
+        names: count(made.names.names),
+        reading: count(made.reading),
+        immobile: count(made.affinity.affinity),
+      };
       for (const [key, { symbols, field, remarks }] of made.verdicts.schemes) {
         counts[key] = count(symbols);
         for (let i = 0; i < suite.size; i++) if (field[i] < 0) expect(remarks[i], `${key} row ${i}`).not.toBe('');

@@ -9,7 +9,14 @@ const weight = (cells: Cells, mineral: NormMineral) => norm(suiteFrom([cells])).
 // Rules of Le Maitre et al. 2002 and Le Bas 2000, each with a case on either side of its limit; oxides sum to 100.
 describe('IUGS names, rule by rule', () => {
   it('volatile screen: H2O+ > 2 %, CO2 > 0.5 %', () => {
-    const remarks = nameRocks(suiteFrom([{ ...rock({}), 'H2O+': 2 }, { ...rock({}), 'H2O+': 2.1 }, { ...rock({}), 'H2O+': 1, CO2: 0.6 }, { ...rock({}), 'H2O+': 1, CO2: 0.5 }])).remarks;
+    const remarks = nameRocks(
+      suiteFrom([
+        { ...rock({}), 'H2O+': 2 },
+        { ...rock({}), 'H2O+': 2.1 },
+        { ...rock({}), 'H2O+': 1, CO2: 0.6 },
+        { ...rock({}), 'H2O+': 1, CO2: 0.5 },
+      ]),
+    ).remarks;
     expect(remarks.map((text) => /volatile screen/.test(text))).toEqual([false, true, true, false]);
     const withheld = nameRocks(suiteFrom([{ ...rock({}), 'H2O+': 3 }, rock({})]), { volatiles: 'withhold' });
     expect(withheld.names.map((each) => each === '')).toEqual([true, false]);
@@ -40,9 +47,12 @@ describe('IUGS names, rule by rule', () => {
 
   it('sodic or potassic names of S1–S3: Na2O − 2 ≥ K2O', () => {
     const cases: [Cells, string][] = [
-      [{ SiO2: 48.5, Na2O: 4, K2O: 1.9 }, 'hawaiite'], [{ SiO2: 48.5, Na2O: 3.8, K2O: 1.9 }, 'potassic trachybasalt'],
-      [{ SiO2: 53, Na2O: 4.6, K2O: 2.5 }, 'mugearite'], [{ SiO2: 53, Na2O: 4.4, K2O: 2.5 }, 'shoshonite'],
-      [{ SiO2: 58, Na2O: 5.2, K2O: 3.1 }, 'benmoreite'], [{ SiO2: 58, Na2O: 5, K2O: 3.1 }, 'latite'],
+      [{ SiO2: 48.5, Na2O: 4, K2O: 1.9 }, 'hawaiite'],
+      [{ SiO2: 48.5, Na2O: 3.8, K2O: 1.9 }, 'potassic trachybasalt'],
+      [{ SiO2: 53, Na2O: 4.6, K2O: 2.5 }, 'mugearite'],
+      [{ SiO2: 53, Na2O: 4.4, K2O: 2.5 }, 'shoshonite'],
+      [{ SiO2: 58, Na2O: 5.2, K2O: 3.1 }, 'benmoreite'],
+      [{ SiO2: 58, Na2O: 5, K2O: 3.1 }, 'latite'],
     ];
     for (const [cells, expected] of cases) expect(name(rock(cells))).toBe(expected);
     // The tie goes to the sodic side.
@@ -68,7 +78,8 @@ describe('IUGS names, rule by rule', () => {
 
   it('trachyte or trachydacite by q = 100 Q/(Q + or + ab + an), 20 %', () => {
     const t = (SiO2: number) => rock({ SiO2, Na2O: 4.6, K2O: 4.6, CaO: 1.5, FeOT: 3, MgO: 0.6, TiO2: 0.4 });
-    const q = (cells: Cells) => (100 * weight(cells, 'Q')) / (['Q', 'Or', 'Ab', 'An'] as const).reduce((sum, mineral) => sum + weight(cells, mineral), 0);
+    const q = (cells: Cells) =>
+      (100 * weight(cells, 'Q')) / (['Q', 'Or', 'Ab', 'An'] as const).reduce((sum, mineral) => sum + weight(cells, mineral), 0);
     expect(q(t(64))).toBeLessThan(20);
     expect(name(t(64))).toBe('trachyte');
     expect(q(t(68.5))).toBeGreaterThan(20);
@@ -97,7 +108,11 @@ describe('IUGS names, rule by rule', () => {
 
   it('low-, medium- and high-K prefixes for basaltic andesite to rhyolite only', () => {
     // The lines at 60 % SiO2: 0.84 and 2.34 % K2O.
-    expect(['low', 'medium', 'high'].map((_, k) => name(rock({ SiO2: 60, K2O: [0.5, 1.5, 2.5][k] })))).toEqual(['low-K andesite', 'medium-K andesite', 'high-K andesite']);
+    expect(['low', 'medium', 'high'].map((_, k) => name(rock({ SiO2: 60, K2O: [0.5, 1.5, 2.5][k] })))).toEqual([
+      'low-K andesite',
+      'medium-K andesite',
+      'high-K andesite',
+    ]);
     expect(name(rock({ SiO2: 66, K2O: 1.5, CaO: 4, FeOT: 3, MgO: 1.5 }))).toBe('medium-K dacite');
     expect(name(rock({ SiO2: 53, Na2O: 4.4, K2O: 2.5 }))).not.toMatch(/-K/);
     const far = nameRocks(suiteFrom([rock({ SiO2: 75, K2O: 3, Na2O: 4, CaO: 1, FeOT: 1.5, MgO: 0.3 })]));
@@ -130,12 +145,20 @@ describe('namingChain', () => {
 });
 
 describe('average rocks', () => {
-  const averages: { key: string; inputs: { majors_wt_percent: Cells; traces_ppm?: Cells }; expected: { rock_name: string } }[] = JSON.parse(read('averages.json'));
+  const averages: { key: string; inputs: { majors_wt_percent: Cells; traces_ppm?: Cells }; expected: { rock_name: string } }[] = JSON.parse(
+    read('averages.json'),
+  );
   /** Averages whose rock name is not the name of their TAS field, and why. */
   const exceptions: Record<string, { name: string; why: string }> = {
     'avg-adakite-Drummond1996': { name: 'medium-K dacite', why: 'adakite is no field of TAS: it is told by Sr, Y and Yb' },
-    'avg-nockolds1978-fowler-andesite': { name: 'medium-K basaltic andesite', why: 'the average "andesite" of that book has 54.9 % SiO2; the TAS limit of 57 % is younger' },
-    'avg-lemaitre1976-trachyandesite': { name: 'latite', why: 'trachyandesite is the name of the field; the rule of its sodic and potassic names makes it a latite' },
+    'avg-nockolds1978-fowler-andesite': {
+      name: 'medium-K basaltic andesite',
+      why: 'the average "andesite" of that book has 54.9 % SiO2; the TAS limit of 57 % is younger',
+    },
+    'avg-lemaitre1976-trachyandesite': {
+      name: 'latite',
+      why: 'trachyandesite is the name of the field; the rule of its sodic and potassic names makes it a latite',
+    },
   };
   for (const { key, inputs, expected } of averages) {
     const exception = exceptions[key];

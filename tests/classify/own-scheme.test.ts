@@ -9,10 +9,38 @@ const folder = mkdtempSync(join(tmpdir(), 'own-scheme-'));
 afterAll(() => rmSync(folder, { recursive: true }));
 
 const own = {
-  key: 'my-zr-ti', title: 'Zr–Ti of the northern lavas', kind: 'polygons', sources: ['our own field report, 2024'], basis: 'as-analysed',
-  axes: [{ expression: 'Zr', title: 'Zr', unit: 'ppm', scale: 'log' }, { expression: 'Ti / 1000', title: 'Ti / 1000', unit: 'ppm' }],
+  key: 'my-zr-ti',
+  title: 'Zr–Ti of the northern lavas',
+  kind: 'polygons',
+  sources: ['our own field report, 2024'],
+  basis: 'as-analysed',
+  axes: [
+    { expression: 'Zr', title: 'Zr', unit: 'ppm', scale: 'log' },
+    { expression: 'Ti / 1000', title: 'Ti / 1000', unit: 'ppm' },
+  ],
   frame: { x: [10, 1000], y: [0, 20] },
-  fields: [{ symbol: 'N', name: 'northern', vertices: [[10, 0], [100, 0], [100, 20], [10, 20]] }, { symbol: 'S', name: 'southern', vertices: [[100, 0], [1000, 0], [1000, 20], [100, 20]] }],
+  fields: [
+    {
+      symbol: 'N',
+      name: 'northern',
+      vertices: [
+        [10, 0],
+        [100, 0],
+        [100, 20],
+        [10, 20],
+      ],
+    },
+    {
+      symbol: 'S',
+      name: 'southern',
+      vertices: [
+        [100, 0],
+        [1000, 0],
+        [1000, 20],
+        [100, 20],
+      ],
+    },
+  ],
   standing: 'checked once',
 };
 let files = 0;
@@ -27,7 +55,13 @@ describe('a scheme of one’s own', () => {
   it('is asked, listed, sampled, explained and drawn like any other', () => {
     const scheme = schemes.load(write(own));
     expect(schemes.list().schemes.map(({ key }) => key)).toContain('my-zr-ti');
-    const suite = suiteFrom([{ ...rock({}), Zr: 90, Ti: 5000 }, { ...rock({}), Zr: 150, Ti: 9000 }], { sigma: { Zr: 10 } });
+    const suite = suiteFrom(
+      [
+        { ...rock({}), Zr: 90, Ti: 5000 },
+        { ...rock({}), Zr: 150, Ti: 9000 },
+      ],
+      { sigma: { Zr: 10 } },
+    );
     const verdicts = classify(suite, ['my-zr-ti', 'tas']);
     const { symbols, probability, distance } = verdictOf(verdicts, 'my-zr-ti');
     expect(symbols).toEqual(['N', 'S']);
@@ -50,13 +84,110 @@ describe('a scheme of one’s own', () => {
     expect(() => load({ plane: 'ternary' })).toThrow(/three axes/);
     expect(() => load({ frame: undefined })).toThrow(/needs a frame/);
     expect(() => load({ fields: [own.fields[0], { ...own.fields[1], symbol: 'N' }] })).toThrow(/"N" is used twice/);
-    expect(() => load({ fields: [own.fields[0], { ...own.fields[1], vertices: [[50, 0], [1000, 0], [1000, 20], [50, 20]] }] })).toThrow(/"N" and "S" overlap/);
-    expect(() => load({ fields: [{ ...own.fields[0], vertices: [[10, 0], [100, 0], [10, 0]] }] })).toThrow(/no area/);
-    expect(() => load({ fields: [{ ...own.fields[0], vertices: [[1, 0], [100, 0], [100, 20]] }] })).toThrow(/outside the frame/);
-    expect(() => load({ kind: 'lines', lines: [{ name: 'one', points: [[10, 5], [1000, 8]] }], fields: [{ symbol: 'a', name: 'a' }] })).toThrow(/one field more than lines/);
-    expect(() => load({ kind: 'lines', axes: [{ ...own.axes[0], scale: 'linear' }, own.axes[1]], lines: [{ name: 'one', points: [[10, 5], [1000, 8]] }, { name: 'two', points: [[10, 3], [1000, 9]] }], fields: ['a', 'b', 'c'].map((symbol) => ({ symbol, name: symbol })) })).toThrow(/lies below the one before/);
-    expect(() => load({ kind: 'lines', lines: [{ name: 'one', points: [[10, 5], [1000, 8]] }], fields: ['a', 'b'].map((symbol) => ({ symbol, name: symbol })) })).toThrow(/log/);
+    expect(() =>
+      load({
+        fields: [
+          own.fields[0],
+          {
+            ...own.fields[1],
+            vertices: [
+              [50, 0],
+              [1000, 0],
+              [1000, 20],
+              [50, 20],
+            ],
+          },
+        ],
+      }),
+    ).toThrow(/"N" and "S" overlap/);
+    expect(() =>
+      load({
+        fields: [
+          {
+            ...own.fields[0],
+            vertices: [
+              [10, 0],
+              [100, 0],
+              [10, 0],
+            ],
+          },
+        ],
+      }),
+    ).toThrow(/no area/);
+    expect(() =>
+      load({
+        fields: [
+          {
+            ...own.fields[0],
+            vertices: [
+              [1, 0],
+              [100, 0],
+              [100, 20],
+            ],
+          },
+        ],
+      }),
+    ).toThrow(/outside the frame/);
+    expect(() =>
+      load({
+        kind: 'lines',
+        lines: [
+          {
+            name: 'one',
+            points: [
+              [10, 5],
+              [1000, 8],
+            ],
+          },
+        ],
+        fields: [{ symbol: 'a', name: 'a' }],
+      }),
+    ).toThrow(/one field more than lines/);
+    expect(() =>
+      load({
+        kind: 'lines',
+        axes: [{ ...own.axes[0], scale: 'linear' }, own.axes[1]],
+        lines: [
+          {
+            name: 'one',
+            points: [
+              [10, 5],
+              [1000, 8],
+            ],
+          },
+          {
+            name: 'two',
+            points: [
+              [10, 3],
+              [1000, 9],
+            ],
+          },
+        ],
+        fields: ['a', 'b', 'c'].map((symbol) => ({ symbol, name: symbol })),
+      }),
+    ).toThrow(/lies below the one before/);
+    expect(() =>
+      load({
+        kind: 'lines',
+        lines: [
+          {
+            name: 'one',
+            points: [
+              [10, 5],
+              [1000, 8],
+            ],
+          },
+        ],
+        fields: ['a', 'b'].map((symbol) => ({ symbol, name: symbol })),
+      }),
+    ).toThrow(/log/);
     expect(() => load({ kind: 'thresholds', bounds: [2, 1], fields: ['a', 'b', 'c'].map((symbol) => ({ symbol, name: symbol })) })).toThrow(/ascend/);
-    expect(() => load({ kind: 'criteria', criteria: [{ expression: 'Sr', is: 'between', value: 3 }], fields: ['a', 'b'].map((symbol) => ({ symbol, name: symbol })) })).toThrow(/takes \[low, high\]/);
+    expect(() =>
+      load({
+        kind: 'criteria',
+        criteria: [{ expression: 'Sr', is: 'between', value: 3 }],
+        fields: ['a', 'b'].map((symbol) => ({ symbol, name: symbol })),
+      }),
+    ).toThrow(/takes \[low, high\]/);
   });
 });

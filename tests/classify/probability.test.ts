@@ -10,9 +10,17 @@ const keys = ['tas', 'potassium-silica-1976', 'iron-enrichment', 'afm', 'alkalin
 /** Rocks strewn over the silica range, close to boundaries of one scheme or another. */
 function strewn(count: number, seed: number): Cells[] {
   const { uniform } = seededRandom(seed, 'test');
-  return Array.from({ length: count }, () => rock({
-    SiO2: 47 + 26 * uniform(), TiO2: 0.3 + uniform(), FeOT: 3 + 6 * uniform(), MgO: 1 + 5 * uniform(), CaO: 3 + 5 * uniform(), Na2O: 2 + 3 * uniform(), K2O: 0.3 + 3 * uniform(),
-  }));
+  return Array.from({ length: count }, () =>
+    rock({
+      SiO2: 47 + 26 * uniform(),
+      TiO2: 0.3 + uniform(),
+      FeOT: 3 + 6 * uniform(),
+      MgO: 1 + 5 * uniform(),
+      CaO: 3 + 5 * uniform(),
+      Na2O: 2 + 3 * uniform(),
+      K2O: 0.3 + 3 * uniform(),
+    }),
+  );
 }
 
 const sigma = { SiO2: 0.5, TiO2: 0.02, Al2O3: 0.2, FeOT: 0.15, MgO: 0.1, CaO: 0.1, Na2O: 0.12, K2O: 0.06, P2O5: 0.02, MnO: 0.01 };
@@ -20,21 +28,37 @@ const sigma = { SiO2: 0.5, TiO2: 0.02, Al2O3: 0.2, FeOT: 0.15, MgO: 0.1, CaO: 0.
 describe('gaussian', () => {
   it('normal distribution function', () => {
     // Abramowitz & Stegun, table 26.1
-    for (const [x, p] of [[0, 0.5], [1, 0.841344746068543], [1.96, 0.975002104851780], [-2, 0.0227501319481792], [3, 0.998650101968370]]) expect(normalBelow(x)).toBeCloseTo(p, 13);
+    for (const [x, p] of [
+      [0, 0.5],
+      [1, 0.841344746068543],
+      [1.96, 0.97500210485178],
+      [-2, 0.0227501319481792],
+      [3, 0.99865010196837],
+    ])
+      expect(normalBelow(x)).toBeCloseTo(p, 13);
     expect(normalBelow(-9)).toBeGreaterThan(0);
     expect([normalBelow(40), normalBelow(-40)]).toEqual([1, 0]);
   });
 
   it("Owen's function", () => {
     // Test values of Patefield & Tandy 2000 (Journal of Statistical Software 5), from memory
-    for (const [h, a, value] of [[0.0625, 0.25, 3.8911930234701366e-2], [2, 0.5, 8.6250779855215071e-3], [1, 0.9999975, 6.6741808978228592e-2], [4.78125, 0.0625, 1.0632974804687463e-7]]) {
+    for (const [h, a, value] of [
+      [0.0625, 0.25, 3.8911930234701366e-2],
+      [2, 0.5, 8.6250779855215071e-3],
+      [1, 0.9999975, 6.6741808978228592e-2],
+      [4.78125, 0.0625, 1.0632974804687463e-7],
+    ]) {
       expect(owenT(h, a)).toBeCloseTo(value, 11);
     }
     // T(h, 1) = Φ(h)(1 − Φ(h))/2 and T(0, a) = atan(a)/2π (Owen 1956)
     for (const h of [0.1, 0.7, 1.5, 3]) expect(owenT(h, 1)).toBeCloseTo((normalBelow(h) * (1 - normalBelow(h))) / 2, 11);
     for (const a of [-3, 0.2, 5]) expect(owenT(0, a)).toBeCloseTo(Math.atan(a) / (2 * Math.PI), 11);
     // Beyond a = 1 it is found by a transformation: against the trapezium rule on the definition.
-    for (const [h, a] of [[0.8, 2], [0.3, 5], [2, 3]]) {
+    for (const [h, a] of [
+      [0.8, 2],
+      [0.3, 5],
+      [2, 3],
+    ]) {
       const steps = 20000;
       let sum = 0;
       for (let i = 0; i <= steps; i++) {
@@ -47,7 +71,26 @@ describe('gaussian', () => {
 
   it('mass of half planes, quadrants and rectangles of a correlated normal', () => {
     const big = 1e4;
-    const fields = [[[0, -big], [big, -big], [big, big], [0, big]], [[0, 0], [big, 0], [big, big], [0, big]], [[-1, -2], [1.5, -2], [1.5, 0.5], [-1, 0.5]]] as [number, number][][];
+    const fields = [
+      [
+        [0, -big],
+        [big, -big],
+        [big, big],
+        [0, big],
+      ],
+      [
+        [0, 0],
+        [big, 0],
+        [big, big],
+        [0, big],
+      ],
+      [
+        [-1, -2],
+        [1.5, -2],
+        [1.5, 0.5],
+        [-1, 0.5],
+      ],
+    ] as [number, number][][];
     const flat = flattenFields(fields.map((vertices) => outlineEdges(vertices, () => true)));
     const out = new Float64Array(3);
     for (const rho of [-0.9, 0, 0.5, 0.99]) {
@@ -96,9 +139,7 @@ describe('probabilities', () => {
   });
 
   it('are 50/50 on a boundary with symmetric errors', () => {
-    const on = suiteOf({ columns: [
-      column({ symbol: 'Zr', values: [28], sigma: [0] }), column({ symbol: 'Y', values: [10], sigma: [0.01] }),
-    ] });
+    const on = suiteOf({ columns: [column({ symbol: 'Zr', values: [28], sigma: [0] }), column({ symbol: 'Y', values: [10], sigma: [0.01] })] });
     const { values } = verdictOf(classify(on, 'affinity-zr-y'), 'affinity-zr-y').probability!;
     expect(values[0][0]).toBeCloseTo(0.5, 9);
     expect(values[1][0]).toBeCloseTo(0.5, 9);
@@ -141,7 +182,12 @@ describe('probabilities', () => {
     });
     const real = verdictOf(classify(truth, 'tas'), 'tas').field;
     const { field, probability } = verdictOf(classify(perturbed, 'tas'), 'tas');
-    for (const [low, high] of [[0.55, 0.65], [0.65, 0.75], [0.75, 0.85], [0.85, 0.95]]) {
+    for (const [low, high] of [
+      [0.55, 0.65],
+      [0.65, 0.75],
+      [0.75, 0.85],
+      [0.85, 0.95],
+    ]) {
       let [claims, right, claimed] = [0, 0, 0];
       field.forEach((k, i) => {
         const share = k < 0 ? NaN : probability!.values[k][i];
@@ -176,7 +222,9 @@ describe('probabilities', () => {
 
   it('the same seed gives the same numbers, another seed others', () => {
     const few = suiteFrom(strewn(5, 2), { sigma });
-    const run = (seed: number) => [...verdictOf(classify(few, 'potassium-silica', { probability: 'sampled', draws: 500, seed }), 'potassium-silica').probability!.values[1]];
+    const run = (seed: number) => [
+      ...verdictOf(classify(few, 'potassium-silica', { probability: 'sampled', draws: 500, seed }), 'potassium-silica').probability!.values[1],
+    ];
     expect(run(3)).toEqual(run(3));
     expect(run(3)).not.toEqual(run(4));
   });

@@ -6,9 +6,15 @@ import { classify, column, suiteOf, verdictOf, type Suite } from 'wedgework';
 
 // 95 published analyses of arc lavas (GEOROC compilation, see tests/data/README.md), each with its TAS field, potassium series and FeO*/MgO
 // answers computed independently of this library from the published lines.
-const rows = Papa.parse<Record<string, string>>(readFileSync(join(__dirname, '../data/classify/published-analyses.csv'), 'utf8'), { header: true, skipEmptyLines: true }).data;
+const rows = Papa.parse<Record<string, string>>(readFileSync(join(__dirname, '../data/classify/published-analyses.csv'), 'utf8'), {
+  header: true,
+  skipEmptyLines: true,
+}).data;
 
-const analytes = Object.keys(rows[0]).slice(5, Object.keys(rows[0]).findIndex((name) => name.startsWith('expect')));
+const analytes = Object.keys(rows[0]).slice(
+  5,
+  Object.keys(rows[0]).findIndex((name) => name.startsWith('expect')),
+);
 const suite: Suite = suiteOf({
   columns: analytes.map((symbol) => column({ symbol, values: rows.map((row) => (row[symbol] === '' ? NaN : Number(row[symbol]))) })),
   labels: { sample: rows.map((row) => row.key) },
@@ -33,7 +39,12 @@ describe('95 published analyses', () => {
 
   it('belong to the potassium series computed independently', () => {
     expect(verdictOf(verdicts, 'potassium-silica').names).toEqual(expected('K_series_IUGS_LeMaitre'));
-    const short: Record<string, string> = { IAT: 'tholeiite (low-K)', CA: 'calc-alkaline (medium-K)', HKCA: 'high-K calc-alkaline', SHO: 'shoshonitic' };
+    const short: Record<string, string> = {
+      IAT: 'tholeiite (low-K)',
+      CA: 'calc-alkaline (medium-K)',
+      HKCA: 'high-K calc-alkaline',
+      SHO: 'shoshonitic',
+    };
     const found = verdictOf(verdicts, 'potassium-silica-1976').symbols.map((symbol) => short[symbol]);
     const odd = rows.findIndex(({ key }) => key === 'cls-ascension-weaver-AI-157');
     // One row: its other answers are on total iron as FeO (SiO2 48.36, K2O 1.673, the shoshonite line at 1.763), but its potassium series

@@ -16,7 +16,10 @@ describe('the diagram of every scheme, from its file alone', () => {
       const texts = JSON.stringify(spec);
       if (scheme.plane === 'rectangular') {
         const titles = axisTitles(panel);
-        for (const [side, axis] of [['x', scheme.axes[0]], ['y', scheme.axes[1]]] as const) {
+        for (const [side, axis] of [
+          ['x', scheme.axes[0]],
+          ['y', scheme.axes[1]],
+        ] as const) {
           // Figures that the shipped font lacks are drawn as it can (N in place of ₙ), so only letters and digits are compared.
           const plain = (text: string) => text.replace(/[^A-Za-z]/g, '');
           expect(plain(titles[side])).toContain(plain(axis.title).slice(0, 6));
@@ -56,13 +59,19 @@ describe('how sure, on a diagram', () => {
 
   it('bars hold the probabilities of each sample', () => {
     const { spec } = diagrams.probabilityBars(suite, 'tas', { uncertainty });
-    const rows = unitsOf(panelsOf(spec as Spec)[0]).flatMap(rowsOf).filter(({ g }) => g !== undefined);
+    const rows = unitsOf(panelsOf(spec as Spec)[0])
+      .flatMap(rowsOf)
+      .filter(({ g }) => g !== undefined);
     const sums = new Map<string, number>();
     for (const { s, p } of rows) sums.set(s, (sums.get(s) ?? 0) + p);
     for (const sum of sums.values()) expect(sum).toBeCloseTo(100, 0);
     expect(sums.size).toBe(25);
     const [first] = suite.samples;
-    expect(unitsOf(panelsOf(diagrams.probabilityBars(suite, 'tas', { uncertainty, samples: [first] }).spec as Spec)[0]).flatMap(rowsOf).every(({ s }) => s === undefined || s === first)).toBe(true);
+    expect(
+      unitsOf(panelsOf(diagrams.probabilityBars(suite, 'tas', { uncertainty, samples: [first] }).spec as Spec)[0])
+        .flatMap(rowsOf)
+        .every(({ s }) => s === undefined || s === first),
+    ).toBe(true);
   });
 
   it('says what is lacking', () => {

@@ -14,9 +14,16 @@ function trend(rise: number, count = 20): Cells[] {
 
 describe('suiteTrend', () => {
   it('reads the series from the slope against 6.4 % SiO2 for one unit of FeO*/MgO (Miyashiro 1974)', () => {
-    const suite = suiteFrom([...trend(3), ...trend(9), ...trend(6.4), ...trend(9, 4)], { labels: { volcano: [...Array(20).fill('low'), ...Array(20).fill('high'), ...Array(20).fill('even'), ...Array(4).fill('few')] } });
+    const suite = suiteFrom([...trend(3), ...trend(9), ...trend(6.4), ...trend(9, 4)], {
+      labels: { volcano: [...Array(20).fill('low'), ...Array(20).fill('high'), ...Array(20).fill('even'), ...Array(4).fill('few')] },
+    });
     const { groups, lineage } = suiteTrend(suite, { group: 'volcano' });
-    expect(groups.map(({ group, series }) => [group, series])).toEqual([['low', 'tholeiitic'], ['high', 'calc-alkalic'], ['even', 'not decided'], ['few', 'not decided']]);
+    expect(groups.map(({ group, series }) => [group, series])).toEqual([
+      ['low', 'tholeiitic'],
+      ['high', 'calc-alkalic'],
+      ['even', 'not decided'],
+      ['few', 'not decided'],
+    ]);
     expect(groups[0].slope.value).toBeCloseTo(3, 0);
     expect(groups[1].slope.value).toBeCloseTo(9, 0);
     expect(groups[0].steeper).toBe(0);
@@ -42,9 +49,15 @@ describe('suiteTrend', () => {
 
 describe('immobileAffinity', () => {
   it('needs two ratios of three, and calls disagreement transitional (Ross & Bédard 2009)', () => {
-    const { affinity, because } = immobileAffinity(suiteFrom([
-      { Zr: 20, Y: 10, La: 2, Yb: 1, Th: 0.3 }, { Zr: 50, Y: 10, La: 6, Yb: 1, Th: 0.9 }, { Zr: 20, Y: 10, La: 6, Yb: 1, Th: 0.9 }, { Zr: 20, Y: 10, La: 2, Yb: 1 }, { Zr: 20, Y: 10 },
-    ]));
+    const { affinity, because } = immobileAffinity(
+      suiteFrom([
+        { Zr: 20, Y: 10, La: 2, Yb: 1, Th: 0.3 },
+        { Zr: 50, Y: 10, La: 6, Yb: 1, Th: 0.9 },
+        { Zr: 20, Y: 10, La: 6, Yb: 1, Th: 0.9 },
+        { Zr: 20, Y: 10, La: 2, Yb: 1 },
+        { Zr: 20, Y: 10 },
+      ]),
+    );
     expect(affinity).toEqual(['tholeiitic', 'calc-alkaline', 'transitional', 'tholeiitic', '']);
     expect(because[4]).toMatch(/fewer than two ratios: Zr\/Y tholeiitic, La\/Yb needs La, Yb/);
   });
@@ -65,9 +78,13 @@ describe('arcMagmaKinds', () => {
   });
 
   it('high-Mg andesites, boninites, the shoshonite association', () => {
-    const { kinds } = arcMagmaKinds(suiteFrom([
-      rock({ SiO2: 58, MgO: 7, FeOT: 6, CaO: 7 }), rock({ SiO2: 54, MgO: 10, TiO2: 0.3 }), rock({ SiO2: 54, Na2O: 3.2, K2O: 3.2, TiO2: 0.8, CaO: 8, MgO: 5, FeOT: 8 }),
-    ]));
+    const { kinds } = arcMagmaKinds(
+      suiteFrom([
+        rock({ SiO2: 58, MgO: 7, FeOT: 6, CaO: 7 }),
+        rock({ SiO2: 54, MgO: 10, TiO2: 0.3 }),
+        rock({ SiO2: 54, Na2O: 3.2, K2O: 3.2, TiO2: 0.8, CaO: 8, MgO: 5, FeOT: 8 }),
+      ]),
+    );
     expect(kinds[0]).toBe('high-Mg andesite; high-Mg-number andesite; primitive andesite');
     expect(kinds[1]).toContain('boninite');
     expect(kinds[2]).toContain('shoshonite association');
@@ -107,6 +124,21 @@ describe('consensus', () => {
     expect(made.verdicts.schemes.get('alkalinity-nb-y')!.symbols[1]).toBe('S');
   });
 
+  it('reads the reasons of a flag: elements that are named, or every mobile one', () => {
+    const flags = ['Na2O 0.6 below 1', 'LOI 4 above 2.5', 'Na2O 0.6 below 1; LOI 4 above 2.5', 'CaO 0.5 below 1'];
+    const { because } = consensus(
+      suiteFrom(
+        flags.map(() => tholeiite),
+        { labels: { alteration: flags } },
+      ),
+    );
+    expect(because[0]).toMatch(/AFM \(Na2O moved\)/);
+    expect(because[0]).not.toMatch(/K2O moved/);
+    expect(because[1]).toMatch(/AFM \(Na2O, K2O moved\)/);
+    expect(because[2]).toMatch(/AFM \(Na2O, K2O moved\)/);
+    expect(because[3]).toMatch(/flagged as altered \(CaO 0.5 below 1\)\.$/);
+  });
+
   it('an alkaline rock is not asked for the subalkaline series', () => {
     const made = consensus(suiteFrom([rock({ SiO2: 46, Na2O: 4.5, K2O: 2, CaO: 9 })]));
     expect(made.reading[0]).toBe('alkaline');
@@ -115,7 +147,10 @@ describe('consensus', () => {
 });
 
 describe('explain', () => {
-  const suite = suiteFrom([{ ...rock({ SiO2: 57.1, Na2O: 2.5, K2O: 0.5 }), LOI: 2 }], { labels: { sample: ['KE-12'] }, sigma: { SiO2: 0.4, K2O: 0.03 } });
+  const suite = suiteFrom([{ ...rock({ SiO2: 57.1, Na2O: 2.5, K2O: 0.5 }), LOI: 2 }], {
+    labels: { sample: ['KE-12'] },
+    sigma: { SiO2: 0.4, K2O: 0.03 },
+  });
 
   it('goes from cell to verdict', () => {
     const { steps, sample } = explain(classify(suite, ['tas', 'adakite-1990']), 'KE-12');

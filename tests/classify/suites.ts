@@ -30,9 +30,11 @@ export function fourArcs(): ReadonlyMap<string, Suite> {
   const rows = Papa.parse<Record<string, string>>(read('four-arcs.csv'), { header: true, skipEmptyLines: true }).data;
   const arcs = new Map<string, Record<string, string>[]>();
   for (const row of rows) (arcs.get(row.arc) ?? arcs.set(row.arc, []).get(row.arc)!).push(row);
-  return new Map([...arcs].map(([arc, own]) => {
-    const symbols = Object.keys(own[0]).filter((name) => name !== 'arc' && name !== 'sample');
-    const columns = symbols.map((symbol) => column({ symbol, values: own.map((row) => (row[symbol] === '' ? NaN : Number(row[symbol]))) }));
-    return [arc, suiteOf({ columns, labels: { sample: own.map((row) => row.sample) } })];
-  }));
+  return new Map(
+    [...arcs].map(([arc, own]) => {
+      const symbols = Object.keys(own[0]).filter((name) => name !== 'arc' && name !== 'sample');
+      const columns = symbols.map((symbol) => column({ symbol, values: own.map((row) => (row[symbol] === '' ? NaN : Number(row[symbol]))) }));
+      return [arc, suiteOf({ columns, labels: { sample: own.map((row) => row.sample) } })];
+    }),
+  );
 }

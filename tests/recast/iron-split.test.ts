@@ -4,12 +4,17 @@ import { describe, expect, it } from 'vitest';
 import { bufferFugacity, column, splitIron, suiteOf, type IronSplitOptions, type OxygenBuffer, type Suite } from 'wedgework';
 
 const read = (file: string) => JSON.parse(readFileSync(join(__dirname, '../data', file), 'utf8'));
-const [melt, ratios] = ['redox-kress-carmichael-1991', 'redox-lemaitre-middlemost'].map((key) => read('recast/iron.json').find((each: { key: string }) => each.key === key));
+const [melt, ratios] = ['redox-kress-carmichael-1991', 'redox-lemaitre-middlemost'].map((key) =>
+  read('recast/iron.json').find((each: { key: string }) => each.key === key),
+);
 const averages: Record<string, Record<string, number>> = Object.fromEntries(
-  read('classify/averages.json').filter(({ key }: { key: string }) => key.startsWith('avg-lemaitre1976')).map(({ key, inputs }: any) => [key.slice('avg-lemaitre1976-'.length), inputs.majors_wt_percent]),
+  read('classify/averages.json')
+    .filter(({ key }: { key: string }) => key.startsWith('avg-lemaitre1976'))
+    .map(({ key, inputs }: any) => [key.slice('avg-lemaitre1976-'.length), inputs.majors_wt_percent]),
 );
 // Averages of Le Maitre (1976) that the iron cases use besides those of the classification file; from memory.
-const suiteFrom = (majors: Record<string, number>): Suite => suiteOf({ columns: Object.entries(majors).map(([symbol, value]) => column({ symbol, values: [value] })) });
+const suiteFrom = (majors: Record<string, number>): Suite =>
+  suiteOf({ columns: Object.entries(majors).map(([symbol, value]) => column({ symbol, values: [value] })) });
 const split = (majors: Record<string, number>, options: IronSplitOptions) => {
   const made = splitIron(suiteFrom(majors), options);
   return { FeO: made.values('FeO')[0], Fe2O3: made.values('Fe2O3')[0] };
@@ -39,7 +44,12 @@ describe('splitIron', () => {
   it.each(reached)('$rock at $T_C °C, $P_bar bar, $buffer (Kress & Carmichael 1991, computed at 40 digits)', (each: any) => {
     const [name, offset] = each.buffer === 'NNO+1' ? ['NNO', 1] : [each.buffer === 'QFM' ? 'FMQ' : each.buffer, 0];
     expect(bufferFugacity(name as OxygenBuffer, each.T_C, each.P_bar, offset as number)).toBeCloseTo(each.log10fO2, 8);
-    const made = split(averages[each.rock], { method: 'kress-carmichael-1991', temperature: each.T_C, pressure: each.P_bar, oxygen: { buffer: name as OxygenBuffer, offset: offset as number } });
+    const made = split(averages[each.rock], {
+      method: 'kress-carmichael-1991',
+      temperature: each.T_C,
+      pressure: each.P_bar,
+      oxygen: { buffer: name as OxygenBuffer, offset: offset as number },
+    });
     const ferric = (2 * made.Fe2O3) / 159.687;
     // Molar masses differ in the fifth digit, which the equation hands on to the share.
     expect(ferric / (ferric + made.FeO / 71.844)).toBeCloseTo(each.Fe3_over_FeT, 5);
@@ -48,8 +58,12 @@ describe('splitIron', () => {
   it('keeps what was measured and splits the rest by the stated fallback', () => {
     const suite = suiteOf({
       columns: [
-        column({ symbol: 'SiO2', values: [50, 60, 55] }), column({ symbol: 'Na2O', values: [3, 4, 3] }), column({ symbol: 'K2O', values: [1, 2, 1] }),
-        column({ symbol: 'FeO', values: [8, NaN, NaN] }), column({ symbol: 'Fe2O3', values: [2, NaN, NaN] }), column({ symbol: 'FeOT', values: [NaN, 6, NaN] }),
+        column({ symbol: 'SiO2', values: [50, 60, 55] }),
+        column({ symbol: 'Na2O', values: [3, 4, 3] }),
+        column({ symbol: 'K2O', values: [1, 2, 1] }),
+        column({ symbol: 'FeO', values: [8, NaN, NaN] }),
+        column({ symbol: 'Fe2O3', values: [2, NaN, NaN] }),
+        column({ symbol: 'FeOT', values: [NaN, 6, NaN] }),
       ],
     });
     const made = splitIron(suite);
@@ -76,7 +90,9 @@ describe('splitIron', () => {
     expect(() => splitIron(suite, { method: 'fixed' })).toThrow(/needs ratio/);
     expect(() => splitIron(suite, { method: 'middlemost-1989' })).toThrow(/needs fields/);
     expect(() => splitIron(suite, { method: 'kress-carmichael-1991' })).toThrow(/needs temperature/);
-    expect(() => splitIron(suite, { method: 'kress-carmichael-1991', temperature: 1200, oxygen: { buffer: 'QFM' as never } })).toThrow(/needs oxygen/);
+    expect(() => splitIron(suite, { method: 'kress-carmichael-1991', temperature: 1200, oxygen: { buffer: 'QFM' as never } })).toThrow(
+      /needs oxygen/,
+    );
     expect(() => bufferFugacity('NNO', NaN)).toThrow(/must be numbers/);
   });
 });

@@ -19,9 +19,34 @@ const suiteFrom = (cells: Record<string, number>[]): Suite => {
 };
 
 // The molar masses that the independent answers were computed with (written in the notes of each case).
-const molarMasses = { SiO2: 60.0843, TiO2: 79.8658, Al2O3: 101.961276, Fe2O3: 159.6882, FeO: 71.8444, MnO: 70.937445, MgO: 40.3044, CaO: 56.0774, Na2O: 61.97894, K2O: 94.196, P2O5: 141.944522 };
+const molarMasses = {
+  SiO2: 60.0843,
+  TiO2: 79.8658,
+  Al2O3: 101.961276,
+  Fe2O3: 159.6882,
+  FeO: 71.8444,
+  MnO: 70.937445,
+  MgO: 40.3044,
+  CaO: 56.0774,
+  Na2O: 61.97894,
+  K2O: 94.196,
+  P2O5: 141.944522,
+};
 // The rounder masses behind the other answers: they follow from each printed weight and its millimoles (K2O 1.1 and 11.677282 give 94.20 …).
-const rounderMasses = { SiO2: 60.08, TiO2: 79.9, Al2O3: 101.96, Fe2O3: 159.69, FeO: 71.85, MnO: 70.94, MgO: 40.3, CaO: 56.08, Na2O: 61.98, K2O: 94.2, P2O5: 141.94, CO2: 44.01 };
+const rounderMasses = {
+  SiO2: 60.08,
+  TiO2: 79.9,
+  Al2O3: 101.96,
+  Fe2O3: 159.69,
+  FeO: 71.85,
+  MnO: 70.94,
+  MgO: 40.3,
+  CaO: 56.08,
+  Na2O: 61.98,
+  K2O: 94.2,
+  P2O5: 141.94,
+  CO2: 44.01,
+};
 const wt = (majors: Record<string, number>, options: NormOptions = {}) => {
   const made = norm(suiteFrom([majors]), options);
   return (mineral: NormMineral) => made.weights[mineral].values[0];
@@ -33,10 +58,14 @@ describe('CIPW norm against independently computed answers', () => {
 
   for (const { key, inputs, expected } of computed) {
     it(`${key} (rules of Cross et al. 1902 as in Johannsen 1931; 10 printed digits)`, () => {
-      for (const [sum, answers] of [['as-given', expected.norm_as_given_wt], ['volatile-free', expected.norm_recast_100_wt]] as const) {
+      for (const [sum, answers] of [
+        ['as-given', expected.norm_as_given_wt],
+        ['volatile-free', expected.norm_recast_100_wt],
+      ] as const) {
         const made = norm(suiteFrom([inputs.majors_wt_percent!]), { sum, molarMasses });
         // SiO2 60.0843 and the others are themselves rounded to 4–6 decimals.
-        for (const mineral of normMinerals) expect(Math.abs(made.weights[mineral].values[0] - (answers[mineral] ?? 0)), `${sum} ${mineral}`).toBeLessThan(2e-6);
+        for (const mineral of normMinerals)
+          expect(Math.abs(made.weights[mineral].values[0] - (answers[mineral] ?? 0)), `${sum} ${mineral}`).toBeLessThan(2e-6);
       }
       const made = norm(suiteFrom([inputs.majors_wt_percent!]), { molarMasses });
       const parts = { di_wo: 'DiWo', di_en: 'DiEn', di_fs: 'DiFs', hy_en: 'HyEn', hy_fs: 'HyFs', ol_fo: 'OlFo', ol_fa: 'OlFa' } as const;
@@ -51,8 +80,10 @@ describe('CIPW norm against independently computed answers', () => {
   it('norm-ugr-saturated-basalt: weights and millimoles', () => {
     const { inputs, expected } = cases.find(({ key }) => key === 'norm-ugr-saturated-basalt')!;
     const made = norm(suiteFrom([inputs.majors_wt_percent!]), { sum: 'as-given', molarMasses: rounderMasses });
-    for (const [mineral, value] of Object.entries<number>(expected.norm_wt)) expect(made.weights[mineral as NormMineral].values[0]).toBeCloseTo(value, 5);
-    for (const [mineral, value] of Object.entries<number>(expected.millimoles)) expect(1000 * made.moles[mineral as NormMineral].values[0]).toBeCloseTo(value, 4);
+    for (const [mineral, value] of Object.entries<number>(expected.norm_wt))
+      expect(made.weights[mineral as NormMineral].values[0]).toBeCloseTo(value, 5);
+    for (const [mineral, value] of Object.entries<number>(expected.millimoles))
+      expect(1000 * made.moles[mineral as NormMineral].values[0]).toBeCloseTo(value, 4);
   });
 
   it('norm-exercise1-basanite: ilmenite and magnetite of the printed exercise, silica-undersaturated', () => {
@@ -79,16 +110,23 @@ describe('CIPW norm against independently computed answers', () => {
 });
 
 describe('CIPW norm of the averages of Le Maitre (1976)', () => {
-  const averages: { key: string; inputs: { majors_wt_percent: Record<string, number> }; expected: any; computed_independently: any }[] = read('classify/averages.json');
-  for (const { key, inputs, computed_independently: found, expected } of averages.filter((each) => each.computed_independently.norm_as_given_with_calcite !== undefined)) {
+  const averages: { key: string; inputs: { majors_wt_percent: Record<string, number> }; expected: any; computed_independently: any }[] =
+    read('classify/averages.json');
+  for (const { key, inputs, computed_independently: found, expected } of averages.filter(
+    (each) => each.computed_independently.norm_as_given_with_calcite !== undefined,
+  )) {
     it(`${key}: with and without calcite`, () => {
       const withCalcite = wt(inputs.majors_wt_percent, { sum: 'as-given', carbonate: true, molarMasses: rounderMasses });
-      for (const mineral of normMinerals) expect(Math.abs(withCalcite(mineral) - (found.norm_as_given_with_calcite[mineral] ?? 0)), mineral).toBeLessThan(0.02); // made with older molar masses, not stated
+      for (const mineral of normMinerals)
+        expect(Math.abs(withCalcite(mineral) - (found.norm_as_given_with_calcite[mineral] ?? 0)), mineral).toBeLessThan(0.02); // made with older molar masses, not stated
       const without = wt(inputs.majors_wt_percent, { molarMasses });
-      for (const mineral of normMinerals) expect(Math.abs(without(mineral) - (found.norm_volatile_free_100_no_CO2_IUPAC[mineral] ?? 0)), mineral).toBeLessThan(1e-5);
+      for (const mineral of normMinerals)
+        expect(Math.abs(without(mineral) - (found.norm_volatile_free_100_no_CO2_IUPAC[mineral] ?? 0)), mineral).toBeLessThan(1e-5);
       // The norms printed with the averages, cited from memory: they were made with older molar masses.
       for (const [mineral, value] of Object.entries<number>(expected.printed_CIPW_norm_wt_percent ?? {})) {
-        expect(Math.abs(withCalcite(mineral as NormMineral) - value), `printed ${mineral}`).toBeLessThanOrEqual(found.max_abs_difference_to_printed + 0.02);
+        expect(Math.abs(withCalcite(mineral as NormMineral) - value), `printed ${mineral}`).toBeLessThanOrEqual(
+          found.max_abs_difference_to_printed + 0.02,
+        );
       }
     });
   }
@@ -97,10 +135,23 @@ describe('CIPW norm of the averages of Le Maitre (1976)', () => {
 describe('CIPW norm, every branch', () => {
   const base = { SiO2: 60, TiO2: 1, Al2O3: 16, FeO: 4, Fe2O3: 2, MgO: 3, CaO: 6, Na2O: 4, K2O: 2 };
   it.each<[NormMineral, Record<string, number>, NormOptions?]>([
-    ['Q', { SiO2: 65 }], ['C', { Al2O3: 24 }], ['Lc', { SiO2: 40, Na2O: 0.5, K2O: 8 }], ['Ne', { SiO2: 48, Na2O: 7 }], ['Kp', { SiO2: 38, Al2O3: 12, Fe2O3: 4, MgO: 8, CaO: 14, Na2O: 0.5, K2O: 9, TiO2: 0 }],
-    ['Ac', { Na2O: 12 }], ['Ns', { Na2O: 16, Fe2O3: 0.5 }], ['Ks', { K2O: 20, Na2O: 0 }], ['Wo', { CaO: 20, MgO: 0.1, FeO: 0.1, Fe2O3: 0, TiO2: 0, Al2O3: 10 }],
-    ['Ol', { SiO2: 50, MgO: 12 }], ['Cs', { SiO2: 36, CaO: 22, MgO: 10, Na2O: 3, K2O: 1, Al2O3: 10 }], ['Hm', { Fe2O3: 6, FeO: 0 }], ['Tn', { TiO2: 3, FeO: 0.5, Fe2O3: 4, CaO: 12 }],
-    ['Pf', { TiO2: 3, FeO: 0.2, Fe2O3: 4, CaO: 18, SiO2: 38, MgO: 12 }], ['Ru', { TiO2: 3, FeO: 0.2, Fe2O3: 4, CaO: 1, Al2O3: 20 }], ['Ap', { P2O5: 1 }], ['Cc', { CO2: 2 }, { carbonate: true }],
+    ['Q', { SiO2: 65 }],
+    ['C', { Al2O3: 24 }],
+    ['Lc', { SiO2: 40, Na2O: 0.5, K2O: 8 }],
+    ['Ne', { SiO2: 48, Na2O: 7 }],
+    ['Kp', { SiO2: 38, Al2O3: 12, Fe2O3: 4, MgO: 8, CaO: 14, Na2O: 0.5, K2O: 9, TiO2: 0 }],
+    ['Ac', { Na2O: 12 }],
+    ['Ns', { Na2O: 16, Fe2O3: 0.5 }],
+    ['Ks', { K2O: 20, Na2O: 0 }],
+    ['Wo', { CaO: 20, MgO: 0.1, FeO: 0.1, Fe2O3: 0, TiO2: 0, Al2O3: 10 }],
+    ['Ol', { SiO2: 50, MgO: 12 }],
+    ['Cs', { SiO2: 36, CaO: 22, MgO: 10, Na2O: 3, K2O: 1, Al2O3: 10 }],
+    ['Hm', { Fe2O3: 6, FeO: 0 }],
+    ['Tn', { TiO2: 3, FeO: 0.5, Fe2O3: 4, CaO: 12 }],
+    ['Pf', { TiO2: 3, FeO: 0.2, Fe2O3: 4, CaO: 18, SiO2: 38, MgO: 12 }],
+    ['Ru', { TiO2: 3, FeO: 0.2, Fe2O3: 4, CaO: 1, Al2O3: 20 }],
+    ['Ap', { P2O5: 1 }],
+    ['Cc', { CO2: 2 }, { carbonate: true }],
     ['Cm', { Cr2O3: 0.5 }, { traces: true }],
   ])('%s appears where the rules ask for it', (mineral, changes, options = {}) => {
     const made = norm(suiteFrom([{ ...base, ...changes }]), options);
@@ -110,7 +161,13 @@ describe('CIPW norm, every branch', () => {
   });
 
   it('says why there is none', () => {
-    const made = norm(suiteFrom([{ SiO2: 50, Al2O3: 15, MgO: 5, CaO: 9, Na2O: 3, K2O: 1 }, { ...base, K2O: NaN }, { ...base, SiO2: 3 }]));
+    const made = norm(
+      suiteFrom([
+        { SiO2: 50, Al2O3: 15, MgO: 5, CaO: 9, Na2O: 3, K2O: 1 },
+        { ...base, K2O: NaN },
+        { ...base, SiO2: 3 },
+      ]),
+    );
     expect(made.reasons).toEqual(['needs iron', 'needs K2O', 'less silica than the norm can use']);
     expect(made.weights.Q.values[0]).toBeNaN();
   });
@@ -124,8 +181,17 @@ describe('CIPW norm, every branch', () => {
 describe('CIPW norm, invariants', () => {
   const oxide = (low: number, high: number) => fc.double({ min: low, max: high, noNaN: true });
   const rock = fc.record({
-    SiO2: oxide(35, 80), TiO2: oxide(0, 5), Al2O3: oxide(0, 25), FeO: oxide(0, 15), Fe2O3: oxide(0, 10), MnO: oxide(0, 1), MgO: oxide(0, 35), CaO: oxide(0, 20),
-    Na2O: oxide(0, 12), K2O: oxide(0, 10), P2O5: oxide(0, 2),
+    SiO2: oxide(35, 80),
+    TiO2: oxide(0, 5),
+    Al2O3: oxide(0, 25),
+    FeO: oxide(0, 15),
+    Fe2O3: oxide(0, 10),
+    MnO: oxide(0, 1),
+    MgO: oxide(0, 35),
+    CaO: oxide(0, 20),
+    Na2O: oxide(0, 12),
+    K2O: oxide(0, 10),
+    P2O5: oxide(0, 2),
   });
 
   it('minerals sum to the oxides; Q never with Ne, Lc, Kp or Ol; nothing negative; 10,000 random compositions', () => {

@@ -34,9 +34,13 @@ export function shadingLayer(doubt: (points: readonly Point[]) => ArrayLike<numb
       });
       const data = rows.map(({ x, x2, y, y2, q }) => ({ x, x2, y, y2, q }));
       if (data.length === 0) return [];
-      return [unit(frame, { type: 'rect', color: '#6f7f8f', strokeWidth: 0, tooltip: null }, data, {
-        x2: { field: 'x2' }, y2: { field: 'y2' }, opacity: { field: 'q', type: 'quantitative', scale: { domain: [0, 0.5], range: [0, 0.55] }, legend: null },
-      })];
+      return [
+        unit(frame, { type: 'rect', color: '#6f7f8f', strokeWidth: 0, tooltip: null }, data, {
+          x2: { field: 'x2' },
+          y2: { field: 'y2' },
+          opacity: { field: 'q', type: 'quantitative', scale: { domain: [0, 0.5], range: [0, 0.55] }, legend: null },
+        }),
+      ];
     },
   };
 }
