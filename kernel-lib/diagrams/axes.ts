@@ -38,7 +38,12 @@ export function logTicks([low, high]: readonly [number, number], length: number)
 
 /** The `scale` of a position channel. */
 export function scaleSpec(axis: Axis): VegaSpec {
-  return { domain: [...axis.window], nice: false, ...(axis.scale === 'log' ? { type: 'log' } : { zero: false }), ...(axis.reversed === true ? { reverse: true } : {}) };
+  return {
+    domain: [...axis.window],
+    nice: false,
+    ...(axis.scale === 'log' ? { type: 'log' } : { zero: false }),
+    ...(axis.reversed === true ? { reverse: true } : {}),
+  };
 }
 
 /** The `axis` of a position channel, or null. */
@@ -49,8 +54,13 @@ export function axisSpec(axis: Axis, length: number, side: 'x' | 'y'): VegaSpec 
   const common = { title, titleAnchor: 'middle', labelFlush: false, grid: axis.grid === true, gridColor: '#ececec' };
   if (axis.names !== undefined) {
     return {
-      ...common, values: axis.names.map((_, i) => i), labelExpr: `${JSON.stringify(axis.names)}[datum.value]`, labelAngle: 0, labelOverlap: false,
-      ticks: side === 'x', tickSize: 4,
+      ...common,
+      values: axis.names.map((_, i) => i),
+      labelExpr: `${JSON.stringify(axis.names)}[datum.value]`,
+      labelAngle: 0,
+      labelOverlap: false,
+      ticks: side === 'x',
+      tickSize: 4,
     };
   }
   if (axis.ticks !== undefined && axis.tickNames !== undefined) {
@@ -63,7 +73,10 @@ export function axisSpec(axis: Axis, length: number, side: 'x' | 'y'): VegaSpec 
   const labels = Object.fromEntries(labelled.map((value) => [String(value), decadeText(value)]));
   const carries = `indexof([${labelled.join(', ')}], datum.value) >= 0`;
   return {
-    ...common, values: [...all], labelExpr: `${JSON.stringify(labels)}[toString(datum.value)] || ''`, labelOverlap: false,
+    ...common,
+    values: [...all],
+    labelExpr: `${JSON.stringify(labels)}[toString(datum.value)] || ''`,
+    labelOverlap: false,
     tickSize: { condition: { test: carries, value: 6 }, value: 3 },
   };
 }
@@ -86,4 +99,3 @@ export function positionChannels(frame: Frame): { x: VegaSpec; y: VegaSpec } {
     y: { field: 'y', type: 'quantitative', scale: scaleSpec(frame.y), axis: axisSpec(frame.y, frame.height, 'y') },
   };
 }
-

@@ -9,7 +9,13 @@ const raised = (digits: string) => digits.replace(/\d/g, (digit) => superscripts
 const normalisedMark = 'ɴ';
 
 const spelled: Readonly<Record<string, string>> = {
-  FeOT: 'FeO*', Fe2O3T: 'Fe₂O₃*', 'H2O+': 'H₂O⁺', 'H2O-': 'H₂O⁻', 'epsilon-Nd': 'εNd', 'epsilon-Hf': 'εHf', 'epsilon-Sr': 'εSr',
+  FeOT: 'FeO*',
+  Fe2O3T: 'Fe₂O₃*',
+  'H2O+': 'H₂O⁺',
+  'H2O-': 'H₂O⁻',
+  'epsilon-Nd': 'εNd',
+  'epsilon-Hf': 'εHf',
+  'epsilon-Sr': 'εSr',
 };
 
 /** A symbol as print sets it: `Al2O3` → Al₂O₃, `FeOT` → FeO*, `87Sr/86Sr` → ⁸⁷Sr/⁸⁶Sr; a text that is no formula stays as it is. */
@@ -37,7 +43,9 @@ export function expressionText(expression: string): string {
     .trim()
     .replace(/\[([^\]]+)\]/g, (_, name: string) => keep(symbolText(name)))
     .replace(/\b(FeO|Fe2O3)\*(?=\s*(?:[-+*/^),]|$))/g, (_, oxide: string) => keep(`${symbolText(oxide)}*`))
-    .replace(/([A-Z][a-z]?)_?N(?![A-Za-z0-9_])/g, (whole, element: string) => (findAnalyte(whole) === undefined && findAnalyte(element) !== undefined ? keep(element + normalisedMark) : whole))
+    .replace(/([A-Z][a-z]?)_?N(?![A-Za-z0-9_])/g, (whole, element: string) =>
+      findAnalyte(whole) === undefined && findAnalyte(element) !== undefined ? keep(element + normalisedMark) : whole,
+    )
     .replace(/\)_?N(?![A-Za-z0-9_])/g, () => `)${keep(normalisedMark)}`)
     .replace(symbolPattern, (symbol) => keep(symbolText(symbol)))
     .replace(/\blog10\b/g, 'log₁₀')

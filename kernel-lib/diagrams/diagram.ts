@@ -47,13 +47,18 @@ export function diagramOf(parts: Pick<Diagram, 'name' | 'spec' | 'lineage' | 'co
   const hidden = {
     svg: draw,
     async png({ scale = 2 }: { scale?: number } = {}): Promise<Uint8Array> {
-      if (!(typeof scale === 'number' && scale > 0 && scale <= 10)) throw new RangeError(`png: scale must be a number above 0 and up to 10, not ${String(scale)}.`);
+      if (!(typeof scale === 'number' && scale > 0 && scale <= 10))
+        throw new RangeError(`png: scale must be a number above 0 and up to 10, not ${String(scale)}.`);
       return scale === 2 ? (await paint()).bytes : renderPng(await draw(), scale).bytes;
     },
     async toMimeBundle(): Promise<MimeBundle> {
       const { bytes } = await paint();
       const small = JSON.stringify(parts.spec).length <= mostSpecBytes;
-      return { ...(small ? { [vegaLiteType]: parts.spec } : {}), 'image/png': Buffer.from(bytes).toString('base64'), 'text/plain': parts.description };
+      return {
+        ...(small ? { [vegaLiteType]: parts.spec } : {}),
+        'image/png': Buffer.from(bytes).toString('base64'),
+        'text/plain': parts.description,
+      };
     },
   };
   const diagram = { ...parts };

@@ -48,15 +48,32 @@ export function figure(parts: FigureParts): Diagram {
   const views = parts.panels.map((panel, i) => panelView(panel, i, i === 0 ? parts.title : undefined));
   const widest = Math.max(...parts.panels.map(({ frame }) => frame.width));
   const width = columns * widest + (columns - 1) * 60 + 55 + (parts.legendWidth ?? 0);
-  const sentences = [...parts.caption, ...(parts.counts === undefined || parts.showCounts === false ? [] : [countsText(parts.counts, parts.counted)])].filter((text) => text !== '');
+  const sentences = [
+    ...parts.caption,
+    ...(parts.counts === undefined || parts.showCounts === false ? [] : [countsText(parts.counts, parts.counted)]),
+  ].filter((text) => text !== '');
   const lines = wrapText(sentences.join(' '), Math.max(width, 380), { size: textSize.caption });
-  const description = `${[parts.title, parts.name].filter(Boolean).join(' – ')}${parts.counts === undefined ? '' : `: ${countsText(parts.counts, parts.counted)}`}`;
-  const title = lines.length === 0 ? {} : {
-    title: {
-      text: lines, orient: 'bottom', anchor: 'start', frame: 'bounds', offset: 12, align: 'left', color: ink.caption, font: fontStack,
-      fontSize: textSize.caption, fontWeight: 'normal', lineHeight: textSize.caption * 1.3, limit: 4000,
-    },
-  };
+  const called = [parts.title, parts.name].filter(Boolean).join(' – ');
+  const description = parts.counts === undefined ? called : `${called}: ${countsText(parts.counts, parts.counted)}`;
+  const title =
+    lines.length === 0
+      ? {}
+      : {
+          title: {
+            text: lines,
+            orient: 'bottom',
+            anchor: 'start',
+            frame: 'bounds',
+            offset: 12,
+            align: 'left',
+            color: ink.caption,
+            font: fontStack,
+            fontSize: textSize.caption,
+            fontWeight: 'normal',
+            lineHeight: textSize.caption * 1.3,
+            limit: 4000,
+          },
+        };
   const single = views.length === 1;
   const spec: VegaSpec = {
     $schema: 'https://vega.github.io/schema/vega-lite/v5.json',
@@ -91,7 +108,20 @@ function panelView(panel: Panel, number: number, title: string | undefined): Veg
 function headUnit(text: string, y: number, fontSize: number): VegaSpec {
   return {
     data: { values: [{}] },
-    mark: { type: 'text', text, x: 0, y, align: 'left', baseline: 'bottom', font: fontStack, fontSize, fontWeight: 600, color: ink.text, clip: false, tooltip: null },
+    mark: {
+      type: 'text',
+      text,
+      x: 0,
+      y,
+      align: 'left',
+      baseline: 'bottom',
+      font: fontStack,
+      fontSize,
+      fontWeight: 600,
+      color: ink.text,
+      clip: false,
+      tooltip: null,
+    },
   };
 }
 
@@ -102,7 +132,9 @@ export function countText(count: number): string {
 
 /** `120 samples plotted; 3 not plotted (2 no K₂O, 1 below detection).` */
 export function countsText({ plotted, notPlotted, reasons }: DiagramCounts, counted = 'sample'): string {
-  const whys = Object.entries(reasons).filter(([, count]) => count > 0).map(([reason, count]) => `${countText(count)} ${reason}`);
+  const whys = Object.entries(reasons)
+    .filter(([, count]) => count > 0)
+    .map(([reason, count]) => `${countText(count)} ${reason}`);
   const left = notPlotted === 0 ? '' : `; ${countText(notPlotted)} not plotted${whys.length === 0 ? '' : ` (${whys.join(', ')})`}`;
   return `${countText(plotted)} ${counted}${plotted === 1 ? '' : 's'} plotted${left}.`;
 }

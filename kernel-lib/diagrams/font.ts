@@ -13,7 +13,11 @@ export interface TextStyle {
 }
 
 type Face = 'regular' | 'italic' | 'bold';
-const faceFiles: Readonly<Record<Face, string>> = { regular: 'SourceSans3-Regular.ttf', italic: 'SourceSans3-It.ttf', bold: 'SourceSans3-Semibold.ttf' };
+const faceFiles: Readonly<Record<Face, string>> = {
+  regular: 'SourceSans3-Regular.ttf',
+  italic: 'SourceSans3-It.ttf',
+  bold: 'SourceSans3-Semibold.ttf',
+};
 
 let folder: string | undefined;
 
@@ -99,10 +103,17 @@ interface MeasuredItem {
  * Vega without a canvas only guesses how wide a text is; this gives it the true widths of the shipped font, so that legends and titles
  * get the room they need. Texts in any other family keep Vega's guess.
  */
-export function teachWidths(textMetrics: { width: (item: MeasuredItem, text: unknown) => number; estimateWidth: (item: MeasuredItem, text: unknown) => number }): void {
+export function teachWidths(textMetrics: {
+  width: (item: MeasuredItem, text: unknown) => number;
+  estimateWidth: (item: MeasuredItem, text: unknown) => number;
+}): void {
   textMetrics.width = (item, text) => {
     if (item.font !== undefined && !item.font.includes(fontFamily)) return textMetrics.estimateWidth(item, text);
     const bold = item.fontWeight === 'bold' || Number(item.fontWeight) >= 600;
-    return textWidth(text === null || text === undefined ? '' : String(text), { size: item.fontSize ?? 11, italic: item.fontStyle === 'italic', bold });
+    return textWidth(text === null || text === undefined ? '' : String(text), {
+      size: item.fontSize ?? 11,
+      italic: item.fontStyle === 'italic',
+      bold,
+    });
   };
 }

@@ -74,9 +74,12 @@ export type WindowChoice = 'data' | 'whole' | { readonly x?: readonly [number, n
 export function checkWindow(who: string, window: unknown): void {
   if (window === undefined || window === 'data' || window === 'whole') return;
   const limits = window as { x?: unknown; y?: unknown } | null;
-  const fits = (pair: unknown) => pair === undefined || (Array.isArray(pair) && pair.length === 2 && pair.every(Number.isFinite) && pair[0] < pair[1]);
+  const fits = (pair: unknown) =>
+    pair === undefined || (Array.isArray(pair) && pair.length === 2 && pair.every(Number.isFinite) && pair[0] < pair[1]);
   if (typeof limits !== 'object' || limits === null || !fits(limits.x) || !fits(limits.y)) {
-    throw new RangeError(`${who}: window must be "data", "whole", or { x: [low, high], y: [low, high] } with rising numbers, not ${JSON.stringify(window)}.`);
+    throw new RangeError(
+      `${who}: window must be "data", "whole", or { x: [low, high], y: [low, high] } with rising numbers, not ${JSON.stringify(window)}.`,
+    );
   }
 }
 

@@ -47,7 +47,9 @@ export function lineRows(lines: readonly (readonly Point[])[], more: object = {}
 
 /** A unit of open lines in one style. */
 export function lineUnit(frame: Frame, lines: readonly (readonly Point[])[], style: VegaSpec): VegaSpec {
-  return unit(frame, { type: 'line', interpolate: 'linear', strokeJoin: 'round', tooltip: null, ...style }, lineRows(lines), { order: { field: 'i', type: 'quantitative' } });
+  return unit(frame, { type: 'line', interpolate: 'linear', strokeJoin: 'round', tooltip: null, ...style }, lineRows(lines), {
+    order: { field: 'i', type: 'quantitative' },
+  });
 }
 
 /** A unit of texts at places found by the label placer. */
@@ -59,7 +61,15 @@ export function labelUnit(frame: Frame, labels: readonly PlacedLabel[], style: V
     return { x: specNumber(dx), y: specNumber(dy), t: lines.join('\n') };
   });
   const mark = {
-    type: 'text', align: 'center', baseline: 'middle', lineBreak: '\n', font: fontStack, fontSize: size, lineHeight: size * lineHeight, color: ink.text, tooltip: null,
+    type: 'text',
+    align: 'center',
+    baseline: 'middle',
+    lineBreak: '\n',
+    font: fontStack,
+    fontSize: size,
+    lineHeight: size * lineHeight,
+    color: ink.text,
+    tooltip: null,
   };
   return unit(frame, { ...mark, ...style }, rows, { text: { field: 't', type: 'nominal' } });
 }

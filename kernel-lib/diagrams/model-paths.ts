@@ -19,7 +19,11 @@ function isModelPath(input: unknown): input is ModelPath {
  *
  * @throws RangeError for something that is no path; whatever `axesOf` throws where the path lacks an analyte
  */
-export function pathShapes(who: string, paths: readonly PathInput[] | undefined, axesOf: AxesOf): { readonly shapes: readonly PathShape[]; readonly notes: readonly string[] } {
+export function pathShapes(
+  who: string,
+  paths: readonly PathInput[] | undefined,
+  axesOf: AxesOf,
+): { readonly shapes: readonly PathShape[]; readonly notes: readonly string[] } {
   if (paths === undefined) return { shapes: [], notes: [] };
   if (!Array.isArray(paths)) throw new RangeError(`${who}: paths must be a list, e.g. paths: [path].`);
   const shapes: PathShape[] = [];

@@ -53,7 +53,6 @@ export function spider(suite: Suite, options: PatternDiagramOptions = {}): Diagr
 
 const mostSampleCurves = 40;
 
-
 function patternDiagram(who: string, suite: Suite, options: PatternDiagramOptions & { readonly order: string | readonly string[] }): Diagram {
   checkSampleOptions(who, suite, options);
   const { group, order, reference, band, caesiumAndLead, also = [] } = options;
@@ -63,7 +62,8 @@ function patternDiagram(who: string, suite: Suite, options: PatternDiagramOption
   const byGroup = curves === 'groups';
   const grouping = group === undefined || suite.size === 0 ? undefined : groupSuite(suite, group);
   // Groups are pooled as on every other figure, so that a group has one colour throughout.
-  const grouped = byGroup && grouping !== undefined ? suite.withLabels({ [group!]: Array.from(grouping.index, (k) => grouping.scale.names[k]) }) : suite;
+  const grouped =
+    byGroup && grouping !== undefined ? suite.withLabels({ [group!]: Array.from(grouping.index, (k) => grouping.scale.names[k]) }) : suite;
   const table = pattern(grouped, { order, ...defined({ reference, band, caesiumAndLead, group: byGroup ? group : undefined }) });
   const groups = grouping?.scale;
   const open = byGroup ? undefined : alteredSamples(suite, options.altered);
@@ -75,14 +75,22 @@ function patternDiagram(who: string, suite: Suite, options: PatternDiagramOption
   const references = also.map((key) => referenceSeries(key, table, caesiumAndLead));
   const all = [...series, ...references.map(({ shape }) => shape)];
   const limits = typeof options.window === 'object' ? options.window.y : undefined;
-  const shownValues = all.flatMap(({ values, limits: bounds, band: edges }) => [values, ...(bounds === undefined ? [] : [bounds]), ...(edges === undefined ? [] : [edges.low, edges.high])]);
+  const shownValues = all.flatMap(({ values, limits: bounds, band: edges }) => [
+    values,
+    ...(bounds === undefined ? [] : [bounds]),
+    ...(edges === undefined ? [] : [edges.low, edges.high]),
+  ]);
   const count = table.elements.length;
   const divisor = shortReference(table.referenceName);
   const frame: Frame = {
     width: options.width ?? Math.max(320, Math.min(680, 24 * count + 90)),
     height: options.height ?? 340,
     x: { title: '', window: [-0.5, Math.max(0.5, count - 0.5)], names: table.elements },
-    y: { title: `${byGroup ? 'Median' : 'Sample'} / ${divisor}`, scale: 'log', window: limits ?? windowAround(shownValues, { scale: 'log', whole: [1, 100], leastSpan: 10 }) },
+    y: {
+      title: `${byGroup ? 'Median' : 'Sample'} / ${divisor}`,
+      scale: 'log',
+      window: limits ?? windowAround(shownValues, { scale: 'log', whole: [1, 100], leastSpan: 10 }),
+    },
   };
   const drawn = series.filter(({ values, limits: bounds }) => [...Array.from(values), ...Array.from(bounds ?? [])].some((value) => value > 0)).length;
   const hasLimits = series.some(({ limits: bounds }) => bounds !== undefined && Array.from(bounds).some((value) => value > 0));
@@ -101,15 +109,28 @@ function patternDiagram(who: string, suite: Suite, options: PatternDiagramOption
       ...(table.absent.length > 0 && suite.size > 0 ? [`Not in the data: ${table.absent.join(', ')}.`] : []),
       ...references.map(({ shape }) => `Dashed: ${shape.name}.`),
     ],
-    counts: { plotted: drawn, notPlotted: series.length - drawn, reasons: series.length === drawn ? {} : { 'without any of the elements': series.length - drawn } },
+    counts: {
+      plotted: drawn,
+      notPlotted: series.length - drawn,
+      reasons: series.length === drawn ? {} : { 'without any of the elements': series.length - drawn },
+    },
     counted: byGroup ? 'group' : 'sample',
     legendWidth: groups === undefined ? 0 : legendRoom(groups.title, groups.names),
-    lineage: [...table.lineage, step(`diagrams.${who}`, { curves, also }, { sources: [...new Set(references.flatMap(({ sources }) => sources))], ...(also.length > 0 ? { tables: ['reservoirs.csv'] } : {}) })],
+    lineage: [
+      ...table.lineage,
+      step(
+        `diagrams.${who}`,
+        { curves, also },
+        { sources: [...new Set(references.flatMap(({ sources }) => sources))], ...(also.length > 0 ? { tables: ['reservoirs.csv'] } : {}) },
+      ),
+    ],
   });
 }
 
 function defined<Options extends object>(options: Options): { [Key in keyof Options]?: NonNullable<Options[Key]> } {
-  return Object.fromEntries(Object.entries(options).filter(([, value]) => value !== undefined)) as { [Key in keyof Options]?: NonNullable<Options[Key]> };
+  return Object.fromEntries(Object.entries(options).filter(([, value]) => value !== undefined)) as {
+    [Key in keyof Options]?: NonNullable<Options[Key]>;
+  };
 }
 
 /** `C1 chondrite (Sun & McDonough 1989)` → `C1 chondrite`: the work stands in the caption. */
@@ -126,7 +147,8 @@ function caesiumAndLeadNote({ reference, normalised }: PatternTable, choice: Cae
 }
 
 function seriesOf(table: PatternTable, row: number, name: string, group: string | undefined): SeriesShape {
-  const pick = (from: (element: PatternTable['normalised'][number]) => Float64Array | undefined) => Float64Array.from(table.normalised, (element) => from(element)?.[row] ?? NaN);
+  const pick = (from: (element: PatternTable['normalised'][number]) => Float64Array | undefined) =>
+    Float64Array.from(table.normalised, (element) => from(element)?.[row] ?? NaN);
   const below = Float64Array.from(table.normalised, ({ states, limits }) => (states[row] === cellState.belowDetection ? limits[row] : NaN));
   return {
     name,
@@ -151,7 +173,11 @@ function hasGap(series: readonly SeriesShape[]): boolean {
 }
 
 /** A reservoir over the elements of a pattern, divided as the pattern is. */
-function referenceSeries(key: string, table: PatternTable, caesiumAndLead: CaesiumLeadChoice | undefined): { readonly shape: SeriesShape; readonly sources: readonly string[] } {
+function referenceSeries(
+  key: string,
+  table: PatternTable,
+  caesiumAndLead: CaesiumLeadChoice | undefined,
+): { readonly shape: SeriesShape; readonly sources: readonly string[] } {
   const { name, valueOf, sources } = referenceComposition(key, defined({ caesiumAndLead }));
   const values = Float64Array.from(table.normalised, ({ element, divisor }) => (valueOf(element) ?? NaN) / divisor);
   return { shape: { name, values, reference: true }, sources };

@@ -27,7 +27,11 @@ export async function renderPdf(svg: string, title: string): Promise<Uint8Array>
   if (size === null) throw new Error('The drawing has no size, so no page can be made for it.');
   const [width, height] = [Number(size[1]) * pointsPerPixel, Number(size[2]) * pointsPerPixel];
   // A fixed date: the file says nothing about when it was made, and is the same each time.
-  const document = new PDFDocument({ size: [width, height], margin: 0, info: { Title: title, Creator: 'wedgework', Producer: 'wedgework', CreationDate: new Date(0), ModDate: new Date(0) } });
+  const document = new PDFDocument({
+    size: [width, height],
+    margin: 0,
+    info: { Title: title, Creator: 'wedgework', Producer: 'wedgework', CreationDate: new Date(0), ModDate: new Date(0) },
+  });
   const chunks: Uint8Array[] = [];
   document.on('data', (chunk: Uint8Array) => chunks.push(chunk));
   const ended = new Promise<void>((done, failed) => {
@@ -38,7 +42,10 @@ export async function renderPdf(svg: string, title: string): Promise<Uint8Array>
   document.registerFont('italic', fontFile('italic'));
   document.registerFont('bold', fontFile('bold'));
   svgToPdf(document, svg, 0, 0, {
-    width, height, assumePt: false, preserveAspectRatio: 'xMinYMin meet',
+    width,
+    height,
+    assumePt: false,
+    preserveAspectRatio: 'xMinYMin meet',
     fontCallback: (_family: string, bold: boolean, italic: boolean) => (bold ? 'bold' : italic ? 'italic' : 'regular'),
     warningCallback: () => {},
   });

@@ -142,7 +142,10 @@ export class LabelPlacer {
     ways.forEach((lines, rank) => {
       const { width, height } = textBlock(lines, style);
       const step = Math.max(4, Math.min(12, (bounds.right - bounds.left) / 40));
-      const middle = preferred !== undefined && isInside(preferred, polygon) ? preferred : ([(bounds.left + bounds.right) / 2, (bounds.top + bounds.bottom) / 2] as const);
+      const middle =
+        preferred !== undefined && isInside(preferred, polygon)
+          ? preferred
+          : ([(bounds.left + bounds.right) / 2, (bounds.top + bounds.bottom) / 2] as const);
       const consider = (x: number, y: number): void => {
         const box = { left: x - width / 2, right: x + width / 2, top: y - height / 2, bottom: y + height / 2 };
         const away = Math.hypot((x - middle[0]) / (bounds.right - bounds.left), (y - middle[1]) / (bounds.bottom - bounds.top));
@@ -192,7 +195,16 @@ export class LabelPlacer {
 
 /** Distances at which a place beside a point is looked for, in multiples of the reach. */
 const rings = [1, 1.8, 2.8, 4] as const;
-const directions: readonly Point[] = [[1, 0], [-1, 0], [0, -1], [0, 1], [1, -1], [-1, -1], [1, 1], [-1, 1]];
+const directions: readonly Point[] = [
+  [1, 0],
+  [-1, 0],
+  [0, -1],
+  [0, 1],
+  [1, -1],
+  [-1, -1],
+  [1, 1],
+  [-1, 1],
+];
 
 function crosses(polygon: readonly Point[], box: Box): boolean {
   const wide = { left: box.left - clearance, right: box.right + clearance, top: box.top - clearance, bottom: box.bottom + clearance };

@@ -38,8 +38,15 @@ export async function renderSvg(spec: VegaSpec): Promise<string> {
   // Nothing may be fetched: diagrams carry their data.
   const loader = { load: refuse, sanitize: refuse, http: refuse, file: refuse } as never as ReturnType<typeof vega.loader>;
   const failures: string[] = [];
-  const logger = quietLogger(() => {}, (text) => failures.push(text));
-  const view = new vega.View(vega.parse(compileSpec(spec) as Parameters<typeof vega.parse>[0]), { renderer: 'none', loader, logger: logger as never });
+  const logger = quietLogger(
+    () => {},
+    (text) => failures.push(text),
+  );
+  const view = new vega.View(vega.parse(compileSpec(spec) as Parameters<typeof vega.parse>[0]), {
+    renderer: 'none',
+    loader,
+    logger: logger as never,
+  });
   try {
     startIdsAnew(vega);
     const svg = await view.toSVG();
@@ -57,10 +64,12 @@ function refuse(): Promise<never> {
 
 /** A logger that hands warnings and errors on, and prints nothing: a notebook's output is its user's. */
 function quietLogger(heard: (text: string) => void = () => {}, failed = heard): object {
-  const hear = (tell: (text: string) => void) => (...parts: readonly unknown[]): object => {
-    tell(parts.map(String).join(' '));
-    return logger;
-  };
+  const hear =
+    (tell: (text: string) => void) =>
+    (...parts: readonly unknown[]): object => {
+      tell(parts.map(String).join(' '));
+      return logger;
+    };
   const logger: object = { level: () => logger, error: hear(failed), warn: hear(heard), info: () => logger, debug: () => logger };
   return logger;
 }

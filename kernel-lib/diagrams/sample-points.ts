@@ -61,8 +61,10 @@ export function checkSampleOptions(who: string, suite: Suite, options: SampleOpt
   if (typeof options !== 'object' || options === null) throw new TypeError(`${who}: options must be an object such as { group: 'volcano' }.`);
   checkWindow(who, options.window);
   const { errors = 'none', altered, names, binAbove, width, height, group } = options;
-  if (!['none', 'bars', 'ellipses'].includes(errors)) throw new RangeError(`${who}: errors must be "none", "bars" or "ellipses", not "${String(errors)}".`);
-  if (Array.isArray(altered) && altered.length !== suite.size) throw new RangeError(`${who}: altered has ${altered.length} entries, the suite has ${suite.size} samples; give one of each.`);
+  if (!['none', 'bars', 'ellipses'].includes(errors))
+    throw new RangeError(`${who}: errors must be "none", "bars" or "ellipses", not "${String(errors)}".`);
+  if (Array.isArray(altered) && altered.length !== suite.size)
+    throw new RangeError(`${who}: altered has ${altered.length} entries, the suite has ${suite.size} samples; give one of each.`);
   if (names !== undefined && names !== 'all' && !Array.isArray(names)) throw new RangeError(`${who}: names must be "all" or a list of sample names.`);
   if (binAbove !== undefined && !(binAbove >= 0)) throw new RangeError(`${who}: binAbove must be a number of samples, not ${String(binAbove)}.`);
   for (const [name, size] of Object.entries({ width, height })) {
@@ -118,7 +120,10 @@ export function samplePoints(who: string, suite: Suite, axes: PointAxes, options
   if (options.group !== undefined && options.group !== 'sample') tooltips.set(options.group, suite.label(options.group));
   for (const [title, values] of axes.tooltips ?? []) tooltips.set(title, values);
   const points: SamplePoints = {
-    x, y, tooltips, axisTitles: axes.axisTitles ?? [axes.x, axes.y],
+    x,
+    y,
+    tooltips,
+    axisTitles: axes.axisTitles ?? [axes.x, axes.y],
     ...(bounded > 0 ? { side } : {}),
     ...(grouping === undefined ? {} : { group: grouping.index, groups: grouping.scale }),
     ...(open === undefined ? {} : { open }),
@@ -167,7 +172,12 @@ function countSamples(suite: Suite, axes: PointAxes, { x, y }: SamplePoints, fra
   for (let i = 0; i < x.length; i++) {
     const known = Number.isFinite(x[i]) && Number.isFinite(y[i]);
     if (known && inWindow(frame, x[i], y[i])) plotted++;
-    else if (known) because((frame.x.scale === 'log' && x[i] <= 0) || (frame.y.scale === 'log' && y[i] <= 0) ? 'not positive, which a log axis cannot show' : 'outside the window');
+    else if (known)
+      because(
+        (frame.x.scale === 'log' && x[i] <= 0) || (frame.y.scale === 'log' && y[i] <= 0)
+          ? 'not positive, which a log axis cannot show'
+          : 'outside the window',
+      );
     else because(axes.reason?.(i) ?? (why ??= missingReason(suite, axes))(i));
   }
   return { plotted, notPlotted: x.length - plotted, reasons: Object.fromEntries([...reasons].sort((a, b) => b[1] - a[1])) };
@@ -185,7 +195,8 @@ function missingReason(suite: Suite, { x, y, named }: PointAxes): (row: number) 
   }
   const columns = [...symbols].map((symbol) => [symbol, resolveColumn(suite, symbol)] as const);
   return (row) => {
-    for (const [symbol, column] of columns) if (column === undefined || column.states[row] === cellState.missing) return `without ${symbolText(symbol)}`;
+    for (const [symbol, column] of columns)
+      if (column === undefined || column.states[row] === cellState.missing) return `without ${symbolText(symbol)}`;
     const limited = columns.some(([, column]) => column!.states[row] === cellState.belowDetection || column!.states[row] === cellState.aboveRange);
     return limited ? 'with limits that give no bound' : 'without a value';
   };

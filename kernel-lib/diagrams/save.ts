@@ -6,7 +6,8 @@ import { renderPdf } from './pdf';
 
 function check(who: string, diagram: Diagram, path: string, ending: string): string {
   if (!isDiagram(diagram)) throw new TypeError(`${who}: the first argument must be a diagram, e.g. diagrams.tas(suite).`);
-  if (typeof path !== 'string' || path.trim() === '') throw new RangeError(`${who}: the second argument must be a file path, e.g. "figures/tas${ending}".`);
+  if (typeof path !== 'string' || path.trim() === '')
+    throw new RangeError(`${who}: the second argument must be a file path, e.g. "figures/tas${ending}".`);
   if (!path.toLowerCase().endsWith(ending)) throw new RangeError(`${who}: the path must end in ${ending}, not "${path}".`);
   return resolve(path);
 }

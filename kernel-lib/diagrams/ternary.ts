@@ -52,7 +52,10 @@ export function ternaryLayer([first, second, third]: readonly [TernaryCorner, Te
   return {
     draw({ frame }) {
       const length = (5 / frame.width) * 100;
-      const marks = ticks.map(({ from: [x, y], towards: [dx, dy] }): Point[] => [[x, y], [x + dx * length, y + dy * length]]);
+      const marks = ticks.map(({ from: [x, y], towards: [dx, dy] }): Point[] => [
+        [x, y],
+        [x + dx * length, y + dy * length],
+      ]);
       const text = (rows: readonly object[], style: VegaSpec): VegaSpec => ({
         data: { values: rows },
         mark: { type: 'text', clip: false, font: fontStack, color: ink.text, baseline: 'middle', tooltip: null, ...style },
@@ -64,13 +67,17 @@ export function ternaryLayer([first, second, third]: readonly [TernaryCorner, Te
       });
       const corner = ({ name, meaning }: TernaryCorner, [x, y]: Point, style: VegaSpec): VegaSpec[] => [
         text([{ x, y, t: name }], { fontSize: textSize.axisTitle + 1, fontWeight: 600, ...style }),
-        ...(meaning === undefined ? [] : [text([{ x, y, t: meaning }], { fontSize: textSize.note, ...style, dy: ((style['dy'] as number | undefined) ?? 0) + 15 })]),
+        ...(meaning === undefined
+          ? []
+          : [text([{ x, y, t: meaning }], { fontSize: textSize.note, ...style, dy: ((style['dy'] as number | undefined) ?? 0) + 15 })]),
       ];
       return [
         lineUnit(frame, grid, { color: ink.faintLine, strokeWidth: 0.5 }),
         lineUnit(frame, [triangle], { color: ink.axis, strokeWidth: 1.3, strokeJoin: 'miter', clip: false }),
         lineUnit(frame, marks, { color: ink.axis, strokeWidth: 1, clip: false }),
-        ...ticks.map(({ from: [x, y], share, align, dx, dy }) => text([{ x, y, t: String(share) }], { fontSize: textSize.note, align, dx, dy, color: ink.caption })),
+        ...ticks.map(({ from: [x, y], share, align, dx, dy }) =>
+          text([{ x, y, t: String(share) }], { fontSize: textSize.note, align, dx, dy, color: ink.caption }),
+        ),
         ...corner(first, ternaryPoint(100, 0), { align: 'center', dx: -10, dy: 32 }),
         ...corner(second, ternaryPoint(0, 100), { align: 'center', dx: 0, dy: second.meaning === undefined ? -14 : -30 }),
         ...corner(third, ternaryPoint(0, 0), { align: 'center', dx: 10, dy: 32 }),

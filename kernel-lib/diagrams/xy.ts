@@ -43,9 +43,15 @@ export function xy(suite: Suite, x: string, y: string, options: XyOptions = {}):
   for (const [axis, kind] of Object.entries(scales)) {
     if (kind !== 'linear' && kind !== 'log') throw new RangeError(`xy: the scale of ${axis} must be "linear" or "log", not "${String(kind)}".`);
   }
-  const set = samplePoints('xy', suite, { x, y, named, reference, axisTitles: [axisTitles.x ?? axisTitle(x), axisTitles.y ?? axisTitle(y)] }, options);
+  const set = samplePoints(
+    'xy',
+    suite,
+    { x, y, named, reference, axisTitles: [axisTitles.x ?? axisTitle(x), axisTitles.y ?? axisTitle(y)] },
+    options,
+  );
   const { shapes: paths, notes } = pathShapes('xy', options.paths, (liquid) => ({
-    x: evaluate(liquid, x, { named, reference, sigma: false }).values, y: evaluate(liquid, y, { named, reference, sigma: false }).values,
+    x: evaluate(liquid, x, { named, reference, sigma: false }).values,
+    y: evaluate(liquid, y, { named, reference, sigma: false }).values,
   }));
   const units = [x, y].map((text) => evaluate(suite, text, { named, reference, sigma: false }).unit);
   const extra = (at: 0 | 1) => [...paths, ...lines].map(({ points }) => points.map((point) => point[at]));
@@ -53,14 +59,30 @@ export function xy(suite: Suite, x: string, y: string, options: XyOptions = {}):
     const at = side === 'x' ? 0 : 1;
     const hints: WindowHints = { scale: scales[side], within: [-Infinity, Infinity] };
     const chosen = typeof options.window === 'object' ? options.window[side] : undefined;
-    const also = options.window === 'whole' ? [reservoirs.map((each) => each[side]), ...extra(at)] : paths.map(({ points }) => points.map((point) => point[at]));
-    return { title: axisTitles[side] ?? axisTitle(side === 'x' ? x : y, units[at]), scale: scales[side], window: chosen ?? windowAround([values, ...also], hints) };
+    const also =
+      options.window === 'whole' ? [reservoirs.map((each) => each[side]), ...extra(at)] : paths.map(({ points }) => points.map((point) => point[at]));
+    return {
+      title: axisTitles[side] ?? axisTitle(side === 'x' ? x : y, units[at]),
+      scale: scales[side],
+      window: chosen ?? windowAround([values, ...also], hints),
+    };
   };
   const frame: Frame = { width: options.width ?? 440, height: options.height ?? 360, x: axis('x', set.points.x), y: axis('y', set.points.y) };
   return figure({
     name: `${frame.y.title} against ${frame.x.title}`,
     title: options.title,
-    panels: [{ frame, layers: [linesLayer(lines), samplesLayer(set.points, options), ...(options.names === undefined ? [] : [namesLayer(set.points, suite.samples, options.names)]), pathsLayer(paths), markersLayer(reservoirs)] }],
+    panels: [
+      {
+        frame,
+        layers: [
+          linesLayer(lines),
+          samplesLayer(set.points, options),
+          ...(options.names === undefined ? [] : [namesLayer(set.points, suite.samples, options.names)]),
+          pathsLayer(paths),
+          markersLayer(reservoirs),
+        ],
+      },
+    ],
     caption: [...(options.caption ?? []), ...notes, ...set.notes],
     counts: set.counts(frame),
     legendWidth: set.legendWidth,

@@ -31,7 +31,16 @@ describe('every figure of the gallery', () => {
     for (const [name, { spec }] of made) {
       const config = spec.config as any;
       expect(spec.background, name).toBe('#ffffff');
-      for (const colour of [config.axis.labelColor, config.axis.titleColor, config.axis.domainColor, config.legend.labelColor, config.legend.titleColor, config.title.color, config.style['guide-label'].fill, config.style['guide-title'].fill]) {
+      for (const colour of [
+        config.axis.labelColor,
+        config.axis.titleColor,
+        config.axis.domainColor,
+        config.legend.labelColor,
+        config.legend.titleColor,
+        config.title.color,
+        config.style['guide-label'].fill,
+        config.style['guide-title'].fill,
+      ]) {
         expect(colour, name).toMatch(/^#[0-5]/);
       }
     }
@@ -42,8 +51,17 @@ describe('every figure of the gallery', () => {
       const caption = captionOf(spec);
       expect(caption, name).toMatch(/plotted/);
       expect(counts.plotted + counts.notPlotted, name).toBeGreaterThanOrEqual(0);
-      expect(Object.values(counts.reasons).reduce((sum, each) => sum + each, 0), name).toBe(counts.notPlotted);
-      const texts = [caption, ...panelsOf(spec).flatMap((panel) => [...Object.values(axisTitles(panel)), ...labelBoxes(panel).map(({ text }) => text.replaceAll('\n', ' '))])];
+      expect(
+        Object.values(counts.reasons).reduce((sum, each) => sum + each, 0),
+        name,
+      ).toBe(counts.notPlotted);
+      const texts = [
+        caption,
+        ...panelsOf(spec).flatMap((panel) => [
+          ...Object.values(axisTitles(panel)),
+          ...labelBoxes(panel).map(({ text }) => text.replaceAll('\n', ' ')),
+        ]),
+      ];
       for (const text of texts) expect(canDraw(text), `${name}: ${text}`).toBe(true);
     }
   });
@@ -54,7 +72,10 @@ describe('every figure of the gallery', () => {
         const boxes = labelBoxes(panel);
         const segments = drawnSegments(panel);
         boxes.forEach((box, i) => {
-          expect(box.left >= -1 && box.right <= panel.width + 1 && box.top >= -1 && box.bottom <= panel.height + 1, `${name}: ${box.text} is cut`).toBe(true);
+          expect(
+            box.left >= -1 && box.right <= panel.width + 1 && box.top >= -1 && box.bottom <= panel.height + 1,
+            `${name}: ${box.text} is cut`,
+          ).toBe(true);
           for (const segment of segments) expect(passesThrough(segment, box), `${name}: a line runs through ${box.text}`).toBe(false);
           for (const other of boxes.slice(i + 1)) {
             const overlap = box.left < other.right && other.left < box.right && box.top < other.bottom && other.top < box.bottom;
@@ -68,11 +89,18 @@ describe('every figure of the gallery', () => {
   it('cuts no text off at the edge of the picture', async () => {
     for (const name of ['tas-twelve', 'afm-five', 'xy-log', 'spider-five', 'harker-five', 'xy-many', 'tas-small']) {
       const svg = await made.get(name)!.svg();
-      const image = new Resvg(svg, { background: 'white', font: { loadSystemFonts: false, fontFiles: ['Regular', 'It', 'Semibold'].map((face) => `${__dirname}/../../kernel-lib/assets/fonts/SourceSans3-${face}.ttf`) } }).render();
+      const image = new Resvg(svg, {
+        background: 'white',
+        font: {
+          loadSystemFonts: false,
+          fontFiles: ['Regular', 'It', 'Semibold'].map((face) => `${__dirname}/../../kernel-lib/assets/fonts/SourceSans3-${face}.ttf`),
+        },
+      }).render();
       const { width, height, pixels } = image;
       let inked = 0;
       // Text takes ink; the padding all round must have none.
-      for (let y = 0; y < height; y++) for (let x = 0; x < width; x++) if ((x < 4 || y < 4 || x >= width - 4 || y >= height - 4) && pixels[4 * (y * width + x)] < 250) inked++;
+      for (let y = 0; y < height; y++)
+        for (let x = 0; x < width; x++) if ((x < 4 || y < 4 || x >= width - 4 || y >= height - 4) && pixels[4 * (y * width + x)] < 250) inked++;
       expect(inked, name).toBe(0);
     }
   });
@@ -84,7 +112,11 @@ describe('titles, units, bases and sources', () => {
   it('stand on the axes and in the caption', () => {
     const cases: [ww.diagrams.Diagram, { x: string; y: string }, RegExp[]][] = [
       [diagrams.tas(suite), { x: 'SiO₂ (wt %, volatile-free)', y: 'Na₂O + K₂O (wt %, volatile-free)' }, [/Le Bas et al\. 1986/, /free of volatiles/]],
-      [diagrams.potassiumSilica(suite), { x: 'SiO₂ (wt %, volatile-free)', y: 'K₂O (wt %, volatile-free)' }, [/Le Maitre et al\. 2002/, /free of volatiles/]],
+      [
+        diagrams.potassiumSilica(suite),
+        { x: 'SiO₂ (wt %, volatile-free)', y: 'K₂O (wt %, volatile-free)' },
+        [/Le Maitre et al\. 2002/, /free of volatiles/],
+      ],
       [diagrams.ironEnrichment(suite), { x: 'SiO₂ (wt %, volatile-free)', y: 'FeO* / MgO' }, [/Miyashiro 1974/, /FeO\*: total iron as FeO/]],
       [diagrams.xy(suite, 'SiO2', 'Ba/Th'), { x: 'SiO₂ (wt %)', y: 'Ba/Th' }, []],
       [diagrams.xy(suite, '10000*Zr/TiO2', 'Sr'), { x: '10000 × Zr/TiO₂', y: 'Sr (ppm)' }, []],
@@ -108,13 +140,19 @@ describe('titles, units, bases and sources', () => {
 
   it('recasts once: a suite that is volatile-free already is drawn as it is', () => {
     const dry = ww.volatileFree(suite);
-    const points = (from: ww.Suite) => unitsOf(panelsOf(diagrams.tas(from, { iron: 'total-as-FeO' }).spec)[0]).flatMap((unit) => (unit.mark.type === 'point' ? rowsOf(unit).map(({ x, y }) => [x, y]) : []));
+    const points = (from: ww.Suite) =>
+      unitsOf(panelsOf(diagrams.tas(from, { iron: 'total-as-FeO' }).spec)[0]).flatMap((unit) =>
+        unit.mark.type === 'point' ? rowsOf(unit).map(({ x, y }) => [x, y]) : [],
+      );
     expect(points(dry)).toEqual(points(suite));
     expect(points(dry)[0][0]).toBeCloseTo(dry.values('SiO2')[0], 3);
   });
 
   it('draws the boundaries where they were published', () => {
-    const sides = unitsOf(panelsOf(diagrams.tas(suite, { window: 'whole' }).spec)[0]).filter(({ mark }) => mark.type === 'rule').flatMap(rowsOf).map(({ x, y, x2, y2 }) => [x, y, x2, y2].join(' '));
+    const sides = unitsOf(panelsOf(diagrams.tas(suite, { window: 'whole' }).spec)[0])
+      .filter(({ mark }) => mark.type === 'rule')
+      .flatMap(rowsOf)
+      .map(({ x, y, x2, y2 }) => [x, y, x2, y2].join(' '));
     // Le Bas et al. 1986, fig. 2: 63 % silica divides andesite from dacite up to 7 % alkalis; dacite | rhyolite runs from (77, 0) to (69, 8)
     expect(sides.some((side) => side === '63 0 63 7' || side === '63 7 63 0')).toBe(true);
     expect(sides.some((side) => side === '77 0 69 8' || side === '69 8 77 0')).toBe(true);

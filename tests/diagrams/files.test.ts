@@ -32,7 +32,11 @@ describe('a drawn diagram', () => {
     const diagram = diagrams.tas(suite, { group: 'volcano' });
     const bundle = await diagram.toMimeBundle();
     expect(Object.keys(bundle)).toEqual(['application/vnd.vegalite.v5+json', 'image/png', 'text/plain']);
-    expect(Buffer.from(bundle['image/png'] as string, 'base64').subarray(1, 4).toString()).toBe('PNG');
+    expect(
+      Buffer.from(bundle['image/png'] as string, 'base64')
+        .subarray(1, 4)
+        .toString(),
+    ).toBe('PNG');
     expect(bundle['text/plain']).toMatch(/^Total alkali–silica.*38 samples plotted|^Total alkali.*plotted/);
     expect(JSON.parse(JSON.stringify(diagram)).spec.$schema).toContain('vega-lite/v5');
   });
@@ -44,7 +48,12 @@ describe('a drawn diagram', () => {
   });
 
   it('reads nothing from outside', async () => {
-    const spec = { $schema: 'https://vega.github.io/schema/vega-lite/v5.json', data: { url: 'https://example.org/x.csv' }, mark: 'point', encoding: {} };
+    const spec = {
+      $schema: 'https://vega.github.io/schema/vega-lite/v5.json',
+      data: { url: 'https://example.org/x.csv' },
+      mark: 'point',
+      encoding: {},
+    };
     const diagram = diagrams.diagramOf({ name: 'x', spec, lineage: [], counts: { plotted: 0, notPlotted: 0, reasons: {} }, description: 'x' });
     expect(await diagram.svg()).not.toContain('example.org');
   });
@@ -52,7 +61,9 @@ describe('a drawn diagram', () => {
 
 describe('saved files', () => {
   const suite = ww.suiteOf({
-    columns: ['SiO2', 'TiO2', 'Al2O3', 'FeOT', 'MgO', 'CaO', 'Na2O', 'K2O'].map((symbol, k) => ww.column({ symbol, values: [[50, 1, 18, 9, 7, 11, 3, 1][k], [60, 0.7, 17, 6, 3, 6, 4, 2][k]] })),
+    columns: ['SiO2', 'TiO2', 'Al2O3', 'FeOT', 'MgO', 'CaO', 'Na2O', 'K2O'].map((symbol, k) =>
+      ww.column({ symbol, values: [[50, 1, 18, 9, 7, 11, 3, 1][k], [60, 0.7, 17, 6, 3, 6, 4, 2][k]] }),
+    ),
     labels: { sample: [nasty, 'plain'], volcano: [nasty, 'Ketu'] },
   });
   const diagram = diagrams.tas(suite, { group: 'volcano', title: nasty, names: 'all' });
@@ -110,26 +121,62 @@ describe('saved files', () => {
   });
 });
 
-describe('a scheme of the user\'s own', () => {
+describe("a scheme of the user's own", () => {
   it('is drawn like any other, from its file alone', () => {
     const path = join(folder, 'my-scheme.json');
-    writeFileSync(path, JSON.stringify({
-      key: 'my-magnesia', title: 'Magnesia against lime', kind: 'polygons', sources: ['field notes'], basis: 'as-analysed',
-      axes: [{ expression: 'MgO', title: 'MgO', unit: 'wt %' }, { expression: 'CaO', title: 'CaO', unit: 'wt %' }],
-      frame: { x: [0, 20], y: [0, 20] },
-      fields: [
-        { symbol: 'lo', name: 'low magnesia', vertices: [[0, 0], [5, 0], [5, 20], [0, 20]] },
-        { symbol: 'hi', name: 'high magnesia', vertices: [[5, 0], [20, 0], [20, 20], [5, 20]] },
-      ],
-      standing: 'from memory',
-    }));
+    writeFileSync(
+      path,
+      JSON.stringify({
+        key: 'my-magnesia',
+        title: 'Magnesia against lime',
+        kind: 'polygons',
+        sources: ['field notes'],
+        basis: 'as-analysed',
+        axes: [
+          { expression: 'MgO', title: 'MgO', unit: 'wt %' },
+          { expression: 'CaO', title: 'CaO', unit: 'wt %' },
+        ],
+        frame: { x: [0, 20], y: [0, 20] },
+        fields: [
+          {
+            symbol: 'lo',
+            name: 'low magnesia',
+            vertices: [
+              [0, 0],
+              [5, 0],
+              [5, 20],
+              [0, 20],
+            ],
+          },
+          {
+            symbol: 'hi',
+            name: 'high magnesia',
+            vertices: [
+              [5, 0],
+              [20, 0],
+              [20, 20],
+              [5, 20],
+            ],
+          },
+        ],
+        standing: 'from memory',
+      }),
+    );
     const own = ww.schemes.load(path);
     const diagram = diagrams.scheme(madeSuite(ww, { samples: 30, groups: 2 }), own, { group: 'volcano', window: 'whole' });
     const [panel] = panelsOf(diagram.spec);
     expect(axisTitles(panel)).toEqual({ x: 'MgO (wt %)', y: 'CaO (wt %)' });
-    expect(labelBoxes(panel).map(({ text }) => text.replace(/\s+/g, ' ')).sort()).toEqual(['high magnesia', 'low magnesia']);
+    expect(
+      labelBoxes(panel)
+        .map(({ text }) => text.replace(/\s+/g, ' '))
+        .sort(),
+    ).toEqual(['high magnesia', 'low magnesia']);
     // The one real boundary; the outer frame is no boundary.
-    expect(unitsOf(panel).filter(({ mark }) => mark.type === 'rule').flatMap(rowsOf)).toMatchObject([{ x: 5, x2: 5 }]);
+    expect(
+      unitsOf(panel)
+        .filter(({ mark }) => mark.type === 'rule')
+        .flatMap(rowsOf),
+    ).toMatchObject([{ x: 5, x2: 5 }]);
     expect(captionOf(diagram.spec)).toContain('Boundaries: field notes.');
   });
 });

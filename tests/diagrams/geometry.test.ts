@@ -11,8 +11,21 @@ const { diagrams } = ww;
 
 describe('texts', () => {
   it.each([
-    ['SiO2', 'SiO₂'], ['Al2O3', 'Al₂O₃'], ['FeOT', 'FeO*'], ['FeO*/MgO', 'FeO*/MgO'], ['Na2O+K2O', 'Na₂O + K₂O'], ['10000*Zr/TiO2', '10000 × Zr/TiO₂'],
-    ['(La/Sm)N', '(La/Sm)ɴ'], ['LaN/YbN', 'Laɴ/Ybɴ'], ['87Sr/86Sr', '⁸⁷Sr/⁸⁶Sr'], ['epsilon-Nd', 'εNd'], ['[Mg-number]', 'Mg-number'], ['Na2O - 2', 'Na₂O − 2'], ['H2O+', 'H₂O⁺'], ['log10(Ba/Th)', 'log₁₀(Ba/Th)'], ['Ba^2', 'Ba²'],
+    ['SiO2', 'SiO₂'],
+    ['Al2O3', 'Al₂O₃'],
+    ['FeOT', 'FeO*'],
+    ['FeO*/MgO', 'FeO*/MgO'],
+    ['Na2O+K2O', 'Na₂O + K₂O'],
+    ['10000*Zr/TiO2', '10000 × Zr/TiO₂'],
+    ['(La/Sm)N', '(La/Sm)ɴ'],
+    ['LaN/YbN', 'Laɴ/Ybɴ'],
+    ['87Sr/86Sr', '⁸⁷Sr/⁸⁶Sr'],
+    ['epsilon-Nd', 'εNd'],
+    ['[Mg-number]', 'Mg-number'],
+    ['Na2O - 2', 'Na₂O − 2'],
+    ['H2O+', 'H₂O⁺'],
+    ['log10(Ba/Th)', 'log₁₀(Ba/Th)'],
+    ['Ba^2', 'Ba²'],
   ])('%s is set as %s', (expression, printed) => {
     expect(diagrams.expressionText(expression)).toBe(printed);
   });
@@ -30,11 +43,18 @@ describe('texts', () => {
   });
 
   it('wrap without losing a word', () => {
-    fc.assert(fc.property(fc.array(fc.stringMatching(/^[a-z]{1,12}$/), { minLength: 1, maxLength: 30 }), fc.integer({ min: 40, max: 400 }), (words, width) => {
-      const lines = wrapText(words.join(' '), width, { size: 11 });
-      expect(lines.join(' ').split(' ')).toEqual(words);
-      for (const line of lines) expect(line.includes(' ') ? textWidth(line, { size: 11 }) <= width : true).toBe(true);
-    }), { numRuns: 100 });
+    fc.assert(
+      fc.property(
+        fc.array(fc.stringMatching(/^[a-z]{1,12}$/), { minLength: 1, maxLength: 30 }),
+        fc.integer({ min: 40, max: 400 }),
+        (words, width) => {
+          const lines = wrapText(words.join(' '), width, { size: 11 });
+          expect(lines.join(' ').split(' ')).toEqual(words);
+          for (const line of lines) expect(line.includes(' ') ? textWidth(line, { size: 11 }) <= width : true).toBe(true);
+        },
+      ),
+      { numRuns: 100 },
+    );
   });
 
   it('names break at spaces and slashes into lines of even width', () => {
@@ -47,29 +67,40 @@ describe('frames and axes', () => {
   const finite = (from: number, to: number) => fc.double({ min: from, max: to, noNaN: true });
 
   it('lead from data to pixels and back', () => {
-    fc.assert(fc.property(finite(0.01, 100), finite(0.01, 100), fc.constantFrom('linear' as const, 'log' as const), fc.boolean(), (x, y, scale, reversed) => {
-      const frame: Frame = { width: 400, height: 300, x: { title: '', scale, window: [0.005, 200], reversed }, y: { title: '', window: [-10, 120] } };
-      const [bx, by] = fromPixels(frame, toPixels(frame, [x, y]));
-      expect(bx).toBeCloseTo(x, 6);
-      expect(by).toBeCloseTo(y, 6);
-    }));
+    fc.assert(
+      fc.property(finite(0.01, 100), finite(0.01, 100), fc.constantFrom('linear' as const, 'log' as const), fc.boolean(), (x, y, scale, reversed) => {
+        const frame: Frame = {
+          width: 400,
+          height: 300,
+          x: { title: '', scale, window: [0.005, 200], reversed },
+          y: { title: '', window: [-10, 120] },
+        };
+        const [bx, by] = fromPixels(frame, toPixels(frame, [x, y]));
+        expect(bx).toBeCloseTo(x, 6);
+        expect(by).toBeCloseTo(y, 6);
+      }),
+    );
   });
 
   it('windows hold every value, rise, and keep concentrations from going negative', () => {
-    fc.assert(fc.property(fc.array(finite(0, 1e5), { minLength: 1, maxLength: 20 }), (values) => {
-      const [low, high] = windowAround([values]);
-      expect(low).toBeLessThanOrEqual(Math.min(...values));
-      expect(high).toBeGreaterThanOrEqual(Math.max(...values));
-      expect(low).toBeLessThan(high);
-      expect(low).toBeGreaterThanOrEqual(0);
-    }));
-    fc.assert(fc.property(fc.array(finite(1e-6, 1e6), { minLength: 1, maxLength: 20 }), (values) => {
-      const [low, high] = windowAround([values], { scale: 'log' });
-      expect(low).toBeLessThanOrEqual(Math.min(...values));
-      expect(high).toBeGreaterThanOrEqual(Math.max(...values));
-      expect(low).toBeGreaterThan(0);
-      expect(high / low).toBeGreaterThanOrEqual(2);
-    }));
+    fc.assert(
+      fc.property(fc.array(finite(0, 1e5), { minLength: 1, maxLength: 20 }), (values) => {
+        const [low, high] = windowAround([values]);
+        expect(low).toBeLessThanOrEqual(Math.min(...values));
+        expect(high).toBeGreaterThanOrEqual(Math.max(...values));
+        expect(low).toBeLessThan(high);
+        expect(low).toBeGreaterThanOrEqual(0);
+      }),
+    );
+    fc.assert(
+      fc.property(fc.array(finite(1e-6, 1e6), { minLength: 1, maxLength: 20 }), (values) => {
+        const [low, high] = windowAround([values], { scale: 'log' });
+        expect(low).toBeLessThanOrEqual(Math.min(...values));
+        expect(high).toBeGreaterThanOrEqual(Math.max(...values));
+        expect(low).toBeGreaterThan(0);
+        expect(high / low).toBeGreaterThanOrEqual(2);
+      }),
+    );
     expect(windowAround([[NaN]], { whole: [40, 80] })).toEqual([40, 80]);
   });
 
@@ -81,16 +112,23 @@ describe('frames and axes', () => {
 });
 
 describe('plane geometry', () => {
-  const square = [[0, 0], [10, 0], [10, 10], [0, 10]] as const;
+  const square = [
+    [0, 0],
+    [10, 0],
+    [10, 10],
+    [0, 10],
+  ] as const;
   it('clips a polygon to a box: area never grows, a box inside leaves the box', () => {
     expect(polygonArea(clipPolygon(square, { left: 2, right: 5, top: 1, bottom: 4 }))).toBe(9);
     expect(clipPolygon(square, { left: 20, right: 30, top: 0, bottom: 5 })).toEqual([]);
     const point = fc.tuple(fc.integer({ min: -20, max: 20 }), fc.integer({ min: -20, max: 20 }));
-    fc.assert(fc.property(point, point, point, (a, b, c) => {
-      const clipped = clipPolygon([a, b, c], { left: -5, right: 5, top: -5, bottom: 5 });
-      expect(polygonArea(clipped)).toBeLessThanOrEqual(Math.min(100, polygonArea([a, b, c])) + 1e-9);
-      for (const [x, y] of clipped) expect(Math.max(Math.abs(x), Math.abs(y))).toBeLessThanOrEqual(5 + 1e-9);
-    }));
+    fc.assert(
+      fc.property(point, point, point, (a, b, c) => {
+        const clipped = clipPolygon([a, b, c], { left: -5, right: 5, top: -5, bottom: 5 });
+        expect(polygonArea(clipped)).toBeLessThanOrEqual(Math.min(100, polygonArea([a, b, c])) + 1e-9);
+        for (const [x, y] of clipped) expect(Math.max(Math.abs(x), Math.abs(y))).toBeLessThanOrEqual(5 + 1e-9);
+      }),
+    );
   });
 
   it('knows inside from outside, and what a segment meets', () => {
@@ -111,12 +149,36 @@ describe('plane geometry', () => {
 
   it('places labels clear of lines and of each other, or not at all', () => {
     const placer = new LabelPlacer({ left: 0, right: 200, top: 0, bottom: 100 });
-    placer.avoidLine([[0, 50], [200, 50]]);
-    const polygon = [[0, 0], [200, 0], [200, 100], [0, 100]] as const;
+    placer.avoidLine([
+      [0, 50],
+      [200, 50],
+    ]);
+    const polygon = [
+      [0, 0],
+      [200, 0],
+      [200, 100],
+      [0, 100],
+    ] as const;
     const first = placer.placeInside(polygon, [['andesite']], { size: 12 })!;
     const second = placer.placeInside(polygon, [['dacite']], { size: 12 })!;
     for (const { box } of [first, second]) expect(box.bottom < 50 || box.top > 50).toBe(true);
-    expect(first.box.right < second.box.left || second.box.right < first.box.left || first.box.bottom < second.box.top || second.box.bottom < first.box.top).toBe(true);
-    expect(placer.placeInside([[0, 0], [20, 0], [20, 8], [0, 8]], [['rhyolite']], { size: 12 })).toBeUndefined();
+    expect(
+      first.box.right < second.box.left ||
+        second.box.right < first.box.left ||
+        first.box.bottom < second.box.top ||
+        second.box.bottom < first.box.top,
+    ).toBe(true);
+    expect(
+      placer.placeInside(
+        [
+          [0, 0],
+          [20, 0],
+          [20, 8],
+          [0, 8],
+        ],
+        [['rhyolite']],
+        { size: 12 },
+      ),
+    ).toBeUndefined();
   });
 });

@@ -49,22 +49,31 @@ export interface TextBox {
 /** The boxes of all centred texts inside a panel (field names, labels), measured in the shipped font. Lines start at the row's place and run down. */
 export function labelBoxes(panel: Spec): TextBox[] {
   const place = pixelsOf(panel);
-  return unitsOf(panel).filter(({ mark }) => mark.type === 'text' && mark.clip === true).flatMap(({ mark, data }) =>
-    data.values.map((row: Spec): TextBox => {
-      const lines = String(row.t).split('\n');
-      const size: number = mark.fontSize;
-      const width = Math.max(...lines.map((line) => textWidth(line, { size, italic: mark.fontStyle === 'italic', bold: mark.fontWeight === 600 })));
-      const [x, y] = place(row.x, row.y);
-      // The height of small letters and capitals, not the whole line: what the eye sees as touching.
-      return { text: String(row.t), left: x - width / 2, right: x + width / 2, top: y - size * 0.45, bottom: y + (lines.length - 1) * mark.lineHeight + size * 0.45 };
-    }),
-  );
+  return unitsOf(panel)
+    .filter(({ mark }) => mark.type === 'text' && mark.clip === true)
+    .flatMap(({ mark, data }) =>
+      data.values.map((row: Spec): TextBox => {
+        const lines = String(row.t).split('\n');
+        const size: number = mark.fontSize;
+        const width = Math.max(...lines.map((line) => textWidth(line, { size, italic: mark.fontStyle === 'italic', bold: mark.fontWeight === 600 })));
+        const [x, y] = place(row.x, row.y);
+        // The height of small letters and capitals, not the whole line: what the eye sees as touching.
+        return {
+          text: String(row.t),
+          left: x - width / 2,
+          right: x + width / 2,
+          top: y - size * 0.45,
+          bottom: y + (lines.length - 1) * mark.lineHeight + size * 0.45,
+        };
+      }),
+    );
 }
 
 /** All straight pieces drawn as boundaries or lines, in pixels. */
 export function drawnSegments(panel: Spec): [number, number, number, number][] {
   const place = pixelsOf(panel);
-  const rules = unitsOf(panel).filter(({ mark, encoding }) => mark.type === 'rule' && encoding.x2 !== undefined && encoding.color === undefined)
+  const rules = unitsOf(panel)
+    .filter(({ mark, encoding }) => mark.type === 'rule' && encoding.x2 !== undefined && encoding.color === undefined)
     .flatMap((unit) => rowsOf(unit).map((row): [number, number, number, number] => [...place(row.x, row.y), ...place(row.x2, row.y2)]));
   return rules;
 }

@@ -24,7 +24,13 @@ describe('samples on a diagram', () => {
   });
 
   it('below detection are arrows at their limit, pointing to where the value lies', () => {
-    const limited = (limits: number[]) => ww.column({ symbol: 'Nb', values: [3, NaN], states: Uint8Array.of(cellState.measured, cellState.belowDetection), limits: Float64Array.from(limits) });
+    const limited = (limits: number[]) =>
+      ww.column({
+        symbol: 'Nb',
+        values: [3, NaN],
+        states: Uint8Array.of(cellState.measured, cellState.belowDetection),
+        limits: Float64Array.from(limits),
+      });
     const suite = ww.suiteOf({ columns: [limited([NaN, 0.8]), ww.column({ symbol: 'Yb', values: [2, 2] })] });
     const down = diagrams.xy(suite, 'Yb', 'Nb/Yb');
     const arrow = units(down).find((unit) => rowsOf(unit).some(({ d }) => d !== undefined))!;
@@ -61,7 +67,13 @@ describe('samples on a diagram', () => {
 
   it('of many groups are pooled beyond the largest, and the caption says so', () => {
     const labels = Array.from({ length: 60 }, (_, i) => (i < 30 ? `big ${i % 10}` : `small ${i}`));
-    const suite = ww.suiteOf({ columns: [ww.column({ symbol: 'SiO2', values: labels.map((_, i) => 50 + i / 4) }), ww.column({ symbol: 'MgO', values: labels.map((_, i) => 9 - i / 10) })], labels: { cone: labels } });
+    const suite = ww.suiteOf({
+      columns: [
+        ww.column({ symbol: 'SiO2', values: labels.map((_, i) => 50 + i / 4) }),
+        ww.column({ symbol: 'MgO', values: labels.map((_, i) => 9 - i / 10) }),
+      ],
+      labels: { cone: labels },
+    });
     const diagram = diagrams.xy(suite, 'SiO2', 'MgO', { group: 'cone' });
     const domain = markers(diagram).encoding.fill.scale.domain as string[];
     expect(domain).toHaveLength(14);
@@ -83,7 +95,13 @@ describe('samples on a diagram', () => {
 
   it('show name, group, values and verdict on hovering', () => {
     const diagram = diagrams.tas(madeSuite(ww, { samples: 20, groups: 2 }), { group: 'volcano' });
-    expect(markers(diagram).encoding.tooltip.map(({ title }: Spec) => title)).toEqual(['sample', 'volcano', 'verdict', 'SiO₂ (wt %, volatile-free)', 'Na₂O + K₂O (wt %, volatile-free)']);
+    expect(markers(diagram).encoding.tooltip.map(({ title }: Spec) => title)).toEqual([
+      'sample',
+      'volcano',
+      'verdict',
+      'SiO₂ (wt %, volatile-free)',
+      'Na₂O + K₂O (wt %, volatile-free)',
+    ]);
     expect(rowsOf(markers(diagram))[0]).toMatchObject({ t0: 'KE-1', t1: 'Ketu', t2: expect.stringMatching(/basalt|andesite|dacite/) });
     expect(markers(diagram).params.map(({ name }: Spec) => name)).toEqual(['zoom0', 'pick0']);
   });
@@ -94,9 +112,15 @@ describe('samples on a diagram', () => {
   });
 
   it('draws errors where they are known', () => {
-    const suite = ww.suiteOf({ columns: [ww.column({ symbol: 'SiO2', values: [50, 60], sigma: [0.5, NaN] }), ww.column({ symbol: 'MgO', values: [8, 3], sigma: [0.2, 0.1] })] });
+    const suite = ww.suiteOf({
+      columns: [ww.column({ symbol: 'SiO2', values: [50, 60], sigma: [0.5, NaN] }), ww.column({ symbol: 'MgO', values: [8, 3], sigma: [0.2, 0.1] })],
+    });
     const bars = units(diagrams.xy(suite, 'SiO2', 'MgO', { errors: 'bars' }))[0];
-    expect(rowsOf(bars)).toMatchObject([{ x: 49.5, x2: 50.5, y: 8 }, { y: 7.8, y2: 8.2 }, { y: 2.9, y2: 3.1 }]);
+    expect(rowsOf(bars)).toMatchObject([
+      { x: 49.5, x2: 50.5, y: 8 },
+      { y: 7.8, y2: 8.2 },
+      { y: 2.9, y2: 3.1 },
+    ]);
     const ellipse = units(diagrams.xy(suite, 'SiO2', 'MgO', { errors: 'ellipses' }))[0];
     // Every point of the ellipse lies one σ from its middle.
     for (const { x, y } of rowsOf(ellipse)) expect(((x - 50) / 0.5) ** 2 + ((y - 8) / 0.2) ** 2).toBeCloseTo(1, 3);
@@ -142,10 +166,18 @@ describe('Harker panels and patterns', () => {
 
   it('bridge a missing element by a dotted line, and draw limits as arrows', () => {
     const values: Record<string, number[]> = { La: [10], Ce: [22], Pr: [NaN], Nd: [14], Sm: [3.3] };
-    const suite = ww.suiteOf({ columns: [...Object.entries(values).map(([symbol, each]) => ww.column({ symbol, values: each })), ww.column({ symbol: 'Eu', values: [NaN], states: Uint8Array.of(cellState.belowDetection), limits: Float64Array.of(0.58) })] });
+    const suite = ww.suiteOf({
+      columns: [
+        ...Object.entries(values).map(([symbol, each]) => ww.column({ symbol, values: each })),
+        ww.column({ symbol: 'Eu', values: [NaN], states: Uint8Array.of(cellState.belowDetection), limits: Float64Array.of(0.58) }),
+      ],
+    });
     const all = units(diagrams.rareEarths(suite));
     const bridge = all.find(({ mark }) => mark.type === 'line' && mark.strokeDash !== undefined)!;
-    const at = (element: string, value: number) => [ww.rareEarths.indexOf(element as 'La'), Number((value / ww.reservoir('chondrite-c1-1989').values.get(element)!.value).toPrecision(6))];
+    const at = (element: string, value: number) => [
+      ww.rareEarths.indexOf(element as 'La'),
+      Number((value / ww.reservoir('chondrite-c1-1989').values.get(element)!.value).toPrecision(6)),
+    ];
     expect(rowsOf(bridge).map(({ x, y }) => [x, y])).toEqual([at('Ce', 22), at('Nd', 14)]);
     const arrow = all.find(({ mark }) => mark.type === 'point' && String(mark.shape).startsWith('M'))!;
     expect(rowsOf(arrow).map(({ x, y }) => [x, y])).toEqual([at('Eu', 0.58)]);
@@ -153,8 +185,19 @@ describe('Harker panels and patterns', () => {
 
   it('draw a model path on their own axes, with ticks at round F', () => {
     const F = Float64Array.of(1, 0.8, 0.6, 0.5);
-    const liquid = ww.suiteOf({ columns: [ww.column({ symbol: 'Yb', values: [2, 2.4, 3, 3.5] }), ww.column({ symbol: 'Sr', values: [400, 370, 330, 300] })] });
-    const path = { process: 'Rayleigh crystallisation', F, meaning: 'liquid left', liquid, coefficients: [], notes: [], lineage: [], toMimeBundle: () => ({}) };
+    const liquid = ww.suiteOf({
+      columns: [ww.column({ symbol: 'Yb', values: [2, 2.4, 3, 3.5] }), ww.column({ symbol: 'Sr', values: [400, 370, 330, 300] })],
+    });
+    const path = {
+      process: 'Rayleigh crystallisation',
+      F,
+      meaning: 'liquid left',
+      liquid,
+      coefficients: [],
+      notes: [],
+      lineage: [],
+      toMimeBundle: () => ({}),
+    };
     const diagram = diagrams.xy(madeSuite(ww, { samples: 10, groups: 1 }), 'Yb', 'Sr', { paths: [path] });
     const dots = units(diagram).find((unit) => unit.mark.type === 'point' && rowsOf(unit).some(({ name }) => name === '0.8'))!;
     expect(rowsOf(dots).map(({ name }) => name)).toEqual(['0.5', '0.6', '0.7', '0.8', '0.9']);

@@ -34,10 +34,22 @@ export function barsLayer(bars: readonly BarShape[], { direction = 'up', width =
   return {
     draw({ frame }) {
       const known = bars.filter(({ value }) => Number.isFinite(value));
-      const rows = known.map(({ place, value, base = 0, colour = groupColours[0], name = '' }) => ({ ...turn(place - width / 2, place + width / 2, base, value), v: specNumber(value), c: colour, n: name }));
-      const whiskers = known.filter(({ low, high }) => low !== undefined && high !== undefined).map(({ place, low, high }) => turn(place, place, low!, high!));
-      const tooltip = [...(known.some(({ name }) => name !== undefined) ? [{ field: 'n', type: 'nominal', title: 'name' }] : []), { field: 'v', type: 'quantitative', title: valueTitle, format: '.3~g' }];
-      const units: VegaSpec[] = [unit(frame, { type: 'rect', opacity: 0.9 }, rows, { ...ends, fill: { field: 'c', type: 'nominal', scale: null }, tooltip })];
+      const rows = known.map(({ place, value, base = 0, colour = groupColours[0], name = '' }) => ({
+        ...turn(place - width / 2, place + width / 2, base, value),
+        v: specNumber(value),
+        c: colour,
+        n: name,
+      }));
+      const whiskers = known
+        .filter(({ low, high }) => low !== undefined && high !== undefined)
+        .map(({ place, low, high }) => turn(place, place, low!, high!));
+      const tooltip = [
+        ...(known.some(({ name }) => name !== undefined) ? [{ field: 'n', type: 'nominal', title: 'name' }] : []),
+        { field: 'v', type: 'quantitative', title: valueTitle, format: '.3~g' },
+      ];
+      const units: VegaSpec[] = [
+        unit(frame, { type: 'rect', opacity: 0.9 }, rows, { ...ends, fill: { field: 'c', type: 'nominal', scale: null }, tooltip }),
+      ];
       if (whiskers.length > 0) units.push(unit(frame, { type: 'rule', color: ink.text, strokeWidth: 1, tooltip: null }, whiskers, ends));
       return units;
     },

@@ -35,7 +35,9 @@ type Segment = readonly [Point, Point];
  */
 export function fieldsLayer(fields: readonly FieldShape[], options: FieldsOptions = {}): Layer {
   const convention = (options.conventionEdges ?? []).flatMap(segmentsOf);
-  const boundaries = options.edges?.flatMap(segmentsOf) ?? boundarySegments(fields, options.outer).filter((side) => !convention.some((other) => sameSegment(side, other)));
+  const boundaries =
+    options.edges?.flatMap(segmentsOf) ??
+    boundarySegments(fields, options.outer).filter((side) => !convention.some((other) => sameSegment(side, other)));
   return {
     labelRank: 2,
     claim({ frame, placer }) {
@@ -43,9 +45,16 @@ export function fieldsLayer(fields: readonly FieldShape[], options: FieldsOption
     },
     draw(canvas) {
       const { frame } = canvas;
-      const rule = (sides: readonly Segment[], style: object) => unit(frame, { type: 'rule', color: ink.line, strokeWidth: options.width ?? 0.9, strokeCap: 'round', tooltip: null, ...style }, sides.map(ruleRow), {
-        x2: { field: 'x2' }, y2: { field: 'y2' },
-      });
+      const rule = (sides: readonly Segment[], style: object) =>
+        unit(
+          frame,
+          { type: 'rule', color: ink.line, strokeWidth: options.width ?? 0.9, strokeCap: 'round', tooltip: null, ...style },
+          sides.map(ruleRow),
+          {
+            x2: { field: 'x2' },
+            y2: { field: 'y2' },
+          },
+        );
       const names = options.names === false ? [] : placeNames(canvas, fields);
       return [
         ...(boundaries.length === 0 ? [] : [rule(boundaries, {})]),
@@ -58,7 +67,13 @@ export function fieldsLayer(fields: readonly FieldShape[], options: FieldsOption
 
 function placeNames({ frame, placer }: Canvas, fields: readonly FieldShape[]): PlacedLabel[] {
   const style = { size: textSize.fieldName, italic: true };
-  const visible = fields.map((field) => ({ field, polygon: clipPolygon(field.polygon.map((point) => toPixels(frame, point)), frameBox(frame)) }));
+  const visible = fields.map((field) => ({
+    field,
+    polygon: clipPolygon(
+      field.polygon.map((point) => toPixels(frame, point)),
+      frameBox(frame),
+    ),
+  }));
   // Small fields have the least choice of place, so they choose first.
   visible.sort((a, b) => polygonArea(a.polygon) - polygonArea(b.polygon));
   const names: PlacedLabel[] = [];
@@ -66,8 +81,9 @@ function placeNames({ frame, placer }: Canvas, fields: readonly FieldShape[]): P
     const { label } = field;
     const ways = [...(label === undefined ? [] : [label.text]), ...waysToBreak(field.name, style)];
     const best = label === undefined ? undefined : toPixels(frame, [label.x, label.y]);
-    const placed = placer.placeInside(polygon, ways, style, best)
-      ?? (field.symbol === undefined ? undefined : placer.placeInside(polygon, [[field.symbol]], style));
+    const placed =
+      placer.placeInside(polygon, ways, style, best) ??
+      (field.symbol === undefined ? undefined : placer.placeInside(polygon, [[field.symbol]], style));
     if (placed !== undefined) names.push(placed);
   }
   return names;
@@ -87,10 +103,12 @@ const sameSegment = ([a, b]: Segment, [c, d]: Segment) => (near(a, c) && near(b,
 /** The sides of all polygons, cut at each other's corners so that a shared stretch comes once; sides on the outer frame left out. */
 function boundarySegments(fields: readonly FieldShape[], outer: FieldsOptions['outer']): Segment[] {
   const corners = fields.flatMap(({ polygon }) => polygon);
-  const onOuter = ([a, b]: Segment) => outer !== undefined && ([0, 1] as const).some((axis) => {
-    const [low, high] = axis === 0 ? outer.x : outer.y;
-    return a[axis] === b[axis] && (a[axis] === low || a[axis] === high);
-  });
+  const onOuter = ([a, b]: Segment) =>
+    outer !== undefined &&
+    ([0, 1] as const).some((axis) => {
+      const [low, high] = axis === 0 ? outer.x : outer.y;
+      return a[axis] === b[axis] && (a[axis] === low || a[axis] === high);
+    });
   const sides: Segment[] = [];
   const seen = new Set<string>();
   for (const { polygon } of fields) {

@@ -27,7 +27,11 @@ export function linesLayer(lines: readonly LineShape[]): Layer {
       }
       const units = [...styles.values()].map((alike) => {
         const { dash, colour = ink.line, width = 1.1 } = alike[0];
-        return lineUnit(canvas.frame, alike.map(({ points }) => points), { color: colour, strokeWidth: width, ...(dash === undefined ? {} : { strokeDash: dash }) });
+        return lineUnit(
+          canvas.frame,
+          alike.map(({ points }) => points),
+          { color: colour, strokeWidth: width, ...(dash === undefined ? {} : { strokeDash: dash }) },
+        );
       });
       const labels = lines.flatMap(({ label, points }) => (label === undefined ? [] : labelOnLine(canvas, label, points)));
       return labels.length === 0 ? units : [...units, labelUnit(canvas.frame, labels, { color: ink.caption, fontSize: textSize.note })];
@@ -74,9 +78,12 @@ export interface BandShape {
 /** Shaded bands: quantile ranges, confidence intervals, ranges of silica. */
 export function bandsLayer(bands: readonly BandShape[]): Layer {
   return {
-    draw: ({ frame }) => bands.map(({ x, low, high, colour = ink.line, opacity = 0.22 }) => {
-      const rows = Array.from(x, (at, i) => ({ x: specNumber(at), y: specNumber(low[i]), y2: specNumber(high[i]) }));
-      return unit(frame, { type: 'area', color: colour, opacity, interpolate: 'linear', line: false, tooltip: null }, rows, { y2: { field: 'y2' } });
-    }),
+    draw: ({ frame }) =>
+      bands.map(({ x, low, high, colour = ink.line, opacity = 0.22 }) => {
+        const rows = Array.from(x, (at, i) => ({ x: specNumber(at), y: specNumber(low[i]), y2: specNumber(high[i]) }));
+        return unit(frame, { type: 'area', color: colour, opacity, interpolate: 'linear', line: false, tooltip: null }, rows, {
+          y2: { field: 'y2' },
+        });
+      }),
   };
 }

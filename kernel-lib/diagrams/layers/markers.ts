@@ -24,9 +24,22 @@ export function markersLayer(markers: readonly MarkerShape[], options: { readonl
     claim: ({ frame, placer }) => visible(frame, markers).forEach((marker) => placer.avoidBox(boxAround(toPixels(frame, [marker.x, marker.y]), 5))),
     draw(canvas) {
       const shown = visible(canvas.frame, markers);
-      const rows = shown.map(({ x, y, label, note }) => ({ x: specNumber(x), y: specNumber(y), name: label, ...(note === undefined ? {} : { note }) }));
-      const tooltip = [{ field: 'name', type: 'nominal', title: 'name' }, ...(shown.some(({ note }) => note !== undefined) ? [{ field: 'note', type: 'nominal', title: 'source' }] : [])];
-      const stars = unit(canvas.frame, { type: 'point', filled: true, shape, size: area, color: colour, opacity: 1, stroke: '#ffffff', strokeWidth: 0.8 }, rows, { tooltip });
+      const rows = shown.map(({ x, y, label, note }) => ({
+        x: specNumber(x),
+        y: specNumber(y),
+        name: label,
+        ...(note === undefined ? {} : { note }),
+      }));
+      const tooltip = [
+        { field: 'name', type: 'nominal', title: 'name' },
+        ...(shown.some(({ note }) => note !== undefined) ? [{ field: 'note', type: 'nominal', title: 'source' }] : []),
+      ];
+      const stars = unit(
+        canvas.frame,
+        { type: 'point', filled: true, shape, size: area, color: colour, opacity: 1, stroke: '#ffffff', strokeWidth: 0.8 },
+        rows,
+        { tooltip },
+      );
       return rows.length === 0 ? [] : [stars, labelUnit(canvas.frame, besideEach(canvas, shown, 8), { color: ink.text, fontSize: textSize.note })];
     },
   };
@@ -70,8 +83,12 @@ export function pathsLayer(paths: readonly PathShape[]): Layer {
       return paths.flatMap((path) => {
         const { points, label, colour = ink.path, dash } = path;
         const ticks = visible(frame, path.ticks ?? []);
-        const dots = unit(frame, { type: 'point', shape: 'circle', size: 16, filled: true, fill: ink.ground, stroke: colour, strokeWidth: 1.1, opacity: 1 },
-          ticks.map((tick) => ({ x: specNumber(tick.x), y: specNumber(tick.y), name: tick.label })), { tooltip: [{ field: 'name', type: 'nominal', title: label ?? 'path' }] });
+        const dots = unit(
+          frame,
+          { type: 'point', shape: 'circle', size: 16, filled: true, fill: ink.ground, stroke: colour, strokeWidth: 1.1, opacity: 1 },
+          ticks.map((tick) => ({ x: specNumber(tick.x), y: specNumber(tick.y), name: tick.label })),
+          { tooltip: [{ field: 'name', type: 'nominal', title: label ?? 'path' }] },
+        );
         const name = label === undefined ? [] : nameAtEnd(canvas, points, label);
         const values = besideEach(canvas, ticks, 5);
         return [
@@ -87,7 +104,10 @@ export function pathsLayer(paths: readonly PathShape[]): Layer {
 
 /** Beside the end of the path, or farther back where its end is crowded. */
 function nameAtEnd({ frame, placer }: Canvas, points: readonly Point[], label: string): PlacedLabel[] {
-  const anchors = [...points].reverse().filter(([x, y]) => inWindow(frame, x, y)).map((point) => toPixels(frame, point));
+  const anchors = [...points]
+    .reverse()
+    .filter(([x, y]) => inWindow(frame, x, y))
+    .map((point) => toPixels(frame, point));
   const some = anchors.filter((_, i) => i % Math.ceil(anchors.length / 20) === 0);
   return [placer.placeBeside(some, [label], { size: textSize.note, bold: true }, 7)].filter((placed) => placed !== undefined);
 }
@@ -111,12 +131,23 @@ export function vectorsLayer(vectors: readonly VectorShape[]): Layer {
         // The arrow head points up in its own frame.
         return { x: specNumber(to[0]), y: specNumber(to[1]), a: specNumber((Math.atan2(bx - ax, ay - by) * 180) / Math.PI) };
       });
-      const labels = vectors.flatMap(({ to, label }) => (label === undefined ? [] : placer.placeBeside([toPixels(frame, to)], [label], { size: textSize.note }, 7) ?? []));
+      const labels = vectors.flatMap(({ to, label }) =>
+        label === undefined ? [] : (placer.placeBeside([toPixels(frame, to)], [label], { size: textSize.note }, 7) ?? []),
+      );
       return [
-        lineUnit(frame, vectors.map(({ from, to }) => [from, to]), { color: ink.path, strokeWidth: 1.3 }),
-        unit(frame, { type: 'point', filled: true, shape: 'M0,-1L0.7,0.8L0,0.4L-0.7,0.8Z', size: 70, color: ink.path, opacity: 1, tooltip: null }, heads, {
-          angle: { field: 'a', type: 'quantitative', scale: { domain: [0, 360], range: [0, 360] } },
-        }),
+        lineUnit(
+          frame,
+          vectors.map(({ from, to }) => [from, to]),
+          { color: ink.path, strokeWidth: 1.3 },
+        ),
+        unit(
+          frame,
+          { type: 'point', filled: true, shape: 'M0,-1L0.7,0.8L0,0.4L-0.7,0.8Z', size: 70, color: ink.path, opacity: 1, tooltip: null },
+          heads,
+          {
+            angle: { field: 'a', type: 'quantitative', scale: { domain: [0, 360], range: [0, 360] } },
+          },
+        ),
         ...(labels.length === 0 ? [] : [labelUnit(frame, labels, { color: ink.path })]),
       ];
     },

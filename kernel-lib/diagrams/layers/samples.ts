@@ -83,7 +83,8 @@ function drawMarkers({ frame, panel }: Canvas, points: SamplePoints, options: Sa
     if (groups !== undefined) row['g'] = groups.names[group![i]];
     if (open !== undefined && open[i] === 1) row['o'] = groups === undefined ? oneColour : groups.colourOf(groups.names[group![i]]);
     titles.forEach((title, k) => (row[`t${k}`] = tooltips.get(title)![i]));
-    if (side !== undefined && side[i] !== pointSide.known) bounded.push({ ...row, d: side[i], c: groups === undefined ? oneColour : groups.colourOf(groups.names[group![i]]) });
+    if (side !== undefined && side[i] !== pointSide.known)
+      bounded.push({ ...row, d: side[i], c: groups === undefined ? oneColour : groups.colourOf(groups.names[group![i]]) });
     else known.push(row);
   }
   const area = options.inPanel === true ? Math.min(26, markerArea(drawn)) : markerArea(drawn);
@@ -98,7 +99,10 @@ function drawMarkers({ frame, panel }: Canvas, points: SamplePoints, options: Sa
   const markers: VegaSpec = {
     ...unit(frame, { type: 'point', size: area, fillOpacity: 0.88, strokeOpacity: 1 }, known, {
       shape: groups === undefined ? { value: 'circle' } : { field: 'g', type: 'nominal', scale: groups.shapes, legend },
-      fill: { condition: { test: isOpen, value: ink.ground }, ...(groups === undefined ? { value: oneColour } : { field: 'g', type: 'nominal', scale: groups.colours, legend }) },
+      fill: {
+        condition: { test: isOpen, value: ink.ground },
+        ...(groups === undefined ? { value: oneColour } : { field: 'g', type: 'nominal', scale: groups.colours, legend }),
+      },
       // Colours that come with the row, past any scale, leave the legend alone.
       stroke: { condition: { test: isOpen, field: 'o', type: 'nominal', scale: null }, value: ink.ground },
       strokeWidth: { condition: { test: isOpen, value: 1.4 }, value: 0.6 },
@@ -130,14 +134,17 @@ function boundedUnits(frame: Frame, rows: readonly object[], area: number, toolt
   const fill = { field: 'c', type: 'nominal', scale: null };
   return Object.values(pointSide).flatMap((side) => {
     const these = rows.filter((row) => (row as { d: number }).d === side);
-    return these.length === 0 ? [] : [unit(frame, { type: 'point', shape: arrows[side], size: Math.max(110, area * 2.4), strokeWidth: 0 }, these, { fill, ...opacity, tooltip })];
+    return these.length === 0
+      ? []
+      : [unit(frame, { type: 'point', shape: arrows[side], size: Math.max(110, area * 2.4), strokeWidth: 0 }, these, { fill, ...opacity, tooltip })];
   });
 }
 
 function errorUnit(frame: Frame, points: SamplePoints, kind: 'bars' | 'ellipses', opacity: object): VegaSpec {
   const { x, y, sigmaX, sigmaY, group, groups } = points;
   const color = { field: 'c', type: 'nominal', scale: null };
-  const ofGroup = (i: number) => (groups === undefined ? { c: oneColour } : { g: groups.names[group![i]], c: groups.colourOf(groups.names[group![i]]) });
+  const ofGroup = (i: number) =>
+    groups === undefined ? { c: oneColour } : { g: groups.names[group![i]], c: groups.colourOf(groups.names[group![i]]) };
   if (kind === 'bars') {
     const bars: object[] = [];
     for (let i = 0; i < x.length; i++) {
@@ -147,7 +154,12 @@ function errorUnit(frame: Frame, points: SamplePoints, kind: 'bars' | 'ellipses'
       if (sx > 0) bars.push({ x: specNumber(x[i] - sx), x2: specNumber(x[i] + sx), y: specNumber(y[i]), y2: specNumber(y[i]), ...ofGroup(i) });
       if (sy > 0) bars.push({ x: specNumber(x[i]), x2: specNumber(x[i]), y: specNumber(y[i] - sy), y2: specNumber(y[i] + sy), ...ofGroup(i) });
     }
-    return unit(frame, { type: 'rule', strokeWidth: 0.9, strokeOpacity: 0.7, tooltip: null }, bars, { x2: { field: 'x2' }, y2: { field: 'y2' }, color, ...opacity });
+    return unit(frame, { type: 'rule', strokeWidth: 0.9, strokeOpacity: 0.7, tooltip: null }, bars, {
+      x2: { field: 'x2' },
+      y2: { field: 'y2' },
+      color,
+      ...opacity,
+    });
   }
   const byGroup = new Map<number, Point[][]>();
   let ellipses = 0;
@@ -155,14 +167,22 @@ function errorUnit(frame: Frame, points: SamplePoints, kind: 'bars' | 'ellipses'
     const sx = sigmaX?.[i] ?? NaN;
     const sy = sigmaY?.[i] ?? NaN;
     if (!isDrawable(frame, x[i], y[i]) || !(sx > 0 && sy > 0)) continue;
-    if (++ellipses > mostEllipses) throw new RangeError(`Error ellipses are drawn for up to ${mostEllipses} samples; choose errors: "bars", or draw fewer samples.`);
+    if (++ellipses > mostEllipses)
+      throw new RangeError(`Error ellipses are drawn for up to ${mostEllipses} samples; choose errors: "bars", or draw fewer samples.`);
     const g = group?.[i] ?? 0;
     if (!byGroup.has(g)) byGroup.set(g, []);
-    byGroup.get(g)!.push(Array.from({ length: 33 }, (_, k): Point => [x[i] + sx * Math.cos((k * Math.PI) / 16), y[i] + sy * Math.sin((k * Math.PI) / 16)]));
+    byGroup
+      .get(g)!
+      .push(Array.from({ length: 33 }, (_, k): Point => [x[i] + sx * Math.cos((k * Math.PI) / 16), y[i] + sy * Math.sin((k * Math.PI) / 16)]));
   }
-  const rows = [...byGroup].flatMap(([g, outlines]) => lineRows(outlines, groups === undefined ? { c: oneColour } : { g: groups.names[g], c: groups.colourOf(groups.names[g]) }));
+  const rows = [...byGroup].flatMap(([g, outlines]) =>
+    lineRows(outlines, groups === undefined ? { c: oneColour } : { g: groups.names[g], c: groups.colourOf(groups.names[g]) }),
+  );
   return unit(frame, { type: 'line', strokeWidth: 0.8, strokeOpacity: 0.8, tooltip: null }, rows, {
-    color, detail: { field: groups === undefined ? 'c' : 'g', type: 'nominal' }, order: { field: 'i', type: 'quantitative' }, ...opacity,
+    color,
+    detail: { field: groups === undefined ? 'c' : 'g', type: 'nominal' },
+    order: { field: 'i', type: 'quantitative' },
+    ...opacity,
   });
 }
 
@@ -200,15 +220,18 @@ function drawBins({ frame, panel }: Canvas, points: SamplePoints, options: Sampl
     bins.push({ x: specNumber(x0), x2: specNumber(x1), y: specNumber(y0), y2: specNumber(y1), n: count });
   });
   const legend = { title: 'samples in bin', gradientLength: 140, tickCount: 4, format: 'd' };
-  return [{
-    data: { values: bins },
-    mark: { type: 'rect', clip: true, strokeWidth: 0 },
-    encoding: {
-      ...positionChannels(frame),
-      x2: { field: 'x2' }, y2: { field: 'y2' },
-      color: { field: 'n', type: 'quantitative', scale: { type: 'log', scheme: 'viridis', reverse: true, domain: [1, Math.max(2, most)] }, legend },
-      tooltip: [{ field: 'n', type: 'quantitative', title: 'samples' }],
+  return [
+    {
+      data: { values: bins },
+      mark: { type: 'rect', clip: true, strokeWidth: 0 },
+      encoding: {
+        ...positionChannels(frame),
+        x2: { field: 'x2' },
+        y2: { field: 'y2' },
+        color: { field: 'n', type: 'quantitative', scale: { type: 'log', scheme: 'viridis', reverse: true, domain: [1, Math.max(2, most)] }, legend },
+        tooltip: [{ field: 'n', type: 'quantitative', title: 'samples' }],
+      },
+      params: zoomParam(panel, options),
     },
-    params: zoomParam(panel, options),
-  }];
+  ];
 }

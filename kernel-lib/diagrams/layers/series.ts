@@ -74,10 +74,19 @@ export function seriesLayer(series: readonly SeriesShape[], options: SeriesOptio
       const stretched = own.map(({ values, group }) => ({ ...stretches(values), group }));
       const groupNames = [...new Set(own.map(({ group }) => group))];
       const rows = (kind: 'solid' | 'bridges') =>
-        groupNames.flatMap((name) => lineRows(stretched.filter(({ group }) => group === name).flatMap((each) => each[kind]), { c: colourOf(name), ...(name === undefined ? {} : { g: name }) }));
-      const lineStyle = (style: object, kind: 'solid' | 'bridges') => unit(frame, { type: 'line', strokeJoin: 'round', tooltip: null, ...style }, rows(kind), {
-        color, detail: { field: groups === undefined ? 'c' : 'g', type: 'nominal' }, order: { field: 'i', type: 'quantitative' }, ...filtered,
-      });
+        groupNames.flatMap((name) =>
+          lineRows(
+            stretched.filter(({ group }) => group === name).flatMap((each) => each[kind]),
+            { c: colourOf(name), ...(name === undefined ? {} : { g: name }) },
+          ),
+        );
+      const lineStyle = (style: object, kind: 'solid' | 'bridges') =>
+        unit(frame, { type: 'line', strokeJoin: 'round', tooltip: null, ...style }, rows(kind), {
+          color,
+          detail: { field: groups === undefined ? 'c' : 'g', type: 'nominal' },
+          order: { field: 'i', type: 'quantitative' },
+          ...filtered,
+        });
       const bridges = lineStyle({ strokeWidth: 0.9, strokeDash: [2, 3] }, 'bridges');
       if ((bridges['data'] as { values: unknown[] }).values.length > 0) units.push(bridges);
       units.push(lineStyle({ strokeWidth: many ? 0.8 : 1.5 }, 'solid'));
@@ -85,12 +94,20 @@ export function seriesLayer(series: readonly SeriesShape[], options: SeriesOptio
       for (const { values, name } of references) {
         const { solid } = stretches(values);
         units.push(lineUnit(frame, solid, { color: ink.path, strokeWidth: 1.2, strokeDash: [6, 3] }));
-        const anchors = solid.flat().reverse().filter(([x, y]) => inWindow(frame, x, y)).map((point) => toPixels(frame, point));
+        const anchors = solid
+          .flat()
+          .reverse()
+          .filter(([x, y]) => inWindow(frame, x, y))
+          .map((point) => toPixels(frame, point));
         const placed = placer.placeBeside(anchors, [name.replace(/\s*\([^)]*\)\s*$/, '')], { size: textSize.note }, 6);
         if (placed !== undefined) names.push(placed);
       }
       if (names.length > 0) units.push(labelUnit(frame, names, { color: ink.path }));
-      return [...units, ...limitUnits(canvas, own, colourOf, filtered), markerUnit(canvas, own, { groups, places, valueTitle, filtered, many, few: series.length <= mostMarkedCurves })];
+      return [
+        ...units,
+        ...limitUnits(canvas, own, colourOf, filtered),
+        markerUnit(canvas, own, { groups, places, valueTitle, filtered, many, few: series.length <= mostMarkedCurves }),
+      ];
     },
   };
 }
@@ -110,13 +127,32 @@ function bandUnit({ frame }: Canvas, { low, high }: NonNullable<SeriesShape['ban
   return unit(frame, { type: 'area', color: colour, opacity: 0.16, interpolate: 'linear', tooltip: null }, rows, { y2: { field: 'y2' } });
 }
 
-function limitUnits({ frame }: Canvas, series: readonly SeriesShape[], colourOf: (group: string | undefined) => string, filtered: object): VegaSpec[] {
-  const rows = series.flatMap(({ limits, group, name }) => Array.from(limits ?? [], (limit, x) => ({ x, y: limit, name, c: colourOf(group), ...(group === undefined ? {} : { g: group }) })))
+function limitUnits(
+  { frame }: Canvas,
+  series: readonly SeriesShape[],
+  colourOf: (group: string | undefined) => string,
+  filtered: object,
+): VegaSpec[] {
+  const rows = series
+    .flatMap(({ limits, group, name }) =>
+      Array.from(limits ?? [], (limit, x) => ({ x, y: limit, name, c: colourOf(group), ...(group === undefined ? {} : { g: group }) })),
+    )
     .filter(({ y }) => y > 0)
     .map((row) => ({ ...row, y: specNumber(row.y) }));
   const arrow = 'M-0.7,-0.15L0.7,-0.15L0.7,0.1L0.12,0.1L0.12,1L0.5,1L0,1.8L-0.5,1L-0.12,1L-0.12,0.1L-0.7,0.1Z';
-  const tooltip = [{ field: 'name', type: 'nominal', title: 'sample' }, { field: 'y', type: 'quantitative', title: 'below', format: '.3~g' }];
-  return rows.length === 0 ? [] : [unit(frame, { type: 'point', filled: true, shape: arrow, size: 80 }, rows, { fill: { field: 'c', type: 'nominal', scale: null }, tooltip, ...filtered })];
+  const tooltip = [
+    { field: 'name', type: 'nominal', title: 'sample' },
+    { field: 'y', type: 'quantitative', title: 'below', format: '.3~g' },
+  ];
+  return rows.length === 0
+    ? []
+    : [
+        unit(frame, { type: 'point', filled: true, shape: arrow, size: 80 }, rows, {
+          fill: { field: 'c', type: 'nominal', scale: null },
+          tooltip,
+          ...filtered,
+        }),
+      ];
 }
 
 interface MarkerStyle {
@@ -129,14 +165,31 @@ interface MarkerStyle {
   readonly few: boolean;
 }
 
-function markerUnit({ frame, panel }: Canvas, series: readonly SeriesShape[], { groups, places, valueTitle, filtered, many, few }: MarkerStyle): VegaSpec {
-  const rows = (few ? series : []).flatMap(({ values, group, name, open }) => Array.from(values, (y, x) => ({ x, y, n: name, e: places[x], ...(group === undefined ? {} : { g: group }), ...(open === true ? { o: group === undefined ? groupColours[0] : groups!.colourOf(group) } : {}) })))
+function markerUnit(
+  { frame, panel }: Canvas,
+  series: readonly SeriesShape[],
+  { groups, places, valueTitle, filtered, many, few }: MarkerStyle,
+): VegaSpec {
+  const rows = (few ? series : [])
+    .flatMap(({ values, group, name, open }) =>
+      Array.from(values, (y, x) => ({
+        x,
+        y,
+        n: name,
+        e: places[x],
+        ...(group === undefined ? {} : { g: group }),
+        ...(open === true ? { o: group === undefined ? groupColours[0] : groups!.colourOf(group) } : {}),
+      })),
+    )
     .filter(({ y }) => y > 0)
     .map((row) => ({ ...row, y: specNumber(row.y) }));
   const legend = groups?.legend ?? null;
   return {
     ...unit(frame, { type: 'point', size: many ? 10 : 40, strokeWidth: many ? 0 : 0.6 }, rows, {
-      fill: { condition: { test: 'isValid(datum.o)', value: ink.ground }, ...(groups === undefined ? { value: groupColours[0] } : { field: 'g', type: 'nominal', scale: groups.colours, legend }) },
+      fill: {
+        condition: { test: 'isValid(datum.o)', value: ink.ground },
+        ...(groups === undefined ? { value: groupColours[0] } : { field: 'g', type: 'nominal', scale: groups.colours, legend }),
+      },
       stroke: { condition: { test: 'isValid(datum.o)', field: 'o', type: 'nominal', scale: null }, value: ink.ground },
       ...(groups === undefined ? { shape: { value: 'circle' } } : { shape: { field: 'g', type: 'nominal', scale: groups.shapes, legend } }),
       tooltip: [
@@ -147,6 +200,9 @@ function markerUnit({ frame, panel }: Canvas, series: readonly SeriesShape[], { 
       ],
       ...filtered,
     }),
-    params: [{ name: `zoom${panel}`, select: 'interval', bind: 'scales' }, ...(groups === undefined || panel > 0 ? [] : [{ name: 'pick0', select: { type: 'point', fields: ['g'] }, bind: 'legend' }])],
+    params: [
+      { name: `zoom${panel}`, select: 'interval', bind: 'scales' },
+      ...(groups === undefined || panel > 0 ? [] : [{ name: 'pick0', select: { type: 'point', fields: ['g'] }, bind: 'legend' }]),
+    ],
   };
 }
