@@ -57,6 +57,7 @@ export * from './sample-points';
 export * from './screening';
 export * from './screening-map';
 export * from './save';
+export * from './probability-bars';
 export { scheme, type SchemeDiagramOptions } from './scheme';
 export * from './ternary';
 export { fontFamily, groupColours, groupShapes, ink, textSize, themeConfig } from './theme';
