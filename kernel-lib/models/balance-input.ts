@@ -7,7 +7,8 @@ import { amountOf, errorOf, oneAnalysis, type Composition } from './one-analysis
 
 /** A solid solution left free between two compositions; where it settles is part of the answer. */
 export interface MineralRange {
-  readonly between: readonly [MineralChoice, MineralChoice];
+  /** Its two ends. (A list rather than a pair, so that a range written in a constant of its own passes the type check of a cell.) */
+  readonly between: readonly MineralChoice[];
 }
 
 /** Phases of a mass balance, by name. */
