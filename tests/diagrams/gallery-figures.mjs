@@ -54,6 +54,13 @@ export function figures(ww) {
     'harker-many': () => diagrams.harker(madeSuite(ww, { samples: 8000, groups: 5 }), { group: 'volcano', show: ['MgO', 'K2O', 'Sr'] }),
     'harker-path': () => diagrams.harker(five, { group: 'volcano', show: ['MgO', 'K2O', 'CaO', 'Al2O3'], columns: 2, paths: [crystallisation(ww, five)] }),
     'tas-path': () => diagrams.tas(five, { group: 'volcano', paths: [crystallisation(ww, five)] }),
+    'sry-five': () => diagrams.strontiumYttrium(five, { group: 'volcano' }),
+    'sry-many': () => diagrams.strontiumYttrium(madeSuite(ww, { samples: 8000, groups: 5 })),
+    'sry-none': () => diagrams.strontiumYttrium(none, { group: 'volcano' }),
+    'layb-twelve': () => diagrams.lanthanumYtterbium(twelve, { group: 'volcano' }),
+    'vsc-five': () => diagrams.vanadiumScandium(five, { group: 'volcano', names: 'all' }),
+    'sry-silica-single': () => diagrams.strontiumYttriumSilica(single, { group: 'volcano' }),
+    'sry-silica-twelve': () => diagrams.strontiumYttriumSilica(twelve, { group: 'volcano' }),
     'xy-path': () => diagrams.xy(five, 'Yb', 'Sr', { group: 'volcano', paths: [crystallisation(ww, five)] }),
   };
 }
