@@ -26,7 +26,7 @@ export interface FertilityIndicator {
   readonly name: string;
   /** `criterion` gives verdicts; `shown` gives values only; `trend` is read on a whole group. */
   readonly kind: 'criterion' | 'shown' | 'trend';
-  /** Indicators of one family share their evidence; families share no element. */
+  /** Indicators of one family repeat each other's evidence; those with a default weight stand in families that share no element. */
   readonly family: string;
   readonly expression: string;
   readonly against?: string;
