@@ -23,8 +23,12 @@ export interface IsotopePlotOptions extends SampleOptions {
 }
 
 const axesOf: Readonly<Record<IsotopePlotName, readonly [string, string]>> = {
-  'strontium-neodymium': ['87Sr/86Sr', '143Nd/144Nd'], 'strontium-epsilon': ['87Sr/86Sr', 'epsilon-Nd'], 'neodymium-hafnium': ['epsilon-Nd', 'epsilon-Hf'],
-  'lead-207': ['206Pb/204Pb', '207Pb/204Pb'], 'lead-208': ['206Pb/204Pb', '208Pb/204Pb'], 'lead-neodymium': ['206Pb/204Pb', '143Nd/144Nd'],
+  'strontium-neodymium': ['87Sr/86Sr', '143Nd/144Nd'],
+  'strontium-epsilon': ['87Sr/86Sr', 'epsilon-Nd'],
+  'neodymium-hafnium': ['epsilon-Nd', 'epsilon-Hf'],
+  'lead-207': ['206Pb/204Pb', '207Pb/204Pb'],
+  'lead-208': ['206Pb/204Pb', '208Pb/204Pb'],
+  'lead-neodymium': ['206Pb/204Pb', '143Nd/144Nd'],
 };
 
 const defaultReservoirs = ['depleted-mantle-2005', 'all-morb-2013', 'subducting-sediment-1998'] as const;
@@ -41,11 +45,15 @@ const defaultReservoirs = ['depleted-mantle-2005', 'all-morb-2013', 'subducting-
  * @example diagrams.isotopePlot(suite, 'strontium-neodymium', { group: 'volcano' })
  */
 export function isotopePlot(suite: Suite, name: IsotopePlotName, options: IsotopePlotOptions = {}): Diagram {
-  if (!(isotopePlotNames as readonly string[]).includes(name)) throw new RangeError(`isotopePlot: there is no plot "${String(name)}". Known: ${isotopePlotNames.join(', ')}.`);
+  if (!(isotopePlotNames as readonly string[]).includes(name))
+    throw new RangeError(`isotopePlot: there is no plot "${String(name)}". Known: ${isotopePlotNames.join(', ')}.`);
   const [x, y] = axesOf[name];
   const whole = [x, y].some((axis) => axis.startsWith('epsilon') && !suite.has(axis)) ? withIsotopes(suite) : suite;
   const lacking = [x, y].filter((axis) => resolveColumn(whole, axis) === undefined);
-  if (lacking.length > 0) throw new RangeError(`isotopePlot: "${name}" needs ${lacking.join(' and ')}, which this suite does not hold. It holds: ${suite.analytes.join(', ')}.`);
+  if (lacking.length > 0)
+    throw new RangeError(
+      `isotopePlot: "${name}" needs ${lacking.join(' and ')}, which this suite does not hold. It holds: ${suite.analytes.join(', ')}.`,
+    );
   const marks = marksOf(options.reservoirs ?? defaultReservoirs, x, y);
   checkWindow('isotopePlot', options.window);
   const asWritten = (axis: string) => (axis.includes('/') ? axis : `[${axis}]`);
@@ -57,16 +65,28 @@ export function isotopePlot(suite: Suite, name: IsotopePlotName, options: Isotop
   const window = { x: chosen.x ?? around(0), y: chosen.y ?? around(1) };
   const line = referenceLine(name, window.x);
   const made = xy(whole, asWritten(x), asWritten(y), {
-    ...options, window, reservoirs: marks.markers, lines: line === undefined ? [] : [line], paths: options.paths,
+    ...options,
+    window,
+    reservoirs: marks.markers,
+    lines: line === undefined ? [] : [line],
+    paths: options.paths,
     axisTitles: { x: symbolText(x), y: symbolText(y) },
-    caption: [line === undefined ? '' : 'Line: Northern Hemisphere Reference Line (Hart 1984).', marks.caption, outside.length === 0 ? '' : `Outside the frame: ${outside.join(', ')}.`].filter((text) => text !== ''),
+    caption: [
+      line === undefined ? '' : 'Line: Northern Hemisphere Reference Line (Hart 1984).',
+      marks.caption,
+      outside.length === 0 ? '' : `Outside the frame: ${outside.join(', ')}.`,
+    ].filter((text) => text !== ''),
   });
   const sources = [...(line === undefined ? [] : [publishedConstant('nhrl-207-slope').source]), ...marks.sources];
-  const because = step('diagrams.isotopePlot', { name, x, y, reservoirs: marks.markers.map(({ label }) => label) }, { sources: [...new Set(sources)], tables: ['reservoirs.csv', 'constants.csv'] });
+  const because = step(
+    'diagrams.isotopePlot',
+    { name, x, y, reservoirs: marks.markers.map(({ label }) => label) },
+    { sources: [...new Set(sources)], tables: ['reservoirs.csv', 'constants.csv'] },
+  );
   return diagramOf({ ...made, name: `${axisTitle(y)} against ${axisTitle(x)}`, lineage: [...whole.lineage, because] });
 }
 
-/** A reservoir may widen the span of the data to this many times; beyond, it would leave the data no room and stays outside (window `whole` takes it in). */
+/** A reservoir may widen the span of the data this many times; beyond, it would leave the data no room and stays outside (but in window `whole`). */
 const mostWidening = 3.5;
 
 function isNear(values: ArrayLike<number>, at: number): boolean {
@@ -87,10 +107,25 @@ function marksOf(keys: readonly string[], x: string, y: string) {
   const convert = (axis: string, values: readonly number[]): readonly number[] => {
     if (ratioOf(axis) === axis || values.length === 0) return values;
     const ratio = ratioOf(axis);
-    const plain = { symbol: ratio, kind: 'isotope-ratio' as const, unit: '', values: Float64Array.from(values), states: new Uint8Array(values.length) };
+    const plain = {
+      symbol: ratio,
+      kind: 'isotope-ratio' as const,
+      unit: '',
+      values: Float64Array.from(values),
+      states: new Uint8Array(values.length),
+    };
     return [...withIsotopes(suiteOf({ columns: [plain] })).values(axis)];
   };
-  const [xs, ys] = [convert(x, marks.markers.map((mark) => mark.x)), convert(y, marks.markers.map((mark) => mark.y))];
+  const [xs, ys] = [
+    convert(
+      x,
+      marks.markers.map((mark) => mark.x),
+    ),
+    convert(
+      y,
+      marks.markers.map((mark) => mark.y),
+    ),
+  ];
   return { ...marks, markers: marks.markers.map((mark, i) => ({ ...mark, x: xs[i], y: ys[i] })) };
 }
 

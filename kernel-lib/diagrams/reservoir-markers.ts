@@ -5,8 +5,17 @@ import type { MarkerShape } from './layers/markers';
 
 /** Short names of reservoirs beside their marks; a reservoir without one is named by what stands before its bracket. */
 const shortNames: Readonly<Record<string, string>> = {
-  'depleted-mantle-2005': 'DMM', 'depleted-mantle-2004': 'DMM 2004', 'primitive-mantle-1989': 'PM', 'n-morb-1989': 'N-MORB', 'e-morb-1989': 'E-MORB', 'oib-1989': 'OIB',
-  'all-morb-2013': 'mean MORB', 'subducting-sediment-1998': 'GLOSS', 'subducting-sediment-2014': 'GLOSS-II', 'upper-crust-2014': 'upper crust', 'lower-crust-2014': 'lower crust',
+  'depleted-mantle-2005': 'DMM',
+  'depleted-mantle-2004': 'DMM 2004',
+  'primitive-mantle-1989': 'PM',
+  'n-morb-1989': 'N-MORB',
+  'e-morb-1989': 'E-MORB',
+  'oib-1989': 'OIB',
+  'all-morb-2013': 'mean MORB',
+  'subducting-sediment-1998': 'GLOSS',
+  'subducting-sediment-2014': 'GLOSS-II',
+  'upper-crust-2014': 'upper crust',
+  'lower-crust-2014': 'lower crust',
 };
 
 /** Reservoirs as marks on two axes, and the sentence that names their sources. */
@@ -23,7 +32,10 @@ export interface ReservoirMarks {
  *
  * @throws RangeError for an unknown reservoir
  */
-export function reservoirMarks(keys: readonly string[], axes: { readonly x: string; readonly y: string; readonly reference?: (symbol: string) => number }): ReservoirMarks {
+export function reservoirMarks(
+  keys: readonly string[],
+  axes: { readonly x: string; readonly y: string; readonly reference?: (symbol: string) => number },
+): ReservoirMarks {
   if (keys.length === 0) return { markers: [], caption: '', sources: [] };
   const suite = reservoirSuite(keys);
   const markers: MarkerShape[] = [];

@@ -26,7 +26,8 @@ export interface SlabShareBarOptions extends SlabShareOptions {
  */
 export function slabShareBars(of: Suite | SlabShares, options: SlabShareBarOptions = {}): Diagram {
   const shares = 'shares' in of ? of : sharesOf(of, options);
-  if (shares.groups.length === 0) throw new RangeError('slabShareBars: the shares hold no group with a sample in it; give a suite and a group, or a wider filter.');
+  if (shares.groups.length === 0)
+    throw new RangeError('slabShareBars: the shares hold no group with a sample in it; give a suite and a group, or a wider filter.');
   const { elements, groups } = shares;
   const known = elements.map((_, e) => e).filter((e) => groups.some(({ median }) => Number.isFinite(median[e])));
   const drawn = known.map((e) => elements[e]);
@@ -39,9 +40,14 @@ export function slabShareBars(of: Suite | SlabShares, options: SlabShareBarOptio
     x: { title: '', window: [-0.5, drawn.length - 0.5], names: drawn.map(symbolText) },
     y: { title: 'slab-derived share (%)', window: [lowest < -5 ? Math.max(-50, 25 * Math.floor(lowest / 25)) : 0, 100] },
   };
-  const scale = groupScale(shares.group ?? 'group', groups.map(({ name }) => groupText(name)));
+  const scale = groupScale(
+    shares.group ?? 'group',
+    groups.map(({ name }) => groupText(name)),
+  );
   const counted = shares.kept.reduce((sum, each) => sum + each, 0);
-  const sigmaNote = 'Bars: median share of each element above the oceanic-basalt array at the Nb/Yb of the sample; whiskers 1σ (scatter and array). Pearce & Peate 1995; Pearce et al. 2005.';
+  const sigmaNote =
+    'Bars: median share of each element above the oceanic-basalt array at the Nb/Yb of the sample; whiskers 1σ (scatter and array). ' +
+    'Pearce & Peate 1995; Pearce et al. 2005.';
   return figure({
     name: 'Slab-derived share by element',
     title: options.title,
@@ -73,20 +79,42 @@ function barsLayer(shares: SlabShares, known: readonly number[], scale: ReturnTy
           if (!Number.isFinite(median[e])) return [];
           const left = place - filled / 2 + (filled * g) / count;
           const pad = (filled / count) * 0.06;
-          return [{
-            x: specNumber(left + pad), x2: specNumber(left + filled / count - pad), m: specNumber(left + filled / count / 2), y: specNumber(Math.max(frame.y.window[0], median[e])), y2: 0,
-            lo: specNumber(Math.max(frame.y.window[0], median[e] - sigma[e])), hi: specNumber(Math.min(100, median[e] + sigma[e])), g: groupText(name), e: shares.elements[e], n: samples,
-            s: specNumber(median[e]), d: specNumber(sigma[e]),
-          }];
+          return [
+            {
+              x: specNumber(left + pad),
+              x2: specNumber(left + filled / count - pad),
+              m: specNumber(left + filled / count / 2),
+              y: specNumber(Math.max(frame.y.window[0], median[e])),
+              y2: 0,
+              lo: specNumber(Math.max(frame.y.window[0], median[e] - sigma[e])),
+              hi: specNumber(Math.min(100, median[e] + sigma[e])),
+              g: groupText(name),
+              e: shares.elements[e],
+              n: samples,
+              s: specNumber(median[e]),
+              d: specNumber(sigma[e]),
+            },
+          ];
         }),
       );
       const tooltip = [
-        { field: 'e', type: 'nominal', title: 'element' }, { field: 'g', type: 'nominal', title: shares.group ?? 'group' }, { field: 's', type: 'quantitative', title: 'share (%)', format: '.0f' },
-        { field: 'd', type: 'quantitative', title: '1σ', format: '.0f' }, { field: 'n', type: 'quantitative', title: 'samples' },
+        { field: 'e', type: 'nominal', title: 'element' },
+        { field: 'g', type: 'nominal', title: shares.group ?? 'group' },
+        { field: 's', type: 'quantitative', title: 'share (%)', format: '.0f' },
+        { field: 'd', type: 'quantitative', title: '1σ', format: '.0f' },
+        { field: 'n', type: 'quantitative', title: 'samples' },
       ];
-      const fill: VegaSpec = scale === undefined ? { value: groupColours[0] } : { field: 'g', type: 'nominal', scale: scale.colours, legend: { ...scale.legend, symbolType: 'square' } };
+      const fill: VegaSpec =
+        scale === undefined
+          ? { value: groupColours[0] }
+          : { field: 'g', type: 'nominal', scale: scale.colours, legend: { ...scale.legend, symbolType: 'square' } };
       const bars = unit(frame, { type: 'rect', opacity: 0.92 }, rows, { x2: { field: 'x2' }, y2: { field: 'y2' }, fill, tooltip });
-      const whiskers = unit(frame, { type: 'rule', color: ink.axis, strokeWidth: 1, tooltip: null }, rows.map(({ m, lo, hi }) => ({ x: m, y: lo, y2: hi })), { y2: { field: 'y2' } });
+      const whiskers = unit(
+        frame,
+        { type: 'rule', color: ink.axis, strokeWidth: 1, tooltip: null },
+        rows.map(({ m, lo, hi }) => ({ x: m, y: lo, y2: hi })),
+        { y2: { field: 'y2' } },
+      );
       return [bars, whiskers];
     },
   };

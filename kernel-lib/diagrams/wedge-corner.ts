@@ -15,7 +15,12 @@ export interface WedgeCornerOptions {
   readonly panel?: number;
 }
 
-const titles: Readonly<Record<WedgeParameterName, string>> = { melt: 'melt F (%)', fluid: 'fluid x (%)', sediment: 'sediment y (%)', priorMelt: 'prior m (%)' };
+const titles: Readonly<Record<WedgeParameterName, string>> = {
+  melt: 'melt F (%)',
+  fluid: 'fluid x (%)',
+  sediment: 'sediment y (%)',
+  priorMelt: 'prior m (%)',
+};
 const bins = 24;
 /** More points than this only blacken the cloud. */
 const mostPoints = 1000;
@@ -33,7 +38,8 @@ export function wedgeCorner(fit: WedgeFit, options: WedgeCornerOptions = {}): Di
   const { panel: side = 130 } = options;
   if (!(side >= 60 && side <= 600)) throw new RangeError(`wedgeCorner: panel must be 60 to 600 pixels, not ${String(side)}.`);
   const one = options.name === undefined ? fit.fits[0] : fit.fits.find(({ name }) => name === options.name);
-  if (one === undefined) throw new RangeError(`wedgeCorner: there is no fit "${String(options.name)}". There are: ${fit.fits.map(({ name }) => name).join(', ')}.`);
+  if (one === undefined)
+    throw new RangeError(`wedgeCorner: there is no fit "${String(options.name)}". There are: ${fit.fits.map(({ name }) => name).join(', ')}.`);
   if (one.draws.length === 0) throw new RangeError(`wedgeCorner: the fit of "${one.name}" has no draws. ${one.verdict}`);
   const percent = one.draws.map((draws) => draws.map((value) => 100 * value));
   const best = one.fitted.map((name) => 100 * one.parameters[name].value);
@@ -50,7 +56,11 @@ export function wedgeCorner(fit: WedgeFit, options: WedgeCornerOptions = {}): Di
       const size = { width: side, height: side };
       if (row === column) panels.push(histogramPanel({ ...size, x, y }, percent[row], one, row));
       else if (row > column) panels.push({ frame: { ...size, x, y }, layers: [cloudLayer(percent[column], percent[row], best[column], best[row])] });
-      else panels.push({ frame: { ...size, x: { title: '', window: [0, 1], shown: false }, y: { title: '', window: [0, 1], shown: false } }, layers: [textLayer(one.correlations[row][column])] });
+      else
+        panels.push({
+          frame: { ...size, x: { title: '', window: [0, 1], shown: false }, y: { title: '', window: [0, 1], shown: false } },
+          layers: [textLayer(one.correlations[row][column])],
+        });
     }
   }
   return figure({
@@ -89,9 +99,15 @@ function histogramPanel(frame: Frame, values: Float64Array, fit: OneWedgeFit, k:
     draw({ frame: at }) {
       const width = (high - low) / bins;
       const rows = Array.from(counts, (y, b) => ({ x: specNumber(low + b * width), x2: specNumber(low + (b + 1) * width), y: specNumber(y), y2: 0 }));
-      const upright = (x: number): [number, number][] => [[100 * x, 0], [100 * x, top]];
+      const upright = (x: number): [number, number][] => [
+        [100 * x, 0],
+        [100 * x, top],
+      ];
       return [
-        unit(at, { type: 'rect', color: groupColours[0], opacity: 0.55, stroke: ink.ground, strokeWidth: 0.4, tooltip: null }, rows, { x2: { field: 'x2' }, y2: { field: 'y2' } }),
+        unit(at, { type: 'rect', color: groupColours[0], opacity: 0.55, stroke: ink.ground, strokeWidth: 0.4, tooltip: null }, rows, {
+          x2: { field: 'x2' },
+          y2: { field: 'y2' },
+        }),
         lineUnit(at, [upright(value)], { color: ink.path, strokeWidth: 1.3 }),
         lineUnit(at, [upright(from), upright(to)], { color: ink.path, strokeWidth: 1, strokeDash: [3, 3] }),
       ];
@@ -107,7 +123,11 @@ function cloudLayer(xs: Float64Array, ys: Float64Array, bestX: number, bestY: nu
   return {
     draw: ({ frame }) => [
       unit(frame, { type: 'point', filled: true, shape: 'circle', size: 6, color: groupColours[0], opacity: 0.35, tooltip: null }, rows),
-      unit(frame, { type: 'point', shape: 'cross', filled: true, size: 70, color: ink.path, opacity: 1, stroke: ink.ground, strokeWidth: 0.8, tooltip: null }, [{ x: specNumber(bestX), y: specNumber(bestY) }]),
+      unit(
+        frame,
+        { type: 'point', shape: 'cross', filled: true, size: 70, color: ink.path, opacity: 1, stroke: ink.ground, strokeWidth: 0.8, tooltip: null },
+        [{ x: specNumber(bestX), y: specNumber(bestY) }],
+      ),
     ],
   };
 }
@@ -115,6 +135,8 @@ function cloudLayer(xs: Float64Array, ys: Float64Array, bestX: number, bestY: nu
 function textLayer(correlation: number): Layer {
   const text = Number.isFinite(correlation) ? `r = ${correlation.toFixed(2).replace('-', '−')}` : 'r: none';
   return {
-    draw: ({ frame }) => [unit(frame, { type: 'text', text, font: fontStack, fontSize: textSize.note + 1, color: ink.caption, tooltip: null }, [{ x: 0.5, y: 0.5 }])],
+    draw: ({ frame }) => [
+      unit(frame, { type: 'text', text, font: fontStack, fontSize: textSize.note + 1, color: ink.caption, tooltip: null }, [{ x: 0.5, y: 0.5 }]),
+    ],
   };
 }

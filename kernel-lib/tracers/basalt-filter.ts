@@ -26,7 +26,9 @@ export function applyFilter(caller: string, suite: Suite, filter: SampleFilter |
   const kept = new Uint8Array(suite.size).fill(1);
   const notes: string[] = [];
   for (const [symbol, { from, to }] of Object.entries(filter === 'none' ? {} : filter)) {
-    for (const end of [from, to]) if (end !== undefined && !Number.isFinite(end)) throw new RangeError(`${caller}: the range of ${symbol} in filter has an end of ${String(end)}; give numbers.`);
+    for (const end of [from, to])
+      if (end !== undefined && !Number.isFinite(end))
+        throw new RangeError(`${caller}: the range of ${symbol} in filter has an end of ${String(end)}; give numbers.`);
     const values = resolveColumn(suite, symbol)?.values;
     const words = [from === undefined ? '' : `below ${from}`, to === undefined ? '' : `above ${to}`].filter((text) => text !== '').join(' or ');
     if (values === undefined) {

@@ -67,8 +67,14 @@ export function fitWithinBounds(problem: BoundedProblem, start: readonly number[
       return (i: number) => predicted[i];
     };
     const found = levenbergMarquardt({ x, y: whitened }, parameterised, {
-      initialValues: free.map((k) => parameters[k]), weights: 1, minValues: free.map((k) => lower[k]), maxValues: free.map((k) => upper[k]),
-      gradientDifference: differenceStep, damping: dampings[level], maxIterations: iterationsOfRound, errorTolerance: 1e-9,
+      initialValues: free.map((k) => parameters[k]),
+      weights: 1,
+      minValues: free.map((k) => lower[k]),
+      maxValues: free.map((k) => upper[k]),
+      gradientDifference: differenceStep,
+      damping: dampings[level],
+      maxIterations: iterationsOfRound,
+      errorTolerance: 1e-9,
     });
     const moved = parameters.slice();
     free.forEach((k, f) => (moved[k] = found.parameterValues[f]));
@@ -86,7 +92,12 @@ export function fitWithinBounds(problem: BoundedProblem, start: readonly number[
  * The parameters that are free to move, or none when no move is worth it: each is asked what χ² it could gain by itself, slope² over four
  * times the curvature; one at a bound that presses outward is not free.
  */
-function worthMoving({ predict, sigma, lower, upper }: BoundedProblem, at: readonly number[], chiSquareOf: (parameters: ArrayLike<number>) => number, residual: Float64Array): number[] {
+function worthMoving(
+  { predict, sigma, lower, upper }: BoundedProblem,
+  at: readonly number[],
+  chiSquareOf: (parameters: ArrayLike<number>) => number,
+  residual: Float64Array,
+): number[] {
   chiSquareOf(at);
   const here = new Float64Array(sigma.length);
   const there = new Float64Array(sigma.length);

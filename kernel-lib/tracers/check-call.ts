@@ -6,9 +6,12 @@ export function checkCall(caller: string, suite: unknown, options: unknown): voi
   const given = suite as { columns?: unknown; suite?: unknown } | null | undefined;
   if (typeof given !== 'object' || given === null || !(given.columns instanceof Map) || !('samples' in given)) {
     const hint = typeof given === 'object' && given !== null && 'suite' in given ? ' What you gave holds one: add .suite.' : '';
-    throw new TypeError(`${caller}: the first argument must be a Suite (from readAssays, suiteOf, …), not ${given === null ? 'null' : typeof given}.${hint}`);
+    throw new TypeError(
+      `${caller}: the first argument must be a Suite (from readAssays, suiteOf, …), not ${given === null ? 'null' : typeof given}.${hint}`,
+    );
   }
   if (typeof options !== 'object' || options === null || Array.isArray(options)) {
-    throw new TypeError(`${caller}: options must be an object such as { group: 'volcano' }, not ${options === null ? 'null' : Array.isArray(options) ? 'a list' : typeof options}.`);
+    const got = options === null ? 'null' : Array.isArray(options) ? 'a list' : typeof options;
+    throw new TypeError(`${caller}: options must be an object such as { group: 'volcano' }, not ${got}.`);
   }
 }

@@ -61,7 +61,10 @@ export interface WedgeMelt extends Showable {
  * @source Shaw 1970 (melting); end members by their own sources
  * @example fluxedWedgeMelt({ melt: 0.15, fluid: 0.005, sediment: 0.002 }).melt
  */
-export function fluxedWedgeMelt(parameters: Omit<WedgeParameters, 'priorMelt'> & { readonly priorMelt?: number }, options: FluxedWedgeOptions = {}): WedgeMelt {
+export function fluxedWedgeMelt(
+  parameters: Omit<WedgeParameters, 'priorMelt'> & { readonly priorMelt?: number },
+  options: FluxedWedgeOptions = {},
+): WedgeMelt {
   const { melt, fluid, sediment, priorMelt = 0 } = parameters;
   for (const [name, value] of Object.entries({ melt, fluid, sediment, priorMelt })) {
     if (!(value >= 0 && value < 1)) throw new RangeError(`fluxedWedgeMelt: ${name} is ${String(value)}; give a fraction of 0 or more and below 1.`);
@@ -76,7 +79,10 @@ export function fluxedWedgeMelt(parameters: Omit<WedgeParameters, 'priorMelt'> &
   const shares = model.shares([melt, fluid, sediment, priorMelt]);
   const limit = endMembers.melting[facies].holdsTo;
   const total = priorMelt + (1 - priorMelt) * melt;
-  const beyond = total > limit ? [`Total melting ${total.toFixed(3)} is beyond ${limit.toFixed(3)}, where the first melting phase is used up: the result is an extrapolation.`] : [];
+  const beyond =
+    total > limit
+      ? [`Total melting ${total.toFixed(3)} is beyond ${limit.toFixed(3)}, where the first melting phase is used up: the result is an extrapolation.`]
+      : [];
   const result = {
     parameters: whole,
     elements,
@@ -92,7 +98,8 @@ export function fluxedWedgeMelt(parameters: Omit<WedgeParameters, 'priorMelt'> &
 export function checkedWedgeOptions(caller: string, options: FluxedWedgeOptions): Required<FluxedWedgeOptions> {
   const { facies = 'spinel', style = 'batch', endMembers = wedgeEndMembers() } = options;
   if (facies !== 'spinel' && facies !== 'garnet') throw new RangeError(`${caller}: facies must be "spinel" or "garnet", not "${String(facies)}".`);
-  if (style !== 'batch' && style !== 'pooled-fractional') throw new RangeError(`${caller}: style must be "batch" or "pooled-fractional", not "${String(style)}".`);
+  if (style !== 'batch' && style !== 'pooled-fractional')
+    throw new RangeError(`${caller}: style must be "batch" or "pooled-fractional", not "${String(style)}".`);
   if (!Array.isArray(endMembers?.elements)) throw new TypeError(`${caller}: endMembers must come from wedgeEndMembers().`);
   return { facies, style, endMembers };
 }
@@ -160,9 +167,18 @@ function meltView(result: Omit<WedgeMelt, keyof Showable>): TableView {
   const percent = (fraction: number) => Number((100 * fraction).toPrecision(3));
   const short = (value: number) => Number(value.toPrecision(4));
   return {
-    title: `Melt of the fluxed wedge: F ${percent(parameters.melt)} %, fluid ${percent(parameters.fluid)} %, sediment melt ${percent(parameters.sediment)} %, prior melting ${percent(parameters.priorMelt)} %`,
+    title:
+      `Melt of the fluxed wedge: F ${percent(parameters.melt)} %, fluid ${percent(parameters.fluid)} %, ` +
+      `sediment melt ${percent(parameters.sediment)} %, prior melting ${percent(parameters.priorMelt)} %`,
     columns: ['element', 'melt (ppm)', 'source (ppm)', 'from wedge (%)', 'from fluid (%)', 'from sediment melt (%)'],
-    rows: elements.map((element, e) => [element, short(melt[e]), short(source[e]), percent(fromWedge[e]), percent(fromFluid[e]), percent(fromSediment[e])]),
+    rows: elements.map((element, e) => [
+      element,
+      short(melt[e]),
+      short(source[e]),
+      percent(fromWedge[e]),
+      percent(fromFluid[e]),
+      percent(fromSediment[e]),
+    ]),
     notes,
   };
 }

@@ -2,7 +2,15 @@
 export * from './anomalies';
 export { basaltFilter, type SampleFilter } from './basalt-filter';
 export { decaySystems, type DecaySystem } from './decay-systems';
-export { fluxedWedgeMelt, wedgeParameterNames, type FluxedWedgeOptions, type WedgeMelt, type WedgeMeltingStyle, type WedgeParameterName, type WedgeParameters } from './fluxed-wedge';
+export {
+  fluxedWedgeMelt,
+  wedgeParameterNames,
+  type FluxedWedgeOptions,
+  type WedgeMelt,
+  type WedgeMeltingStyle,
+  type WedgeParameterName,
+  type WedgeParameters,
+} from './fluxed-wedge';
 export * from './ionic-radii';
 export * from './isotopes';
 export { mantleArray, type ArrayLine, type ArrayOptions } from './mantle-array';

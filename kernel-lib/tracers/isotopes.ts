@@ -61,7 +61,12 @@ export function isotopes(suite: Suite, options: IsotopeOptions = {}): IsotopeTab
     const measured = resolveColumn(suite, ratio);
     const name = `${ratio}(i)`;
     const epsilon = ratio === '143Nd/144Nd' ? 'epsilon-Nd' : ratio === '176Hf/177Hf' ? 'epsilon-Hf' : undefined;
-    const lacks = measured === undefined ? `needs ${ratio}` : ages.isZero || parentRatio(suite, system, measured) !== undefined ? undefined : `needs ${system.parentRatio}, or ${system.parent} and ${system.daughter}`;
+    const lacks =
+      measured === undefined
+        ? `needs ${ratio}`
+        : ages.isZero || parentRatio(suite, system, measured) !== undefined
+          ? undefined
+          : `needs ${system.parentRatio}, or ${system.parent} and ${system.daughter}`;
     if (lacks !== undefined) {
       for (const each of epsilon === undefined ? [name] : [name, epsilon]) cannot(each, lacks);
       continue;
@@ -74,14 +79,19 @@ export function isotopes(suite: Suite, options: IsotopeOptions = {}): IsotopeTab
     }
     if (epsilon === undefined) continue;
     sources.add('depaolo_wasserburg_1976');
-    const which = reservoir((epsilon === 'epsilon-Nd' ? chur.neodymium : chur.hafnium) ?? (epsilon === 'epsilon-Nd' ? defaultChur.neodymium : defaultChur.hafnium));
+    const which = reservoir(
+      (epsilon === 'epsilon-Nd' ? chur.neodymium : chur.hafnium) ?? (epsilon === 'epsilon-Nd' ? defaultChur.neodymium : defaultChur.hafnium),
+    );
     const of = churValues(which, system);
     used[epsilon] = which.key;
     of.sources.forEach((source) => sources.add(source));
     notes.push(`${epsilon}: ${which.name}, ${ratio} ${of.ratio}, ${system.parentRatio} ${of.parent}.`);
     columns.set(epsilon, epsilonColumn(epsilon, initial, of, ages.values, constant.value));
   }
-  for (const [delta, ratio, line] of [['delta-7/4', '207Pb/204Pb', '207'], ['delta-8/4', '208Pb/204Pb', '208']] as const) {
+  for (const [delta, ratio, line] of [
+    ['delta-7/4', '207Pb/204Pb', '207'],
+    ['delta-8/4', '208Pb/204Pb', '208'],
+  ] as const) {
     const [lead, base] = [resolveColumn(suite, ratio), resolveColumn(suite, '206Pb/204Pb')];
     if (lead === undefined || base === undefined) {
       cannot(delta, `needs ${lead === undefined ? ratio : '206Pb/204Pb'}`);
@@ -94,7 +104,10 @@ export function isotopes(suite: Suite, options: IsotopeOptions = {}): IsotopeTab
   if (!ages.isZero) notes.push('Pb ratios are not corrected for age.');
   notes.push(...notDetermined.map(({ name, because }) => `${name} not determined: ${because}.`));
   const detail = { age, used, notDetermined: notDetermined.map(({ name }) => name) };
-  const lineage = [...suite.lineage, step('isotopes', detail, { sources: [...sources], tables: ['reservoirs.csv', 'constants.csv', 'parent-daughter-factors.csv'] })];
+  const lineage = [
+    ...suite.lineage,
+    step('isotopes', detail, { sources: [...sources], tables: ['reservoirs.csv', 'constants.csv', 'parent-daughter-factors.csv'] }),
+  ];
   return showAs({ samples: suite.samples, columns, notDetermined, notes, lineage }, isotopeView);
 }
 
@@ -110,17 +123,23 @@ export function withIsotopes(suite: Suite, options: IsotopeOptions = {}): Suite 
 
 function agesOf(suite: Suite, age: number | string): { readonly values: Float64Array; readonly isZero: boolean } {
   if (typeof age === 'string') return { values: suite.column(age).values, isZero: false };
-  if (!(Number.isFinite(age) && age >= 0 && age <= 4568)) throw new RangeError(`isotopes: age is ${String(age)}; give Ma from 0 to 4568, or the name of a column in Ma.`);
+  if (!(Number.isFinite(age) && age >= 0 && age <= 4568))
+    throw new RangeError(`isotopes: age is ${String(age)}; give Ma from 0 to 4568, or the name of a column in Ma.`);
   return { values: new Float64Array(suite.size).fill(age), isZero: age === 0 };
 }
 
-function parentRatio(suite: Suite, { parentRatio: measured, parent, daughter, intercept, slope }: DecaySystem, daughterRatio: Column): Float64Array | undefined {
+function parentRatio(
+  suite: Suite,
+  { parentRatio: measured, parent, daughter, intercept, slope }: DecaySystem,
+  daughterRatio: Column,
+): Float64Array | undefined {
   const own = suite.columns.get(measured);
   const [p, d] = [resolveColumn(suite, parent), resolveColumn(suite, daughter)];
   if (own === undefined && (p === undefined || d === undefined)) return undefined;
   const values = own === undefined ? new Float64Array(suite.size).fill(NaN) : own.values.slice();
   if (p !== undefined && d !== undefined) {
-    for (let i = 0; i < values.length; i++) if (Number.isNaN(values[i])) values[i] = (p.values[i] / d.values[i]) * (intercept + slope * daughterRatio.values[i]);
+    for (let i = 0; i < values.length; i++)
+      if (Number.isNaN(values[i])) values[i] = (p.values[i] / d.values[i]) * (intercept + slope * daughterRatio.values[i]);
   }
   return values;
 }
@@ -136,7 +155,8 @@ function atAge(name: string, measured: Column, parent: Float64Array | undefined,
 
 function churValues(which: Reservoir, { daughterRatio, parentRatio }: DecaySystem): { ratio: number; parent: number; sources: string[] } {
   const [ratio, parent] = [which.values.get(daughterRatio), which.values.get(parentRatio)];
-  if (ratio === undefined || parent === undefined) throw new RangeError(`isotopes: ${which.name} has no ${ratio === undefined ? daughterRatio : parentRatio}; choose another reservoir.`);
+  if (ratio === undefined || parent === undefined)
+    throw new RangeError(`isotopes: ${which.name} has no ${ratio === undefined ? daughterRatio : parentRatio}; choose another reservoir.`);
   return { ratio: ratio.value, parent: parent.value, sources: [ratio.source, parent.source] };
 }
 
@@ -153,14 +173,22 @@ function epsilonColumn(symbol: string, initial: Column, chur: { ratio: number; p
 
 function deltaColumn(symbol: string, lead: Column, base: Column, slope: number, intercept: number): Column {
   const values = lead.values.map((value, i) => 100 * (value - (slope * base.values[i] + intercept)));
-  const sigma = lead.sigma === undefined || base.sigma === undefined ? undefined : lead.sigma.map((own, i) => 100 * Math.hypot(own, slope * base.sigma![i]));
+  const sigma =
+    lead.sigma === undefined || base.sigma === undefined ? undefined : lead.sigma.map((own, i) => 100 * Math.hypot(own, slope * base.sigma![i]));
   return derivedColumn(symbol, values, '', sigma);
 }
 
 function isotopeView(table: Omit<IsotopeTable, keyof Showable>): TableView {
   const columns = [...table.columns.values()];
   const shown = Math.min(table.samples.length, 60);
-  const text = (entry: Column, i: number): TableCell => (Number.isNaN(entry.values[i]) ? null : Number(entry.values[i].toFixed(entry.kind === 'isotope-ratio' ? 6 : 2)));
+  const text = (entry: Column, i: number): TableCell =>
+    Number.isNaN(entry.values[i]) ? null : Number(entry.values[i].toFixed(entry.kind === 'isotope-ratio' ? 6 : 2));
   const rows = Array.from({ length: shown }, (_, i): TableCell[] => [table.samples[i], ...columns.map((entry) => text(entry, i))]);
-  return { title: `Isotopes of ${table.samples.length} samples`, columns: ['sample', ...columns.map(({ symbol }) => symbol)], rows, totalRows: table.samples.length, notes: table.notes };
+  return {
+    title: `Isotopes of ${table.samples.length} samples`,
+    columns: ['sample', ...columns.map(({ symbol }) => symbol)],
+    rows,
+    totalRows: table.samples.length,
+    notes: table.notes,
+  };
 }

@@ -44,14 +44,23 @@ export function mantleArray(element: string, options: ArrayOptions = {}): ArrayL
   if (first === undefined || second === undefined) return undefined;
   const slope = (second[1] - first[1]) / (second[0] - first[0]);
   const intercept = first[1] - slope * first[0];
-  const misses = others.map(point).filter((each) => each !== undefined).map(([x, y]) => y - intercept - slope * x);
+  const misses = others
+    .map(point)
+    .filter((each) => each !== undefined)
+    .map(([x, y]) => y - intercept - slope * x);
   const scatter = misses.length === 0 ? 0 : Math.sqrt(misses.reduce((sum, miss) => sum + miss * miss, 0) / misses.length);
   return { element, slope, intercept, scatter: Math.max(leastScatter, scatter) };
 }
 
 /** What arrays of these elements rest on, for a lineage. */
-export function arrayBasis(elements: readonly string[], options: ArrayOptions = {}): { readonly sources: readonly string[]; readonly fromMemory: readonly string[] } {
+export function arrayBasis(
+  elements: readonly string[],
+  options: ArrayOptions = {},
+): { readonly sources: readonly string[]; readonly fromMemory: readonly string[] } {
   const { through = defaults.through, others = defaults.others } = options;
   const references = [...through, ...others].map((each: ReferenceComposition) => referenceComposition(each));
-  return { sources: [...new Set(references.flatMap(({ sources }) => sources))], fromMemory: references.flatMap(({ fromMemory }) => fromMemory([...elements, 'Nb', 'Yb'])) };
+  return {
+    sources: [...new Set(references.flatMap(({ sources }) => sources))],
+    fromMemory: references.flatMap(({ fromMemory }) => fromMemory([...elements, 'Nb', 'Yb'])),
+  };
 }

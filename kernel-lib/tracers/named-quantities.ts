@@ -21,7 +21,13 @@ export interface QuantityFormula {
 export type FormulaChoices = Readonly<Record<string, string>>;
 
 const rowSchema = z.strictObject({
-  quantity: field.text, variant: field.text, default: z.enum(['yes', 'no']), formula: field.text, reference: field.text, what: field.text, source: field.text,
+  quantity: field.text,
+  variant: field.text,
+  default: z.enum(['yes', 'no']),
+  formula: field.text,
+  reference: field.text,
+  what: field.text,
+  source: field.text,
   standing: field.standing,
 });
 
@@ -55,9 +61,11 @@ export function quantityFormula(quantity: string, variant?: string): QuantityFor
 
 /** The named quantities that an expression mentions, longest names first, so that one name inside another is not taken for it. */
 export function quantitiesIn(expression: string): readonly string[] {
-  return [...namedQuantities()].sort((a, b) => b.length - a.length).filter((name) => {
-    const found = expression.includes(name);
-    if (found) expression = expression.replaceAll(name, ' ');
-    return found;
-  });
+  return [...namedQuantities()]
+    .sort((a, b) => b.length - a.length)
+    .filter((name) => {
+      const found = expression.includes(name);
+      if (found) expression = expression.replaceAll(name, ' ');
+      return found;
+    });
 }

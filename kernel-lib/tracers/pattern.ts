@@ -90,7 +90,8 @@ export function pattern(suite: Suite, options: PatternOptions = {}): PatternTabl
   const wanted = elementsOf(order);
   const isRareEarths = order === 'rare-earths';
   const absentChoice = options.absent ?? (isRareEarths ? 'bridge' : 'leave-out');
-  if (absentChoice !== 'bridge' && absentChoice !== 'leave-out') throw new RangeError(`pattern: absent must be "bridge" or "leave-out", not "${String(absentChoice)}".`);
+  if (absentChoice !== 'bridge' && absentChoice !== 'leave-out')
+    throw new RangeError(`pattern: absent must be "bridge" or "leave-out", not "${String(absentChoice)}".`);
   if (!(Array.isArray(band) && band.length === 2 && band[0] >= 0 && band[0] <= band[1] && band[1] <= 1)) {
     throw new RangeError(`pattern: band must be two quantiles between 0 and 1, such as [0.25, 0.75], not ${JSON.stringify(band)}.`);
   }
@@ -108,7 +109,11 @@ export function pattern(suite: Suite, options: PatternOptions = {}): PatternTabl
     if (!held) noAnalysis.push(element);
     if (divisor === undefined) noReference.push(element);
     if (divisor === undefined || (!held && absentChoice === 'leave-out')) continue;
-    normalised.push(rowsByGroup === undefined ? bySample(element, found, divisor, suite.size) : byGroup(element, found, divisor, rowsByGroup, band as [number, number]));
+    normalised.push(
+      rowsByGroup === undefined
+        ? bySample(element, found, divisor, suite.size)
+        : byGroup(element, found, divisor, rowsByGroup, band as [number, number]),
+    );
   }
   const notes = [
     `Divided by ${reference.name}${reference.standings.length > 0 ? ` (values ${reference.standings.join(', ')})` : ''}.`,
@@ -123,8 +128,13 @@ export function pattern(suite: Suite, options: PatternOptions = {}): PatternTabl
     step(
       'pattern',
       {
-        order: orderName, elements: normalised.map(({ element }) => element), reference: reference.key, referenceStandings: reference.standings,
-        caesiumAndLead: caesiumAndLead ?? 'plotting', absent: [...noAnalysis, ...noReference], ...(group === undefined ? {} : { group, band }),
+        order: orderName,
+        elements: normalised.map(({ element }) => element),
+        reference: reference.key,
+        referenceStandings: reference.standings,
+        caesiumAndLead: caesiumAndLead ?? 'plotting',
+        absent: [...noAnalysis, ...noReference],
+        ...(group === undefined ? {} : { group, band }),
       },
       {
         sources: [...new Set([...reference.sources, ...(typeof order === 'string' ? elementOrder(order).sources : [])])],
@@ -153,7 +163,8 @@ export function pattern(suite: Suite, options: PatternOptions = {}): PatternTabl
 
 function elementsOf(order: string | readonly string[]): readonly string[] {
   if (typeof order === 'string') return elementOrder(order).elements;
-  if (!Array.isArray(order) || order.length === 0) throw new RangeError('pattern: order is the key of an element order, or a list of symbols with at least one in it.');
+  if (!Array.isArray(order) || order.length === 0)
+    throw new RangeError('pattern: order is the key of an element order, or a list of symbols with at least one in it.');
   for (const symbol of order as readonly string[]) {
     if (findAnalyte(symbol) === undefined) throw new RangeError(`pattern: "${symbol}" in order is not an analyte that the library knows.`);
   }
@@ -182,7 +193,13 @@ function bySample(element: string, found: Column | undefined, divisor: number, s
   return { element, divisor, values, states, limits, ...(found.sigma === undefined ? {} : { sigma: found.sigma.map((sigma) => sigma * factor) }) };
 }
 
-function byGroup(element: string, found: Column | undefined, divisor: number, groups: ReadonlyMap<string, readonly number[]>, band: readonly [number, number]): PatternElement {
+function byGroup(
+  element: string,
+  found: Column | undefined,
+  divisor: number,
+  groups: ReadonlyMap<string, readonly number[]>,
+  band: readonly [number, number],
+): PatternElement {
   const blank = () => new Float64Array(groups.size).fill(NaN);
   const values = blank();
   const limits = blank();
@@ -198,7 +215,13 @@ function byGroup(element: string, found: Column | undefined, divisor: number, gr
       const [lower, median, upper] = quantiles;
       if (count > 0) {
         const known = median.low === median.high;
-        states[g] = known ? cellState.derived : Number.isFinite(median.high) ? cellState.belowDetection : median.low > 0 ? cellState.aboveRange : cellState.missing;
+        states[g] = known
+          ? cellState.derived
+          : Number.isFinite(median.high)
+            ? cellState.belowDetection
+            : median.low > 0
+              ? cellState.aboveRange
+              : cellState.missing;
         if (known) values[g] = median.high / divisor;
         else if (states[g] !== cellState.missing) limits[g] = (states[g] === cellState.belowDetection ? median.high : median.low) / divisor;
         if (lower.low === lower.high) low[g] = lower.low / divisor;
@@ -212,7 +235,10 @@ function byGroup(element: string, found: Column | undefined, divisor: number, gr
 
 function patternView(table: Omit<PatternTable, keyof Showable>): TableView {
   const shown = Math.min(table.names.length, 60);
-  const rows = Array.from({ length: shown }, (_, i): TableCell[] => [table.names[i], ...table.normalised.map(({ values, states, limits }) => shownCell(values, states, limits, i))]);
+  const rows = Array.from({ length: shown }, (_, i): TableCell[] => [
+    table.names[i],
+    ...table.normalised.map(({ values, states, limits }) => shownCell(values, states, limits, i)),
+  ]);
   return {
     title: `Normalised to ${table.referenceName}`,
     columns: [table.group ?? 'sample', ...table.elements],

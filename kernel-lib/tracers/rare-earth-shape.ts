@@ -84,12 +84,15 @@ export function rareEarthShapes(suite: Suite, options: ShapeOptions = {}): RareE
   if (degree !== 1 && degree !== 2 && degree !== 3) throw new RangeError(`rareEarthShapes: degree must be 1, 2 or 3, not ${String(degree)}.`);
   if (!(error > 0 && error < 1)) throw new RangeError(`rareEarthShapes: error is ${String(error)}; give a relative 1σ above 0 and below 1.`);
   if (!(outlyingBeyond > 0)) throw new RangeError(`rareEarthShapes: outlyingBeyond is ${String(outlyingBeyond)}; give a positive number of σ.`);
-  for (const element of exclude) if (!(rareEarths as readonly string[]).includes(element)) throw new RangeError(`rareEarthShapes: "${element}" in exclude is not a rare earth.`);
+  for (const element of exclude)
+    if (!(rareEarths as readonly string[]).includes(element)) throw new RangeError(`rareEarthShapes: "${element}" in exclude is not a rare earth.`);
   const reference = referenceComposition(options.reference ?? usualReferences.rareEarths);
   const size = suite.size;
   const terms = degree + 1;
   const basis = rareEarthPolynomials();
-  const present = rareEarths.map((element, e) => ({ element, e, column: resolveColumn(suite, element), fitted: !exclude.includes(element) })).filter(({ column }) => column !== undefined);
+  const present = rareEarths
+    .map((element, e) => ({ element, e, column: resolveColumn(suite, element), fitted: !exclude.includes(element) }))
+    .filter(({ column }) => column !== undefined);
   const divisors = present.map(({ element }) => {
     const value = reference.valueOf(element);
     if (value === undefined) throw new RangeError(`rareEarthShapes: ${reference.name} has no ${element}; choose another reference.`);
@@ -141,7 +144,9 @@ export function rareEarthShapes(suite: Suite, options: ShapeOptions = {}): RareE
       sigmas[k][i] = Math.sqrt(system.variance(k));
     }
   }
-  const columns = new Map(lambdas.map((values, k) => [`lambda-${k}`, derivedColumn(`lambda-${k}`, values, k === 0 ? '' : k === 1 ? '1/Å' : `1/Å^${k}`, sigmas[k])]));
+  const columns = new Map(
+    lambdas.map((values, k) => [`lambda-${k}`, derivedColumn(`lambda-${k}`, values, k === 0 ? '' : k === 1 ? '1/Å' : `1/Å^${k}`, sigmas[k])]),
+  );
   columns.set('misfit', derivedColumn('misfit', misfit, ''));
   const notes = [
     `Divided by ${reference.name}; ${exclude.length > 0 ? `without ${exclude.join(', ')}` : 'all rare earths'}; least relative 1σ ${error}.`,
@@ -151,13 +156,22 @@ export function rareEarthShapes(suite: Suite, options: ShapeOptions = {}): RareE
     'rareEarthShapes',
     { degree, reference: reference.key, exclude: [...exclude], error, outlyingBeyond, notFitted: tooFew },
     {
-      sources: ['oneill_2016', 'shannon_1976', ...reference.sources], tables: ['ionic-radii.csv', ...reference.tables],
-      fromMemory: [...reference.fromMemory(present.map(({ element }) => element)), 'radii of trivalent rare earths in eightfold coordination (Shannon 1976)'],
+      sources: ['oneill_2016', 'shannon_1976', ...reference.sources],
+      tables: ['ionic-radii.csv', ...reference.tables],
+      fromMemory: [
+        ...reference.fromMemory(present.map(({ element }) => element)),
+        'radii of trivalent rare earths in eightfold coordination (Shannon 1976)',
+      ],
       says: `Rare-earth patterns are described by polynomials of ionic radius up to degree ${degree}, orthogonal over the rare earths without Eu.`,
     },
   );
   const result = {
-    samples: suite.samples, degree, columns, residuals: new Map(present.map(({ element }, p) => [element as string, residuals[p]])), outlying, notes,
+    samples: suite.samples,
+    degree,
+    columns,
+    residuals: new Map(present.map(({ element }, p) => [element as string, residuals[p]])),
+    outlying,
+    notes,
     lineage: [...suite.lineage, because],
   };
   return showAs(result, shapesView);
@@ -256,8 +270,20 @@ function shapesView(result: Omit<RareEarthShapes, keyof Showable>): TableView {
   const shown = Math.min(result.samples.length, 60);
   const rows = Array.from({ length: shown }, (_, i): TableCell[] => [
     result.samples[i],
-    ...columns.map(([, { values, sigma }]) => (Number.isNaN(values[i]) ? null : sigma === undefined ? Number(values[i].toPrecision(3)) : `${Number(values[i].toPrecision(4))} ± ${Number(sigma[i].toPrecision(2))}`)),
+    ...columns.map(([, { values, sigma }]) =>
+      Number.isNaN(values[i])
+        ? null
+        : sigma === undefined
+          ? Number(values[i].toPrecision(3))
+          : `${Number(values[i].toPrecision(4))} ± ${Number(sigma[i].toPrecision(2))}`,
+    ),
     result.outlying[i].join(', '),
   ]);
-  return { title: 'Shapes of rare-earth patterns', columns: ['sample', ...columns.map(([name]) => name), 'outlying'], rows, totalRows: result.samples.length, notes: result.notes };
+  return {
+    title: 'Shapes of rare-earth patterns',
+    columns: ['sample', ...columns.map(([name]) => name), 'outlying'],
+    rows,
+    totalRows: result.samples.length,
+    notes: result.notes,
+  };
 }

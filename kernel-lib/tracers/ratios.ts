@@ -1,7 +1,17 @@
 import { findAnalyte } from '../chemistry';
 import { showAs, type Showable, type TableCell, type TableView } from '../display';
 import {
-  cellState, evaluate, ExpressionError, expressionSymbols, parseExpression, resolveColumn, step, type Column, type ExpressionNode, type Step, type Suite,
+  cellState,
+  evaluate,
+  ExpressionError,
+  expressionSymbols,
+  parseExpression,
+  resolveColumn,
+  step,
+  type Column,
+  type ExpressionNode,
+  type Step,
+  type Suite,
 } from '../suite';
 import { checkCall } from './check-call';
 import { quantitiesIn, quantityFormula, type FormulaChoices } from './named-quantities';
@@ -157,7 +167,9 @@ class Bookkeeping {
       },
       {
         sources: [...new Set([...used.flatMap(({ sources }) => sources), ...[...this.formulas.values()].map(({ source }) => source)])],
-        tables: [...new Set([...used.flatMap(({ tables }) => tables), ...(this.formulas.size > 0 ? ['named-quantities.csv'] : []), 'atomic-weights.csv'])],
+        tables: [
+          ...new Set([...used.flatMap(({ tables }) => tables), ...(this.formulas.size > 0 ? ['named-quantities.csv'] : []), 'atomic-weights.csv']),
+        ],
         fromMemory: [...this.divided].flatMap(([reference, symbols]) => reference.fromMemory(symbols)),
         says: used.length === 0 ? '' : `Ratios marked N are normalised to ${used.map(({ name }) => name).join(' and ')}.`,
       },
@@ -182,7 +194,9 @@ function whatIsLacking(suite: Suite, expression: string, record: Bookkeeping): s
     for (const symbol of expressionSymbols(tree)) {
       if (mentioned.includes(symbol) || resolveColumn(suite, symbol) !== undefined) continue;
       if (findAnalyte(symbol) === undefined) {
-        throw new ExpressionError(`"${expression}": "${symbol}" is neither an analyte nor a column of this suite. Its columns: ${suite.analytes.join(', ')}.`);
+        throw new ExpressionError(
+          `"${expression}": "${symbol}" is neither an analyte nor a column of this suite. Its columns: ${suite.analytes.join(', ')}.`,
+        );
       }
       lacking.add(symbol);
     }
@@ -233,6 +247,15 @@ function blankColumn(symbol: string, size: number): Column {
 function ratioView(table: Omit<RatioTable, 'toMimeBundle'>): TableView {
   const columns = [...table.columns.values()];
   const shown = Math.min(table.samples.length, 60);
-  const rows = Array.from({ length: shown }, (_, i): TableCell[] => [table.samples[i], ...columns.map((entry) => shownCell(entry.values, entry.states, entry.limits, i))]);
-  return { title: `Ratios of ${table.samples.length} samples`, columns: ['sample', ...columns.map(({ symbol }) => symbol)], rows, totalRows: table.samples.length, notes: table.notes };
+  const rows = Array.from({ length: shown }, (_, i): TableCell[] => [
+    table.samples[i],
+    ...columns.map((entry) => shownCell(entry.values, entry.states, entry.limits, i)),
+  ]);
+  return {
+    title: `Ratios of ${table.samples.length} samples`,
+    columns: ['sample', ...columns.map(({ symbol }) => symbol)],
+    rows,
+    totalRows: table.samples.length,
+    notes: table.notes,
+  };
 }

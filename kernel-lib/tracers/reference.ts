@@ -49,7 +49,8 @@ export function referenceComposition(from: ReferenceComposition, options: { read
     throw new RangeError(`caesiumAndLead must be "plotting" or "table", not "${String(caesiumAndLead)}".`);
   }
   if (typeof from === 'string') return ofReservoir(reservoir(from), caesiumAndLead);
-  if (typeof from !== 'object' || from === null) throw new TypeError(`A reference is the key of a reservoir, a reservoir, or values by symbol; this is ${String(from)}.`);
+  if (typeof from !== 'object' || from === null)
+    throw new TypeError(`A reference is the key of a reservoir, a reservoir, or values by symbol; this is ${String(from)}.`);
   return isReservoir(from) ? ofReservoir(from, caesiumAndLead) : ofOwnValues(from);
 }
 
@@ -59,10 +60,20 @@ function isReservoir(from: object): from is Reservoir {
 
 function ofOwnValues(values: Readonly<Record<string, number>>): Reference {
   for (const [symbol, value] of Object.entries(values)) {
-    if (!(Number.isFinite(value) && value > 0)) throw new RangeError(`Reference value of ${symbol} is ${String(value)}; give a positive number (elements ppm, oxides wt %).`);
+    if (!(Number.isFinite(value) && value > 0))
+      throw new RangeError(`Reference value of ${symbol} is ${String(value)}; give a positive number (elements ppm, oxides wt %).`);
   }
   const own = (symbol: string): number | undefined => (Object.hasOwn(values, symbol) ? values[symbol] : undefined);
-  return { key: 'own values', name: 'own values', valueOf: (symbol) => own(symbol) ?? converted(symbol, own), sources: [], tables: [], standings: [], fromMemory: () => [], notes: [] };
+  return {
+    key: 'own values',
+    name: 'own values',
+    valueOf: (symbol) => own(symbol) ?? converted(symbol, own),
+    sources: [],
+    tables: [],
+    standings: [],
+    fromMemory: () => [],
+    notes: [],
+  };
 }
 
 function ofReservoir(found: Reservoir, caesiumAndLead: CaesiumLeadChoice): Reference {
@@ -76,7 +87,8 @@ function ofReservoir(found: Reservoir, caesiumAndLead: CaesiumLeadChoice): Refer
   const values = [...found.values.values()];
   const notes = plotting.map((symbol) => {
     const element = symbol.replace('_recommended', '');
-    return `${element} of ${found.name}: ${direct(element)} ppm, the ${caesiumAndLead === 'plotting' ? 'value recommended for plotting' : 'table value'}.`;
+    const which = caesiumAndLead === 'plotting' ? 'the value recommended for plotting' : 'the table value';
+    return `${element} of ${found.name}: ${direct(element)} ppm, ${which}.`;
   });
   return {
     key: found.key,
@@ -86,17 +98,22 @@ function ofReservoir(found: Reservoir, caesiumAndLead: CaesiumLeadChoice): Refer
     tables: ['reservoirs.csv'],
     standings: [...new Set(values.map(({ standing }) => standing))],
     fromMemory: (symbols) => {
-      const recalled = [...new Set(symbols)].map((symbol) => ({ symbol, entry: pick(symbol) ?? otherForm(symbol, pick) })).filter(({ entry }) => entry?.standing === 'from memory');
+      const recalled = [...new Set(symbols)]
+        .map((symbol) => ({ symbol, entry: pick(symbol) ?? otherForm(symbol, pick) }))
+        .filter(({ entry }) => entry?.standing === 'from memory');
       if (recalled.length === 0) return [];
       const cited = [...new Set(recalled.map(({ entry }) => shortSource(entry!.source)))].join('; ');
-      return [`${found.name}: ${recalled.map(({ entry }) => `${entry!.analyte.replace('_recommended', '')} ${entry!.value}${entry!.unit === 'ratio' ? '' : ` ${entry!.unit}`}`).join(', ')} (${cited})`];
+      const value = ({ analyte, value: number, unit }: ReservoirValue) => `${analyte.replace('_recommended', '')} ${number}${unit === 'ratio' ? '' : ` ${unit}`}`;
+      return [`${found.name}: ${recalled.map(({ entry }) => value(entry!)).join(', ')} (${cited})`];
     },
     notes,
   };
 }
 
 function otherForm(symbol: string, pick: (symbol: string) => ReservoirValue | undefined): ReservoirValue | undefined {
-  return equivalentSymbols(symbol).map(pick).find((entry) => entry !== undefined);
+  return equivalentSymbols(symbol)
+    .map(pick)
+    .find((entry) => entry !== undefined);
 }
 
 function inCanonicalUnit(symbol: string, entry: ReservoirValue): number {

@@ -20,15 +20,23 @@ export function reservoirSuite(keys: readonly string[]): Suite {
       if (entry.analyte.includes('_')) continue;
       let of = values.get(entry.analyte);
       if (of === undefined) values.set(entry.analyte, (of = { unit: reservoirUnit(entry), values: new Float64Array(keys.length).fill(NaN) }));
-      of.values[i] = of.unit === 'ppm' && entry.unit === 'wt%' ? entry.value * 1e4 : of.unit === 'wt%' && entry.unit === 'ppm' ? entry.value / 1e4 : entry.value;
+      of.values[i] =
+        of.unit === 'ppm' && entry.unit === 'wt%' ? entry.value * 1e4 : of.unit === 'wt%' && entry.unit === 'ppm' ? entry.value / 1e4 : entry.value;
     }
   });
   const recalled = found.filter((each) => [...each.values.values()].some(({ standing }) => standing === 'from memory'));
-  const because = step('reservoirSuite', { reservoirs: [...keys] }, {
-    sources: [...new Set(found.flatMap((each) => [...each.values.values()].map(({ source }) => source)))], tables: ['reservoirs.csv'],
-    fromMemory: recalled.map(({ name }) => `values of ${name}`),
-  });
+  const because = step(
+    'reservoirSuite',
+    { reservoirs: [...keys] },
+    {
+      sources: [...new Set(found.flatMap((each) => [...each.values.values()].map(({ source }) => source)))],
+      tables: ['reservoirs.csv'],
+      fromMemory: recalled.map(({ name }) => `values of ${name}`),
+    },
+  );
   return suiteOf({
-    columns: [...values].map(([symbol, of]) => column({ symbol, unit: of.unit, values: of.values })), labels: { sample: [...keys], name: found.map(({ name }) => name) }, lineage: [because],
+    columns: [...values].map(([symbol, of]) => column({ symbol, unit: of.unit, values: of.values })),
+    labels: { sample: [...keys], name: found.map(({ name }) => name) },
+    lineage: [because],
   });
 }

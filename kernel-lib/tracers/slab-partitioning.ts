@@ -21,8 +21,17 @@ export interface SlabPartitioning {
 }
 
 const rowSchema = z.strictObject({
-  source: field.text, read_in: field.optionalText, medium: field.text, pressure_gpa: field.optionalNumber, solid: field.text, element: field.text, value: field.number,
-  quantity: z.enum(['solid/fluid', 'solid/melt', 'percent released']), standing: field.standing, confidence: field.text, note: field.optionalText,
+  source: field.text,
+  read_in: field.optionalText,
+  medium: field.text,
+  pressure_gpa: field.optionalNumber,
+  solid: field.text,
+  element: field.text,
+  value: field.number,
+  quantity: z.enum(['solid/fluid', 'solid/melt', 'percent released']),
+  standing: field.standing,
+  confidence: field.text,
+  note: field.optionalText,
 });
 
 const all = once((): readonly SlabPartitioning[] =>
@@ -46,8 +55,16 @@ export function slabPartitioning(): readonly SlabPartitioning[] {
 export function slabCoefficients(source: string, solid = ''): ReadonlyMap<string, SlabPartitioning> {
   const rows = all().filter((row) => row.source === source && row.solid.includes(solid) && row.quantity !== 'percent released');
   if (rows.length === 0) {
-    const sets = [...new Set(all().filter(({ quantity }) => quantity !== 'percent released').map((row) => `${row.source} (${row.solid})`))];
-    throw new RangeError(`There are no slab coefficients of "${source}"${solid === '' ? '' : ` for a solid with "${solid}" in its name`}. There are: ${sets.join('; ')}.`);
+    const sets = [
+      ...new Set(
+        all()
+          .filter(({ quantity }) => quantity !== 'percent released')
+          .map((row) => `${row.source} (${row.solid})`),
+      ),
+    ];
+    throw new RangeError(
+      `There are no slab coefficients of "${source}"${solid === '' ? '' : ` for a solid with "${solid}" in its name`}. There are: ${sets.join('; ')}.`,
+    );
   }
   const first = rows[0].solid;
   return new Map(rows.filter((row) => row.solid === first).map((row) => [row.element, row]));

@@ -43,7 +43,28 @@ export interface SlabShares extends Showable {
 }
 
 /** Elements in order of falling mobility from the slab (Pearce & Peate 1995, from memory), as far as the array knows them. */
-export const slabShareElements: readonly string[] = ['Cs', 'Rb', 'Ba', 'Pb', 'Sr', 'K', 'U', 'Th', 'La', 'Ce', 'Pr', 'P', 'Nd', 'Sm', 'Eu', 'Zr', 'Hf', 'Gd', 'Ti', 'Y'];
+export const slabShareElements: readonly string[] = [
+  'Cs',
+  'Rb',
+  'Ba',
+  'Pb',
+  'Sr',
+  'K',
+  'U',
+  'Th',
+  'La',
+  'Ce',
+  'Pr',
+  'P',
+  'Nd',
+  'Sm',
+  'Eu',
+  'Zr',
+  'Hf',
+  'Gd',
+  'Ti',
+  'Y',
+];
 
 /**
  * The slab share of each element: its excess over what the mantle alone would give at the sample's Nb/Yb.
@@ -64,7 +85,8 @@ export function slabShares(suite: Suite, options: SlabShareOptions = {}): SlabSh
   const { filter = basaltFilter, group, through, others } = options;
   const wanted = options.elements ?? slabShareElements.filter((element) => resolveColumn(suite, element) !== undefined);
   const needed = ['Nb', 'Yb', ...(options.elements ?? [])].filter((element) => resolveColumn(suite, element) === undefined);
-  if (needed.length > 0) throw new RangeError(`slabShares needs ${needed.join(', ')}, which this suite does not hold. It holds: ${suite.analytes.join(', ')}.`);
+  if (needed.length > 0)
+    throw new RangeError(`slabShares needs ${needed.join(', ')}, which this suite does not hold. It holds: ${suite.analytes.join(', ')}.`);
   const niobium = resolveColumn(suite, 'Nb')!;
   const ytterbium = resolveColumn(suite, 'Yb')!;
   const outcome = applyFilter('slabShares', suite, filter);
@@ -80,23 +102,40 @@ export function slabShares(suite: Suite, options: SlabShareOptions = {}): SlabSh
     arrays.set(element, line);
     shares.set(element, shareColumn(resolveColumn(suite, element)!, niobium, ytterbium, line, outcome.kept));
   }
-  if (noArray.length > 0 && options.elements !== undefined) throw new RangeError(`slabShares: no oceanic-basalt array for ${noArray.join(', ')}; leave them out of elements.`);
+  if (noArray.length > 0 && options.elements !== undefined)
+    throw new RangeError(`slabShares: no oceanic-basalt array for ${noArray.join(', ')}; leave them out of elements.`);
 
   const groups = group === undefined ? [] : groupShares(suite.label(group), shares, arrays, outcome.kept);
   const notes = [
-    `${outcome.keptCount} of ${suite.size} samples counted.`, ...outcome.notes,
+    `${outcome.keptCount} of ${suite.size} samples counted.`,
+    ...outcome.notes,
     'Baseline: line through N-MORB and OIB (or those chosen) in log(M/Yb) against log(Nb/Yb); reference values from memory where the table says so.',
   ];
   const detail = {
-    elements: [...shares.keys()], filter: filter === 'none' ? filter : Object.fromEntries(Object.entries(filter).map(([name, { from, to }]) => [name, [from ?? null, to ?? null]])),
-    counted: outcome.keptCount, rows: suite.size, ...(group === undefined ? {} : { group }),
+    elements: [...shares.keys()],
+    filter: filter === 'none' ? filter : Object.fromEntries(Object.entries(filter).map(([name, { from, to }]) => [name, [from ?? null, to ?? null]])),
+    counted: outcome.keptCount,
+    rows: suite.size,
+    ...(group === undefined ? {} : { group }),
     arrays: Object.fromEntries([...arrays].map(([element, { slope, intercept, scatter }]) => [element, [slope, intercept, scatter]])),
   };
   const says = `The slab-derived share of ${[...shares.keys()].join(', ')} is the excess over the oceanic-basalt array at the sample's Nb/Yb.`;
   const basis = arrayBasis([...shares.keys()], { through, others });
-  const because = step('slabShares', detail, { sources: ['pearce_peate_1995', 'pearce_2005', ...basis.sources], tables: ['reservoirs.csv'], fromMemory: basis.fromMemory, says });
+  const because = step('slabShares', detail, {
+    sources: ['pearce_peate_1995', 'pearce_2005', ...basis.sources],
+    tables: ['reservoirs.csv'],
+    fromMemory: basis.fromMemory,
+    says,
+  });
   const result = {
-    samples: suite.samples, elements: [...shares.keys()], shares, arrays, kept: outcome.kept, ...(group === undefined ? {} : { group }), groups, notes,
+    samples: suite.samples,
+    elements: [...shares.keys()],
+    shares,
+    arrays,
+    kept: outcome.kept,
+    ...(group === undefined ? {} : { group }),
+    groups,
+    notes,
     lineage: [...suite.lineage, because],
   };
   return showAs(result, shareView);
@@ -112,7 +151,8 @@ function shareColumn(of: Column, niobium: Column, ytterbium: Column, line: Array
   const { slope, intercept, scatter } = line;
   const factor = 10 ** intercept;
   const arrayVariance = (Math.LN10 * scatter) ** 2;
-  const relative = (column: Column, i: number): number => (column.sigma === undefined || Number.isNaN(column.sigma[i]) ? 0 : column.sigma[i] / column.values[i]);
+  const relative = (column: Column, i: number): number =>
+    column.sigma === undefined || Number.isNaN(column.sigma[i]) ? 0 : column.sigma[i] / column.values[i];
   for (let i = 0; i < size; i++) {
     if (kept[i] === 0) continue;
     const nb = niobium.values[i];
@@ -121,7 +161,10 @@ function shareColumn(of: Column, niobium: Column, ytterbium: Column, line: Array
     if (m > 0 && nb > 0 && yb > 0) {
       const part = (factor * yb * (nb / yb) ** slope) / m;
       values[i] = 100 * (1 - part);
-      sigma[i] = 100 * part * Math.sqrt((slope * relative(niobium, i)) ** 2 + ((1 - slope) * relative(ytterbium, i)) ** 2 + relative(of, i) ** 2 + arrayVariance);
+      sigma[i] =
+        100 *
+        part *
+        Math.sqrt((slope * relative(niobium, i)) ** 2 + ((1 - slope) * relative(ytterbium, i)) ** 2 + relative(of, i) ** 2 + arrayVariance);
       continue;
     }
     // One censored value bounds the share; two leave it open.
@@ -143,26 +186,36 @@ function shareColumn(of: Column, niobium: Column, ytterbium: Column, line: Array
 const madToSigma = 1.4826;
 const medianOverMean = 1.2533;
 
-function groupShares(labels: readonly string[], shares: ReadonlyMap<string, Column>, arrays: ReadonlyMap<string, ArrayLine>, kept: Uint8Array): GroupShare[] {
+function groupShares(
+  labels: readonly string[],
+  shares: ReadonlyMap<string, Column>,
+  arrays: ReadonlyMap<string, ArrayLine>,
+  kept: Uint8Array,
+): GroupShare[] {
   const rows = new Map<string, number[]>();
   labels.forEach((text, i) => {
     if (!rows.has(text)) rows.set(text, []);
     if (kept[i] === 1) rows.get(text)!.push(i);
   });
-  return [...rows].filter(([, members]) => members.length > 0).map(([name, members]) => {
-    const median = new Float64Array(shares.size).fill(NaN);
-    const sigma = new Float64Array(shares.size).fill(NaN);
-    [...shares].forEach(([element, { values }], e) => {
-      const known = members.map((i) => values[i]).filter((value) => !Number.isNaN(value)).sort((a, b) => a - b);
-      if (known.length === 0) return;
-      const middle = quantileOfSorted(known, 0.5);
-      const deviations = known.map((value) => Math.abs(value - middle)).sort((a, b) => a - b);
-      const ofScatter = (medianOverMean * madToSigma * quantileOfSorted(deviations, 0.5)) / Math.sqrt(known.length);
-      median[e] = middle;
-      sigma[e] = Math.hypot(ofScatter, (100 - middle) * Math.LN10 * arrays.get(element)!.scatter);
+  return [...rows]
+    .filter(([, members]) => members.length > 0)
+    .map(([name, members]) => {
+      const median = new Float64Array(shares.size).fill(NaN);
+      const sigma = new Float64Array(shares.size).fill(NaN);
+      [...shares].forEach(([element, { values }], e) => {
+        const known = members
+          .map((i) => values[i])
+          .filter((value) => !Number.isNaN(value))
+          .sort((a, b) => a - b);
+        if (known.length === 0) return;
+        const middle = quantileOfSorted(known, 0.5);
+        const deviations = known.map((value) => Math.abs(value - middle)).sort((a, b) => a - b);
+        const ofScatter = (medianOverMean * madToSigma * quantileOfSorted(deviations, 0.5)) / Math.sqrt(known.length);
+        median[e] = middle;
+        sigma[e] = Math.hypot(ofScatter, (100 - middle) * Math.LN10 * arrays.get(element)!.scatter);
+      });
+      return { name, samples: members.length, median, sigma };
     });
-    return { name, samples: members.length, median, sigma };
-  });
 }
 
 function shareView(result: Omit<SlabShares, keyof Showable>): TableView {
@@ -172,17 +225,30 @@ function shareView(result: Omit<SlabShares, keyof Showable>): TableView {
     return {
       title: 'Slab-derived share by element (%, median ± 1σ)',
       columns: [result.group ?? 'group', 'samples', ...elements],
-      rows: groups.map(({ name, samples: count, median, sigma }) => [name, count, ...elements.map((_, e) => (Number.isNaN(median[e]) ? '' : `${whole(median[e])} ± ${whole(sigma[e])}`))]),
+      rows: groups.map(({ name, samples: count, median, sigma }) => [
+        name,
+        count,
+        ...elements.map((_, e) => (Number.isNaN(median[e]) ? '' : `${whole(median[e])} ± ${whole(sigma[e])}`)),
+      ]),
       notes,
     };
   }
   const rows: TableCell[][] = [];
   for (let i = 0; i < samples.length && rows.length < 60; i++) {
     if (kept[i] === 0) continue;
-    rows.push([samples[i], ...elements.map((element) => {
-      const { values, states, limits, sigma } = shares.get(element)!;
-      return Number.isNaN(values[i]) ? shownCell(values, states, limits, i) : `${whole(values[i])} ± ${whole(sigma![i])}`;
-    })]);
+    rows.push([
+      samples[i],
+      ...elements.map((element) => {
+        const { values, states, limits, sigma } = shares.get(element)!;
+        return Number.isNaN(values[i]) ? shownCell(values, states, limits, i) : `${whole(values[i])} ± ${whole(sigma![i])}`;
+      }),
+    ]);
   }
-  return { title: 'Slab-derived share by element (% ± 1σ)', columns: ['sample', ...elements], rows, totalRows: kept.reduce((sum, each) => sum + each, 0), notes };
+  return {
+    title: 'Slab-derived share by element (% ± 1σ)',
+    columns: ['sample', ...elements],
+    rows,
+    totalRows: kept.reduce((sum, each) => sum + each, 0),
+    notes,
+  };
 }

@@ -49,7 +49,12 @@ export interface MixingShares extends Showable {
 
 /** Usual 1σ reproducibility of isotope ratios between laboratories (common practice). */
 export const isotopeReproducibility: Readonly<Record<string, number>> = {
-  '87Sr/86Sr': 0.00002, '143Nd/144Nd': 0.00001, '176Hf/177Hf': 0.00001, '206Pb/204Pb': 0.008, '207Pb/204Pb': 0.006, '208Pb/204Pb': 0.015,
+  '87Sr/86Sr': 0.00002,
+  '143Nd/144Nd': 0.00001,
+  '176Hf/177Hf': 0.00001,
+  '206Pb/204Pb': 0.008,
+  '207Pb/204Pb': 0.006,
+  '208Pb/204Pb': 0.015,
 };
 
 const elementOfRatio = (ratio: string): string => /\/\d+([A-Z][a-z]?)$/.exec(ratio)?.[1] ?? '';
@@ -68,7 +73,9 @@ const drawsAtATime = 40;
  * @returns shares (0–1) with 95 % intervals, χ² by sample
  * @throws RangeError when a component lacks a value, or there are fewer ratios than free shares
  * @source Langmuir et al. 1978
- * @example (await unmix(suite, [{ name: 'mantle', composition: 'depleted-mantle-2005' }, { name: 'sediment', composition: 'subducting-sediment-1998' }])).shares
+ * @example (await unmix(suite, [
+ *   { name: 'mantle', composition: 'depleted-mantle-2005' }, { name: 'sediment', composition: 'subducting-sediment-1998' },
+ * ])).shares
  */
 export async function unmix(suite: Suite, components: readonly MixingComponent[], options: UnmixOptions = {}): Promise<MixingShares> {
   checkCall('unmix', suite, options);
@@ -80,14 +87,20 @@ export async function unmix(suite: Suite, components: readonly MixingComponent[]
   const references = components.map(({ composition }) => referenceComposition(composition));
   const ratios = chooseRatios(suite, components, references, options.ratios);
   if (ratios.length < components.length - 1) {
-    throw new RangeError(`unmix: ${components.length} components need ${components.length - 1} isotope ratios or more; there are ${ratios.length} (${ratios.join(', ') || 'none'}) that the suite and every component hold.`);
+    throw new RangeError(
+      `unmix: ${components.length} components need ${components.length - 1} isotope ratios or more; there are ${ratios.length} ` +
+        `(${ratios.join(', ') || 'none'}) that the suite and every component hold.`,
+    );
   }
   const columns = ratios.map((ratio) => resolveColumn(suite, ratio)!);
   const least = ratios.map((ratio) => error[ratio] ?? isotopeReproducibility[ratio] ?? NaN);
   least.forEach((value, k) => {
     if (!(value > 0)) throw new RangeError(`unmix: there is no usual error of ${ratios[k]}; give one in error.`);
   });
-  const exact = new Mixture(ratios.map((ratio) => references.map(({ valueOf }) => valueOf(ratio)!)), ratios.map((ratio) => references.map(({ valueOf }) => valueOf(elementOfRatio(ratio))!)));
+  const exact = new Mixture(
+    ratios.map((ratio) => references.map(({ valueOf }) => valueOf(ratio)!)),
+    ratios.map((ratio) => references.map(({ valueOf }) => valueOf(elementOfRatio(ratio))!)),
+  );
   const random = randomStream(seed);
   const count = components.length;
   const blank = () => components.map(() => new Float64Array(suite.size).fill(NaN));
@@ -108,7 +121,12 @@ export async function unmix(suite: Suite, components: readonly MixingComponent[]
         progress?.(i * draws + d, suite.size * draws);
       }
       const moved = exact.moved((j, symbol) => (components[j].sigma?.[symbol] ?? 0) * random.normal(), ratios);
-      solveShares(moved, observed.map((value, k) => value + sigma[k] * random.normal()), sigma, best.sticks).shares.forEach((share, j) => (drawn[j][d] = share));
+      solveShares(
+        moved,
+        observed.map((value, k) => value + sigma[k] * random.normal()),
+        sigma,
+        best.sticks,
+      ).shares.forEach((share, j) => (drawn[j][d] = share));
     }
     for (let j = 0; j < count; j++) {
       const sorted = drawn[j].sort();
@@ -118,21 +136,52 @@ export async function unmix(suite: Suite, components: readonly MixingComponent[]
   }
   progress?.(suite.size * draws, suite.size * draws);
   const named = (arrays: Float64Array[]) => new Map(components.map(({ name }, j) => [name, arrays[j]]));
-  const notes = references.flatMap(({ name, standings }, j) => (standings.length > 0 ? [`${components[j].name}: ${name} (values ${standings.join(', ')}).`] : []));
-  const detail = { components: components.map(({ name }) => name), ratios, draws, seed, error: Object.fromEntries(ratios.map((ratio, k) => [ratio, least[k]])) };
-  const says = `Mixing proportions of ${components.map(({ name }) => name).join(', ')} were solved from ${ratios.join(', ')} with ${draws} Monte Carlo draws (seed ${seed}).`;
+  const notes = references.flatMap(({ name, standings }, j) =>
+    standings.length > 0 ? [`${components[j].name}: ${name} (values ${standings.join(', ')}).`] : [],
+  );
+  const detail = {
+    components: components.map(({ name }) => name),
+    ratios,
+    draws,
+    seed,
+    error: Object.fromEntries(ratios.map((ratio, k) => [ratio, least[k]])),
+  };
+  const names = components.map(({ name }) => name).join(', ');
+  const says = `Mixing proportions of ${names} were solved from ${ratios.join(', ')} with ${draws} Monte Carlo draws (seed ${seed}).`;
   const sources = ['langmuir_1978', ...new Set(references.flatMap((reference) => reference.sources))];
-  const lineage = [...suite.lineage, step('unmix', detail, { sources, tables: [...new Set(references.flatMap(({ tables }) => tables))], fromMemory: references.flatMap(({ fromMemory }) => fromMemory(ratios.flatMap((ratio) => [ratio, elementOfRatio(ratio)]))), says })];
+  const lineage = [
+    ...suite.lineage,
+    step('unmix', detail, {
+      sources,
+      tables: [...new Set(references.flatMap(({ tables }) => tables))],
+      fromMemory: references.flatMap(({ fromMemory }) => fromMemory(ratios.flatMap((ratio) => [ratio, elementOfRatio(ratio)]))),
+      says,
+    }),
+  ];
   const result = {
-    samples: suite.samples, components: components.map(({ name }) => name), ratios, shares: named(shares), low: named(low), high: named(high), chiSquare,
-    degreesOfFreedom: ratios.length - (count - 1), notes, lineage,
+    samples: suite.samples,
+    components: components.map(({ name }) => name),
+    ratios,
+    shares: named(shares),
+    low: named(low),
+    high: named(high),
+    chiSquare,
+    degreesOfFreedom: ratios.length - (count - 1),
+    notes,
+    lineage,
   };
   return showAs(result, sharesView);
 }
 
-function chooseRatios(suite: Suite, components: readonly MixingComponent[], references: readonly { valueOf: (symbol: string) => number | undefined }[], wanted: readonly string[] | undefined): readonly string[] {
+function chooseRatios(
+  suite: Suite,
+  components: readonly MixingComponent[],
+  references: readonly { valueOf: (symbol: string) => number | undefined }[],
+  wanted: readonly string[] | undefined,
+): readonly string[] {
   const lacking = (ratio: string, j: number) => [ratio, elementOfRatio(ratio)].filter((symbol) => references[j].valueOf(symbol) === undefined);
-  if (wanted === undefined) return Object.keys(isotopeReproducibility).filter((ratio) => suite.has(ratio) && components.every((_, j) => lacking(ratio, j).length === 0));
+  if (wanted === undefined)
+    return Object.keys(isotopeReproducibility).filter((ratio) => suite.has(ratio) && components.every((_, j) => lacking(ratio, j).length === 0));
   for (const ratio of wanted) {
     if (elementOfRatio(ratio) === '') throw new RangeError(`unmix: "${ratio}" is not an isotope ratio such as 87Sr/86Sr.`);
     suite.column(ratio);
@@ -145,12 +194,17 @@ function chooseRatios(suite: Suite, components: readonly MixingComponent[], refe
 
 /** The components' ratios and concentrations, [ratio][component]. */
 class Mixture {
-  constructor(private readonly ratios: number[][], private readonly concentrations: number[][]) {}
+  constructor(
+    private readonly ratios: number[][],
+    private readonly concentrations: number[][],
+  ) {}
 
   /** The same with every value moved; concentrations stay positive. */
   moved(by: (component: number, symbol: string) => number, names: readonly string[]): Mixture {
     const ratios = this.ratios.map((row, k) => row.map((value, j) => value + by(j, names[k])));
-    const concentrations = this.concentrations.map((row, k) => row.map((value, j) => Math.max(value * 1e-3, value + by(j, elementOfRatio(names[k])))));
+    const concentrations = this.concentrations.map((row, k) =>
+      row.map((value, j) => Math.max(value * 1e-3, value + by(j, elementOfRatio(names[k])))),
+    );
     return new Mixture(ratios, concentrations);
   }
 
@@ -182,7 +236,12 @@ function sharesOfSticks(sticks: ArrayLike<number>, out: Float64Array): void {
   out[sticks.length] = left;
 }
 
-function solveShares(mixture: Mixture, observed: Float64Array, sigma: Float64Array, near?: readonly number[]): { shares: Float64Array; sticks: readonly number[]; chiSquare: number } {
+function solveShares(
+  mixture: Mixture,
+  observed: Float64Array,
+  sigma: Float64Array,
+  near?: readonly number[],
+): { shares: Float64Array; sticks: readonly number[]; chiSquare: number } {
   const free = mixture.size - 1;
   const shares = new Float64Array(mixture.size);
   // The solver wants two data or more: a datum that is always met changes nothing.
@@ -198,7 +257,10 @@ function solveShares(mixture: Mixture, observed: Float64Array, sigma: Float64Arr
     lower: new Array<number>(free).fill(0),
     upper: new Array<number>(free).fill(1),
   };
-  const starts = near !== undefined ? [near] : [0.05, 0.35, 0.65, 0.95].flatMap((a) => (free === 1 ? [[a]] : [0.1, 0.5, 0.9].map((b) => [a, ...new Array<number>(free - 1).fill(b)])));
+  const starts =
+    near !== undefined
+      ? [near]
+      : [0.05, 0.35, 0.65, 0.95].flatMap((a) => (free === 1 ? [[a]] : [0.1, 0.5, 0.9].map((b) => [a, ...new Array<number>(free - 1).fill(b)])));
   let best = fitWithinBounds(problem, starts[0]);
   for (const start of starts.slice(1)) {
     const found = fitWithinBounds(problem, start);

@@ -16,7 +16,12 @@ export interface Tracer {
 }
 
 const rowSchema = z.strictObject({
-  tracer: field.text, usual: z.enum(['yes', 'no']), traces: field.text, in_arcs: field.optionalText, source: field.text, standing: field.standing,
+  tracer: field.text,
+  usual: z.enum(['yes', 'no']),
+  traces: field.text,
+  in_arcs: field.optionalText,
+  source: field.text,
+  standing: field.standing,
 });
 
 const all = once((): readonly Tracer[] =>
@@ -29,4 +34,8 @@ export function tracers(): readonly Tracer[] {
 }
 
 /** The ratios computed when none are named. */
-export const usualRatios: () => readonly string[] = once(() => all().filter(({ usual }) => usual).map(({ tracer }) => tracer));
+export const usualRatios: () => readonly string[] = once(() =>
+  all()
+    .filter(({ usual }) => usual)
+    .map(({ tracer }) => tracer),
+);

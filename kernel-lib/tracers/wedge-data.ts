@@ -32,7 +32,10 @@ export function wedgeObservations(suite: Suite, elements: readonly string[], err
     const sigma: number[] = [];
     columns.forEach((column, e) => {
       const usable = column === undefined ? [] : rows.filter((row) => column.values[row] > 0);
-      const censored = column === undefined ? 0 : rows.filter((row) => column.states[row] === cellState.belowDetection || column.states[row] === cellState.aboveRange).length;
+      const censored =
+        column === undefined
+          ? 0
+          : rows.filter((row) => column.states[row] === cellState.belowDetection || column.states[row] === cellState.aboveRange).length;
       // A median over half-censored cells is no median: the element is left out and named.
       if (usable.length === 0 || censored > usable.length) {
         unused.push(elements[e]);

@@ -80,7 +80,8 @@ const mantleSource = 'mckenzie_onions_1991';
  * @param options see `WedgeEndMemberOptions`; compositions by reservoir key or own values (ppm)
  * @returns concentrations in ppm and dimensionless coefficients, one an element
  * @throws RangeError for an unknown key, a fraction outside 0–1, or an element that an end member has no value of
- * @source Kessel et al. 2005, Xiong 2006, Kelemen et al. 2003 (as recast in Eiler et al. 2007); McKenzie & O'Nions 1991; Johnson et al. 1990; Walter 1998
+ * @source Kessel et al. 2005, Xiong 2006, Kelemen et al. 2003 (as recast in Eiler et al. 2007); McKenzie & O'Nions 1991; Johnson et al. 1990;
+ *   Walter 1998
  * @example wedgeEndMembers({ sediment: 'subducting-sediment-1998' }).sedimentMelt
  */
 export function wedgeEndMembers(options: WedgeEndMemberOptions = {}): WedgeEndMembers {
@@ -103,7 +104,13 @@ export function wedgeEndMembers(options: WedgeEndMemberOptions = {}): WedgeEndMe
     if (reference.standings.length > 0) notes.push(`${what}: ${reference.name} (values ${reference.standings.join(', ')}).`);
     return ofElements(what, elements, (element) => reference.valueOf(element));
   };
-  const liquid = (what: string, solid: Float64Array, sets: readonly (readonly [string, string])[], fraction: number, rutile = false): Float64Array => {
+  const liquid = (
+    what: string,
+    solid: Float64Array,
+    sets: readonly (readonly [string, string])[],
+    fraction: number,
+    rutile = false,
+  ): Float64Array => {
     const { coefficients, interpolated } = coefficientsOf(what, elements, sets, sources);
     if (rutile) {
       addRutile(elements, coefficients);
@@ -111,28 +118,57 @@ export function wedgeEndMembers(options: WedgeEndMemberOptions = {}): WedgeEndMe
       notes.push(`${what}: 1 % rutile in the residue, its part from the difference of the two residues of xiong_2006.`);
     }
     tables.add('slab-fluid-partitioning.csv');
-    if (interpolated.length > 0) notes.push(`${what}: coefficients of ${interpolated.join(', ')} interpolated between measured rare earths by ionic radius.`);
+    if (interpolated.length > 0)
+      notes.push(`${what}: coefficients of ${interpolated.join(', ')} interpolated between measured rare earths by ionic radius.`);
     notes.push(`${what}: liquid fraction ${fraction}, coefficients of ${sets.map(([source]) => source).join(', then ')}.`);
     return solid.map((value, e) => value / (coefficients[e] + fraction * (1 - coefficients[e])));
   };
   const mantle = values('mantle', options.mantle ?? 'depleted-mantle-2005');
-  const fluid = options.fluid !== undefined
-    ? values('fluid', options.fluid)
-    : liquid('fluid', values('crust', options.crust ?? alteredCrust()), [[options.fluidCoefficients ?? 'kessel_2005', '']], fluidFraction, fluidResidue === 'eclogite-with-rutile');
-  const sedimentSets = (options.sedimentCoefficients ?? ['xiong_2006', 'kelemen_2003']).map((source): [string, string] => [source, options.sedimentCoefficients === undefined ? 'rutile' : '']);
-  const sedimentMelt = options.sedimentMelt !== undefined
-    ? values('sediment component', options.sedimentMelt)
-    : liquid('sediment melt', values('sediment', options.sediment ?? 'subducting-sediment-1998'), sedimentSets, sedimentMeltFraction);
-  if (options.fluid === undefined && options.crust === undefined) notes.push('crust: N-MORB 1989, its K, Rb and U replaced by those of altered crust at ODP site 801.');
+  const fluid =
+    options.fluid !== undefined
+      ? values('fluid', options.fluid)
+      : liquid(
+          'fluid',
+          values('crust', options.crust ?? alteredCrust()),
+          [[options.fluidCoefficients ?? 'kessel_2005', '']],
+          fluidFraction,
+          fluidResidue === 'eclogite-with-rutile',
+        );
+  const sedimentSets = (options.sedimentCoefficients ?? ['xiong_2006', 'kelemen_2003']).map((source): [string, string] => [
+    source,
+    options.sedimentCoefficients === undefined ? 'rutile' : '',
+  ]);
+  const sedimentMelt =
+    options.sedimentMelt !== undefined
+      ? values('sediment component', options.sedimentMelt)
+      : liquid('sediment melt', values('sediment', options.sediment ?? 'subducting-sediment-1998'), sedimentSets, sedimentMeltFraction);
+  if (options.fluid === undefined && options.crust === undefined)
+    notes.push('crust: N-MORB 1989, its K, Rb and U replaced by those of altered crust at ODP site 801.');
 
-  if (options.fluid === undefined && options.crust === undefined) fromMemory.push('crust: N-MORB (Sun & McDonough 1989) with K, Rb, U of altered crust (Kelley et al. 2003)');
-  if (options.mantleCoefficients === undefined) fromMemory.push('mantle coefficients (McKenzie & O’Nions 1991), modes and reactions (Johnson et al. 1990; Walter 1998)');
-  const melting = options.mantleCoefficients === undefined ? publishedMelting(elements, sources, tables, notes) : ownMelting(elements, options.mantleCoefficients);
+  if (options.fluid === undefined && options.crust === undefined)
+    fromMemory.push('crust: N-MORB (Sun & McDonough 1989) with K, Rb, U of altered crust (Kelley et al. 2003)');
+  if (options.mantleCoefficients === undefined)
+    fromMemory.push('mantle coefficients (McKenzie & O’Nions 1991), modes and reactions (Johnson et al. 1990; Walter 1998)');
+  const melting =
+    options.mantleCoefficients === undefined ? publishedMelting(elements, sources, tables, notes) : ownMelting(elements, options.mantleCoefficients);
   const detail = {
-    elements: [...elements], fluidFraction, sedimentMeltFraction, fluidResidue,
-    own: Object.entries(options).filter(([, value]) => typeof value === 'object' && !Array.isArray(value)).map(([name]) => name),
+    elements: [...elements],
+    fluidFraction,
+    sedimentMeltFraction,
+    fluidResidue,
+    own: Object.entries(options)
+      .filter(([, value]) => typeof value === 'object' && !Array.isArray(value))
+      .map(([name]) => name),
   };
-  const members = { elements: [...elements], mantle, fluid, sedimentMelt, melting, notes, lineage: [step('wedgeEndMembers', detail, { sources: [...sources], tables: [...tables], fromMemory })] };
+  const members = {
+    elements: [...elements],
+    mantle,
+    fluid,
+    sedimentMelt,
+    melting,
+    notes,
+    lineage: [step('wedgeEndMembers', detail, { sources: [...sources], tables: [...tables], fromMemory })],
+  };
   return showAs(members, membersView);
 }
 
@@ -141,12 +177,19 @@ function alteredCrust(): Record<string, number> {
   const fresh = referenceComposition('n-morb-1989');
   const altered = referenceComposition('altered-crust-801-2003');
   const all = [...wedgeElements, ...rareEarths, 'K', 'Cs', 'Ta', 'Hf', 'P', 'Li'];
-  return Object.fromEntries(all.map((element) => [element, altered.valueOf(element) ?? fresh.valueOf(element)]).filter((entry): entry is [string, number] => entry[1] !== undefined));
+  return Object.fromEntries(
+    all
+      .map((element) => [element, altered.valueOf(element) ?? fresh.valueOf(element)])
+      .filter((entry): entry is [string, number] => entry[1] !== undefined),
+  );
 }
 
 function ofElements(what: string, elements: readonly string[], valueOf: (element: string) => number | undefined): Float64Array {
   const lacking = elements.filter((element) => valueOf(element) === undefined);
-  if (lacking.length > 0) throw new RangeError(`wedgeEndMembers: ${what} has no ${lacking.join(', ')}. Leave them out of elements, or give a composition of your own with them.`);
+  if (lacking.length > 0)
+    throw new RangeError(
+      `wedgeEndMembers: ${what} has no ${lacking.join(', ')}. Leave them out of elements, or give a composition of your own with them.`,
+    );
   return Float64Array.from(elements, (element) => valueOf(element)!);
 }
 
@@ -187,7 +230,10 @@ function addRutile(elements: readonly string[], coefficients: Float64Array): voi
 function betweenNeighbours(element: string, measured: ReadonlyMap<string, number>): number | undefined {
   const at = (rareEarths as readonly string[]).indexOf(element);
   if (at < 0) return undefined;
-  const lighter = rareEarths.slice(0, at).reverse().find((each) => measured.has(each));
+  const lighter = rareEarths
+    .slice(0, at)
+    .reverse()
+    .find((each) => measured.has(each));
   const heavier = rareEarths.slice(at + 1).find((each) => measured.has(each));
   if (lighter === undefined || heavier === undefined) return undefined;
   const part = (ionicRadius(lighter) - ionicRadius(element)) / (ionicRadius(lighter) - ionicRadius(heavier));
@@ -213,7 +259,8 @@ function publishedMelting(elements: readonly string[], sources: Set<string>, tab
     sources.add(reaction.source);
     const bulk = (element: string, minerals: ReadonlyMap<string, number>) => {
       let sum = 0;
-      for (const [mineral, share] of minerals) sum += share * (coefficientsFor(mineral, 'mantle-melting', element).find(({ source }) => source === mantleSource)?.value ?? 0);
+      for (const [mineral, share] of minerals)
+        sum += share * (coefficientsFor(mineral, 'mantle-melting', element).find(({ source }) => source === mantleSource)?.value ?? 0);
       return sum;
     };
     const known = (element: string) => coefficientsFor('clinopyroxene', 'mantle-melting', element).some(({ source }) => source === mantleSource);
@@ -236,7 +283,9 @@ function membersView(members: Omit<WedgeEndMembers, keyof Showable>): TableView 
     columns: ['element', 'mantle', 'slab fluid', 'sediment melt', 'D0 spinel', 'P spinel', 'D0 garnet', 'P garnet'],
     rows: elements.map((element, e) => [
       element,
-      ...[mantle, fluid, sedimentMelt, melting.spinel.startD, melting.spinel.reactionD, melting.garnet.startD, melting.garnet.reactionD].map((values) => short(values[e])),
+      ...[mantle, fluid, sedimentMelt, melting.spinel.startD, melting.spinel.reactionD, melting.garnet.startD, melting.garnet.reactionD].map(
+        (values) => short(values[e]),
+      ),
     ]),
     notes,
   };

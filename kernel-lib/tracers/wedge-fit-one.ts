@@ -174,22 +174,56 @@ export function finishWedge(prepared: PreparedWedge, best: BestWedge | undefined
   const parameters = Object.fromEntries(
     wedgeParameterNames.map((each, p) => {
       const k = free.indexOf(each);
-      return [each, k < 0 ? { value: whole[p], low: whole[p], high: whole[p], status: 'fixed' } : estimate(prepared, best, k, whole[p], columns[k], widened)];
+      return [
+        each,
+        k < 0 ? { value: whole[p], low: whole[p], high: whole[p], status: 'fixed' } : estimate(prepared, best, k, whole[p], columns[k], widened),
+      ];
     }),
   ) as Record<WedgeParameterName, WedgeEstimate>;
   const { fromWedge, fromFluid, fromSediment } = model.shares(whole);
-  return showAs({
-    name, samples, parameters, elements, unused, observed, modelled, residual, residualPercent: observed.map((value, i) => 100 * (value / modelled[i] - 1)),
-    worstElement: elements[worst], chiSquare: best.chiSquare, degreesOfFreedom, widened, fromWedge, fromFluid, fromSediment,
-    fitted: free, correlations: columns.map((a) => columns.map((b) => correlation(a, b))), draws: columns,
-    verdict: verdictOf(parameters, free, widened, elements[worst], residual[worst]),
-  }, oneFitView);
+  return showAs(
+    {
+      name,
+      samples,
+      parameters,
+      elements,
+      unused,
+      observed,
+      modelled,
+      residual,
+      residualPercent: observed.map((value, i) => 100 * (value / modelled[i] - 1)),
+      worstElement: elements[worst],
+      chiSquare: best.chiSquare,
+      degreesOfFreedom,
+      widened,
+      fromWedge,
+      fromFluid,
+      fromSediment,
+      fitted: free,
+      correlations: columns.map((a) => columns.map((b) => correlation(a, b))),
+      draws: columns,
+      verdict: verdictOf(parameters, free, widened, elements[worst], residual[worst]),
+    },
+    oneFitView,
+  );
 }
 
-const words: Readonly<Record<WedgeParameterName, string>> = { melt: 'melt fraction', fluid: 'slab fluid', sediment: 'sediment melt', priorMelt: 'prior melting' };
+const words: Readonly<Record<WedgeParameterName, string>> = {
+  melt: 'melt fraction',
+  fluid: 'slab fluid',
+  sediment: 'sediment melt',
+  priorMelt: 'prior melting',
+};
 
-/** Interval and verdict of one parameter. The interval is that of the draws; the verdict also asks the linear error, which flat directions cannot hide from. */
-function estimate({ free, problem, setup }: PreparedWedge, best: BestWedge, k: number, value: number, draws: Float64Array, widened: number): WedgeEstimate {
+/** Interval and verdict of one parameter. The interval is that of the draws; the verdict also asks the linear error, which no flat direction escapes. */
+function estimate(
+  { free, problem, setup }: PreparedWedge,
+  best: BestWedge,
+  k: number,
+  value: number,
+  draws: Float64Array,
+  widened: number,
+): WedgeEstimate {
   const name = free[k];
   const [least, most] = setup.bounds[name];
   const sorted = draws.slice().sort();
@@ -206,7 +240,11 @@ function estimate({ free, problem, setup }: PreparedWedge, best: BestWedge, k: n
   const lowest = Math.min(low, linearLow);
   const highest = Math.max(high, linearHigh);
   const status: WedgeStatus =
-    lowest > 0 && lowest > least && highest / lowest <= setup.resolvedWithin ? 'resolved' : highest <= most / 2 && name !== 'melt' ? 'upper limit only' : 'not resolvable';
+    lowest > 0 && lowest > least && highest / lowest <= setup.resolvedWithin
+      ? 'resolved'
+      : highest <= most / 2 && name !== 'melt'
+        ? 'upper limit only'
+        : 'not resolvable';
   return status === 'not resolvable' ? { value, low: lowest, high: highest, status } : { value, low, high, status };
 }
 
@@ -227,22 +265,54 @@ function hopeless({ observation, free, setup, unscale, problem }: PreparedWedge)
         : { value: whole[p], low: whole[p], high: whole[p], status: 'fixed' },
     ]),
   ) as Record<WedgeParameterName, WedgeEstimate>;
-  return showAs({
-    name, samples, parameters, elements, unused, observed, modelled: blank(), residual: blank(), residualPercent: blank(), chiSquare: NaN,
-    degreesOfFreedom: elements.length - free.length, widened: 1, fromWedge: blank(), fromFluid: blank(), fromSediment: blank(), fitted: free, correlations: [], draws: [],
-    verdict: `Not resolvable: ${elements.length} usable elements for ${free.length} parameters.`,
-  }, oneFitView);
+  return showAs(
+    {
+      name,
+      samples,
+      parameters,
+      elements,
+      unused,
+      observed,
+      modelled: blank(),
+      residual: blank(),
+      residualPercent: blank(),
+      chiSquare: NaN,
+      degreesOfFreedom: elements.length - free.length,
+      widened: 1,
+      fromWedge: blank(),
+      fromFluid: blank(),
+      fromSediment: blank(),
+      fitted: free,
+      correlations: [],
+      draws: [],
+      verdict: `Not resolvable: ${elements.length} usable elements for ${free.length} parameters.`,
+    },
+    oneFitView,
+  );
 }
 
 function verdictOf(
-  parameters: Readonly<Record<WedgeParameterName, WedgeEstimate>>, free: readonly WedgeParameterName[], widened: number, worst: string, residual: number,
+  parameters: Readonly<Record<WedgeParameterName, WedgeEstimate>>,
+  free: readonly WedgeParameterName[],
+  widened: number,
+  worst: string,
+  residual: number,
 ): string {
   const those = (status: WedgeStatus) => free.filter((name) => parameters[name].status === status).map((name) => words[name]);
   const [unresolved, limits] = [those('not resolvable'), those('upper limit only')];
   const parts = [
-    unresolved.length === free.length ? 'Not resolvable with these elements.' : unresolved.length > 0 ? `Not resolvable with these elements: ${unresolved.join(', ')}.` : 'Resolved.',
+    unresolved.length === free.length
+      ? 'Not resolvable with these elements.'
+      : unresolved.length > 0
+        ? `Not resolvable with these elements: ${unresolved.join(', ')}.`
+        : 'Resolved.',
     ...(limits.length > 0 ? [`Upper limit only: ${limits.join(', ')}.`] : []),
-    ...(widened > 1 ? [`Misfit beyond the errors (worst ${worst}, ${residual.toFixed(1).replace('-', '−')} σ): intervals widened ×${widened.toFixed(1)}; other end members may be needed.`] : []),
+    ...(widened > 1
+      ? [
+          `Misfit beyond the errors (worst ${worst}, ${residual.toFixed(1).replace('-', '−')} σ): intervals widened ×${widened.toFixed(1)}; ` +
+            'other end members may be needed.',
+        ]
+      : []),
   ];
   return parts.join(' ');
 }
@@ -252,9 +322,24 @@ function oneFitView(fit: Omit<OneWedgeFit, keyof Showable>): TableView {
   const percent = (value: number) => (Number.isNaN(value) ? null : Math.round(100 * value));
   return {
     title: `Fluxed wedge fitted to ${fit.name}: residual of each element, and where it came from`,
-    columns: ['element', 'observed (ppm)', 'modelled (ppm)', 'residual (%)', 'residual (σ)', 'from wedge (%)', 'from fluid (%)', 'from sediment melt (%)'],
+    columns: [
+      'element',
+      'observed (ppm)',
+      'modelled (ppm)',
+      'residual (%)',
+      'residual (σ)',
+      'from wedge (%)',
+      'from fluid (%)',
+      'from sediment melt (%)',
+    ],
     rows: fit.elements.map((element, e) => [
-      element, short(fit.observed[e], 4), short(fit.modelled[e], 4), short(fit.residualPercent[e]), short(fit.residual[e], 2), percent(fit.fromWedge[e]), percent(fit.fromFluid[e]),
+      element,
+      short(fit.observed[e], 4),
+      short(fit.modelled[e], 4),
+      short(fit.residualPercent[e]),
+      short(fit.residual[e], 2),
+      percent(fit.fromWedge[e]),
+      percent(fit.fromFluid[e]),
       percent(fit.fromSediment[e]),
     ]),
     notes: [fit.verdict, ...(fit.unused.length > 0 ? [`No usable value: ${fit.unused.join(', ')}.`] : [])],

@@ -24,7 +24,7 @@ export interface WedgeFitOptions extends FluxedWedgeOptions {
   readonly draws?: number;
   /** Seed of the draws (default 1). */
   readonly seed?: number;
-  /** A parameter counts as resolved when the upper end of its 95 % interval is at most this many times the lower (default 4: a factor of 2 either way). */
+  /** A parameter is resolved when the upper end of its 95 % interval is at most this many times the lower (default 4: a factor of 2 either way). */
   readonly resolvedWithin?: number;
   readonly signal?: AbortSignal;
   readonly progress?: (done: number, total: number) => void;
@@ -54,7 +54,8 @@ const primitiveMgO = 6;
  * so. Crystallisation raises incompatible elements as less melting does: fit primitive lavas, or back-corrected ones.
  *
  * @param suite n samples with trace elements in ppm
- * @param options `group`, `facies`, `style`, `endMembers`, `elements`, `error`, `fixed`, `bounds`, `draws`, `seed`, `resolvedWithin`, `signal`, `progress`
+ * @param options `group`, `facies`, `style`, `endMembers`, `elements`, `error`, `fixed`, `bounds`, `draws`, `seed`, `resolvedWithin`, `signal`,
+ *   `progress`
  * @returns one fit a sample or group: parameters (fractions by weight) with 95 % interval, residual of each element in σ and %, χ², shares of
  *   the components, correlations and draws for a corner diagram
  * @throws RangeError for bad options; the signal's reason when it is aborted
@@ -74,10 +75,12 @@ export async function fitFluxedWedge(suite: Suite, options: WedgeFitOptions = {}
   const bounds = wedgeBounds(caller, endMembers, facies, options.bounds);
   const fixed = options.fixed ?? {};
   for (const [name, value] of Object.entries(fixed)) {
-    if (!(wedgeParameterNames as readonly string[]).includes(name)) throw new RangeError(`${caller}: fixed names "${name}"; the parameters are ${wedgeParameterNames.join(', ')}.`);
+    if (!(wedgeParameterNames as readonly string[]).includes(name))
+      throw new RangeError(`${caller}: fixed names "${name}"; the parameters are ${wedgeParameterNames.join(', ')}.`);
     if (!(value! >= 0 && value! < 1)) throw new RangeError(`${caller}: fixed ${name} is ${String(value)}; give a fraction of 0 or more and below 1.`);
   }
-  if (wedgeParameterNames.every((name) => fixed[name] !== undefined)) throw new RangeError(`${caller}: every parameter is fixed, so there is nothing to fit; use fluxedWedgeMelt.`);
+  if (wedgeParameterNames.every((name) => fixed[name] !== undefined))
+    throw new RangeError(`${caller}: every parameter is fixed, so there is nothing to fit; use fluxedWedgeMelt.`);
 
   const observations = wedgeObservations(suite, elements, error, group);
   const total = observations.length * draws;
@@ -99,34 +102,62 @@ export async function fitFluxedWedge(suite: Suite, options: WedgeFitOptions = {}
   const magnesia = suite.columns.get('MgO')?.values;
   const evolved = magnesia === undefined ? 0 : magnesia.reduce((count, value) => count + (value < primitiveMgO ? 1 : 0), 0);
   const notes = [
-    ...(evolved > 0 ? [`${evolved} of ${suite.size} samples have MgO below ${primitiveMgO} wt %: crystallisation has raised their incompatible elements, which the fit reads as less melting.`] : []),
+    ...(evolved > 0
+      ? [
+          `${evolved} of ${suite.size} samples have MgO below ${primitiveMgO} wt %: crystallisation has raised their incompatible elements, ` +
+            'which the fit reads as less melting.',
+        ]
+      : []),
     ...endMembers.notes,
   ];
   const detail = {
-    facies, style, elements, error, draws, seed, resolvedWithin, fixed: { ...fixed }, bounds: Object.fromEntries(Object.entries(bounds).map(([name, pair]) => [name, [...pair]])),
-    fits: fits.length, ...(group === undefined ? {} : { group }),
+    facies,
+    style,
+    elements,
+    error,
+    draws,
+    seed,
+    resolvedWithin,
+    fixed: { ...fixed },
+    bounds: Object.fromEntries(Object.entries(bounds).map(([name, pair]) => [name, [...pair]])),
+    fits: fits.length,
+    ...(group === undefined ? {} : { group }),
   };
-  const says = `Melt fraction, slab fluid, sediment melt and prior melting were fitted to ${group === undefined ? 'each sample' : `the medians of each ${group}`} (${style} melting, ${facies} facies) by weighted least squares on log concentrations of ${elements.join(', ')}, with ${draws} Monte Carlo draws (seed ${seed}).`;
+  const whose = group === undefined ? 'each sample' : `the medians of each ${group}`;
+  const says =
+    `Melt fraction, slab fluid, sediment melt and prior melting were fitted to ${whose} (${style} melting, ${facies} facies) by weighted least ` +
+    `squares on log concentrations of ${elements.join(', ')}, with ${draws} Monte Carlo draws (seed ${seed}).`;
   const lineage = [...suite.lineage, ...endMembers.lineage, step(caller, detail, { sources: ['shaw_1970'], says })];
-  return showAs({ curve: group === undefined ? ('sample' as const) : ('group' as const), ...(group === undefined ? {} : { group }), fits, notes, lineage }, fitView);
+  return showAs(
+    { curve: group === undefined ? ('sample' as const) : ('group' as const), ...(group === undefined ? {} : { group }), fits, notes, lineage },
+    fitView,
+  );
 }
 
 function checkElements(caller: string, endMembers: WedgeEndMembers, wanted: readonly string[] | undefined): readonly string[] {
   if (wanted === undefined) return endMembers.elements;
   if (!Array.isArray(wanted) || wanted.length === 0) throw new RangeError(`${caller}: elements must be a list with at least one element in it.`);
   const unknown = wanted.filter((element) => !endMembers.elements.includes(element));
-  if (unknown.length > 0) throw new RangeError(`${caller}: the end members have no ${unknown.join(', ')}. They have: ${endMembers.elements.join(', ')}.`);
+  if (unknown.length > 0)
+    throw new RangeError(`${caller}: the end members have no ${unknown.join(', ')}. They have: ${endMembers.elements.join(', ')}.`);
   return wanted;
 }
 
 function wedgeBounds(
-  caller: string, endMembers: WedgeEndMembers, facies: 'spinel' | 'garnet', own: WedgeFitOptions['bounds'] = {},
+  caller: string,
+  endMembers: WedgeEndMembers,
+  facies: 'spinel' | 'garnet',
+  own: WedgeFitOptions['bounds'] = {},
 ): Readonly<Record<WedgeParameterName, readonly [number, number]>> {
   const bounds: Record<WedgeParameterName, readonly [number, number]> = {
-    melt: [0.005, Math.min(0.35, endMembers.melting[facies].holdsTo)], fluid: [0, 0.1], sediment: [0, 0.1], priorMelt: [0, 0.05],
+    melt: [0.005, Math.min(0.35, endMembers.melting[facies].holdsTo)],
+    fluid: [0, 0.1],
+    sediment: [0, 0.1],
+    priorMelt: [0, 0.05],
   };
   for (const [name, pair] of Object.entries(own)) {
-    if (!(wedgeParameterNames as readonly string[]).includes(name)) throw new RangeError(`${caller}: bounds names "${name}"; the parameters are ${wedgeParameterNames.join(', ')}.`);
+    if (!(wedgeParameterNames as readonly string[]).includes(name))
+      throw new RangeError(`${caller}: bounds names "${name}"; the parameters are ${wedgeParameterNames.join(', ')}.`);
     if (!(Array.isArray(pair) && pair.length === 2 && pair[0] >= 0 && pair[0] < pair[1] && pair[1] < 1)) {
       throw new RangeError(`${caller}: bounds of ${name} are ${JSON.stringify(pair)}; give [lower, upper] with 0 ≤ lower < upper < 1.`);
     }
@@ -154,10 +185,26 @@ export function wedgeEstimateText(estimate: WedgeEstimate): string {
 function fitView(result: Omit<WedgeFit, keyof Showable>): TableView {
   return {
     title: 'Fluxed wedge fitted (95 % intervals in brackets)',
-    columns: [result.group ?? 'sample', 'samples', 'melt F', 'slab fluid x', 'sediment melt y', 'prior melting m', 'χ²/ν', 'elements', 'worst element', 'in words'],
+    columns: [
+      result.group ?? 'sample',
+      'samples',
+      'melt F',
+      'slab fluid x',
+      'sediment melt y',
+      'prior melting m',
+      'χ²/ν',
+      'elements',
+      'worst element',
+      'in words',
+    ],
     rows: result.fits.map((fit) => [
-      fit.name, fit.samples, ...wedgeParameterNames.map((name) => wedgeEstimateText(fit.parameters[name])),
-      fit.degreesOfFreedom > 0 ? Number((fit.chiSquare / fit.degreesOfFreedom).toPrecision(3)) : null, fit.elements.length, fit.worstElement ?? null, fit.verdict,
+      fit.name,
+      fit.samples,
+      ...wedgeParameterNames.map((name) => wedgeEstimateText(fit.parameters[name])),
+      fit.degreesOfFreedom > 0 ? Number((fit.chiSquare / fit.degreesOfFreedom).toPrecision(3)) : null,
+      fit.elements.length,
+      fit.worstElement ?? null,
+      fit.verdict,
     ]),
     notes: result.notes,
   };

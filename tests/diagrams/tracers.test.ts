@@ -46,7 +46,9 @@ describe('isotope plots', () => {
   });
 
   it('leave a far reservoir outside the frame unless the whole is asked for', () => {
-    const lavas = ww.suiteOf({ columns: [ww.column({ symbol: '87Sr/86Sr', values: [0.7032, 0.7036] }), ww.column({ symbol: '143Nd/144Nd', values: [0.51306, 0.51288] })] });
+    const lavas = ww.suiteOf({
+      columns: [ww.column({ symbol: '87Sr/86Sr', values: [0.7032, 0.7036] }), ww.column({ symbol: '143Nd/144Nd', values: [0.51306, 0.51288] })],
+    });
     expect(caption(diagrams.isotopePlot(lavas, 'strontium-neodymium'))).toMatch(/Outside the frame: .*GLOSS/);
     expect(caption(diagrams.isotopePlot(lavas, 'strontium-neodymium', { window: 'whole' }))).not.toContain('Outside');
   });
@@ -64,7 +66,10 @@ describe('slab-share bars and the corner diagram', () => {
 
   it('show every pair of fitted parameters and their correlation', async () => {
     const made = ww.fluxedWedgeMelt({ melt: 0.15, fluid: 0.006, sediment: 0.004 });
-    const suite = ww.suiteOf({ columns: made.elements.map((symbol, e) => ww.column({ symbol, values: [made.melt[e]] })), labels: { sample: ['made'] } });
+    const suite = ww.suiteOf({
+      columns: made.elements.map((symbol, e) => ww.column({ symbol, values: [made.melt[e]] })),
+      labels: { sample: ['made'] },
+    });
     const fit = await ww.fitFluxedWedge(suite, { draws: 60 });
     const diagram = diagrams.wedgeCorner(fit, { name: 'made' });
     expect((diagram.spec.concat as unknown[]).length).toBe(16);

@@ -18,7 +18,13 @@ describe('the invented arc', () => {
     const elements = ww.wedgeElements.filter((element) => element !== 'Ti');
     const pick = (from: Readonly<Record<string, number>>) => Object.fromEntries(elements.map((element) => [element, from[element]]));
     const { mantle, fluid, sediment, residue } = truth.model;
-    const endMembers = ww.wedgeEndMembers({ elements, mantle: pick(mantle), fluid: pick(fluid), sedimentMelt: pick(sediment), mantleCoefficients: pick(residue) });
+    const endMembers = ww.wedgeEndMembers({
+      elements,
+      mantle: pick(mantle),
+      fluid: pick(fluid),
+      sedimentMelt: pick(sediment),
+      mantleCoefficients: pick(residue),
+    });
     const { fits } = await ww.fitFluxedWedge(basalts, { group: 'volcano', endMembers, fixed: { priorMelt: 0 }, draws: 100 });
     for (const { name, parameters, chiSquare, degreesOfFreedom } of fits) {
       const { F, x, y } = truth.volcanoes[name];

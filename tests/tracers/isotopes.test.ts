@@ -1,7 +1,8 @@
 import { describe, expect, it } from 'vitest';
 import * as ww from 'wedgework';
 
-const suiteWith = (columns: Readonly<Record<string, ArrayLike<number>>>) => ww.suiteOf({ columns: Object.entries(columns).map(([symbol, values]) => ww.column({ symbol, values })) });
+const suiteWith = (columns: Readonly<Record<string, ArrayLike<number>>>) =>
+  ww.suiteOf({ columns: Object.entries(columns).map(([symbol, values]) => ww.column({ symbol, values })) });
 
 describe('isotopes', () => {
   it('gives the printed εNd of a 3.2 Ga rock', () => {
@@ -43,7 +44,11 @@ describe('isotopes', () => {
   it('measures Pb against the Northern Hemisphere Reference Line (Hart 1984, constants from memory)', () => {
     const on = (base: number, slope: number, intercept: number) => slope * base + intercept;
     const base = [18, 19];
-    const suite = suiteWith({ '206Pb/204Pb': base, '207Pb/204Pb': [on(18, 0.1084, 13.491), on(19, 0.1084, 13.491) + 0.05], '208Pb/204Pb': base.map((x) => on(x, 1.209, 15.627) + 0.5) });
+    const suite = suiteWith({
+      '206Pb/204Pb': base,
+      '207Pb/204Pb': [on(18, 0.1084, 13.491), on(19, 0.1084, 13.491) + 0.05],
+      '208Pb/204Pb': base.map((x) => on(x, 1.209, 15.627) + 0.5),
+    });
     const { columns } = ww.isotopes(suite);
     expect([...columns.get('delta-7/4')!.values].map((value) => Math.round(1e6 * value) / 1e6)).toEqual([0, 5]);
     for (const value of columns.get('delta-8/4')!.values) expect(value).toBeCloseTo(50, 6);
@@ -67,9 +72,20 @@ describe('unmix', () => {
   const A = { Sr: 600, '87Sr/86Sr': 0.7033, Nd: 15, '143Nd/144Nd': 0.51305 };
   const B = { Sr: 150, '87Sr/86Sr': 0.715, Nd: 35, '143Nd/144Nd': 0.5121 };
   // fraction of B, 87Sr/86Sr, 143Nd/144Nd: Langmuir et al. 1978 mixing, computed independently
-  const series = [[0, 0.7033, 0.51305], [0.1, 0.70361621621622, 0.51285441176471], [0.25, 0.7042, 0.512634375], [0.5, 0.70564, 0.512385], [0.75, 0.70831428571429, 0.51221875], [0.9, 0.7114, 0.51214318181818], [1, 0.715, 0.5121]];
+  const series = [
+    [0, 0.7033, 0.51305],
+    [0.1, 0.70361621621622, 0.51285441176471],
+    [0.25, 0.7042, 0.512634375],
+    [0.5, 0.70564, 0.512385],
+    [0.75, 0.70831428571429, 0.51221875],
+    [0.9, 0.7114, 0.51214318181818],
+    [1, 0.715, 0.5121],
+  ];
   const suite = suiteWith({ '87Sr/86Sr': series.map((row) => row[1]), '143Nd/144Nd': series.map((row) => row[2]) });
-  const two = [{ name: 'A', composition: A }, { name: 'B', composition: B }];
+  const two = [
+    { name: 'A', composition: A },
+    { name: 'B', composition: B },
+  ];
 
   it('gives back the fractions of a published kind of mixture', async () => {
     const result = await ww.unmix(suite, two, { draws: 50 });
@@ -85,11 +101,24 @@ describe('unmix', () => {
   it('solves three components, and one ratio for two', async () => {
     const C = { Sr: 300, '87Sr/86Sr': 0.7045, Nd: 20, '143Nd/144Nd': 0.5129, Pb: 5, '206Pb/204Pb': 19.5 };
     const [f, g] = [0.3, 0.2];
-    const parts = [[1 - f - g, { ...A, Pb: 1, '206Pb/204Pb': 18 }], [f, { ...B, Pb: 20, '206Pb/204Pb': 18.9 }], [g, C]] as const;
+    const parts = [
+      [1 - f - g, { ...A, Pb: 1, '206Pb/204Pb': 18 }],
+      [f, { ...B, Pb: 20, '206Pb/204Pb': 18.9 }],
+      [g, C],
+    ] as const;
     const mixed = (ratio: keyof typeof C, element: keyof typeof C) =>
-      parts.reduce((sum, [share, part]) => sum + share * part[element] * part[ratio], 0) / parts.reduce((sum, [share, part]) => sum + share * part[element], 0);
-    const rock = suiteWith({ '87Sr/86Sr': [mixed('87Sr/86Sr', 'Sr')], '143Nd/144Nd': [mixed('143Nd/144Nd', 'Nd')], '206Pb/204Pb': [mixed('206Pb/204Pb', 'Pb')] });
-    const three = await ww.unmix(rock, parts.map(([, composition], j) => ({ name: 'ABC'[j], composition })), { draws: 50 });
+      parts.reduce((sum, [share, part]) => sum + share * part[element] * part[ratio], 0) /
+      parts.reduce((sum, [share, part]) => sum + share * part[element], 0);
+    const rock = suiteWith({
+      '87Sr/86Sr': [mixed('87Sr/86Sr', 'Sr')],
+      '143Nd/144Nd': [mixed('143Nd/144Nd', 'Nd')],
+      '206Pb/204Pb': [mixed('206Pb/204Pb', 'Pb')],
+    });
+    const three = await ww.unmix(
+      rock,
+      parts.map(([, composition], j) => ({ name: 'ABC'[j], composition })),
+      { draws: 50 },
+    );
     expect(three.shares.get('B')![0]).toBeCloseTo(f, 3);
     expect(three.shares.get('C')![0]).toBeCloseTo(g, 3);
     const one = await ww.unmix(suite, two, { draws: 50, ratios: ['87Sr/86Sr'] });
@@ -103,7 +132,11 @@ describe('unmix', () => {
       const [m, s] = [(1 - part) * mantle.valueOf(element)!, part * sediment.valueOf(element)!];
       return (m * mantle.valueOf(ratio)! + s * sediment.valueOf(ratio)!) / (m + s);
     };
-    const rock = suiteWith({ '87Sr/86Sr': [at('87Sr/86Sr', 'Sr')], '143Nd/144Nd': [at('143Nd/144Nd', 'Nd')], '206Pb/204Pb': [at('206Pb/204Pb', 'Pb')] });
+    const rock = suiteWith({
+      '87Sr/86Sr': [at('87Sr/86Sr', 'Sr')],
+      '143Nd/144Nd': [at('143Nd/144Nd', 'Nd')],
+      '206Pb/204Pb': [at('206Pb/204Pb', 'Pb')],
+    });
     const known = { name: 'mantle', composition: 'depleted-mantle-2005' };
     const exact = await ww.unmix(rock, [known, { name: 'sediment', composition: 'subducting-sediment-1998' }]);
     expect(exact.shares.get('sediment')![0]).toBeCloseTo(part, 4);
@@ -119,7 +152,9 @@ describe('unmix', () => {
     await expect(ww.unmix(suite, [two[0]])).rejects.toThrow(/two to four/);
     await expect(ww.unmix(suite, [...two, { name: 'C', composition: { Sr: 1, '87Sr/86Sr': 0.71 } }])).rejects.toThrow(/need 2 isotope ratios/);
     await expect(ww.unmix(suite, [two[0], { ...two[1], name: 'A' }])).rejects.toThrow(/name of its own/);
-    await expect(ww.unmix(suite, [two[0], { name: 'x', composition: { '87Sr/86Sr': 0.71 } }], { ratios: ['87Sr/86Sr'] })).rejects.toThrow(/"x" has no Sr/);
+    await expect(ww.unmix(suite, [two[0], { name: 'x', composition: { '87Sr/86Sr': 0.71 } }], { ratios: ['87Sr/86Sr'] })).rejects.toThrow(
+      /"x" has no Sr/,
+    );
     await expect(ww.unmix(suite, two, { ratios: ['Sr'] })).rejects.toThrow(/not an isotope ratio/);
   });
 });

@@ -9,8 +9,11 @@ describe('closed forms of melting, crystallisation and mixing', () => {
   it('agree with tabled values of Rayleigh and equilibrium crystallisation (Neumann 1954; Gast 1968; Shaw 1970)', () => {
     // F, D, liquid, instantaneous solid, accumulated solid, equilibrium liquid
     const rows = [
-      [0.9, 0.1, 1.09947, 0.109947, 0.104807, 1.0989], [0.5, 0.1, 1.86607, 0.186607, 0.133934, 1.81818], [0.5, 2, 0.5, 1, 1.5, 0.666667],
-      [0.3, 0.5, 1.82574, 0.912871, 0.646111, 1.53846], [0.1, 0.01, 9.77237, 0.0977237, 0.025292, 9.17431],
+      [0.9, 0.1, 1.09947, 0.109947, 0.104807, 1.0989],
+      [0.5, 0.1, 1.86607, 0.186607, 0.133934, 1.81818],
+      [0.5, 2, 0.5, 1, 1.5, 0.666667],
+      [0.3, 0.5, 1.82574, 0.912871, 0.646111, 1.53846],
+      [0.1, 0.01, 9.77237, 0.0977237, 0.025292, 9.17431],
     ];
     for (const [F, D, liquid, solid, cumulate, equilibrium] of rows) {
       relative(ww.rayleighLiquid(D, F), liquid);
@@ -23,7 +26,10 @@ describe('closed forms of melting, crystallisation and mixing', () => {
   it('agree with tabled values of batch and fractional melting (Shaw 1970)', () => {
     // F, D0, P, batch, increment, pooled (NaN: not tabled)
     const rows = [
-      [0.1, 0.05, 0.05, 6.89655, 2.7017, 8.78423], [0.1, 0.05, 0.3, 8.33333, 2.35778, 9.52844], [0.05, 0.01, 0.2, 20, NaN, NaN], [0.15, 0.3, 0.6, 2.77778, 2.62791, 2.98759],
+      [0.1, 0.05, 0.05, 6.89655, 2.7017, 8.78423],
+      [0.1, 0.05, 0.3, 8.33333, 2.35778, 9.52844],
+      [0.05, 0.01, 0.2, 20, NaN, NaN],
+      [0.15, 0.3, 0.6, 2.77778, 2.62791, 2.98759],
     ];
     for (const [F, D0, P, batch, increment, pooled] of rows) {
       relative(ww.batchMelt(D0, P, F), batch);

@@ -55,7 +55,12 @@ describe('pattern', () => {
     const suite = ww.suiteOf({
       columns: [
         ww.column({ symbol: 'La', values: [1, 2, 3, 4, 5, 7], states: new Uint8Array(6) }),
-        ww.column({ symbol: 'Ta', values: [NaN, NaN, 0.2, 0.1, 0.3, 0.2], states: Uint8Array.of(1, 1, 0, 0, 0, 0), limits: Float64Array.of(0.1, 0.1, NaN, NaN, NaN, NaN) }),
+        ww.column({
+          symbol: 'Ta',
+          values: [NaN, NaN, 0.2, 0.1, 0.3, 0.2],
+          states: Uint8Array.of(1, 1, 0, 0, 0, 0),
+          limits: Float64Array.of(0.1, 0.1, NaN, NaN, NaN, NaN),
+        }),
       ],
       labels: { volcano: ['A', 'A', 'A', 'B', 'B', 'B'] },
     });
@@ -73,24 +78,27 @@ describe('pattern', () => {
 
   it('has quantiles that bracket the truth whatever the censored cells were', () => {
     fc.assert(
-      fc.property(fc.array(fc.record({ value: fc.double({ min: 0.01, max: 100, noNaN: true }), censored: fc.boolean() }), { minLength: 1, maxLength: 30 }), (cells) => {
-        const truth = Float64Array.from(cells, ({ value }) => value);
-        const rows = cells.map((_, i) => i);
-        const whole = ww.column({ symbol: 'Ba', values: truth });
-        const seen = ww.column({
-          symbol: 'Ba',
-          values: cells.map(({ value, censored }) => (censored ? NaN : value)),
-          states: Uint8Array.from(cells, ({ censored }) => (censored ? cellState.belowDetection : cellState.measured)),
-          limits: Float64Array.from(cells, ({ value, censored }) => (censored ? value * 1.5 : NaN)),
-        });
-        const exact = censoredQuantiles(whole, rows, [0.25, 0.5, 0.75]).quantiles;
-        const bounded = censoredQuantiles(seen, rows, [0.25, 0.5, 0.75]).quantiles;
-        exact.forEach(({ low, high }, q) => {
-          expect(low).toBe(high);
-          expect(bounded[q].low).toBeLessThanOrEqual(low);
-          expect(bounded[q].high).toBeGreaterThanOrEqual(high);
-        });
-      }),
+      fc.property(
+        fc.array(fc.record({ value: fc.double({ min: 0.01, max: 100, noNaN: true }), censored: fc.boolean() }), { minLength: 1, maxLength: 30 }),
+        (cells) => {
+          const truth = Float64Array.from(cells, ({ value }) => value);
+          const rows = cells.map((_, i) => i);
+          const whole = ww.column({ symbol: 'Ba', values: truth });
+          const seen = ww.column({
+            symbol: 'Ba',
+            values: cells.map(({ value, censored }) => (censored ? NaN : value)),
+            states: Uint8Array.from(cells, ({ censored }) => (censored ? cellState.belowDetection : cellState.measured)),
+            limits: Float64Array.from(cells, ({ value, censored }) => (censored ? value * 1.5 : NaN)),
+          });
+          const exact = censoredQuantiles(whole, rows, [0.25, 0.5, 0.75]).quantiles;
+          const bounded = censoredQuantiles(seen, rows, [0.25, 0.5, 0.75]).quantiles;
+          exact.forEach(({ low, high }, q) => {
+            expect(low).toBe(high);
+            expect(bounded[q].low).toBeLessThanOrEqual(low);
+            expect(bounded[q].high).toBeGreaterThanOrEqual(high);
+          });
+        },
+      ),
     );
   });
 

@@ -5,7 +5,10 @@ import * as ww from 'wedgework';
 
 interface RareEarthCase {
   readonly key: string;
-  readonly inputs: { readonly REE_ppm: Readonly<Record<string, number>>; readonly chondrite: Readonly<Record<string, Readonly<Record<string, number>>>> };
+  readonly inputs: {
+    readonly REE_ppm: Readonly<Record<string, number>>;
+    readonly chondrite: Readonly<Record<string, Readonly<Record<string, number>>>>;
+  };
   readonly expected: Readonly<Record<string, Readonly<Record<string, number>> & { readonly normalised: Readonly<Record<string, number>> }>>;
   readonly source_citation: string;
 }

@@ -3,8 +3,38 @@ import * as ww from 'wedgework';
 
 const { cellState } = ww;
 
-const bhvo1 = { La: 15.8, Ce: 39, Pr: 5.7, Nd: 25.2, Sm: 6.2, Eu: 2.06, Gd: 6.4, Tb: 0.96, Dy: 5.2, Ho: 0.99, Er: 2.4, Tm: 0.33, Yb: 2.02, Lu: 0.291 };
-const monchiquite = { La: 103, Ce: 253, Pr: 27, Nd: 110, Sm: 14.2, Eu: 2.0, Gd: 7.7, Tb: 1.1, Dy: 5.9, Ho: 0.91, Er: 1.5, Tm: 0.22, Yb: 0.9, Lu: 0.15 };
+const bhvo1 = {
+  La: 15.8,
+  Ce: 39,
+  Pr: 5.7,
+  Nd: 25.2,
+  Sm: 6.2,
+  Eu: 2.06,
+  Gd: 6.4,
+  Tb: 0.96,
+  Dy: 5.2,
+  Ho: 0.99,
+  Er: 2.4,
+  Tm: 0.33,
+  Yb: 2.02,
+  Lu: 0.291,
+};
+const monchiquite = {
+  La: 103,
+  Ce: 253,
+  Pr: 27,
+  Nd: 110,
+  Sm: 14.2,
+  Eu: 2.0,
+  Gd: 7.7,
+  Tb: 1.1,
+  Dy: 5.9,
+  Ho: 0.91,
+  Er: 1.5,
+  Tm: 0.22,
+  Yb: 0.9,
+  Lu: 0.15,
+};
 const suiteFrom = (...samples: Readonly<Record<string, number>>[]) =>
   ww.suiteOf({ columns: Object.keys(samples[0]).map((symbol) => ww.column({ symbol, values: samples.map((sample) => sample[symbol]) })) });
 const lavas = suiteFrom(bhvo1, monchiquite);
@@ -58,7 +88,13 @@ describe('ratios', () => {
     const suite = ww.suiteOf({
       columns: [
         ww.column({ symbol: 'Ba', values: [300, 310], sigma: [6, 6.2] }),
-        ww.column({ symbol: 'Th', values: [2, NaN], sigma: [0.1, NaN], states: Uint8Array.of(0, cellState.belowDetection), limits: Float64Array.of(NaN, 0.05) }),
+        ww.column({
+          symbol: 'Th',
+          values: [2, NaN],
+          sigma: [0.1, NaN],
+          states: Uint8Array.of(0, cellState.belowDetection),
+          limits: Float64Array.of(NaN, 0.05),
+        }),
       ],
     });
     const { values, sigma, states, limits } = ww.ratios(suite, ['Th/Ba']).columns.get('Th/Ba')!;
@@ -112,7 +148,11 @@ describe('ratios', () => {
   });
 
   it('computes every usual tracer and every formula of the tables on a complete analysis', () => {
-    const complete = suiteFrom(Object.fromEntries([...ww.reservoir('n-morb-1989').values.values()].filter(({ unit }) => unit !== 'ratio').map(({ analyte, value }) => [analyte, value])));
+    const complete = suiteFrom(
+      Object.fromEntries(
+        [...ww.reservoir('n-morb-1989').values.values()].filter(({ unit }) => unit !== 'ratio').map(({ analyte, value }) => [analyte, value]),
+      ),
+    );
     const table = ww.ratios(complete);
     const lacking = table.notDetermined.map(({ name }) => name).filter((name) => name !== 'V/Sc'); // the 1989 table has neither V nor Sc
     expect(lacking).toEqual([]);

@@ -7,7 +7,15 @@ const basis = ww.rareEarthPolynomials();
 const patternOf = (lambdas: readonly number[], times: Readonly<Record<string, number>> = {}, without: readonly string[] = []) =>
   ww.suiteOf({
     columns: ww.rareEarths.flatMap((symbol, e) =>
-      without.includes(symbol) ? [] : [ww.column({ symbol, values: [chondrite[e] * Math.exp(lambdas.reduce((sum, lambda, k) => sum + lambda * basis[k][e], 0)) * (times[symbol] ?? 1)] })]),
+      without.includes(symbol)
+        ? []
+        : [
+            ww.column({
+              symbol,
+              values: [chondrite[e] * Math.exp(lambdas.reduce((sum, lambda, k) => sum + lambda * basis[k][e], 0)) * (times[symbol] ?? 1)],
+            }),
+          ],
+    ),
   });
 
 describe('orthogonal polynomials of the rare earths', () => {

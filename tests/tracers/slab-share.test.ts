@@ -67,7 +67,11 @@ describe('slab shares', () => {
   it('propagate 1σ to first order', () => {
     const rock = (element: string) => ppm('n-morb-1989', element) * (element === 'Ba' ? 20 : 1);
     const exact = suiteOfRocks([rock]);
-    const withSigma = exact.with(['Ba', 'Nb', 'Yb'].map((symbol) => ww.column({ symbol, values: exact.values(symbol), sigma: exact.values(symbol).map((value) => 0.04 * value) })));
+    const withSigma = exact.with(
+      ['Ba', 'Nb', 'Yb'].map((symbol) =>
+        ww.column({ symbol, values: exact.values(symbol), sigma: exact.values(symbol).map((value) => 0.04 * value) }),
+      ),
+    );
     const { values, sigma } = ww.slabShares(withSigma, { filter: 'none', elements: ['Ba'] }).shares.get('Ba')!;
     const { slope, scatter } = ww.mantleArray('Ba')!;
     // first-order propagation written out: baseline part of Ba is 1/20
@@ -77,7 +81,10 @@ describe('slab shares', () => {
 
   it('count basalts only, unless told otherwise, and say so', () => {
     const rock = (element: string) => ppm('n-morb-1989', element);
-    const suite = suiteOfRocks([rock, rock, rock], [ww.column({ symbol: 'MgO', values: [7, 2, 6] }), ww.column({ symbol: 'LOI', values: [0.5, 0.5, 9] })]);
+    const suite = suiteOfRocks(
+      [rock, rock, rock],
+      [ww.column({ symbol: 'MgO', values: [7, 2, 6] }), ww.column({ symbol: 'LOI', values: [0.5, 0.5, 9] })],
+    );
     const result = ww.slabShares(suite);
     expect([...result.kept]).toEqual([1, 0, 0]);
     expect(result.notes.join(' ')).toMatch(/1 of 3 samples counted.*1 with MgO below 4.*1 with LOI above 4/);
@@ -88,7 +95,8 @@ describe('slab shares', () => {
 
   it('keep below-detection values as bounds', () => {
     const rock = (element: string) => ppm('n-morb-1989', element);
-    const censored = (symbol: string, limit: number) => ww.column({ symbol, values: [NaN], states: Uint8Array.of(cellState.belowDetection), limits: Float64Array.of(limit) });
+    const censored = (symbol: string, limit: number) =>
+      ww.column({ symbol, values: [NaN], states: Uint8Array.of(cellState.belowDetection), limits: Float64Array.of(limit) });
     const noTh = suiteOfRocks([rock]).with([censored('Th', 0.24)]);
     const th = ww.slabShares(noTh, { filter: 'none' }).shares.get('Th')!;
     expect(th.states[0]).toBe(cellState.belowDetection); // N-MORB Th is 0.12: at most half can be slab-derived
@@ -104,7 +112,10 @@ describe('slab shares', () => {
     const suite = suiteOfRocks([rock(2), rock(4), rock(8), rock(1)]).withLabels({ volcano: ['A', 'A', 'A', 'B'] });
     const { groups, elements } = ww.slabShares(suite, { filter: 'none', group: 'volcano' });
     const ba = elements.indexOf('Ba');
-    expect(groups.map(({ name, samples }) => [name, samples])).toEqual([['A', 3], ['B', 1]]);
+    expect(groups.map(({ name, samples }) => [name, samples])).toEqual([
+      ['A', 3],
+      ['B', 1],
+    ]);
     expect(groups[0].median[ba]).toBeCloseTo(75, 9);
     expect(groups[1].median[ba]).toBeCloseTo(0, 9);
     expect(() => ww.slabShares(suite, { elements: ['Xe'] })).toThrow(/needs Xe/);

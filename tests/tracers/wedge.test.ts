@@ -8,7 +8,10 @@ const members = ww.wedgeEndMembers();
 function madeLavas(count: number, noise: number, seed: number) {
   const random = randomStream(seed);
   const truth = Array.from({ length: count }, () => ({
-    melt: 0.06 + 0.16 * random.uniform(), fluid: 0.002 + 0.02 * random.uniform(), sediment: 0.001 + 0.02 * random.uniform(), priorMelt: 0.03 * random.uniform(),
+    melt: 0.06 + 0.16 * random.uniform(),
+    fluid: 0.002 + 0.02 * random.uniform(),
+    sediment: 0.001 + 0.02 * random.uniform(),
+    priorMelt: 0.03 * random.uniform(),
   }));
   const values = members.elements.map(() => new Float64Array(count));
   truth.forEach((parameters, i) => {
@@ -40,7 +43,13 @@ describe('end members of the wedge', () => {
   it('can all be replaced', () => {
     const own = { Ba: 4000, Th: 1, Nb: 0.5, Yb: 0.3, La: 30 };
     const coefficients = { Ba: 0.001, Th: 0.001, Nb: 0.003, Yb: 0.1, La: 0.01 };
-    const mine = ww.wedgeEndMembers({ elements: Object.keys(own), fluid: own, sedimentMelt: 'subducting-sediment-2014' as never, mantle: 'depleted-mantle-2004', mantleCoefficients: coefficients });
+    const mine = ww.wedgeEndMembers({
+      elements: Object.keys(own),
+      fluid: own,
+      sedimentMelt: 'subducting-sediment-2014' as never,
+      mantle: 'depleted-mantle-2004',
+      mantleCoefficients: coefficients,
+    });
     expect([...mine.fluid]).toEqual(Object.values(own));
     expect(mine.sedimentMelt[0]).toBe(786); // GLOSS-II Ba, Plank 2014, from memory
     expect([...mine.melting.garnet.startD]).toEqual(Object.values(coefficients));
@@ -110,7 +119,8 @@ describe('inverse model', () => {
   it('says "not resolvable" as elements are taken away', async () => {
     const { suite } = madeLavas(8, 0.05, 3);
     const fewer = async (elements: readonly string[]) => (await ww.fitFluxedWedge(suite, { endMembers: members, elements, draws: 100 })).fits;
-    const resolved = (fits: readonly ww.OneWedgeFit[]) => fits.flatMap(({ parameters }) => ww.wedgeParameterNames.filter((name) => parameters[name].status === 'resolved')).length;
+    const resolved = (fits: readonly ww.OneWedgeFit[]) =>
+      fits.flatMap(({ parameters }) => ww.wedgeParameterNames.filter((name) => parameters[name].status === 'resolved')).length;
     const all = resolved(await fewer(members.elements));
     const some = resolved(await fewer(['Ba', 'Th', 'La', 'U', 'Nb']));
     expect(some).toBeLessThan(all / 3);
@@ -134,12 +144,20 @@ describe('inverse model', () => {
     const made = madeLavas(1, 0, 9).suite;
     const random = randomStream(2);
     const six = made.rows([0, 0, 0, 0, 0, 0]);
-    const suite = six.with(members.elements.map((symbol) => ww.column({ symbol, values: six.values(symbol).map((value) => value * Math.exp(0.03 * random.normal())) })));
+    const suite = six.with(
+      members.elements.map((symbol) => ww.column({ symbol, values: six.values(symbol).map((value) => value * Math.exp(0.03 * random.normal())) })),
+    );
     const spoiled = suite
-      .with([ww.column({ symbol: 'Nb', values: suite.values('Nb').map((value) => 6 * value) }), ww.column({ symbol: 'Pb', values: new Float64Array(6).fill(NaN) })])
+      .with([
+        ww.column({ symbol: 'Nb', values: suite.values('Nb').map((value) => 6 * value) }),
+        ww.column({ symbol: 'Pb', values: new Float64Array(6).fill(NaN) }),
+      ])
       .withLabels({ volcano: ['A', 'A', 'A', 'B', 'B', 'B'] });
     const { fits, lineage } = await ww.fitFluxedWedge(spoiled, { group: 'volcano', endMembers: members, draws: 60, fixed: { priorMelt: 0 } });
-    expect(fits.map(({ name, samples }) => [name, samples])).toEqual([['A', 3], ['B', 3]]);
+    expect(fits.map(({ name, samples }) => [name, samples])).toEqual([
+      ['A', 3],
+      ['B', 3],
+    ]);
     expect(fits[0].unused).toEqual(['Pb']);
     expect(fits[0].fitted).toEqual(['melt', 'fluid', 'sediment']);
     expect(fits[0].widened).toBeGreaterThan(1.5);
