@@ -40,7 +40,7 @@ export function guardSamples(grounds: Grounds): Guarding {
   const struck = new Uint8Array(suite.size);
   const guards = fertilityGuards().map((guard): GuardFlags => {
     const flags = new Uint8Array(suite.size);
-    const checked = guard.label === undefined ? flagByConditions(guard, grounds, flags) : flagByLabel(labelOf(suite, guard.label), flags);
+    const checked = guard.label === undefined ? flagByConditions(guard, grounds, flags) : flagByLabel(suite, guard.label, flags);
     const target = guard.effect === 'exclude' ? excluded : guard.effect === 'strike' ? struck : undefined;
     let flagged = 0;
     for (let i = 0; i < flags.length; i++) {
@@ -53,22 +53,22 @@ export function guardSamples(grounds: Grounds): Guarding {
   return { guards, excluded, struck };
 }
 
-/** A label however its head is written: a guard must not be missed for a capital letter. */
-function labelOf(suite: Suite, name: string): readonly string[] | undefined {
-  const written = suite.labels.has(name) ? name : [...suite.labels.keys()].find((each) => each.trim().toLowerCase() === name);
-  return written === undefined ? undefined : suite.label(written);
-}
-
-function flagByLabel(texts: readonly string[] | undefined, flags: Uint8Array): number {
-  if (texts === undefined) return 0;
-  // Labels repeat, so each distinct text is read once.
-  const fresh = new Map<string, boolean>();
-  for (let i = 0; i < flags.length; i++) {
-    let says = fresh.get(texts[i]);
-    if (says === undefined) fresh.set(texts[i], (says = saysFresh.test(texts[i])));
-    if (!says) flags[i] = 1;
+/**
+ * Flags by every label of that name, however it is written: field notes (`Alteration`) and the audit's own (`alteration`) may stand side by
+ * side, and neither must be missed.
+ */
+function flagByLabel(suite: Suite, name: string, flags: Uint8Array): number {
+  const written = [...suite.labels].filter(([label]) => label.trim().toLowerCase() === name);
+  for (const [, texts] of written) {
+    // Labels repeat, so each distinct text is read once.
+    const fresh = new Map<string, boolean>();
+    for (let i = 0; i < flags.length; i++) {
+      let says = fresh.get(texts[i]);
+      if (says === undefined) fresh.set(texts[i], (says = saysFresh.test(texts[i])));
+      if (!says) flags[i] = 1;
+    }
   }
-  return flags.length;
+  return written.length === 0 ? 0 : flags.length;
 }
 
 function flagByConditions(guard: FertilityGuard, grounds: Grounds, flags: Uint8Array): number {

@@ -309,7 +309,12 @@ describe('guards', () => {
   const struck: readonly (readonly [string, Change, Readonly<Record<string, readonly string[]>> | undefined, number])[] = [
     ["the audit's label", {}, { alteration: ['sericite'] }, fertilityReason.altered],
     ['loss on ignition', { LOI: 3.1 }, undefined, fertilityReason.altered],
-    ['a label with a capital letter', {}, { Alteration: ['clay'] }, fertilityReason.altered],
+    [
+      'field notes under a capital letter, beside an audit that found nothing',
+      {},
+      { Alteration: ['clay'], alteration: [''] },
+      fertilityReason.altered,
+    ],
     // 100·(5 + 4)/(5 + 4 + 1 + 2) = 75.
     ['the alteration index', { K2O: 5, MgO: 4, Na2O: 1, CaO: 2, Al2O3: 12 }, undefined, fertilityReason.altered],
     ['the weathering index', { Al2O3: 20, CaO: 2, Na2O: 2, K2O: 1.5, MgO: 1 }, undefined, fertilityReason.weathered],
