@@ -102,7 +102,10 @@ function outputHtml(output: NotebookOutput, markdown: Render, clean: Render): st
     return pictureHtml(`data:${type};base64,${base64}`, text, pictureWidth(output, type, base64));
   }
   const html = outputText(data['text/html']);
-  if (html !== undefined) return `<div class="shown">${clean(html)}</div>`;
+  if (html !== undefined) {
+    // A wide table scrolls inside its own frame, which the keyboard can reach.
+    return `<div class="shown" tabindex="0" role="region" aria-label="Shown table">${clean(html)}</div>`;
+  }
   const marked = outputText(data['text/markdown']);
   if (marked !== undefined) return `<div class="shown">${markdown(marked)}</div>`;
   return text === '' ? '' : `<pre class="value">${escapeHtml(stripVTControlCharacters(text))}</pre>`;
