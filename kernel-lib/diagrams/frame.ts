@@ -132,11 +132,13 @@ export function windowAround(values: Iterable<ArrayLike<number>>, hints: WindowH
   const to = Math.ceil((middle + span * 0.56) / step) * step;
   // A quantity that is never negative gets no negative part of the axis.
   const floor = low >= 0 ? Math.max(0, within[0]) : within[0];
-  return [tidy(Math.max(from, floor)), tidy(Math.min(to, within[1]))];
+  const window = [tidy(Math.max(from, floor)), tidy(Math.min(to, within[1]))] as const;
+  // Values that all lie beyond the limits leave nothing between them.
+  return window[0] < window[1] ? window : (whole ?? [tidy(from), tidy(to)]);
 }
 
 /** Log windows end on a tick, and span half a decade at least. */
-function logWindow(low: number, high: number, { within = [0, Infinity], leastSpan = 4 }: WindowHints): readonly [number, number] {
+function logWindow(low: number, high: number, { within = [0, Infinity], leastSpan = 4, whole }: WindowHints): readonly [number, number] {
   const margin = 1.12;
   let from = low / margin;
   let to = high * margin;
@@ -154,7 +156,8 @@ function logWindow(low: number, high: number, { within = [0, Infinity], leastSpa
     const power = 10 ** Math.floor(Math.log10(value) + 1e-9);
     return (marks.find((mark) => mark * power >= value * 0.999999) ?? 10) * power;
   };
-  return [tidy(Math.max(down(from), within[0] > 0 ? within[0] : 0)), tidy(Math.min(up(to), within[1]))];
+  const window = [tidy(Math.max(down(from), within[0] > 0 ? within[0] : 0)), tidy(Math.min(up(to), within[1]))] as const;
+  return window[0] < window[1] ? window : (whole ?? [tidy(down(from)), tidy(up(to))]);
 }
 
 /** Takes off the noise of binary fractions. */

@@ -102,6 +102,8 @@ describe('frames and axes', () => {
       }),
     );
     expect(windowAround([[NaN]], { whole: [40, 80] })).toEqual([40, 80]);
+    // All values beyond the limits of a scheme: its usual window, not one that runs backwards.
+    expect(windowAround([[20, 22]], { within: [30, 100], whole: [40, 80] })).toEqual([40, 80]);
   });
 
   it('log axes carry their decades, and more where a decade is long', () => {

@@ -140,6 +140,7 @@ describe('bad arguments', () => {
     ['missing analyte', () => diagrams.xy(suite, 'SiO2', 'Re'), /needs Re, which this suite does not hold/],
     ['unknown scheme', () => diagrams.scheme(suite, 'no-such'), /no scheme "no-such"/],
     ['no axis at all', () => diagrams.tas(suite.only(['MgO'])), /tas: no sample has what the axes of "tas" need/],
+    ['other axes', () => diagrams.tas(suite, { also: ['afm'] }), /"afm" has other axes/],
     ['unknown reference', () => diagrams.spider(suite, { reference: 'moon' }), /no reservoir "moon"/],
     ['groups without a label', () => diagrams.rareEarths(suite, { curves: 'groups' }), /needs a label to group by/],
     ['nothing to show', () => diagrams.harker(suite, { show: ['Re'] }), /holds none of Re/],
