@@ -44,7 +44,8 @@ export interface ArcMapOptions {
  */
 export function arcMap(slab: SlabSurface, suite: Suite, options: ArcMapOptions = {}): Diagram {
   const { by = 'volcano', colour, width = 460, names = 'all', reference = 'chondrite-c1-1989' } = options;
-  if (typeof slab?.at !== 'function') throw new TypeError('arcMap: the first argument must be a slab surface, from slabFromDepths or slabFromHypocentres.');
+  if (typeof slab?.at !== 'function')
+    throw new TypeError('arcMap: the first argument must be a slab surface, from slabFromDepths or slabFromHypocentres.');
   if (typeof suite !== 'object' || suite === null || !suite.has?.('latitude') || !suite.has('longitude')) {
     throw new RangeError('arcMap: the second argument must be a suite with the columns latitude and longitude (°); see withCoordinates.');
   }
@@ -66,21 +67,32 @@ export function arcMap(slab: SlabSurface, suite: Suite, options: ArcMapOptions =
   const region = { west: x[0], east: x[1], south: y[0], north: y[1] };
   const depths = options.contours ?? usualDepths(slab.depthRange);
   const lines = slabContours(slab, depths, { frame: region }).map(({ depth, pieces }): ContourShape => ({
-    label: String(depth), pieces: pieces.map((piece) => ({ points: piece.longitude.map((east, k) => [east, piece.latitude[k]] as const), dashed: piece.extrapolated })),
+    label: String(depth),
+    pieces: pieces.map((piece) => ({ points: piece.longitude.map((east, k) => [east, piece.latitude[k]] as const), dashed: piece.extrapolated })),
   }));
   const dots = options.hypocentres === undefined ? [] : [dotsLayer(options.hypocentres, centre)];
   const dashed = lines.some(({ pieces }) => pieces.some((piece) => piece.dashed));
   return figure({
-    name: 'Map of an arc and its slab', title: options.title,
-    panels: [{
-      frame,
-      layers: [
-        ...dots, contoursLayer(lines, placed.map((mark) => [mark.x, mark.y] as const)), ...(trench === undefined ? [] : [trenchLayer(trench.longitude, trench.latitude, centre)]), compassLayer(frame),
-        volcanoesLayer(placed, { names, ...(value === undefined ? {} : { valueTitle: marginTitle(colour!, value.unit) }) }),
-      ],
-    }],
+    name: 'Map of an arc and its slab',
+    title: options.title,
+    panels: [
+      {
+        frame,
+        layers: [
+          ...dots,
+          contoursLayer(
+            lines,
+            placed.map((mark) => [mark.x, mark.y] as const),
+          ),
+          ...(trench === undefined ? [] : [trenchLayer(trench.longitude, trench.latitude, centre)]),
+          compassLayer(frame),
+          volcanoesLayer(placed, { names, ...(value === undefined ? {} : { valueTitle: marginTitle(colour!, value.unit) }) }),
+        ],
+      },
+    ],
     caption: [
-      `Lines: depth of the slab in km (${slab.kind}${slab.name === '' || slab.name === slab.kind ? '' : ` ${slab.name}`})${dashed ? ', dashed where extrapolated' : ''}.`,
+      'Lines: depth of the slab in km ' +
+      `(${slab.kind}${slab.name === '' || slab.name === slab.kind ? '' : ` ${slab.name}`})${dashed ? ', dashed where extrapolated' : ''}.`,
       ...(trench === undefined ? [] : [`Toothed line: ${trench.name}.`]),
       ...(value === undefined ? [] : ['Colour: median of each volcano.']),
       ...(options.hypocentres === undefined ? [] : ['Grey: earthquakes.']),
@@ -106,12 +118,20 @@ export function volcanoMarks(suite: Suite, by: string, centre: number, values: F
     return sorted.length === 0 ? NaN : (sorted[(sorted.length - 1) >> 1] + sorted[sorted.length >> 1]) / 2;
   };
   return [...rows].map(([name, of]) => ({
-    name, samples: of.length, x: middle(of.map((i) => longitudeNear(longitude[i], centre))), y: middle(of.map((i) => latitude[i])), ...(values === undefined ? {} : { value: middle(of.map((i) => values[i])) }),
+    name,
+    samples: of.length,
+    x: middle(of.map((i) => longitudeNear(longitude[i], centre))),
+    y: middle(of.map((i) => latitude[i])),
+    ...(values === undefined ? {} : { value: middle(of.map((i) => values[i])) }),
   }));
 }
 
 function mapWindow(
-  marks: readonly VolcanoMark[], trench: TrenchLine | undefined, slab: SlabSurface, centre: number, chosen: { readonly x?: readonly [number, number]; readonly y?: readonly [number, number] },
+  marks: readonly VolcanoMark[],
+  trench: TrenchLine | undefined,
+  slab: SlabSurface,
+  centre: number,
+  chosen: { readonly x?: readonly [number, number]; readonly y?: readonly [number, number] },
 ): { x: readonly [number, number]; y: readonly [number, number] } {
   const lats = marks.map(({ y }) => y);
   const nearby = { x: [] as number[], y: [] as number[] };

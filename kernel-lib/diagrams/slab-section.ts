@@ -44,7 +44,8 @@ type OnSection = (longitude: number, latitude: number) => Point;
  */
 export function slabSection(slab: SlabSurface, suite: Suite, options: SlabSectionOptions = {}): Diagram {
   const { by = 'volcano', swath = 150, width = 560, names = 'all' } = options;
-  if (typeof slab?.at !== 'function') throw new TypeError('slabSection: the first argument must be a slab surface, from slabFromDepths or slabFromHypocentres.');
+  if (typeof slab?.at !== 'function')
+    throw new TypeError('slabSection: the first argument must be a slab surface, from slabFromDepths or slabFromHypocentres.');
   if (typeof suite !== 'object' || suite === null || !suite.has?.('latitude') || !suite.has('longitude')) {
     throw new RangeError('slabSection: the second argument must be a suite with the columns latitude and longitude (°); see withCoordinates.');
   }
@@ -55,7 +56,11 @@ export function slabSection(slab: SlabSurface, suite: Suite, options: SlabSectio
   const [longitude, latitude] = sectionPoint(marks, options.through);
   const here = slabBelow(slab, { longitude: [longitude], latitude: [latitude] });
   const azimuth = options.azimuth ?? here.strike[0] + 90;
-  if (!Number.isFinite(azimuth)) throw new RangeError(`slabSection: there is no slab below ${longitude.toFixed(2)}° E, ${latitude.toFixed(2)}° N. Choose another place with { through } and give an azimuth.`);
+  if (!Number.isFinite(azimuth))
+    throw new RangeError(
+      `slabSection: there is no slab below ${longitude.toFixed(2)}° E, ${latitude.toFixed(2)}° N. Choose another place with { through } ` +
+      'and give an azimuth.',
+    );
   const fromTrench = here.trenchDistance[0];
   const start = Number.isFinite(fromTrench) ? fromTrench : 0;
   const onSection: OnSection = (lon, lat) => {
@@ -78,17 +83,34 @@ export function slabSection(slab: SlabSurface, suite: Suite, options: SlabSectio
   const rows = rowsOfNames(asked, across, width);
   const frame = sectionFrame(width, across, profile, Number.isFinite(fromTrench), 16 + rowHeight * (1 + Math.max(-1, ...rows.map(({ row }) => row))));
   return figure({
-    name: 'Section across the arc', title: options.title,
-    panels: [{
-      frame,
-      layers: [
-        ...(events === undefined ? [] : [samplesLayer(events.points, { inPanel: true })]),
-        bandsLayer(profile.bands.map((band) => ({ ...band, colour: ink.text, opacity: 0.16 }))), linesLayer(profile.lines.map(({ points, dashed }) => ({ points, colour: ink.text, width: 1.8, ...(dashed ? { dash: [5, 4] } : {}) }))),
-        linesLayer([{ points: [[frame.x.window[0], 0], [frame.x.window[1], 0]], colour: ink.axis, width: 1 }]), volcanoesLayer(shown, { names: [], above: true }), namesAboveLayer(rows, perPixel),
-      ],
-    }],
+    name: 'Section across the arc',
+    title: options.title,
+    panels: [
+      {
+        frame,
+        layers: [
+          ...(events === undefined ? [] : [samplesLayer(events.points, { inPanel: true })]),
+          bandsLayer(profile.bands.map((band) => ({ ...band, colour: ink.text, opacity: 0.16 }))),
+          linesLayer(profile.lines.map(({ points, dashed }) => ({ points, colour: ink.text, width: 1.8, ...(dashed ? { dash: [5, 4] } : {}) }))),
+          linesLayer([
+            {
+              points: [
+                [frame.x.window[0], 0],
+                [frame.x.window[1], 0],
+              ],
+              colour: ink.axis,
+              width: 1,
+            },
+          ]),
+          volcanoesLayer(shown, { names: [], above: true }),
+          namesAboveLayer(rows, perPixel),
+        ],
+      },
+    ],
     caption: [
-      `Section towards ${Math.round(((azimuth % 360) + 360) % 360)}°, straight down dip, through ${typeof options.through === 'string' ? options.through : `${Math.abs(longitude).toFixed(2)}° ${longitude < 0 ? 'W' : 'E'}, ${Math.abs(latitude).toFixed(2)}° ${latitude < 0 ? 'S' : 'N'}`}; a strip of ${swath} km; no vertical exaggeration.`,
+      `Section towards ${Math.round(((azimuth % 360) + 360) % 360)}°, straight down dip, through ` +
+      `${typeof options.through === 'string' ? options.through : placeText(longitude, latitude)}; ` +
+      `a strip of ${swath} km; no vertical exaggeration.`,
       `Line: slab (${slab.kind}) and its 1σ${profile.lines.some(({ dashed }) => dashed) ? ', dashed where extrapolated' : ''}.`,
       ...(Number.isFinite(fromTrench) ? [`Distances from the ${slab.trench?.name ?? 'trench'}.`] : []),
       ...(events === undefined ? [] : [`${events.points.x.length} earthquakes.`]),
@@ -100,14 +122,20 @@ export function slabSection(slab: SlabSurface, suite: Suite, options: SlabSectio
   });
 }
 
+function placeText(longitude: number, latitude: number): string {
+  return `${Math.abs(longitude).toFixed(2)}° ${longitude < 0 ? 'W' : 'E'}, ${Math.abs(latitude).toFixed(2)}° ${latitude < 0 ? 'S' : 'N'}`;
+}
+
 function sectionPoint(marks: readonly VolcanoMark[], through: SlabSectionOptions['through']): readonly [number, number] {
   if (typeof through === 'string') {
     const found = marks.find(({ name }) => name === through);
-    if (found === undefined || !Number.isFinite(found.x)) throw new RangeError(`slabSection: there is no volcano "${through}" with a position. There are: ${marks.map(({ name }) => name).join(', ')}.`);
+    if (found === undefined || !Number.isFinite(found.x))
+      throw new RangeError(`slabSection: there is no volcano "${through}" with a position. There are: ${marks.map(({ name }) => name).join(', ')}.`);
     return [found.x, found.y];
   }
   if (through !== undefined) {
-    if (!(Array.isArray(through) && through.length === 2 && through.every(Number.isFinite))) throw new RangeError('slabSection: through must be the name of a volcano or [longitude, latitude].');
+    if (!(Array.isArray(through) && through.length === 2 && through.every(Number.isFinite)))
+      throw new RangeError('slabSection: through must be the name of a volcano or [longitude, latitude].');
     return through as readonly [number, number];
   }
   const placed = marks.filter(({ x, y }) => Number.isFinite(x) && Number.isFinite(y));
@@ -116,11 +144,20 @@ function sectionPoint(marks: readonly VolcanoMark[], through: SlabSectionOptions
 }
 
 /** The slab along the section, every 4 km, until it ends. */
-function slabProfile(slab: SlabSurface, at: { readonly longitude: number; readonly latitude: number; readonly azimuth: number; readonly start: number }) {
+function slabProfile(
+  slab: SlabSurface,
+  at: { readonly longitude: number; readonly latitude: number; readonly azimuth: number; readonly start: number },
+) {
   const step = 4;
   const reach = Math.ceil(700 / step);
-  const places = Array.from({ length: 2 * reach + 1 }, (_, k) => (k - reach) * step).map((d) => ({ x: at.start + d, ...(d >= 0 ? pointAt(at.longitude, at.latitude, at.azimuth, d) : pointAt(at.longitude, at.latitude, at.azimuth + 180, -d)) }));
-  const below = slab.at(places.map(({ longitude }) => longitude), places.map(({ latitude }) => latitude));
+  const places = Array.from({ length: 2 * reach + 1 }, (_, k) => (k - reach) * step).map((d) => ({
+    x: at.start + d,
+    ...(d >= 0 ? pointAt(at.longitude, at.latitude, at.azimuth, d) : pointAt(at.longitude, at.latitude, at.azimuth + 180, -d)),
+  }));
+  const below = slab.at(
+    places.map(({ longitude }) => longitude),
+    places.map(({ latitude }) => latitude),
+  );
   const x: number[] = [];
   const depth: number[] = [];
   const lines: { points: Point[]; dashed: boolean }[] = [];
@@ -153,7 +190,12 @@ function slabProfile(slab: SlabSurface, at: { readonly longitude: number; readon
   return { x, depth, lines, bands };
 }
 
-function sectionWindow(width: number, profile: { readonly x: readonly number[] }, above: readonly VolcanoMark[], fromTrench: boolean): readonly [number, number] {
+function sectionWindow(
+  width: number,
+  profile: { readonly x: readonly number[] },
+  above: readonly VolcanoMark[],
+  fromTrench: boolean,
+): readonly [number, number] {
   const volcanoes = above.map(({ x }) => x);
   // To some way behind the last volcano, so that a long slab does not shrink the arc.
   const right = Math.min(Math.max(...profile.x), Math.max(...volcanoes, 150) + 120);
@@ -162,7 +204,13 @@ function sectionWindow(width: number, profile: { readonly x: readonly number[] }
   return [Math.floor(left / gap) * gap, Math.ceil(right / (gap / 2)) * (gap / 2)];
 }
 
-function sectionFrame(width: number, x: readonly [number, number], profile: { readonly x: readonly number[]; readonly depth: readonly number[] }, fromTrench: boolean, roomAbove: number): Frame {
+function sectionFrame(
+  width: number,
+  x: readonly [number, number],
+  profile: { readonly x: readonly number[]; readonly depth: readonly number[] },
+  fromTrench: boolean,
+  roomAbove: number,
+): Frame {
   const deepest = Math.max(...profile.depth.filter((_, i) => profile.x[i] <= x[1]));
   const bottom = Math.ceil((deepest * 1.08 + 10) / 25) * 25;
   const perPixel = (x[1] - x[0]) / width;
@@ -170,7 +218,8 @@ function sectionFrame(width: number, x: readonly [number, number], profile: { re
   const step = roundStep(bottom, Math.max(2, Math.floor(bottom / perPixel / 60)));
   const ticks = Array.from({ length: Math.floor(bottom / step) + 1 }, (_, k) => k * step);
   return {
-    width, height: Math.round((bottom - top) / perPixel),
+    width,
+    height: Math.round((bottom - top) / perPixel),
     x: { title: fromTrench ? 'Distance from the trench (km)' : 'Distance along the section (km)', window: x },
     y: { title: 'Depth (km)', window: [top, bottom], reversed: true, ticks },
   };
@@ -188,16 +237,18 @@ const rowHeight = 15;
 
 function rowsOfNames(marks: readonly VolcanoMark[], [low, high]: readonly [number, number], width: number): NameAbove[] {
   const ends: number[] = [];
-  return [...marks].sort((a, b) => a.x - b.x).map(({ name, x }) => {
-    const middle = ((x - low) / (high - low)) * width;
-    const half = textWidth(name, { size: textSize.note }) / 2;
-    // A name also keeps off the leaders of higher rows, which stand at the middles of later names.
-    let row = ends.findIndex((end) => middle - half > end + 5);
-    if (row === -1) row = ends.length;
-    for (let lower = 0; lower < row; lower++) ends[lower] = Math.max(ends[lower], middle);
-    ends[row] = middle + half;
-    return { name, x, row };
-  });
+  return [...marks]
+    .sort((a, b) => a.x - b.x)
+    .map(({ name, x }) => {
+      const middle = ((x - low) / (high - low)) * width;
+      const half = textWidth(name, { size: textSize.note }) / 2;
+      // A name also keeps off the leaders of higher rows, which stand at the middles of later names.
+      let row = ends.findIndex((end) => middle - half > end + 5);
+      if (row === -1) row = ends.length;
+      for (let lower = 0; lower < row; lower++) ends[lower] = Math.max(ends[lower], middle);
+      ends[row] = middle + half;
+      return { name, x, row };
+    });
 }
 
 function namesAboveLayer(rows: readonly NameAbove[], perPixel: number): Layer {
@@ -205,17 +256,41 @@ function namesAboveLayer(rows: readonly NameAbove[], perPixel: number): Layer {
   return {
     draw({ frame }) {
       if (rows.length === 0) return [];
-      const leaders = rows.filter(({ row }) => row > 0).map(({ x, row }): Point[] => [[x, -9 * perPixel], [x, heightOf(row) + 2 * perPixel]]);
+      const leaders = rows
+        .filter(({ row }) => row > 0)
+        .map(({ x, row }): Point[] => [
+          [x, -9 * perPixel],
+          [x, heightOf(row) + 2 * perPixel],
+        ]);
       const texts = rows.map(({ name, x, row }) => ({ x: specNumber(x), y: specNumber(heightOf(row)), t: name }));
       return [
         ...(leaders.length === 0 ? [] : [lineUnit(frame, leaders, { color: ink.line, strokeWidth: 0.8 })]),
-        unit(frame, { type: 'text', align: 'center', baseline: 'bottom', font: fontStack, fontSize: textSize.note, color: ink.text, clip: false, tooltip: null }, texts, { text: { field: 't', type: 'nominal' } }),
+        unit(
+          frame,
+          {
+            type: 'text',
+            align: 'center',
+            baseline: 'bottom',
+            font: fontStack,
+            fontSize: textSize.note,
+            color: ink.text,
+            clip: false,
+            tooltip: null,
+          },
+          texts,
+          { text: { field: 't', type: 'nominal' } },
+        ),
       ];
     },
   };
 }
 
-function eventPoints(slab: SlabSurface, given: SlabSectionOptions['hypocentres'], onSection: OnSection, half: number): { points: SamplePoints } | undefined {
+function eventPoints(
+  slab: SlabSurface,
+  given: SlabSectionOptions['hypocentres'],
+  onSection: OnSection,
+  half: number,
+): { points: SamplePoints } | undefined {
   const own = slab.kind === 'hypocentres' ? (slab as HypocentreSlab).events : undefined;
   const events = given ?? own;
   if (events === undefined) return undefined;
@@ -225,7 +300,12 @@ function eventPoints(slab: SlabSurface, given: SlabSectionOptions['hypocentres']
     const [x, aside] = onSection(events.longitude[i], events.latitude[i]);
     if (Math.abs(aside) <= half && Number.isFinite(events.depth[i])) rows.push({ x, y: events.depth[i], kind: kinds?.[i] ?? 0 });
   }
-  const points = { x: Float64Array.from(rows, ({ x }) => x), y: Float64Array.from(rows, ({ y }) => y), tooltips: new Map<string, ArrayLike<string>>(), axisTitles: ['distance (km)', 'depth (km)'] as const };
+  const points = {
+    x: Float64Array.from(rows, ({ x }) => x),
+    y: Float64Array.from(rows, ({ y }) => y),
+    tooltips: new Map<string, ArrayLike<string>>(),
+    axisTitles: ['distance (km)', 'depth (km)'] as const,
+  };
   if (kinds === undefined) return { points };
   const present = eventKindNames.filter((_, kind) => rows.some((row) => row.kind === kind));
   const groups = groupScale('earthquakes', present);

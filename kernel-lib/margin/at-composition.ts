@@ -82,7 +82,10 @@ export type CompositionIndex = keyof typeof presets;
 
 /** @internal The regression behind a ready-made index. */
 export function compositionIndex(name: CompositionIndex): { of: string; at: AtComposition } {
-  if (!Object.hasOwn(presets, name)) throw new RangeError(`There is no index "${String(name)}". There are: ${Object.keys(presets).join(', ')}; or give { of, at: { index, value, window } }.`);
+  if (!Object.hasOwn(presets, name))
+    throw new RangeError(
+      `There is no index "${String(name)}". There are: ${Object.keys(presets).join(', ')}; or give { of, at: { index, value, window } }.`,
+    );
   return presets[name];
 }
 
@@ -107,18 +110,49 @@ export function atComposition(suite: Suite, options: CompositionIndex | ArcValue
   const draw = randomSource(seed);
   const groups = samples.map((each) => describe(each, wanted, draw));
   if (at !== undefined && !suite.has('SumAsGiven')) notes.push('The suite is not on a volatile-free basis: see volatileFree.');
-  const sources = ['theil_1950', 'sen_1968', 'efron_1979', ...(method === 'huber' ? ['huber_1964'] : []), ...(at?.index === 'MgO' ? ['plank_langmuir_1988'] : at?.index === 'SiO2' ? ['dickinson_1975'] : [])];
+  const sources = [
+    'theil_1950',
+    'sen_1968',
+    'efron_1979',
+    ...(method === 'huber' ? ['huber_1964'] : []),
+    ...(at?.index === 'MgO' ? ['plank_langmuir_1988'] : at?.index === 'SiO2' ? ['dickinson_1975'] : []),
+  ];
   const result: ArcValues = {
-    of, unit, by, ...(at === undefined ? {} : { at }), groups, notes,
-    lineage: [...suite.lineage, step('atComposition', { of, by, at: at === undefined ? null : { index: at.index, value: at.value, window: [...at.window] }, method, seed, groups: groups.length }, {
-      sources, says: at === undefined ? '' : `${of} was brought to ${at.value} % ${at.index} by a robust line through the samples of each ${by} within ${at.window[0]}–${at.window[1]} %.`,
-    })],
+    of,
+    unit,
+    by,
+    ...(at === undefined ? {} : { at }),
+    groups,
+    notes,
+    lineage: [
+      ...suite.lineage,
+      step(
+        'atComposition',
+        { of, by, at: at === undefined ? null : { index: at.index, value: at.value, window: [...at.window] }, method, seed, groups: groups.length },
+        {
+          sources,
+          says:
+            at === undefined
+              ? ''
+              : `${of} was brought to ${at.value} % ${at.index} by a robust line through the samples of each ${by} within ` +
+                `${at.window[0]}–${at.window[1]} %.`,
+        },
+      ),
+    ],
   };
   const what = at === undefined ? `Median ${of}` : `${of} at ${at.value} ${at.index}`;
   return showAs(result, () => ({
     title: `${what} by ${by}${unit === '' ? '' : ` (${unit})`}`,
     columns: [by, what, '1σ', 'samples used', 'of', ...(at === undefined ? [] : ['slope', `${at.index} from`, `${at.index} to`]), 'note'],
-    rows: groups.map((g) => [g.group, significant(g.value), significant(g.sigma), g.used, g.of, ...(at === undefined ? [] : [significant(g.slope ?? NaN), round(g.from ?? NaN, 2), round(g.to ?? NaN, 2)]), g.note]),
+    rows: groups.map((g) => [
+      g.group,
+      significant(g.value),
+      significant(g.sigma),
+      g.used,
+      g.of,
+      ...(at === undefined ? [] : [significant(g.slope ?? NaN), round(g.from ?? NaN, 2), round(g.to ?? NaN, 2)]),
+      g.note,
+    ]),
     notes,
   }));
 }
@@ -126,15 +160,22 @@ export function atComposition(suite: Suite, options: CompositionIndex | ArcValue
 const significant = (value: number): number => (Number.isFinite(value) ? Number(value.toPrecision(4)) : NaN);
 
 /** @internal The samples of each group that a value may be drawn from. */
-export function gatherGroups(suite: Suite, options: ArcValueOptions): { readonly samples: GroupSamples[]; readonly unit: string; readonly notes: string[] } {
+export function gatherGroups(
+  suite: Suite,
+  options: ArcValueOptions,
+): { readonly samples: GroupSamples[]; readonly unit: string; readonly notes: string[] } {
   const { of, by = 'volcano', at, method = 'theil-sen', reference = 'chondrite-c1-1989' } = options ?? {};
-  if (typeof of !== 'string') throw new RangeError('atComposition: give { of } as a quantity or an expression, such as "K2O" or "Ba/Th", or a ready-made index such as "K60".');
-  if (method !== 'theil-sen' && method !== 'huber') throw new RangeError(`atComposition: method must be "theil-sen" or "huber", not "${String(method)}".`);
+  if (typeof of !== 'string')
+    throw new RangeError('atComposition: give { of } as a quantity or an expression, such as "K2O" or "Ba/Th", or a ready-made index such as "K60".');
+  if (method !== 'theil-sen' && method !== 'huber')
+    throw new RangeError(`atComposition: method must be "theil-sen" or "huber", not "${String(method)}".`);
   const composition = reservoir(reference);
   const chondrite = (symbol: string) => composition.values.get(symbol)?.value ?? NaN;
   const quantity = evaluate(suite, of, { reference: chondrite });
   if (at !== undefined && !(at.window?.length === 2 && at.window[0] < at.window[1] && Number.isFinite(at.value))) {
-    throw new RangeError('atComposition: at needs an index, a value and a window [from, to] of the index, such as { index: "SiO2", value: 60, window: [55, 65] }.');
+    throw new RangeError(
+      'atComposition: at needs an index, a value and a window [from, to] of the index, such as { index: "SiO2", value: 60, window: [55, 65] }.',
+    );
   }
   const index = at === undefined ? undefined : evaluate(suite, at.index, { reference: chondrite }).values;
   const names = suite.label(by);
@@ -147,8 +188,15 @@ export function gatherGroups(suite: Suite, options: ArcValueOptions): { readonly
   });
   const blank = names.filter((name) => name === '').length;
   const samples = [...groups].map(([group, rows]): GroupSamples => {
-    const kept = rows.filter((i) => Number.isFinite(quantity.values[i]) && (index === undefined || (index[i] >= at!.window[0] && index[i] <= at!.window[1])));
-    return { group, rows, values: Float64Array.from(kept, (i) => quantity.values[i]), ...(index === undefined ? {} : { index: Float64Array.from(kept, (i) => index[i]) }) };
+    const kept = rows.filter(
+      (i) => Number.isFinite(quantity.values[i]) && (index === undefined || (index[i] >= at!.window[0] && index[i] <= at!.window[1])),
+    );
+    return {
+      group,
+      rows,
+      values: Float64Array.from(kept, (i) => quantity.values[i]),
+      ...(index === undefined ? {} : { index: Float64Array.from(kept, (i) => index[i]) }),
+    };
   });
   return { samples, unit: quantity.unit, notes: blank === 0 ? [] : [`${blank} samples have no ${by} and are not used.`] };
 }
@@ -184,7 +232,8 @@ export function resampledValues(samples: GroupSamples, options: ArcValueOptions,
 /** @internal Why a group gives no value, or undefined when it gives one. */
 export function unfitGroup({ values, index }: GroupSamples, options: ArcValueOptions): string | undefined {
   const { at } = options;
-  if (values.length < fewest(options)) return `needs ${fewest(options)} samples${at === undefined ? '' : ` with ${at.index} ${at.window[0]}–${at.window[1]}`}`;
+  if (values.length < fewest(options))
+    return `needs ${fewest(options)} samples${at === undefined ? '' : ` with ${at.index} ${at.window[0]}–${at.window[1]}`}`;
   if (index === undefined || at === undefined) return undefined;
   const [from, to] = [quantileOf(index, 0), quantileOf(index, 1)];
   if (to - from < (at.window[1] - at.window[0]) / 5) return `${at.index} of the samples varies too little for a line`;
@@ -204,7 +253,13 @@ function describe(samples: GroupSamples, options: ArcValueOptions, draw: () => n
   const value = groupValue(values, index, at, method);
   if (index === undefined || at === undefined) return { ...base, value, sigma, note: '' };
   const outside = Math.max(ends.from! - at.value, at.value - ends.to!);
-  return { ...base, value, sigma, slope: robustLine(method, index, values).slope, note: outside > 0 ? `extrapolated by ${outside.toFixed(1)} ${at.index}` : '' };
+  return {
+    ...base,
+    value,
+    sigma,
+    slope: robustLine(method, index, values).slope,
+    note: outside > 0 ? `extrapolated by ${outside.toFixed(1)} ${at.index}` : '',
+  };
 }
 
 /** Half the central 68.3 % of re-sampled values: 1σ that a few wild draws do not blow up. */

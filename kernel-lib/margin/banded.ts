@@ -12,7 +12,11 @@ export class BandedCholesky {
    * @param width elements below the diagonal
    * @throws RangeError when the matrix is not positive definite
    */
-  constructor(band: Float64Array, readonly size: number, readonly width: number) {
+  constructor(
+    band: Float64Array,
+    readonly size: number,
+    readonly width: number,
+  ) {
     const factor = band.slice();
     const row = width + 1;
     for (let i = 0; i < size; i++) {

@@ -41,33 +41,64 @@ export function slabFromDepths(points: SlabPoints, options: PublishedSlabOptions
   const plane = planeAbout(centreOf(points.longitude, points.latitude));
   const { x, y } = plane.project(points.longitude, points.latitude);
   const surface = new TriangulatedSurface(x, y, points.depth, reach);
-  if (surface.triangleCount === 0) throw new RangeError('slabFromDepths: all points lie on one line, so there is no surface through them. Give at least two contours.');
+  if (surface.triangleCount === 0)
+    throw new RangeError('slabFromDepths: all points lie on one line, so there is no surface through them. Give at least two contours.');
   const at = (longitudes: ArrayLike<number>, latitudes: ArrayLike<number>) => below(surface, plane, { longitudes, latitudes, sigma, reach });
   const found = options.trench ?? shallowestLine(points);
   const trench = found === undefined ? undefined : orientedTrench(found, at, points, plane);
   const extent = extentOf(points.longitude, points.latitude, plane.centre.longitude);
   const depthRange = [points.depth.reduce((a, b) => Math.min(a, b), Infinity), points.depth.reduce((a, b) => Math.max(a, b), -Infinity)] as const;
   const notes = [...points.notes];
-  if (trench === undefined) notes.push('No trench line: the shallowest depths are not a contour at 20 km or less. Give { trench } to have trench distances.');
+  if (trench === undefined)
+    notes.push('No trench line: the shallowest depths are not a contour at 20 km or less. Give { trench } to have trench distances.');
   else if (options.trench === undefined) notes.push(`Distances are measured from the ${trench.name}, which lies landward of the trench.`);
   notes.push(`1σ of ${sigma} km for the published depths is ${options.sigma === undefined ? 'an assumption' : 'as given'}; the file carries none.`);
   const slab: SlabSurface = {
-    kind: 'published depths', name: points.slab, ...(trench === undefined ? {} : { trench }), extent, depthRange, notes,
-    lineage: [...points.lineage, step('slabFromDepths', { points: points.size, sigma, reach, line: trench?.name ?? null }, {
-      says: `A surface was laid through ${points.size} published slab depths${points.slab === '' ? '' : ` (${points.slab})`} on Delaunay triangles with slopes from local quadratic fits; their 1σ was taken as ${sigma} km.`,
-    })],
+    kind: 'published depths',
+    name: points.slab,
+    ...(trench === undefined ? {} : { trench }),
+    extent,
+    depthRange,
+    notes,
+    lineage: [
+      ...points.lineage,
+      step(
+        'slabFromDepths',
+        { points: points.size, sigma, reach, line: trench?.name ?? null },
+        {
+          says:
+            `A surface was laid through ${points.size} published slab depths${points.slab === '' ? '' : ` (${points.slab})`} on ` +
+            `Delaunay triangles with slopes from local quadratic fits; their 1σ was taken as ${sigma} km.`,
+        },
+      ),
+    ],
     depthAt: (longitudes, latitudes) => at(longitudes, latitudes).depth,
     at,
   };
   return showAs(slab, () => ({
     title: `Slab surface${slab.name === '' ? '' : ` "${slab.name}"`} from published depths`,
     columns: ['points', 'triangles', 'depths (km)', 'west', 'east', 'south', 'north', 'distances from'],
-    rows: [[points.size, surface.triangleCount, `${depthRange[0]}–${depthRange[1]}`, extent.west, extent.east, extent.south, extent.north, trench?.name ?? '–']],
+    rows: [
+      [
+        points.size,
+        surface.triangleCount,
+        `${depthRange[0]}–${depthRange[1]}`,
+        extent.west,
+        extent.east,
+        extent.south,
+        extent.north,
+        trench?.name ?? '–',
+      ],
+    ],
     notes,
   }));
 }
 
-function below(surface: TriangulatedSurface, plane: Plane, at: { longitudes: ArrayLike<number>; latitudes: ArrayLike<number>; sigma: number; reach: number }) {
+function below(
+  surface: TriangulatedSurface,
+  plane: Plane,
+  at: { longitudes: ArrayLike<number>; latitudes: ArrayLike<number>; sigma: number; reach: number },
+) {
   checkedPoints(at.longitudes, at.latitudes, 'slab.at');
   const result = emptyBelow(at.longitudes.length);
   const { x, y } = plane.project(at.longitudes, at.latitudes);
@@ -88,19 +119,31 @@ function below(surface: TriangulatedSurface, plane: Plane, at: { longitudes: Arr
 
 /** @internal Dip and strike from a slope on the plane: conformal, so one scale factor and one direction of north. */
 export function setAttitude(
-  result: { readonly dip: Float64Array; readonly strike: Float64Array }, i: number,
-  slope: { readonly slopeX: number; readonly slopeY: number }, local: { readonly scale: number; readonly north: number },
+  result: { readonly dip: Float64Array; readonly strike: Float64Array },
+  i: number,
+  slope: { readonly slopeX: number; readonly slopeY: number },
+  local: { readonly scale: number; readonly north: number },
 ): void {
   result.dip[i] = (Math.atan(Math.hypot(slope.slopeX, slope.slopeY) * local.scale) * 180) / Math.PI;
   result.strike[i] = wrapAzimuth((Math.atan2(slope.slopeX, slope.slopeY) * 180) / Math.PI - local.north - 90);
 }
 
 /** @internal The line turned so that most of the slab's deeper data lie on its right: along-arc position then grows along strike. */
-export function orientedTrench(line: TrenchLine, _at: unknown, points: { longitude: Float64Array; latitude: Float64Array; depth: Float64Array }, plane: Plane): TrenchLine {
+export function orientedTrench(
+  line: TrenchLine,
+  _at: unknown,
+  points: { longitude: Float64Array; latitude: Float64Array; depth: Float64Array },
+  plane: Plane,
+): TrenchLine {
   const every = Math.max(1, Math.floor(points.depth.length / 400));
   const some: number[] = [];
   for (let i = 0; i < points.depth.length; i += every) some.push(i);
-  const { distance } = measureFromLine(line, some.map((i) => points.longitude[i]), some.map((i) => points.latitude[i]), plane);
+  const { distance } = measureFromLine(
+    line,
+    some.map((i) => points.longitude[i]),
+    some.map((i) => points.latitude[i]),
+    plane,
+  );
   let side = 0;
   for (const d of distance) side += Math.sign(d);
   return side < 0 ? reversedTrench(line) : line;

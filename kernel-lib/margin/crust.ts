@@ -2,18 +2,52 @@ import { z } from 'zod';
 import { once, readJsonTable, standings, type Standing } from '../tables';
 
 const standing = z.enum(standings);
-const termSchema = z.strictObject({ of: z.string(), function: z.enum(['value', 'ln']), coefficient: z.number(), coefficientError: z.number().optional(), inside: z.number() });
+const termSchema = z.strictObject({
+  of: z.string(),
+  function: z.enum(['value', 'ln']),
+  coefficient: z.number(),
+  coefficientError: z.number().optional(),
+  inside: z.number(),
+});
 const tableSchema = z.strictObject({
   note: z.string(),
-  filters: z.record(z.string(), z.strictObject({
-    name: z.string(), outliers: z.literal('modified Thompson tau'), source: z.string(), standing, note: z.string().optional(),
-    ranges: z.array(z.strictObject({ of: z.string(), unit: z.string(), from: z.number().optional(), to: z.number().optional(), optional: z.boolean().optional() })),
-  })),
-  calibrations: z.array(z.strictObject({
-    key: z.string(), name: z.string(), setting: z.enum(['arc', 'collision']), filter: z.string(), statistic: z.enum(['median', 'maximum']), chondrite: z.string().optional(),
-    constant: z.number(), constantError: z.number().optional(), terms: z.array(termSchema), uncertainty: z.number().optional(), uncertaintyStanding: standing.optional(),
-    sources: z.array(z.string()), standing, cautions: z.array(z.string()),
-  })),
+  filters: z.record(
+    z.string(),
+    z.strictObject({
+      name: z.string(),
+      outliers: z.literal('modified Thompson tau'),
+      source: z.string(),
+      standing,
+      note: z.string().optional(),
+      ranges: z.array(
+        z.strictObject({
+          of: z.string(),
+          unit: z.string(),
+          from: z.number().optional(),
+          to: z.number().optional(),
+          optional: z.boolean().optional(),
+        }),
+      ),
+    }),
+  ),
+  calibrations: z.array(
+    z.strictObject({
+      key: z.string(),
+      name: z.string(),
+      setting: z.enum(['arc', 'collision']),
+      filter: z.string(),
+      statistic: z.enum(['median', 'maximum']),
+      chondrite: z.string().optional(),
+      constant: z.number(),
+      constantError: z.number().optional(),
+      terms: z.array(termSchema),
+      uncertainty: z.number().optional(),
+      uncertaintyStanding: standing.optional(),
+      sources: z.array(z.string()),
+      standing,
+      cautions: z.array(z.string()),
+    }),
+  ),
   cautions: z.array(z.strictObject({ text: z.string(), source: z.string(), standing })),
 });
 
@@ -29,7 +63,13 @@ export interface CrustCalibration {
   readonly chondrite?: string;
   readonly constant: number;
   readonly constantError?: number;
-  readonly terms: readonly { readonly of: string; readonly function: 'value' | 'ln'; readonly coefficient: number; readonly coefficientError?: number; readonly inside: number }[];
+  readonly terms: readonly {
+    readonly of: string;
+    readonly function: 'value' | 'ln';
+    readonly coefficient: number;
+    readonly coefficientError?: number;
+    readonly inside: number;
+  }[];
   /** Stated uncertainty of a thickness, km; undefined where it is not recorded here. */
   readonly uncertainty?: number;
   readonly uncertaintyStanding?: Standing;
@@ -41,7 +81,13 @@ export interface CrustCalibration {
 /** A sample filter: ranges that a sample must lie in. */
 export interface CrustFilter {
   readonly name: string;
-  readonly ranges: readonly { readonly of: string; readonly unit: string; readonly from?: number; readonly to?: number; readonly optional?: boolean }[];
+  readonly ranges: readonly {
+    readonly of: string;
+    readonly unit: string;
+    readonly from?: number;
+    readonly to?: number;
+    readonly optional?: boolean;
+  }[];
   readonly outliers: 'modified Thompson tau';
   readonly source: string;
   readonly standing: Standing;
@@ -75,7 +121,8 @@ export function crustCautions(): readonly { readonly text: string; readonly sour
  */
 export function thicknessFromRatios(key: string, ratios: Readonly<Record<string, number>>): number {
   const calibration = crustCalibrations().get(key);
-  if (calibration === undefined) throw new RangeError(`thicknessFromRatios: there is no calibration "${key}". Known: ${[...crustCalibrations().keys()].join(', ')}.`);
+  if (calibration === undefined)
+    throw new RangeError(`thicknessFromRatios: there is no calibration "${key}". Known: ${[...crustCalibrations().keys()].join(', ')}.`);
   let thickness = calibration.constant;
   for (const { of, function: f, coefficient, inside } of calibration.terms) {
     const ratio = ratios?.[of];

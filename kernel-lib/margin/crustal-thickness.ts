@@ -67,31 +67,69 @@ export function crustalThickness(suite: Suite, options: CrustOptions = {}): Crus
   const { by, minimum = 5, seed = 1988 } = options;
   const known = crustCalibrations();
   const keys = options.calibrations ?? [...known.values()].filter(({ setting }) => setting === 'arc').map(({ key }) => key);
-  if (!Array.isArray(keys) || keys.length === 0) throw new RangeError(`crustalThickness: calibrations must be a list of keys. Known: ${[...known.keys()].join(', ')}.`);
-  for (const key of keys) if (!known.has(key)) throw new RangeError(`crustalThickness: there is no calibration "${key}". Known: ${[...known.keys()].join(', ')}.`);
+  if (!Array.isArray(keys) || keys.length === 0)
+    throw new RangeError(`crustalThickness: calibrations must be a list of keys. Known: ${[...known.keys()].join(', ')}.`);
+  for (const key of keys)
+    if (!known.has(key)) throw new RangeError(`crustalThickness: there is no calibration "${key}". Known: ${[...known.keys()].join(', ')}.`);
   if (!(minimum >= 3)) throw new RangeError(`crustalThickness: minimum must be 3 samples or more, not ${String(minimum)}.`);
   const groups: [string, Suite][] = by === undefined ? [['all', suite]] : [...suite.groupBy(by)].filter(([name]) => name !== '');
   const estimates = groups.flatMap(([group, members]) => keys.map((key) => estimate(members, group, known.get(key)!, { minimum, seed })));
-  const warnings = [...groups.flatMap(([group]) => disagreements(group, estimates, by !== undefined)), ...crustCautions().map(({ text, source }) => `${capital(text)} (${shortSource(source)}).`)];
+  const warnings = [
+    ...groups.flatMap(([group]) => disagreements(group, estimates, by !== undefined)),
+    ...crustCautions().map(({ text, source }) => `${capital(text)} (${shortSource(source)}).`),
+  ];
   const unheard = new Set(keys.flatMap((key) => known.get(key)!.cautions.map((caution) => `${known.get(key)!.name}: ${caution}.`)));
   warnings.push(...unheard);
-  if (!suite.has('SumAsGiven')) warnings.push('The suite is not on a volatile-free basis, which the silica and magnesia limits of the filters expect: see volatileFree.');
+  if (!suite.has('SumAsGiven'))
+    warnings.push('The suite is not on a volatile-free basis, which the silica and magnesia limits of the filters expect: see volatileFree.');
   const fromMemory = keys.filter((key) => known.get(key)!.standing === 'from memory');
   if (fromMemory.length > 0) warnings.push(`Coefficients recalled and not checked against the print: ${fromMemory.join(', ')}.`);
   const result: CrustalThickness = {
-    estimates, warnings,
-    lineage: [...suite.lineage, step('crustalThickness', { calibrations: [...keys], by: by ?? null, minimum, seed }, {
-      sources: [...new Set(keys.flatMap((key) => known.get(key)!.sources))], tables: ['crustal-thickness.json', 'reservoirs.csv'],
-      fromMemory: fromMemory.map((key) => `calibration ${known.get(key)!.name} of crustal thickness (${known.get(key)!.sources.map(shortSource).join('; ')})`),
-      says: 'Thickness of the crust was read from suite medians of filtered samples by each published calibration apart.',
-    })],
+    estimates,
+    warnings,
+    lineage: [
+      ...suite.lineage,
+      step(
+        'crustalThickness',
+        { calibrations: [...keys], by: by ?? null, minimum, seed },
+        {
+          sources: [...new Set(keys.flatMap((key) => known.get(key)!.sources))],
+          tables: ['crustal-thickness.json', 'reservoirs.csv'],
+          fromMemory: fromMemory.map(
+            (key) => `calibration ${known.get(key)!.name} of crustal thickness (${known.get(key)!.sources.map(shortSource).join('; ')})`,
+          ),
+          says: 'Thickness of the crust was read from suite medians of filtered samples by each published calibration apart.',
+        },
+      ),
+    ],
   };
   return showAs(result, () => ({
     title: 'Thickness of the crust',
-    columns: [...(by === undefined ? [] : [by]), 'calibration', 'thickness (km)', 'from', 'to', '± calibration (km)', 'ratios', 'samples used', 'filter', 'note'],
+    columns: [
+      ...(by === undefined ? [] : [by]),
+      'calibration',
+      'thickness (km)',
+      'from',
+      'to',
+      '± calibration (km)',
+      'ratios',
+      'samples used',
+      'filter',
+      'note',
+    ],
     rows: estimates.map((e) => [
-      ...(by === undefined ? [] : [e.group]), `${e.name} (${known.get(e.calibration)!.sources.map(shortSource).join('; ')})`, round(e.thickness, 1), round(e.interval[0], 1), round(e.interval[1], 1), e.calibrationError,
-      Object.entries(e.ratios).map(([name, value]) => `${name} ${value.toPrecision(3)}`).join(', '), e.used, e.counts.map(({ step: name, left }) => `${name} ${left}`).join(' → '), e.note,
+      ...(by === undefined ? [] : [e.group]),
+      `${e.name} (${known.get(e.calibration)!.sources.map(shortSource).join('; ')})`,
+      round(e.thickness, 1),
+      round(e.interval[0], 1),
+      round(e.interval[1], 1),
+      e.calibrationError,
+      Object.entries(e.ratios)
+        .map(([name, value]) => `${name} ${value.toPrecision(3)}`)
+        .join(', '),
+      e.used,
+      e.counts.map(({ step: name, left }) => `${name} ${left}`).join(' → '),
+      e.note,
     ]),
     notes: warnings,
   }));
@@ -99,9 +137,22 @@ export function crustalThickness(suite: Suite, options: CrustOptions = {}): Crus
 
 const capital = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
 
-function estimate(suite: Suite, group: string, calibration: CrustCalibration, how: { readonly minimum: number; readonly seed: number }): CrustEstimate {
+function estimate(
+  suite: Suite,
+  group: string,
+  calibration: CrustCalibration,
+  how: { readonly minimum: number; readonly seed: number },
+): CrustEstimate {
   const base = { group, calibration: calibration.key, name: calibration.name, calibrationError: calibration.uncertainty ?? NaN };
-  const nothing = (note: string, counts: CrustEstimate['counts'] = [], used = 0): CrustEstimate => ({ ...base, thickness: NaN, interval: [NaN, NaN], ratios: {}, counts, used, note });
+  const nothing = (note: string, counts: CrustEstimate['counts'] = [], used = 0): CrustEstimate => ({
+    ...base,
+    thickness: NaN,
+    interval: [NaN, NaN],
+    ratios: {},
+    counts,
+    used,
+    note,
+  });
   const chondrite = calibration.chondrite === undefined ? undefined : reservoir(calibration.chondrite);
   const reference = (symbol: string) => chondrite?.values.get(symbol)?.value ?? NaN;
   const filter = crustFilter(calibration.filter);
@@ -112,7 +163,10 @@ function estimate(suite: Suite, group: string, calibration: CrustCalibration, ho
       const values = optional && !suite.has(of) ? undefined : evaluate(suite, of).values;
       if (values === undefined) continue;
       rows = rows.filter((i) => (optional && Number.isNaN(values[i])) || (values[i] >= from && values[i] <= to));
-      counts.push({ step: Number.isFinite(from) && Number.isFinite(to) ? `${of} ${from}–${to}` : Number.isFinite(from) ? `${of} ≥ ${from}` : `${of} ≤ ${to}`, left: rows.length });
+      counts.push({
+        step: rangeText(of, from, to),
+        left: rows.length,
+      });
     }
     const ratios = calibration.terms.map(({ of }) => evaluate(suite, of, { reference }).values);
     rows = rows.filter((i) => ratios.every((values) => values[i] > 0 && Number.isFinite(values[i])));
@@ -122,25 +176,52 @@ function estimate(suite: Suite, group: string, calibration: CrustCalibration, ho
     if (rows.length < how.minimum) return nothing(`needs ${how.minimum} samples after the filter`, counts, rows.length);
     const statistic = (of: readonly number[]) => {
       const found: Record<string, number> = {};
-      calibration.terms.forEach((term, k) => (found[term.of] = calibration.statistic === 'median' ? medianOf(of.map((i) => ratios[k][i])) : of.reduce((most, i) => Math.max(most, ratios[k][i]), 0)));
+      calibration.terms.forEach(
+        (term, k) =>
+          (found[term.of] =
+            calibration.statistic === 'median' ? medianOf(of.map((i) => ratios[k][i])) : of.reduce((most, i) => Math.max(most, ratios[k][i]), 0)),
+      );
       return found;
     };
     const found = statistic(rows);
     const draw = randomSource(how.seed);
-    const drawn = Float64Array.from({ length: 1000 }, () => thicknessFromRatios(calibration.key, statistic(rows.map(() => rows[Math.floor(draw() * rows.length)]))));
+    const drawn = Float64Array.from({ length: 1000 }, () =>
+      thicknessFromRatios(calibration.key, statistic(rows.map(() => rows[Math.floor(draw() * rows.length)]))),
+    );
     const thickness = thicknessFromRatios(calibration.key, found);
     const errors = coefficientNote(calibration);
-    const note = [thickness < oceanicCrust ? `thinner than oceanic crust (some ${oceanicCrust} km): the ratio is below the range of the calibration` : '', errors].filter((text) => text !== '').join('; ');
-    return { ...base, thickness: thickness <= 0 ? NaN : thickness, interval: [quantileOf(drawn, 0.025), quantileOf(drawn, 0.975)], ratios: found, counts, used: rows.length, note };
+    const note = [
+      thickness < oceanicCrust ? `thinner than oceanic crust (some ${oceanicCrust} km): the ratio is below the range of the calibration` : '',
+      errors,
+    ]
+      .filter((text) => text !== '')
+      .join('; ');
+    return {
+      ...base,
+      thickness: thickness <= 0 ? NaN : thickness,
+      interval: [quantileOf(drawn, 0.025), quantileOf(drawn, 0.975)],
+      ratios: found,
+      counts,
+      used: rows.length,
+      note,
+    };
   } catch (error) {
     if (error instanceof ExpressionError) return nothing(`not determined: ${error.message}`, counts);
     throw error;
   }
 }
 
+function rangeText(of: string, from: number, to: number): string {
+  if (Number.isFinite(from) && Number.isFinite(to)) return `${of} ${from}–${to}`;
+  return Number.isFinite(from) ? `${of} ≥ ${from}` : `${of} ≤ ${to}`;
+}
+
 function coefficientNote({ constantError, terms, uncertainty }: CrustCalibration): string {
   if (uncertainty !== undefined) return '';
-  const errors = [...terms.map(({ coefficient, coefficientError }) => (coefficientError === undefined ? '' : `${coefficient} ± ${coefficientError}`)), constantError === undefined ? '' : `constant ± ${constantError}`].filter((text) => text !== '');
+  const errors = [
+    ...terms.map(({ coefficient, coefficientError }) => (coefficientError === undefined ? '' : `${coefficient} ± ${coefficientError}`)),
+    constantError === undefined ? '' : `constant ± ${constantError}`,
+  ].filter((text) => text !== '');
   return errors.length === 0 ? 'uncertainty of the calibration not recorded' : `coefficients ${errors.join(', ')} (their covariance is not recorded)`;
 }
 
@@ -174,5 +255,8 @@ function disagreements(group: string, estimates: readonly CrustEstimate[], named
   const most = mine[mine.length - 1];
   const apart = most.thickness - least.thickness;
   if (apart <= disagreement) return [];
-  return [`${named ? `${group}: ` : ''}the calibrations disagree by ${apart.toFixed(0)} km, from ${least.thickness.toFixed(0)} km (${least.name}) to ${most.thickness.toFixed(0)} km (${most.name}): take none of them alone.`];
+  return [
+    `${named ? `${group}: ` : ''}the calibrations disagree by ${apart.toFixed(0)} km, from ${least.thickness.toFixed(0)} km ` +
+      `(${least.name}) to ${most.thickness.toFixed(0)} km (${most.name}): take none of them alone.`,
+  ];
 }

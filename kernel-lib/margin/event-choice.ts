@@ -31,7 +31,12 @@ const otherRange = 300;
  * @param slabShare filled with the probability of the upper plane; `kinds` with the likeliest kind
  */
 export function updateMixture(
-  across: Float64Array, depth: Float64Array, crustDepth: number, mixture: ResidualMixture, slabShare: Float64Array, kinds: Uint8Array,
+  across: Float64Array,
+  depth: Float64Array,
+  crustDepth: number,
+  mixture: ResidualMixture,
+  slabShare: Float64Array,
+  kinds: Uint8Array,
   limits: { readonly least: number; readonly most: number },
 ): void {
   const { spread, lowerAt, lowerSpread, share } = mixture;
@@ -47,7 +52,8 @@ export function updateMixture(
     const p3 = share[3] / otherRange;
     const all = p0 + p1 + p2 + p3;
     slabShare[i] = p0 / all;
-    kinds[i] = p0 >= p1 && p0 >= p2 && p0 >= p3 ? eventKind.slab : p1 >= p2 && p1 >= p3 ? eventKind.lowerPlane : p2 >= p3 ? eventKind.crust : eventKind.other;
+    kinds[i] =
+      p0 >= p1 && p0 >= p2 && p0 >= p3 ? eventKind.slab : p1 >= p2 && p1 >= p3 ? eventKind.lowerPlane : p2 >= p3 ? eventKind.crust : eventKind.other;
     sum[0] += p0 / all;
     sum[1] += p1 / all;
     sum[2] += p2 / all;
@@ -116,5 +122,7 @@ export function findTwoPlanes(across: ArrayLike<number>): TwoPlanes | undefined 
   }
   const better = -2 * double + 4 * Math.log(n) < -2 * single + 2 * Math.log(n);
   const apart = b - a;
-  return better && apart >= 12 && apart >= 2.5 * spread && Math.min(lower, 1 - lower) >= 0.15 ? { upperAt: a, lowerAt: b, spread, lowerShare: lower } : undefined;
+  return better && apart >= 12 && apart >= 2.5 * spread && Math.min(lower, 1 - lower) >= 0.15
+    ? { upperAt: a, lowerAt: b, spread, lowerShare: lower }
+    : undefined;
 }

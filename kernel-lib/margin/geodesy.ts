@@ -21,13 +21,23 @@ export function wrapAzimuth(azimuth: number): number {
 }
 
 /** The geodesic from one point to another on the WGS84 ellipsoid: length in km, azimuth at the start in degrees. */
-export function geodesic(longitude1: number, latitude1: number, longitude2: number, latitude2: number): { readonly distance: number; readonly azimuth: number } {
+export function geodesic(
+  longitude1: number,
+  latitude1: number,
+  longitude2: number,
+  latitude2: number,
+): { readonly distance: number; readonly azimuth: number } {
   const { s12, azi1 } = ellipsoid.Inverse(latitude1, longitude1, latitude2, longitude2);
   return { distance: s12! / 1000, azimuth: wrapAzimuth(azi1!) };
 }
 
 /** The point that lies so many km from another along a geodesic with the given starting azimuth (WGS84). */
-export function pointAt(longitude: number, latitude: number, azimuth: number, distance: number): { readonly longitude: number; readonly latitude: number } {
+export function pointAt(
+  longitude: number,
+  latitude: number,
+  azimuth: number,
+  distance: number,
+): { readonly longitude: number; readonly latitude: number } {
   const { lat2, lon2 } = ellipsoid.Direct(latitude, longitude, azimuth, distance * 1000);
   return { longitude: wrapLongitude(lon2!), latitude: lat2! };
 }

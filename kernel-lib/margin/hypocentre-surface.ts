@@ -41,12 +41,22 @@ export interface HypocentreSlab extends SlabSurface {
   readonly kind: 'hypocentres';
   /** The events that were weighed: position, depth, kind (0 slab · 1 lower plane · 2 shallow crust · 3 neither) and probability of `slab`. */
   readonly events: {
-    readonly longitude: Float64Array; readonly latitude: Float64Array; readonly depth: Float64Array;
-    readonly kind: Uint8Array; readonly slabProbability: Float64Array;
+    readonly longitude: Float64Array;
+    readonly latitude: Float64Array;
+    readonly depth: Float64Array;
+    readonly kind: Uint8Array;
+    readonly slabProbability: Float64Array;
     /** km below the surface, measured across the slab. */
     readonly across: Float64Array;
   };
-  readonly counts: { readonly given: number; readonly fixedDepth: number; readonly slab: number; readonly lowerPlane: number; readonly crust: number; readonly neither: number };
+  readonly counts: {
+    readonly given: number;
+    readonly fixedDepth: number;
+    readonly slab: number;
+    readonly lowerPlane: number;
+    readonly crust: number;
+    readonly neither: number;
+  };
   /** 1σ of the slab events about the surface, across the slab, km. */
   readonly scatter: number;
   /** How far the surface was raised across the slab from the middle of the events to their top, km (0 with `middle`). */
@@ -83,8 +93,10 @@ export function slabFromHypocentres(events: Hypocentres, options: HypocentreSlab
   for (const [name, value] of Object.entries({ trenchDepth, crustDepth, minimumEvents, systematic: systematic + 1e-12 })) {
     if (!(value > 0)) throw new RangeError(`slabFromHypocentres: ${name} must be a positive number, not ${String(value)}.`);
   }
-  if (options.knotSpacing !== undefined && !(options.knotSpacing >= 10)) throw new RangeError(`slabFromHypocentres: knotSpacing must be at least 10 km, not ${String(options.knotSpacing)}.`);
-  if (follow !== 'middle' && follow !== 'top') throw new RangeError(`slabFromHypocentres: follow must be "middle" or "top", not "${String(follow)}".`);
+  if (options.knotSpacing !== undefined && !(options.knotSpacing >= 10))
+    throw new RangeError(`slabFromHypocentres: knotSpacing must be at least 10 km, not ${String(options.knotSpacing)}.`);
+  if (follow !== 'middle' && follow !== 'top')
+    throw new RangeError(`slabFromHypocentres: follow must be "middle" or "top", not "${String(follow)}".`);
 
   const inArea = rowsInArea(events, options.area);
   const fixed = new Set(fixedDepths);
@@ -93,30 +105,45 @@ export function slabFromHypocentres(events: Hypocentres, options: HypocentreSlab
   const longitude = pick(events.longitude);
   const latitude = pick(events.latitude);
   const depth = pick(events.depth);
-  const error = events.depthError === undefined ? new Float64Array(rows.length) : pick(events.depthError).map((value) => (Number.isFinite(value) ? value : 0));
+  const error =
+    events.depthError === undefined ? new Float64Array(rows.length) : pick(events.depthError).map((value) => (Number.isFinite(value) ? value : 0));
   let deep = 0;
   for (const z of depth) if (z >= crustDepth) deep++;
   const where = options.area === undefined ? '' : ' in the area';
   if (deep < minimumEvents / 2) {
     throw new RangeError(
-      `slabFromHypocentres: only ${deep} of ${inArea.length} events${where} are deeper than ${crustDepth} km, where the crust of the upper plate ends; at least ${Math.ceil(minimumEvents / 2)} are needed to find a slab. ` +
+      `slabFromHypocentres: only ${deep} of ${inArea.length} events${where} are deeper than ${crustDepth} km, where the crust of the upper ` +
+        `plate ends; at least ${Math.ceil(minimumEvents / 2)} are needed to find a slab. ` +
         'Widen the area, use a longer catalogue, or take published depths (slabFromDepths).',
     );
   }
 
   const plane = planeAbout(centreOf(longitude, latitude));
   const frame = turnedFrame(plane, longitude, latitude, depth, crustDepth);
-  const anchor = options.trench === undefined ? { x: new Float64Array(0), y: new Float64Array(0) } : frame.turn(plane.project(options.trench.longitude, options.trench.latitude));
+  const anchor =
+    options.trench === undefined
+      ? { x: new Float64Array(0), y: new Float64Array(0) }
+      : frame.turn(plane.project(options.trench.longitude, options.trench.latitude));
   const grid = gridFor(frame, options.knotSpacing);
   const fit = fitSurface({ x: frame.x, y: frame.y, depth, error, anchorX: anchor.x, anchorY: anchor.y, anchorDepth: trenchDepth }, grid, crustDepth);
   const counts = countKinds(fit, events.size, inArea.length - rows.length);
   if (counts.slab < minimumEvents) {
     throw new RangeError(
-      `slabFromHypocentres: ${counts.slab} of ${rows.length} events${where} lie on one surface (${counts.crust} look like shallow crust, ${counts.neither} like neither); at least ${minimumEvents} are needed. ` +
+      `slabFromHypocentres: ${counts.slab} of ${rows.length} events${where} lie on one surface (${counts.crust} look like shallow crust, ` +
+        `${counts.neither} like neither); at least ${minimumEvents} are needed. ` +
         'Widen the area, use a longer catalogue, or take published depths (slabFromDepths).',
     );
   }
-  return finish({ events: { longitude, latitude, depth }, fit, frame, plane, grid, counts, options: { ...options, systematic, follow, crustDepth, trenchDepth }, source: events });
+  return finish({
+    events: { longitude, latitude, depth },
+    fit,
+    frame,
+    plane,
+    grid,
+    counts,
+    options: { ...options, systematic, follow, crustDepth, trenchDepth },
+    source: events,
+  });
 }
 
 function rowsInArea(events: Hypocentres, area: HypocentreSlabOptions['area']): number[] {
@@ -131,7 +158,10 @@ function rowsInArea(events: Hypocentres, area: HypocentreSlabOptions['area']): n
       const fromWest = (((events.longitude[i] - west) % 360) + 360) % 360;
       if (fromWest <= width && events.latitude[i] >= south && events.latitude[i] <= north) rows.push(i);
     }
-    if (rows.length === 0) throw new RangeError(`slabFromHypocentres: no event lies in the area ${west} to ${east}° E, ${south} to ${north}° N. The table holds ${events.size} events.`);
+    if (rows.length === 0)
+      throw new RangeError(
+        `slabFromHypocentres: no event lies in the area ${west} to ${east}° E, ${south} to ${north}° N. The table holds ${events.size} events.`,
+      );
     return rows;
   }
   for (let i = 0; i < events.size; i++) rows.push(i);
@@ -158,7 +188,10 @@ function turnedFrame(plane: Plane, longitude: Float64Array, latitude: Float64Arr
     meanY += flat.y[i];
   }
   if (farthest > 3000 || !Number.isFinite(farthest)) {
-    throw new RangeError(`slabFromHypocentres: the events reach ${Math.round(farthest)} km from their centre, which is more than one slab. Choose one with { area: { west, east, south, north } }.`);
+    throw new RangeError(
+      `slabFromHypocentres: the events reach ${Math.round(farthest)} km from their centre, which is more than one slab. Choose one with { ` +
+        'area: { west, east, south, north } }.',
+    );
   }
   for (let i = 0; i < depth.length; i++) {
     if (depth[i] < crustDepth) continue;
@@ -168,7 +201,10 @@ function turnedFrame(plane: Plane, longitude: Float64Array, latitude: Float64Arr
   }
   const least = Math.sqrt(Math.max(0, (xx + yy) / 2 - Math.hypot((xx - yy) / 2, xy)) / n);
   if (least < 5) {
-    throw new RangeError(`slabFromHypocentres: the events deeper than ${crustDepth} km lie along a line on the map (1σ across it ${least.toFixed(1)} km), so they define no surface. Take a wider area.`);
+    throw new RangeError(
+      `slabFromHypocentres: the events deeper than ${crustDepth} km lie along a line on the map (1σ across it ${least.toFixed(1)} km), so ` +
+        'they define no surface. Take a wider area.',
+    );
   }
   const angle = 0.5 * Math.atan2(2 * xy, xx - yy);
   const cosine = Math.cos(angle);
@@ -191,7 +227,8 @@ function gridFor(frame: TurnedFrame, spacing: number | undefined): SplineGrid {
   return grid;
 }
 
-const quantile = (values: readonly number[], share: number): number => [...values].sort((a, b) => a - b)[Math.min(values.length - 1, Math.floor(share * values.length))];
+const quantile = (values: readonly number[], share: number): number =>
+  [...values].sort((a, b) => a - b)[Math.min(values.length - 1, Math.floor(share * values.length))];
 
 function countKinds(fit: SurfaceFit, given: number, fixedDepth: number): HypocentreSlab['counts'] {
   const counts = [0, 0, 0, 0];
@@ -206,7 +243,12 @@ interface Finish {
   readonly plane: Plane;
   readonly grid: SplineGrid;
   readonly counts: HypocentreSlab['counts'];
-  readonly options: HypocentreSlabOptions & { readonly systematic: number; readonly follow: 'middle' | 'top'; readonly crustDepth: number; readonly trenchDepth: number };
+  readonly options: HypocentreSlabOptions & {
+    readonly systematic: number;
+    readonly follow: 'middle' | 'top';
+    readonly crustDepth: number;
+    readonly trenchDepth: number;
+  };
   readonly source: Hypocentres;
 }
 
@@ -214,46 +256,97 @@ function finish(made: Finish): HypocentreSlab & Showable {
   const { events, fit, plane, counts, options, grid } = made;
   const chosen: number[] = [];
   for (let i = 0; i < fit.kinds.length; i++) if (fit.kinds[i] === eventKind.slab) chosen.push(i);
-  const raisedBy = options.follow === 'top' ? -quantile(chosen.map((i) => fit.across[i]), 0.05) : 0;
+  const raisedBy =
+    options.follow === 'top'
+      ? -quantile(
+          chosen.map((i) => fit.across[i]),
+          0.05,
+        )
+      : 0;
   const at = surfaceReader(made, chosen, raisedBy);
-  const onSlab = { longitude: Float64Array.from(chosen, (i) => events.longitude[i]), latitude: Float64Array.from(chosen, (i) => events.latitude[i]), depth: Float64Array.from(chosen, (i) => events.depth[i]) };
+  const onSlab = {
+    longitude: Float64Array.from(chosen, (i) => events.longitude[i]),
+    latitude: Float64Array.from(chosen, (i) => events.latitude[i]),
+    depth: Float64Array.from(chosen, (i) => events.depth[i]),
+  };
   const trench = options.trench === undefined ? undefined : orientedTrench(options.trench, at, onSlab, plane);
   const extent = extentOf(onSlab.longitude, onSlab.latitude, plane.centre.longitude);
   const depthRange = [onSlab.depth.reduce((a, b) => Math.min(a, b), Infinity), onSlab.depth.reduce((a, b) => Math.max(a, b), -Infinity)] as const;
   const separation = fit.doublePlane && fit.mixture.share[1] > 0.02 ? fit.mixture.lowerAt : undefined;
   const notes = [...made.source.notes];
   if (counts.fixedDepth > 0) notes.push(`${counts.fixedDepth} events at depths that catalogues assign by default were left out.`);
-  notes.push(`Of ${fit.kinds.length} events weighed, ${counts.slab} lie on the slab, ${counts.lowerPlane} on a lower plane, ${counts.crust} look like shallow crust, ${counts.neither} like neither.`);
-  if (separation !== undefined) notes.push(`A double seismic zone: the lower plane lies ${separation.toFixed(0)} km below the upper one, and the surface follows the upper.`);
+  notes.push(
+    `Of ${fit.kinds.length} events weighed, ${counts.slab} lie on the slab, ${counts.lowerPlane} on a lower plane, ${counts.crust} look ` +
+      `like shallow crust, ${counts.neither} like neither.`,
+  );
+  if (separation !== undefined)
+    notes.push(`A double seismic zone: the lower plane lies ${separation.toFixed(0)} km below the upper one, and the surface follows the upper.`);
   if (trench === undefined) notes.push('No trench line was given: there are no trench distances, and the shallow end of the surface is not held.');
   notes.push(
     options.follow === 'top'
       ? `The surface is the top of the upper seismic plane, ${raisedBy.toFixed(1)} km above its middle.`
-      : 'The surface is the middle of the upper seismic plane; published models of the top of the slab lie some km to 20 km above it ({ follow: \'top\' }).',
+      : 'The surface is the middle of the upper seismic plane; published models of the top of the slab lie some km to 20 km above it ({ ' +
+          "follow: 'top' }).",
     'Nothing here forecasts earthquakes or eruptions.',
   );
   const slab: HypocentreSlab = {
-    kind: 'hypocentres', name: 'hypocentres', ...(trench === undefined ? {} : { trench }), extent, depthRange, notes,
+    kind: 'hypocentres',
+    name: 'hypocentres',
+    ...(trench === undefined ? {} : { trench }),
+    extent,
+    depthRange,
+    notes,
     lineage: [
       ...made.source.lineage,
-      step('slabFromHypocentres', {
-        area: options.area === undefined ? null : { ...options.area }, crustDepth: options.crustDepth, trenchDepth: trench === undefined ? null : options.trenchDepth,
-        systematic: options.systematic, follow: options.follow, raisedBy: Number(raisedBy.toPrecision(4)), knotSpacing: grid.step, terms: grid.size, effectiveTerms: Number(fit.effectiveTerms.toPrecision(4)), rounds: fit.rounds,
-        stiffness: Number(fit.stiffness.toPrecision(4)), scatter: Number(fit.mixture.spread.toPrecision(4)), counts: { ...counts },
-      }, {
-        sources: ['eilers_marx_1996', 'wood_fasiolo_2017', 'dempster_1977', 'silverman_1985'],
-        says: `A slab surface was fitted to ${counts.slab} of ${fit.kinds.length} hypocentres as a penalised spline, events being weighted by their probability of belonging to the ${options.follow} of the upper seismic plane${separation === undefined ? '' : ` (a lower plane lies ${separation.toFixed(0)} km below)`}; events scatter by ${fit.mixture.spread.toFixed(1)} km (1σ) across it, and ${options.systematic} km were added for bias common to all depths.`,
-      }),
+      step(
+        'slabFromHypocentres',
+        {
+          area: options.area === undefined ? null : { ...options.area },
+          crustDepth: options.crustDepth,
+          trenchDepth: trench === undefined ? null : options.trenchDepth,
+          systematic: options.systematic,
+          follow: options.follow,
+          raisedBy: Number(raisedBy.toPrecision(4)),
+          knotSpacing: grid.step,
+          terms: grid.size,
+          effectiveTerms: Number(fit.effectiveTerms.toPrecision(4)),
+          rounds: fit.rounds,
+          stiffness: Number(fit.stiffness.toPrecision(4)),
+          scatter: Number(fit.mixture.spread.toPrecision(4)),
+          counts: { ...counts },
+        },
+        {
+          sources: ['eilers_marx_1996', 'wood_fasiolo_2017', 'dempster_1977', 'silverman_1985'],
+          says:
+            `A slab surface was fitted to ${counts.slab} of ${fit.kinds.length} hypocentres as a penalised spline, events being ` +
+            `weighted by their probability of belonging to the ${options.follow} of the upper seismic ` +
+            `plane${separation === undefined ? '' : ` (a lower plane lies ${separation.toFixed(0)} km below)`}; events scatter by ` +
+            `${fit.mixture.spread.toFixed(1)} km (1σ) across it, and ${options.systematic} km were added for bias common to all depths.`,
+        },
+      ),
     ],
     depthAt: (longitudes, latitudes) => at(longitudes, latitudes).depth,
     at,
     events: { ...events, kind: fit.kinds, slabProbability: fit.slabShare, across: fit.across },
-    counts, scatter: fit.mixture.spread, raisedBy, ...(separation === undefined ? {} : { planeSeparation: separation }),
+    counts,
+    scatter: fit.mixture.spread,
+    raisedBy,
+    ...(separation === undefined ? {} : { planeSeparation: separation }),
   };
   return showAs(slab, () => ({
     title: 'Slab surface fitted to hypocentres',
     columns: [...eventKindNames.map((name) => `events: ${name}`), 'scatter across (km)', 'slab depths (km)', 'terms used'],
-    rows: [[counts.slab, counts.lowerPlane, counts.crust, counts.neither, slab.scatter, `${depthRange[0].toFixed(0)}–${depthRange[1].toFixed(0)}`, fit.effectiveTerms]],
+    rows: [
+      [
+        counts.slab,
+        counts.lowerPlane,
+        counts.crust,
+        counts.neither,
+        slab.scatter,
+        `${depthRange[0].toFixed(0)}–${depthRange[1].toFixed(0)}`,
+        fit.effectiveTerms,
+      ],
+    ],
     notes,
   }));
 }
@@ -268,12 +361,20 @@ function surfaceReader({ fit, frame, plane, grid, options }: Finish, chosen: rea
     checkedPoints(longitudes, latitudes, 'slab.at');
     const result = emptyBelow(longitudes.length);
     const { x, y } = frame.turn(plane.project(longitudes, latitudes));
-    const basis = splineBasis(grid, x.map((v) => (Number.isNaN(v) ? 0 : v)), y.map((v) => (Number.isNaN(v) ? 0 : v)));
+    const basis = splineBasis(
+      grid,
+      x.map((v) => (Number.isNaN(v) ? 0 : v)),
+      y.map((v) => (Number.isNaN(v) ? 0 : v)),
+    );
     const value = new Float64Array(3);
     for (let i = 0; i < x.length; i++) {
       if (Number.isNaN(x[i])) continue;
       const near = index.withinInto(x[i], y[i], supportRadius, found);
-      const outside = x[i] < grid.left || y[i] < grid.bottom || x[i] > grid.left + (grid.countX - 3) * grid.step || y[i] > grid.bottom + (grid.countY - 3) * grid.step;
+      const outside =
+        x[i] < grid.left ||
+        y[i] < grid.bottom ||
+        x[i] > grid.left + (grid.countX - 3) * grid.step ||
+        y[i] > grid.bottom + (grid.countY - 3) * grid.step;
       if (outside || (near === 0 && index.withinInto(x[i], y[i], reach, found) === 0)) continue;
       splineAt(grid, basis, fit.coefficients, i, value);
       const depth = value[0] - raisedBy * Math.hypot(1, value[1], value[2]);
@@ -281,7 +382,12 @@ function surfaceReader({ fit, frame, plane, grid, options }: Finish, chosen: rea
       result.depth[i] = depth;
       result.sigma[i] = Math.hypot(Math.sqrt(Math.max(0, varianceAt(grid, basis, fit.covariance, i))), options.systematic);
       result.support[i] = near >= supportEvents ? slabSupport.within : slabSupport.extrapolated;
-      setAttitude(result, i, { slopeX: frame.cosine * value[1] - frame.sine * value[2], slopeY: frame.sine * value[1] + frame.cosine * value[2] }, plane.local(longitudes[i], latitudes[i]));
+      setAttitude(
+        result,
+        i,
+        { slopeX: frame.cosine * value[1] - frame.sine * value[2], slopeY: frame.sine * value[1] + frame.cosine * value[2] },
+        plane.local(longitudes[i], latitudes[i]),
+      );
     }
     return result;
   };
@@ -295,7 +401,11 @@ function varianceAt(grid: SplineGrid, basis: ReturnType<typeof splineBasis>, cov
       const bn = basis.values[8 * i + a] * basis.values[8 * i + 4 + b];
       for (let c = 0; c < 4; c++) {
         for (let d = 0; d < 4; d++) {
-          sum += bn * basis.values[8 * i + c] * basis.values[8 * i + 4 + d] * covariance[n * grid.size + (basis.firstX[i] + c) * grid.countY + basis.firstY[i] + d];
+          sum +=
+            bn *
+            basis.values[8 * i + c] *
+            basis.values[8 * i + 4 + d] *
+            covariance[n * grid.size + (basis.firstX[i] + c) * grid.countY + basis.firstY[i] + d];
         }
       }
     }

@@ -24,8 +24,11 @@ export interface Hypocentres {
  * @example hypocentresOf({ longitude: [-129.5, -130.1], latitude: [-44.2, -44.3], depth: [82, 131] })
  */
 export function hypocentresOf(events: {
-  readonly longitude: ArrayLike<number>; readonly latitude: ArrayLike<number>; readonly depth: ArrayLike<number>;
-  readonly depthError?: ArrayLike<number>; readonly magnitude?: ArrayLike<number>;
+  readonly longitude: ArrayLike<number>;
+  readonly latitude: ArrayLike<number>;
+  readonly depth: ArrayLike<number>;
+  readonly depthError?: ArrayLike<number>;
+  readonly magnitude?: ArrayLike<number>;
 }): Hypocentres & Showable {
   checkedPoints(events?.longitude, events?.latitude, 'hypocentresOf');
   for (const name of ['depth', 'depthError', 'magnitude'] as const) {
@@ -54,8 +57,15 @@ export async function readHypocentres(path: string): Promise<Hypocentres & Showa
   const table = await readPointTable(
     path,
     [
-      wantedLongitude, wantedLatitude, wantedDepth,
-      { name: 'depthError', spellings: ['deptherror', 'depthuncertainty', 'depthsigma', 'sigmadepth', 'errz', 'erz'], required: false, range: [0, 1000] },
+      wantedLongitude,
+      wantedLatitude,
+      wantedDepth,
+      {
+        name: 'depthError',
+        spellings: ['deptherror', 'depthuncertainty', 'depthsigma', 'sigmadepth', 'errz', 'erz'],
+        required: false,
+        range: [0, 1000],
+      },
       { name: 'magnitude', spellings: ['mag', 'magnitude', 'mw', 'ml', 'mb'], required: false },
       { name: 'type', spellings: ['type', 'eventtype'], required: false, text: true },
     ],
@@ -66,28 +76,45 @@ export async function readHypocentres(path: string): Promise<Hypocentres & Showa
   const rows: number[] = [];
   for (let i = 0; i < table.size; i++) if (types === undefined || isEarthquake(types[i])) rows.push(i);
   const pick = (list: Float64Array | undefined) => (list === undefined ? undefined : Float64Array.from(rows, (i) => list[i]));
-  const notes = rows.length < table.size ? [`${table.size - rows.length} rows are not earthquakes by their type (blasts, explosions …) and are left out.`] : [];
+  const notes =
+    rows.length < table.size ? [`${table.size - rows.length} rows are not earthquakes by their type (blasts, explosions …) and are left out.`] : [];
   const { longitude, latitude, depth, depthError, magnitude } = table.numbers;
-  const events = { longitude: pick(longitude)!, latitude: pick(latitude)!, depth: pick(depth)!, depthError: pick(depthError), magnitude: pick(magnitude) };
+  const events = {
+    longitude: pick(longitude)!,
+    latitude: pick(latitude)!,
+    depth: pick(depth)!,
+    depthError: pick(depthError),
+    magnitude: pick(magnitude),
+  };
   return gather(events, step('readHypocentres', { file: table.file, sha256: table.sha256, rows: table.size, earthquakes: rows.length }), notes);
 }
 
 function gather(events: Parameters<typeof hypocentresOf>[0], because: Step, before: readonly string[]): Hypocentres & Showable {
   const { longitude, latitude, depth, depthError, magnitude } = events;
   const kept: number[] = [];
-  for (let i = 0; i < longitude.length; i++) if (Number.isFinite(longitude[i]) && Number.isFinite(latitude[i]) && Number.isFinite(depth[i])) kept.push(i);
+  for (let i = 0; i < longitude.length; i++)
+    if (Number.isFinite(longitude[i]) && Number.isFinite(latitude[i]) && Number.isFinite(depth[i])) kept.push(i);
   const notes = [...before];
   if (kept.length < longitude.length) notes.push(`${longitude.length - kept.length} events have no position or depth and are left out.`);
   const pick = (list: ArrayLike<number>) => Float64Array.from(kept, (i) => list[i]);
   const result: Hypocentres = {
-    longitude: pick(longitude), latitude: pick(latitude), depth: pick(depth),
+    longitude: pick(longitude),
+    latitude: pick(latitude),
+    depth: pick(depth),
     ...(depthError === undefined ? {} : { depthError: pick(depthError) }),
     ...(magnitude === undefined ? {} : { magnitude: pick(magnitude) }),
-    size: kept.length, notes, lineage: [because],
+    size: kept.length,
+    notes,
+    lineage: [because],
   };
   return showAs(result, () => {
     const sorted = result.depth.slice().sort();
     const at = (share: number) => (sorted.length === 0 ? NaN : sorted[Math.min(sorted.length - 1, Math.floor(share * sorted.length))]);
-    return { title: 'Hypocentres', columns: ['events', 'median depth (km)', '95 % shallower than (km)', 'deepest (km)'], rows: [[result.size, at(0.5), at(0.95), at(1)]], notes };
+    return {
+      title: 'Hypocentres',
+      columns: ['events', 'median depth (km)', '95 % shallower than (km)', 'deepest (km)'],
+      rows: [[result.size, at(0.5), at(0.95), at(1)]],
+      notes,
+    };
   });
 }

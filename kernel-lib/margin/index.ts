@@ -9,7 +9,16 @@ export { slabFromHypocentres, type HypocentreSlab, type HypocentreSlabOptions } 
 export { eventKind, eventKindNames } from './event-choice';
 export { slabBelow, slabColumns, withCoordinates, type SlabBelowPoints } from './slab-below';
 export { volcanoesAbove, type VolcanoAbove, type VolcanoesAbove } from './volcanoes-above';
-export { plateVelocity, rateInMillimetres, slabKinematics, withKinematics, type PlateMotion, type Rate, type RateUnit, type SlabKinematics } from './kinematics';
+export {
+  plateVelocity,
+  rateInMillimetres,
+  slabKinematics,
+  withKinematics,
+  type PlateMotion,
+  type Rate,
+  type RateUnit,
+  type SlabKinematics,
+} from './kinematics';
 export { plausibleRanges, pointOut, type PlausibleRange } from './plausibility';
 export { atComposition, type AtComposition, type CompositionIndex, type ArcValue, type ArcValueOptions, type ArcValues } from './at-composition';
 export { crossArcTrend, type ArcTrend, type ArcTrendOptions, type ArcTrendPoint } from './trend';

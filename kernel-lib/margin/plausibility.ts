@@ -18,13 +18,25 @@ export interface PlausibleRange {
 
 const tableSchema = z.strictObject({
   note: z.string(),
-  ranges: z.array(z.strictObject({
-    key: z.string(), name: z.string(), unit: z.string(), from: z.number(), to: z.number(), source: z.string(), standing: z.enum(standings),
-    below: z.string().optional(), above: z.string().optional(), note: z.string().optional(),
-  })),
+  ranges: z.array(
+    z.strictObject({
+      key: z.string(),
+      name: z.string(),
+      unit: z.string(),
+      from: z.number(),
+      to: z.number(),
+      source: z.string(),
+      standing: z.enum(standings),
+      below: z.string().optional(),
+      above: z.string().optional(),
+      note: z.string().optional(),
+    }),
+  ),
 });
 
-const all = once((): ReadonlyMap<string, PlausibleRange> => new Map(readJsonTable('plausible-ranges.json', tableSchema).ranges.map((range) => [range.key, range])));
+const all = once(
+  (): ReadonlyMap<string, PlausibleRange> => new Map(readJsonTable('plausible-ranges.json', tableSchema).ranges.map((range) => [range.key, range])),
+);
 
 /** Every range of reference-tables/plausible-ranges.json, by key. Common practice: a value outside is allowed, and pointed out. */
 export function plausibleRanges(): ReadonlyMap<string, PlausibleRange> {
@@ -46,5 +58,8 @@ export function pointOut(key: string, value: number): string | undefined {
   const unit = range.unit === '°' ? '°' : ` ${range.unit}`;
   const sign = value < range.from ? range.below : range.above;
   const text = Math.abs(value) >= 10 ? value.toFixed(0) : value.toPrecision(2);
-  return `${range.name} ${text}${unit} is ${value < range.from ? 'below' : 'above'} the usual ${range.from}–${range.to}${unit} (common practice)${sign === undefined ? '' : `: ${sign}`}`;
+  return (
+    `${range.name} ${text}${unit} is ${value < range.from ? 'below' : 'above'} the usual ${range.from}–${range.to}${unit} (common ` +
+    `practice)${sign === undefined ? '' : `: ${sign}`}`
+  );
 }

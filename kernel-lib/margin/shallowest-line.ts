@@ -21,9 +21,16 @@ export function shallowestLine(points: SlabPoints): TrenchLine | undefined {
     if (piece === undefined) pieces.set(points.piece[i], [i]);
     else piece.push(i);
   }
-  const joined = joinPieces([...pieces.values()].filter((piece) => piece.length > 1), points);
+  const joined = joinPieces(
+    [...pieces.values()].filter((piece) => piece.length > 1),
+    points,
+  );
   if (joined.length < 2) return undefined;
-  return trenchLine(joined.map((i) => points.longitude[i]), joined.map((i) => points.latitude[i]), { name: `${shallowest} km contour` });
+  return trenchLine(
+    joined.map((i) => points.longitude[i]),
+    joined.map((i) => points.latitude[i]),
+    { name: `${shallowest} km contour` },
+  );
 }
 
 function joinPieces(pieces: number[][], { longitude, latitude }: SlabPoints): number[] {

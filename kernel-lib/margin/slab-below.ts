@@ -34,26 +34,50 @@ export const slabColumns = ['SlabDepth', 'SlabDip', 'SlabStrike', 'TrenchDistanc
  * @example const placed = slabBelow(slab, suite); placed.values('SlabDepth')
  */
 export function slabBelow(slab: SlabSurface, target: Suite, options?: { readonly trench?: TrenchLine }): Suite;
-export function slabBelow(slab: SlabSurface, target: { readonly longitude: ArrayLike<number>; readonly latitude: ArrayLike<number> }, options?: { readonly trench?: TrenchLine }): SlabBelowPoints & Showable;
 export function slabBelow(
-  slab: SlabSurface, target: Suite | { readonly longitude: ArrayLike<number>; readonly latitude: ArrayLike<number> }, options: { readonly trench?: TrenchLine } = {},
+  slab: SlabSurface,
+  target: { readonly longitude: ArrayLike<number>; readonly latitude: ArrayLike<number> },
+  options?: { readonly trench?: TrenchLine },
+): SlabBelowPoints & Showable;
+export function slabBelow(
+  slab: SlabSurface,
+  target: Suite | { readonly longitude: ArrayLike<number>; readonly latitude: ArrayLike<number> },
+  options: { readonly trench?: TrenchLine } = {},
 ): Suite | (SlabBelowPoints & Showable) {
-  if (typeof slab?.at !== 'function') throw new RangeError('slabBelow: the first argument must be a slab surface, from slabFromDepths or slabFromHypocentres.');
+  if (typeof slab?.at !== 'function')
+    throw new RangeError('slabBelow: the first argument must be a slab surface, from slabFromDepths or slabFromHypocentres.');
   if (target instanceof Suite) return joinToSuite(slab, target, options);
   checkedPoints(target?.longitude, target?.latitude, 'slabBelow');
   const below = slab.at(target.longitude, target.latitude);
   const { trenchDistance, arcPosition, notes } = measured(slab, target.longitude, target.latitude, options.trench);
   const counts = supportCounts(below.support);
   const result: SlabBelowPoints = {
-    ...below, trenchDistance, arcPosition, notes,
-    lineage: [...slab.lineage, step('slabBelow', { points: below.depth.length, ...counts, line: (options.trench ?? slab.trench)?.name ?? null }, { sources: ['karney_2013', 'snyder_1987'] })],
+    ...below,
+    trenchDistance,
+    arcPosition,
+    notes,
+    lineage: [
+      ...slab.lineage,
+      step(
+        'slabBelow',
+        { points: below.depth.length, ...counts, line: (options.trench ?? slab.trench)?.name ?? null },
+        { sources: ['karney_2013', 'snyder_1987'] },
+      ),
+    ],
   };
   return showAs(result, () => ({
     title: 'Slab below points',
     columns: ['longitude', 'latitude', 'slab depth (km)', '1σ (km)', 'dip (°)', 'strike (°)', 'trench distance (km)', 'along arc (km)', 'support'],
     rows: Array.from({ length: Math.min(60, below.depth.length) }, (_, i) => [
-      target.longitude[i], target.latitude[i], round(below.depth[i], 1), round(below.sigma[i], 1), round(below.dip[i], 1), round(below.strike[i], 0),
-      round(trenchDistance[i], 1), round(arcPosition[i], 1), slabSupportNames[below.support[i]],
+      target.longitude[i],
+      target.latitude[i],
+      round(below.depth[i], 1),
+      round(below.sigma[i], 1),
+      round(below.dip[i], 1),
+      round(below.strike[i], 0),
+      round(trenchDistance[i], 1),
+      round(arcPosition[i], 1),
+      slabSupportNames[below.support[i]],
     ]),
     totalRows: below.depth.length,
     notes,
@@ -76,7 +100,11 @@ function measured(slab: SlabSurface, longitude: ArrayLike<number>, latitude: Arr
   const notes = [...slab.notes];
   if (line === undefined) {
     const blank = new Float64Array(longitude.length).fill(NaN);
-    return { trenchDistance: blank, arcPosition: blank.slice(), notes: [...notes, 'Trench distances need a line: give { trench } (see readTrench).'] };
+    return {
+      trenchDistance: blank,
+      arcPosition: blank.slice(),
+      notes: [...notes, 'Trench distances need a line: give { trench } (see readTrench).'],
+    };
   }
   const { distance, along, beyondEnd } = measureFromLine(line, longitude, latitude);
   // A line given here may run either way; the slab's own is already turned so that the slab dips to its right.
@@ -114,15 +142,26 @@ function joinToSuite(slab: SlabSurface, suite: Suite, options: { readonly trench
     derivedColumn('ArcPosition', arcPosition, 'km'),
   ];
   const detail = {
-    slab: slab.name, kind: slab.kind, samples: size, ...supportCounts(below.support), withoutPosition: lon.reduce((n, value) => n + (Number.isNaN(value) ? 1 : 0), 0), outsideTheGlobe: outside,
-    line: (options.trench ?? slab.trench)?.name ?? null, notes,
+    slab: slab.name,
+    kind: slab.kind,
+    samples: size,
+    ...supportCounts(below.support),
+    withoutPosition: lon.reduce((n, value) => n + (Number.isNaN(value) ? 1 : 0), 0),
+    outsideTheGlobe: outside,
+    line: (options.trench ?? slab.trench)?.name ?? null,
+    notes,
   };
   const all = new Map(suite.columns);
   for (const each of columns) all.set(each.symbol, each);
-  const labels = new Map(suite.labels).set('slabSupport', Array.from(below.support, (support) => slabSupportNames[support]));
+  const labels = new Map(suite.labels).set(
+    'slabSupport',
+    Array.from(below.support, (support) => slabSupportNames[support]),
+  );
   const because = step('slabBelow', detail, {
     sources: ['karney_2013', 'snyder_1987'],
-    says: `Slab depth, dip and strike were read below each sample${detail.line === null ? '' : `, and distances taken as geodesics on the WGS84 ellipsoid from the ${detail.line}`}.`,
+    says:
+      'Slab depth, dip and strike were read below each ' +
+      `sample${detail.line === null ? '' : `, and distances taken as geodesics on the WGS84 ellipsoid from the ${detail.line}`}.`,
   });
   return suiteOf({ columns: all.values(), labels, lineage: [...joinLineages(suite.lineage, slab.lineage), because] });
 }
@@ -133,7 +172,10 @@ export function coordinatesOf(suite: Suite, what: string): { readonly longitude:
   const longitude = find(['longitude', 'Longitude', 'lon']);
   const latitude = find(['latitude', 'Latitude', 'lat']);
   if (longitude === undefined || latitude === undefined) {
-    throw new RangeError(`${what}: the suite has no columns "latitude" and "longitude" (degrees). It has: ${suite.analytes.join(', ')}. Add them with withCoordinates(suite, …).`);
+    throw new RangeError(
+      `${what}: the suite has no columns "latitude" and "longitude" (degrees). It has: ${suite.analytes.join(', ')}. Add them with ` +
+        'withCoordinates(suite, …).',
+    );
   }
   return { longitude: longitude.values, latitude: latitude.values };
 }
@@ -148,14 +190,28 @@ export function coordinatesOf(suite: Suite, what: string): { readonly longitude:
  * @throws RangeError for an unknown label, or places outside the globe
  * @example withCoordinates(suite, { Ketu: [-129.62, -44.12] })
  */
-export function withCoordinates(suite: Suite, places: Readonly<Record<string, readonly [number, number]>>, options: { readonly by?: string } = {}): Suite {
+export function withCoordinates(
+  suite: Suite,
+  places: Readonly<Record<string, readonly [number, number]>>,
+  options: { readonly by?: string } = {},
+): Suite {
   const { by = 'volcano' } = options;
   const names = suite.label(by);
   const entries = Object.entries(places);
-  checkedPoints(entries.map(([, place]) => place[0]), entries.map(([, place]) => place[1]), 'withCoordinates');
+  checkedPoints(
+    entries.map(([, place]) => place[0]),
+    entries.map(([, place]) => place[1]),
+    'withCoordinates',
+  );
   const unit = '°';
   const before = (symbol: string) => suite.columns.get(symbol)?.values;
   const fill = (symbol: string, at: 0 | 1) =>
-    column({ symbol, unit, values: names.map((name, i) => (Object.hasOwn(places, name) ? (at === 0 ? wrapLongitude(places[name][0]) : places[name][1]) : (before(symbol)?.[i] ?? NaN))) });
+    column({
+      symbol,
+      unit,
+      values: names.map((name, i) =>
+        Object.hasOwn(places, name) ? (at === 0 ? wrapLongitude(places[name][0]) : places[name][1]) : (before(symbol)?.[i] ?? NaN),
+      ),
+    });
   return suite.with([fill('longitude', 0), fill('latitude', 1)], step('withCoordinates', { by, places: entries.map(([name]) => name) }));
 }

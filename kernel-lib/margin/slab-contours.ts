@@ -18,11 +18,14 @@ export interface SlabContour {
  * @example slabContours(slab, [50, 100, 150, 200])
  */
 export function slabContours(
-  slab: SlabSurface, depths: readonly number[], options: { readonly frame?: SlabSurface['extent']; readonly cells?: number } = {},
+  slab: SlabSurface,
+  depths: readonly number[],
+  options: { readonly frame?: SlabSurface['extent']; readonly cells?: number } = {},
 ): readonly SlabContour[] {
   const { frame = slab.extent, cells = 140 } = options;
   if (!Array.isArray(depths) || !depths.every(Number.isFinite)) throw new RangeError('slabContours: depths must be a list of numbers, in km.');
-  if (!(frame.east > frame.west && frame.north > frame.south)) throw new RangeError('slabContours: the frame needs west < east and south < north (east may pass 180).');
+  if (!(frame.east > frame.west && frame.north > frame.south))
+    throw new RangeError('slabContours: the frame needs west < east and south < north (east may pass 180).');
   if (!(cells >= 10 && cells <= 2000)) throw new RangeError(`slabContours: cells must be 10 to 2000, not ${String(cells)}.`);
   const wide = frame.east - frame.west;
   const high = frame.north - frame.south;
@@ -40,35 +43,37 @@ export function slabContours(
   }
   const { depth, support } = slab.at(lons, lats);
   const traced = contours().size([columns, rows]).smooth(true);
-  return [...depths].sort((a, b) => a - b).map((level) => {
-    const pieces: { longitude: number[]; latitude: number[]; extrapolated: boolean }[] = [];
-    for (const polygon of traced.contour(Array.from(depth), level).coordinates) {
-      for (const ring of polygon) {
-        let open: { longitude: number[]; latitude: number[]; extrapolated: boolean } | undefined;
-        for (const [gx, gy] of ring) {
-          const cell = crossing(gx - 0.5, gy - 0.5, level, { columns, rows, depth, support });
-          if (cell === undefined) {
-            open = undefined;
-            continue;
-          }
-          const at = { longitude: longitude(gx - 0.5), latitude: latitude(gy - 0.5) };
-          if (open === undefined || open.extrapolated !== cell.extrapolated) {
-            // A piece of the other kind begins where the last one ended, so that no gap is drawn.
-            const last: typeof open = open;
-            open = { longitude: [], latitude: [], extrapolated: cell.extrapolated };
-            if (last !== undefined) {
-              open.longitude.push(last.longitude[last.longitude.length - 1]);
-              open.latitude.push(last.latitude[last.latitude.length - 1]);
+  return [...depths]
+    .sort((a, b) => a - b)
+    .map((level) => {
+      const pieces: { longitude: number[]; latitude: number[]; extrapolated: boolean }[] = [];
+      for (const polygon of traced.contour(Array.from(depth), level).coordinates) {
+        for (const ring of polygon) {
+          let open: { longitude: number[]; latitude: number[]; extrapolated: boolean } | undefined;
+          for (const [gx, gy] of ring) {
+            const cell = crossing(gx - 0.5, gy - 0.5, level, { columns, rows, depth, support });
+            if (cell === undefined) {
+              open = undefined;
+              continue;
             }
-            pieces.push(open);
+            const at = { longitude: longitude(gx - 0.5), latitude: latitude(gy - 0.5) };
+            if (open === undefined || open.extrapolated !== cell.extrapolated) {
+              // A piece of the other kind begins where the last one ended, so that no gap is drawn.
+              const last: typeof open = open;
+              open = { longitude: [], latitude: [], extrapolated: cell.extrapolated };
+              if (last !== undefined) {
+                open.longitude.push(last.longitude[last.longitude.length - 1]);
+                open.latitude.push(last.latitude[last.latitude.length - 1]);
+              }
+              pieces.push(open);
+            }
+            open.longitude.push(at.longitude);
+            open.latitude.push(at.latitude);
           }
-          open.longitude.push(at.longitude);
-          open.latitude.push(at.latitude);
         }
       }
-    }
-    return { depth: level, pieces: pieces.filter((piece) => piece.longitude.length > 1) };
-  });
+      return { depth: level, pieces: pieces.filter((piece) => piece.longitude.length > 1) };
+    });
 }
 
 const turn = (longitude: number): number => (longitude > 360 ? longitude - 360 : longitude);
@@ -77,7 +82,12 @@ const turn = (longitude: number): number => (longitude > 360 ? longitude - 360 :
  * What lies at a place where a traced ring crosses an edge of the grid: undefined on the rim of the grid or of the slab, where the ring only
  * closes itself and is no contour.
  */
-function crossing(x: number, y: number, level: number, grid: { readonly columns: number; readonly rows: number; readonly depth: Float64Array; readonly support: Uint8Array }): { extrapolated: boolean } | undefined {
+function crossing(
+  x: number,
+  y: number,
+  level: number,
+  grid: { readonly columns: number; readonly rows: number; readonly depth: Float64Array; readonly support: Uint8Array },
+): { extrapolated: boolean } | undefined {
   const { columns, rows, depth, support } = grid;
   const left = Math.floor(x + 1e-9);
   const low = Math.floor(y + 1e-9);

@@ -24,9 +24,15 @@ export interface SlabPoints {
  * @throws RangeError for unequal lengths or positions outside the globe
  * @example slabPoints({ longitude: [-129, -130, -129], latitude: [-44, -44, -45], depth: [60, 140, 60] })
  */
-export function slabPoints(points: { readonly longitude: ArrayLike<number>; readonly latitude: ArrayLike<number>; readonly depth: ArrayLike<number>; readonly slab?: string }): SlabPoints & Showable {
+export function slabPoints(points: {
+  readonly longitude: ArrayLike<number>;
+  readonly latitude: ArrayLike<number>;
+  readonly depth: ArrayLike<number>;
+  readonly slab?: string;
+}): SlabPoints & Showable {
   checkedPoints(points?.longitude, points?.latitude, 'slabPoints');
-  if (points.depth?.length !== points.longitude.length) throw new RangeError(`slabPoints: ${points.depth?.length ?? 'no'} depths for ${points.longitude.length} points; give one a point, in km.`);
+  if (points.depth?.length !== points.longitude.length)
+    throw new RangeError(`slabPoints: ${points.depth?.length ?? 'no'} depths for ${points.longitude.length} points; give one a point, in km.`);
   const rows = Array.from({ length: points.longitude.length }, (_, i) => i);
   return gather(points.longitude, points.latitude, points.depth, rows, { slab: points.slab ?? '' }, step('slabPoints', { points: rows.length }));
 }
@@ -45,7 +51,9 @@ export async function readSlabPoints(path: string, options: { readonly slab?: st
   const table = await readPointTable(
     path,
     [
-      wantedLongitude, wantedLatitude, wantedDepth,
+      wantedLongitude,
+      wantedLatitude,
+      wantedDepth,
       { name: 'slab', spellings: ['slab', 'slabname'], required: false, text: true },
       { name: 'segment', spellings: ['segment', 'piece', 'line', 'lineid'], required: false, text: true },
     ],
@@ -54,7 +62,10 @@ export async function readSlabPoints(path: string, options: { readonly slab?: st
   const names = table.texts.slab;
   const known = [...new Set(names ?? [])];
   if (options.slab === undefined && known.length > 1) {
-    throw new RangeError(`readSlabPoints: ${table.file} holds ${known.length} slabs (${known.join(', ')}). Choose one with { slab: '${known[0]}' }: one surface cannot join two slabs.`);
+    throw new RangeError(
+      `readSlabPoints: ${table.file} holds ${known.length} slabs (${known.join(', ')}). Choose one with { slab: '${known[0]}' }: one ` +
+        'surface cannot join two slabs.',
+    );
   }
   if (options.slab !== undefined && !known.includes(options.slab)) {
     throw new RangeError(`readSlabPoints: ${table.file} has no slab "${options.slab}". It has: ${known.join(', ') || 'no column that names slabs'}.`);
@@ -63,14 +74,25 @@ export async function readSlabPoints(path: string, options: { readonly slab?: st
   const rows: number[] = [];
   for (let i = 0; i < table.size; i++) if (names === undefined || names[i] === slab) rows.push(i);
   const { longitude, latitude, depth } = table.numbers;
-  const points = gather(longitude!, latitude!, depth!, rows, { slab, segments: table.texts.segment }, step('readSlabPoints', { file: table.file, sha256: table.sha256, slab, rows: rows.length }));
+  const points = gather(
+    longitude!,
+    latitude!,
+    depth!,
+    rows,
+    { slab, segments: table.texts.segment },
+    step('readSlabPoints', { file: table.file, sha256: table.sha256, slab, rows: rows.length }),
+  );
   if (points.size === 0) throw new PointTableError(`${table.file}: no row has longitude, latitude and depth.`);
   return points;
 }
 
 function gather(
-  longitude: ArrayLike<number>, latitude: ArrayLike<number>, depth: ArrayLike<number>, rows: readonly number[],
-  about: { readonly slab: string; readonly segments?: readonly string[] }, because: Step,
+  longitude: ArrayLike<number>,
+  latitude: ArrayLike<number>,
+  depth: ArrayLike<number>,
+  rows: readonly number[],
+  about: { readonly slab: string; readonly segments?: readonly string[] },
+  because: Step,
 ): SlabPoints & Showable {
   const kept = rows.filter((i) => Number.isFinite(longitude[i]) && Number.isFinite(latitude[i]) && Number.isFinite(depth[i]));
   const below = kept.filter((i) => depth[i] < 0).length;
@@ -96,6 +118,11 @@ function gather(
       shallow = Math.min(shallow, z);
       deep = Math.max(deep, z);
     }
-    return { title: `Slab depths${points.slab === '' ? '' : ` (${points.slab})`}`, columns: ['points', 'shallowest (km)', 'deepest (km)'], rows: [[points.size, shallow, deep]], notes };
+    return {
+      title: `Slab depths${points.slab === '' ? '' : ` (${points.slab})`}`,
+      columns: ['points', 'shallowest (km)', 'deepest (km)'],
+      rows: [[points.size, shallow, deep]],
+      notes,
+    };
   });
 }

@@ -46,7 +46,12 @@ export interface SplineBasis {
 /** Points outside the rectangle take the polynomial of the nearest cell no further than its edge. */
 export function splineBasis(grid: SplineGrid, x: ArrayLike<number>, y: ArrayLike<number>): SplineBasis {
   const size = x.length;
-  const basis = { firstX: new Int32Array(size), firstY: new Int32Array(size), values: new Float64Array(8 * size), slopes: new Float64Array(8 * size) };
+  const basis = {
+    firstX: new Int32Array(size),
+    firstY: new Int32Array(size),
+    values: new Float64Array(8 * size),
+    slopes: new Float64Array(8 * size),
+  };
   for (let i = 0; i < size; i++) {
     const u = Math.min(grid.countX - 3, Math.max(0, (x[i] - grid.left) / grid.step));
     const v = Math.min(grid.countY - 3, Math.max(0, (y[i] - grid.bottom) / grid.step));
@@ -82,7 +87,14 @@ export function splineAt(grid: SplineGrid, basis: SplineBasis, coefficients: Flo
 }
 
 /** Adds Σ weight · b bᵀ to a lower band and Σ weight · z · b to a right side. */
-export function addSquares(grid: SplineGrid, basis: SplineBasis, weights: Float64Array, z: Float64Array, band: Float64Array, right: Float64Array): void {
+export function addSquares(
+  grid: SplineGrid,
+  basis: SplineBasis,
+  weights: Float64Array,
+  z: Float64Array,
+  band: Float64Array,
+  right: Float64Array,
+): void {
   const { countY, width } = grid;
   const row = width + 1;
   const product = new Float64Array(16);
@@ -115,9 +127,34 @@ export function bendingPenalty({ countX, countY, size, width }: SplineGrid): Flo
   for (let a = 0; a < countX; a++) {
     for (let b = 0; b < countY; b++) {
       const at = a * countY + b;
-      if (a + 2 < countX) add([[at, 1], [at + countY, -2], [at + 2 * countY, 1]], 1);
-      if (b + 2 < countY) add([[at, 1], [at + 1, -2], [at + 2, 1]], 1);
-      if (a + 1 < countX && b + 1 < countY) add([[at, 1], [at + 1, -1], [at + countY, -1], [at + countY + 1, 1]], 2);
+      if (a + 2 < countX)
+        add(
+          [
+            [at, 1],
+            [at + countY, -2],
+            [at + 2 * countY, 1],
+          ],
+          1,
+        );
+      if (b + 2 < countY)
+        add(
+          [
+            [at, 1],
+            [at + 1, -2],
+            [at + 2, 1],
+          ],
+          1,
+        );
+      if (a + 1 < countX && b + 1 < countY)
+        add(
+          [
+            [at, 1],
+            [at + 1, -1],
+            [at + countY, -1],
+            [at + countY + 1, 1],
+          ],
+          2,
+        );
     }
   }
   return band;

@@ -24,9 +24,16 @@ export function trenchLine(longitudes: ArrayLike<number>, latitudes: ArrayLike<n
   checkedPoints(longitudes, latitudes, 'trenchLine');
   const longitude = Float64Array.from(longitudes);
   const latitude = Float64Array.from(latitudes);
-  if (longitude.length < 2) throw new RangeError(`trenchLine: a line needs at least two points, in order along the trench; ${longitude.length} given.`);
-  if (longitude.some(Number.isNaN) || latitude.some(Number.isNaN)) throw new RangeError('trenchLine: a point without longitude or latitude cannot stand in a line. Leave it out.');
-  return { longitude, latitude, name: options.name ?? 'trench', lineage: [step('trenchLine', { points: longitude.length, name: options.name ?? 'trench' })] };
+  if (longitude.length < 2)
+    throw new RangeError(`trenchLine: a line needs at least two points, in order along the trench; ${longitude.length} given.`);
+  if (longitude.some(Number.isNaN) || latitude.some(Number.isNaN))
+    throw new RangeError('trenchLine: a point without longitude or latitude cannot stand in a line. Leave it out.');
+  return {
+    longitude,
+    latitude,
+    name: options.name ?? 'trench',
+    lineage: [step('trenchLine', { points: longitude.length, name: options.name ?? 'trench' })],
+  };
 }
 
 /**
@@ -57,12 +64,18 @@ export interface LineMeasure {
 }
 
 /** Measures points against a line: the nearest place is found on a conformal plane, its distance on the ellipsoid. */
-export function measureFromLine(line: TrenchLine, longitudes: ArrayLike<number>, latitudes: ArrayLike<number>, plane: Plane = planeAbout(centreOf(line.longitude, line.latitude))): LineMeasure {
+export function measureFromLine(
+  line: TrenchLine,
+  longitudes: ArrayLike<number>,
+  latitudes: ArrayLike<number>,
+  plane: Plane = planeAbout(centreOf(line.longitude, line.latitude)),
+): LineMeasure {
   const { x: lineX, y: lineY } = plane.project(line.longitude, line.latitude);
   const { x, y } = plane.project(longitudes, latitudes);
   const last = lineX.length - 1;
   const upTo = new Float64Array(lineX.length);
-  for (let j = 1; j <= last; j++) upTo[j] = upTo[j - 1] + geodesic(line.longitude[j - 1], line.latitude[j - 1], line.longitude[j], line.latitude[j]).distance;
+  for (let j = 1; j <= last; j++)
+    upTo[j] = upTo[j - 1] + geodesic(line.longitude[j - 1], line.latitude[j - 1], line.longitude[j], line.latitude[j]).distance;
   const distance = new Float64Array(x.length).fill(NaN);
   const along = new Float64Array(x.length).fill(NaN);
   const beyondEnd = new Uint8Array(x.length);

@@ -1,6 +1,16 @@
 import { showAs, type Showable } from '../display';
 import { step, type Step, type Suite } from '../suite';
-import { compositionIndex, gatherGroups, groupValue, resampledValues, unfitGroup, type AtComposition, type CompositionIndex, type GroupSamples, type ArcValueOptions } from './at-composition';
+import {
+  compositionIndex,
+  gatherGroups,
+  groupValue,
+  resampledValues,
+  unfitGroup,
+  type AtComposition,
+  type CompositionIndex,
+  type GroupSamples,
+  type ArcValueOptions,
+} from './at-composition';
 import { kendall, medianOf, quantileOf, randomSource, robustLine, type Line, type RobustMethod } from './regression';
 import { round } from './slab-below';
 
@@ -56,23 +66,34 @@ const replicates = 300;
 /**
  * Looks for a trend across or along an arc: one value a volcano against slab depth, thermal parameter, trench distance or any column.
  *
- * Volcanoes, not samples, are the points: many samples of one volcano say the same thing. The line is robust (Theil–Sen, or Huber); its interval is a
- * seeded bootstrap that draws residuals about the line, and each volcano's samples anew; Kendall's τ tells whether the order alone could be chance. Both together
- * give the verdict. A trend with slab depth is no proof of a cause, and slabs are not located from potash.
+ * Volcanoes, not samples, are the points: many samples of one volcano say the same thing. The line is robust (Theil–Sen, or Huber); its
+ * interval is a seeded bootstrap that draws residuals about the line, and each volcano's samples anew; Kendall's τ tells whether the order
+ * alone could be chance. Both together give the verdict. A trend with slab depth is no proof of a cause, and slabs are not located from potash.
  *
  * @param suite n samples with the column read against, and a label that names the volcano
- * @param options `of` (or a ready-made index `K60`, `K57.5`, `K55`, `Na6.0`, `Ca6.0` as the second argument), `against`, `by`, `at`, `method`, `seed`, `draws`, `confidence`
+ * @param options `of` (an expression), `against`, `by`, `at`, `method`, `seed`, `draws`, `confidence`; or a ready-made index (`K60`, `K57.5`, `K55`,
+ *   `Na6.0`, `Ca6.0`), with the other options as third argument
  * @returns points, line, interval, verdict and a plain sentence
  * @throws RangeError for fewer than five volcanoes with values, naming those left out and why; for unknown columns, labels or options
  * @source Theil 1950; Sen 1968; Kendall 1938; Efron 1979; Dickinson 1975
  * @example crossArcTrend(placed, { of: 'Ba/Th', against: 'SlabDepth' }).sentence
  */
-export function crossArcTrend(suite: Suite, options: ArcTrendOptions | CompositionIndex, more: Omit<ArcTrendOptions, 'of' | 'at'> = {}): ArcTrend & Showable {
+export function crossArcTrend(
+  suite: Suite,
+  options: ArcTrendOptions | CompositionIndex,
+  more: Omit<ArcTrendOptions, 'of' | 'at'> = {},
+): ArcTrend & Showable {
   const wanted: ArcTrendOptions = typeof options === 'string' ? { ...compositionIndex(options), ...more } : options;
   const { of, by = 'volcano', at, against = 'SlabDepth', method = 'theil-sen', seed = 1967, draws = 2000, confidence = 0.95 } = wanted;
-  if (!(Number.isInteger(draws) && draws >= 100 && draws <= 100_000)) throw new RangeError(`crossArcTrend: draws must be a whole number from 100 to 100000, not ${String(draws)}.`);
-  if (!(confidence > 0.5 && confidence < 1)) throw new RangeError(`crossArcTrend: confidence must be a share such as 0.95, not ${String(confidence)}.`);
-  if (!suite.has(against)) throw new RangeError(`crossArcTrend: the suite has no column "${against}". It has: ${suite.analytes.join(', ')}. Slab columns come from slabBelow, the thermal parameter from withKinematics.`);
+  if (!(Number.isInteger(draws) && draws >= 100 && draws <= 100_000))
+    throw new RangeError(`crossArcTrend: draws must be a whole number from 100 to 100000, not ${String(draws)}.`);
+  if (!(confidence > 0.5 && confidence < 1))
+    throw new RangeError(`crossArcTrend: confidence must be a share such as 0.95, not ${String(confidence)}.`);
+  if (!suite.has(against))
+    throw new RangeError(
+      `crossArcTrend: the suite has no column "${against}". It has: ${suite.analytes.join(', ')}. Slab columns come from slabBelow, the ` +
+        'thermal parameter from withKinematics.',
+    );
   const column = suite.column(against);
   const { samples, unit, notes } = gatherGroups(suite, wanted);
   const left: string[] = [];
@@ -83,34 +104,105 @@ export function crossArcTrend(suite: Suite, options: ArcTrendOptions | Compositi
     if (unfit === undefined) used.push({ samples: each, x, y: groupValue(each.values, each.index, at, method) });
     else left.push(`${each.group} (${unfit})`);
   }
-  if (left.length > 0) notes.push(`Not used: ${left.length > 12 ? `${left.slice(0, 12).join(', ')} and ${left.length - 12} more` : left.join(', ')}.`);
+  if (left.length > 0)
+    notes.push(`Not used: ${left.length > 12 ? `${left.slice(0, 12).join(', ')} and ${left.length - 12} more` : left.join(', ')}.`);
   if (used.length < fewestGroups) {
     throw new RangeError(
-      `crossArcTrend: ${used.length} ${by === 'volcano' ? 'volcanoes have' : `groups by ${by} have`} both ${of} and ${against}; a trend needs ${fewestGroups}, because the order of fewer can always be chance. ${left.length > 0 ? `Not used: ${left.slice(0, 12).join(', ')}.` : ''}`,
+      `crossArcTrend: ${used.length} ${by === 'volcano' ? 'volcanoes have' : `groups by ${by} have`} both ${of} and ${against}; a trend ` +
+        `needs ${fewestGroups}, because the order of fewer can always be chance. ` +
+        `${left.length > 0 ? `Not used: ${left.slice(0, 12).join(', ')}.` : ''}`,
     );
   }
   const x = used.map((each) => each.x);
   const y = used.map((each) => each.y);
   const line = robustLine(method, x, y);
-  if (Number.isNaN(line.slope)) throw new RangeError(`crossArcTrend: ${against} is the same for all groups, so there is nothing to read a trend against.`);
+  if (Number.isNaN(line.slope))
+    throw new RangeError(`crossArcTrend: ${against} is the same for all groups, so there is nothing to read a trend against.`);
   const boot = bootstrap(used, line, wanted, { method, seed, draws, confidence });
   const { tau, p } = kendall(x, y, seed);
   const clear = boot.slope[0] > 0 || boot.slope[1] < 0;
   const verdict = clear && p <= 0.05 ? 'trend' : clear || p <= 0.05 ? 'weak' : 'none';
-  const points = used.map((each, i): ArcTrendPoint => ({ group: each.samples.group, x: each.x, y: each.y, ySigma: boot.sigma[i], used: each.samples.values.length }));
+  const points = used.map(
+    (each, i): ArcTrendPoint => ({
+      group: each.samples.group,
+      x: each.x,
+      y: each.y,
+      ySigma: boot.sigma[i],
+      used: each.samples.values.length,
+    }),
+  );
   notes.push(...spanNotes(x, column.sigma, against, column.unit));
-  const sentence = plainSentence({ of, at, against, unit, againstUnit: column.unit, line, interval: boot.slope, tau, p, verdict, count: used.length, by, confidence });
+  const sentence = plainSentence({
+    of,
+    at,
+    against,
+    unit,
+    againstUnit: column.unit,
+    line,
+    interval: boot.slope,
+    tau,
+    p,
+    verdict,
+    count: used.length,
+    by,
+    confidence,
+  });
   const result: ArcTrend = {
-    of, against, unit, againstUnit: column.unit, by, ...(at === undefined ? {} : { at }), points, line, slopeInterval: boot.slope, tau, p, verdict, sentence, band: boot.band, notes,
+    of,
+    against,
+    unit,
+    againstUnit: column.unit,
+    by,
+    ...(at === undefined ? {} : { at }),
+    points,
+    line,
+    slopeInterval: boot.slope,
+    tau,
+    p,
+    verdict,
+    sentence,
+    band: boot.band,
+    notes,
     lineage: [
       ...suite.lineage,
-      step('crossArcTrend', { of, against, by, at: at === undefined ? null : { index: at.index, value: at.value, window: [...at.window] }, method, seed, draws, confidence, groups: used.length, notUsed: left.length, verdict },
-        { sources: ['theil_1950', 'sen_1968', 'kendall_1938', 'efron_1979', ...(method === 'huber' ? ['huber_1964'] : []), ...(at?.index === 'SiO2' ? ['dickinson_1975'] : [])], says: sentence }),
+      step(
+        'crossArcTrend',
+        {
+          of,
+          against,
+          by,
+          at: at === undefined ? null : { index: at.index, value: at.value, window: [...at.window] },
+          method,
+          seed,
+          draws,
+          confidence,
+          groups: used.length,
+          notUsed: left.length,
+          verdict,
+        },
+        {
+          sources: [
+            'theil_1950',
+            'sen_1968',
+            'kendall_1938',
+            'efron_1979',
+            ...(method === 'huber' ? ['huber_1964'] : []),
+            ...(at?.index === 'SiO2' ? ['dickinson_1975'] : []),
+          ],
+          says: sentence,
+        },
+      ),
     ],
   };
   return showAs(result, () => ({
     title: sentence,
-    columns: [by, `${against}${column.unit === '' ? '' : ` (${column.unit})`}`, `${nameOf(of, at)}${unit === '' ? '' : ` (${unit})`}`, '1σ', 'samples'],
+    columns: [
+      by,
+      `${against}${column.unit === '' ? '' : ` (${column.unit})`}`,
+      `${nameOf(of, at)}${unit === '' ? '' : ` (${unit})`}`,
+      '1σ',
+      'samples',
+    ],
     rows: points.map((point) => [point.group, round(point.x, 2), Number(point.y.toPrecision(4)), Number(point.ySigma.toPrecision(3)), point.used]),
     notes,
   }));
@@ -124,7 +216,9 @@ export const nameOf = (of: string, at: AtComposition | undefined): string => (at
  * whose line can be anything. The samples of each volcano are drawn as well, so that a lucky fit of a few noisy values is not taken for certainty.
  */
 function bootstrap(
-  used: readonly { readonly samples: GroupSamples; readonly x: number; readonly y: number }[], line: Line, wanted: ArcTrendOptions,
+  used: readonly { readonly samples: GroupSamples; readonly x: number; readonly y: number }[],
+  line: Line,
+  wanted: ArcTrendOptions,
   how: { readonly method: RobustMethod; readonly seed: number; readonly draws: number; readonly confidence: number },
 ) {
   const draw = randomSource(how.seed);
@@ -168,22 +262,47 @@ function bootstrap(
 function spanNotes(x: readonly number[], sigma: Float64Array | undefined, against: string, unit: string): string[] {
   const span = Math.max(...x) - Math.min(...x);
   const error = sigma === undefined ? NaN : medianOf(sigma);
-  return span < 2 * error ? [`${against} spans only ${span.toFixed(0)} ${unit} between the volcanoes, within twice its 1σ of ${error.toFixed(0)} ${unit}: a trend could not be seen.`] : [];
+  return span < 2 * error
+    ? [
+        `${against} spans only ${span.toFixed(0)} ${unit} between the volcanoes, within twice its 1σ of ${error.toFixed(0)} ${unit}: a ` +
+          'trend could not be seen.',
+      ]
+    : [];
 }
 
 function plainSentence(t: {
-  of: string; at: AtComposition | undefined; against: string; unit: string; againstUnit: string; line: Line; interval: readonly [number, number];
-  tau: number; p: number; verdict: ArcTrend['verdict']; count: number; by: string; confidence: number;
+  of: string;
+  at: AtComposition | undefined;
+  against: string;
+  unit: string;
+  againstUnit: string;
+  line: Line;
+  interval: readonly [number, number];
+  tau: number;
+  p: number;
+  verdict: ArcTrend['verdict'];
+  count: number;
+  by: string;
+  confidence: number;
 }): string {
-  const names: Readonly<Record<string, string>> = { SlabDepth: 'slab depth', ThermalParameter: 'thermal parameter', TrenchDistance: 'distance from the trench', ArcPosition: 'position along the arc', SlabDip: 'slab dip' };
+  const names: Readonly<Record<string, string>> = {
+    SlabDepth: 'slab depth',
+    ThermalParameter: 'thermal parameter',
+    TrenchDistance: 'distance from the trench',
+    ArcPosition: 'position along the arc',
+    SlabDip: 'slab dip',
+  };
   const versus = names[t.against] ?? t.against;
   const what = nameOf(t.of, t.at);
   const number = (value: number) => Number(value.toPrecision(3)).toString().replace('-', '−');
   const unit = `${t.unit === '' ? '' : ` ${t.unit === 'wt%' ? 'wt %' : t.unit}`} per 100 ${t.againstUnit || 'units'}`;
-  const figures = `${number(100 * t.line.slope)}${unit}, ${Math.round(100 * t.confidence)} % interval ${number(100 * t.interval[0])} to ${number(100 * t.interval[1])}; Kendall's τ ${t.tau.toFixed(2).replace('-', '−')}, p ${t.p < 0.001 ? '< 0.001' : t.p.toPrecision(2)}`;
+  const order = `Kendall's τ ${t.tau.toFixed(2).replace('-', '−')}, p ${t.p < 0.001 ? '< 0.001' : t.p.toPrecision(2)}`;
+  const interval = `${Math.round(100 * t.confidence)} % interval ${number(100 * t.interval[0])} to ${number(100 * t.interval[1])}`;
+  const figures = `${number(100 * t.line.slope)}${unit}, ${interval}; ${order}`;
   const groups = `${t.count} ${t.by === 'volcano' ? 'volcanoes' : 'groups'}`;
   const way = t.line.slope > 0 ? 'rises' : 'falls';
   if (t.verdict === 'trend') return `${what} ${way} with ${versus} across ${groups} (${figures}).`;
-  if (t.verdict === 'weak') return `${what} may ${t.line.slope > 0 ? 'rise' : 'fall'} with ${versus}, but across ${groups} chance is not ruled out (${figures}).`;
+  if (t.verdict === 'weak')
+    return `${what} may ${t.line.slope > 0 ? 'rise' : 'fall'} with ${versus}, but across ${groups} chance is not ruled out (${figures}).`;
   return `No trend of ${what} with ${versus} is shown by ${groups} (${figures}).`;
 }

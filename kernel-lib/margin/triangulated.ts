@@ -35,7 +35,12 @@ export class TriangulatedSurface {
   private readonly spacing: number;
   private at = 0;
 
-  constructor(readonly x: Float64Array, readonly y: Float64Array, readonly z: Float64Array, private readonly reach: number) {
+  constructor(
+    readonly x: Float64Array,
+    readonly y: Float64Array,
+    readonly z: Float64Array,
+    private readonly reach: number,
+  ) {
     const coordinates = new Float64Array(2 * x.length);
     for (let i = 0; i < x.length; i++) {
       coordinates[2 * i] = x[i];

@@ -48,7 +48,8 @@ const frontWidth = 25;
  */
 export function volcanoesAbove(suite: Suite, options: { readonly by?: string } = {}): VolcanoesAbove & Showable {
   const { by = 'volcano' } = options;
-  if (!suite.has('SlabDepth')) throw new RangeError('volcanoesAbove: the suite has no column "SlabDepth". Join the slab first: slabBelow(slab, suite).');
+  if (!suite.has('SlabDepth'))
+    throw new RangeError('volcanoesAbove: the suite has no column "SlabDepth". Join the slab first: slabBelow(slab, suite).');
   const { longitude, latitude } = coordinatesOf(suite, 'volcanoesAbove');
   const labels = suite.label(by);
   const support = suite.label('slabSupport');
@@ -59,36 +60,73 @@ export function volcanoesAbove(suite: Suite, options: { readonly by?: string } =
   });
   const pick = (symbol: string, of: readonly number[]) => medianOf(of.map((i) => suite.values(symbol)[i]));
   const placed = [...rows].map(([group, of]) => {
-    const centre = centreOf(of.map((i) => longitude[i]), of.map((i) => latitude[i]));
+    const centre = centreOf(
+      of.map((i) => longitude[i]),
+      of.map((i) => latitude[i]),
+    );
     return {
-      group, samples: of.length, ...centre, depth: pick('SlabDepth', of), depthSigma: medianOf(of.map((i) => suite.column('SlabDepth').sigma?.[i] ?? NaN)), dip: pick('SlabDip', of),
-      trenchDistance: pick('TrenchDistance', of), arcPosition: pick('ArcPosition', of), support: support[of[0]],
+      group,
+      samples: of.length,
+      ...centre,
+      depth: pick('SlabDepth', of),
+      depthSigma: medianOf(of.map((i) => suite.column('SlabDepth').sigma?.[i] ?? NaN)),
+      dip: pick('SlabDip', of),
+      trenchDistance: pick('TrenchDistance', of),
+      arcPosition: pick('ArcPosition', of),
+      support: support[of[0]],
     };
   });
   const front = (one: (typeof placed)[number]) =>
-    Number.isFinite(one.trenchDistance) && !placed.some((other) => Math.abs(other.arcPosition - one.arcPosition) <= frontStretch && other.trenchDistance < one.trenchDistance - frontWidth);
+    Number.isFinite(one.trenchDistance) &&
+    !placed.some((other) => Math.abs(other.arcPosition - one.arcPosition) <= frontStretch && other.trenchDistance < one.trenchDistance - frontWidth);
   const volcanoes = placed
     .map((one): VolcanoAbove => ({ ...one, front: front(one), remarks: remarksOn(one, front(one)) }))
     .sort((a, b) => (Number.isNaN(a.trenchDistance) ? a.depth - b.depth : a.trenchDistance - b.trenchDistance));
   const gaps = gapsAlong(volcanoes.filter((one) => one.front));
   const notes = [
     ...gaps.map(({ from, to, length }) => `A gap of ${length.toFixed(0)} km in the volcanic front of these samples, between ${from} and ${to}.`),
-    `Usual ranges (common practice): ${[...plausibleRanges().values()].filter(({ key }) => key.startsWith('front') || key === 'slab-dip').map(({ name, from, to, unit }) => `${name} ${from}–${to} ${unit}`).join(', ')}.`,
+    `Usual ranges (common practice): ${[...plausibleRanges().values()]
+      .filter(({ key }) => key.startsWith('front') || key === 'slab-dip')
+      .map(({ name, from, to, unit }) => `${name} ${from}–${to} ${unit}`)
+      .join(', ')}.`,
     'Nothing here forecasts eruptions.',
   ];
   const result: VolcanoesAbove = {
-    volcanoes, gaps, notes,
-    lineage: [...suite.lineage, step('volcanoesAbove', { by, volcanoes: volcanoes.length, gaps: gaps.length }, { sources: ['common_practice'], tables: ['plausible-ranges.json'] })],
+    volcanoes,
+    gaps,
+    notes,
+    lineage: [
+      ...suite.lineage,
+      step(
+        'volcanoesAbove',
+        { by, volcanoes: volcanoes.length, gaps: gaps.length },
+        { sources: ['common_practice'], tables: ['plausible-ranges.json'] },
+      ),
+    ],
   };
   return showAs(result, () => ({
     title: 'Volcanoes above the slab',
     columns: [by, 'samples', 'slab depth (km)', '1σ (km)', 'dip (°)', 'trench distance (km)', 'along arc (km)', 'front', 'support', 'remarks'],
-    rows: volcanoes.map((v) => [v.group, v.samples, round(v.depth, 1), round(v.depthSigma, 1), round(v.dip, 1), round(v.trenchDistance, 1), round(v.arcPosition, 1), v.front ? 'front' : 'rear', v.support, v.remarks.join('; ')]),
+    rows: volcanoes.map((v) => [
+      v.group,
+      v.samples,
+      round(v.depth, 1),
+      round(v.depthSigma, 1),
+      round(v.dip, 1),
+      round(v.trenchDistance, 1),
+      round(v.arcPosition, 1),
+      v.front ? 'front' : 'rear',
+      v.support,
+      v.remarks.join('; '),
+    ]),
     notes,
   }));
 }
 
-function remarksOn(one: { readonly depth: number; readonly dip: number; readonly trenchDistance: number; readonly support: string }, front: boolean): string[] {
+function remarksOn(
+  one: { readonly depth: number; readonly dip: number; readonly trenchDistance: number; readonly support: string },
+  front: boolean,
+): string[] {
   return [
     front ? pointOut('front-slab-depth', one.depth) : undefined,
     front ? pointOut('front-trench-distance', one.trenchDistance) : undefined,
@@ -102,5 +140,7 @@ function gapsAlong(front: readonly VolcanoAbove[]): VolcanoesAbove['gaps'] {
   const ordered = front.filter((one) => Number.isFinite(one.arcPosition)).sort((a, b) => a.arcPosition - b.arcPosition);
   const spaces = ordered.slice(1).map((one, i) => one.arcPosition - ordered[i].arcPosition);
   const usual = medianOf(spaces);
-  return spaces.flatMap((length, i) => (length > 100 && (spaces.length < 3 || length > 3 * usual) ? [{ from: ordered[i].group, to: ordered[i + 1].group, length }] : []));
+  return spaces.flatMap((length, i) =>
+    length > 100 && (spaces.length < 3 || length > 3 * usual) ? [{ from: ordered[i].group, to: ordered[i + 1].group, length }] : [],
+  );
 }

@@ -22,7 +22,8 @@ const kmPerLongitude = (latitude) => 111.32 * Math.cos((latitude * Math.PI) / 18
 /** Longitude of the trench: bowed to the east. */
 const trenchLongitude = (latitude) => -127.48 - 0.035 * (latitude + 44.3) ** 2;
 /** Depth of the slab (km) at a distance west of the trench (km). */
-const slabDepth = (distance, latitude) => 7 + 0.2193 * distance + 0.001824 * distance ** 2 + 3 * Math.sin((latitude + 44) * 1.7) * Math.min(1, distance / 150);
+const slabDepth = (distance, latitude) =>
+  7 + 0.2193 * distance + 0.001824 * distance ** 2 + 3 * Math.sin((latitude + 44) * 1.7) * Math.min(1, distance / 150);
 
 const trench = ['longitude,latitude'];
 for (let latitude = -42; latitude >= -46.61; latitude -= 0.2) trench.push(`${trenchLongitude(latitude).toFixed(3)},${latitude.toFixed(2)}`);
@@ -36,7 +37,12 @@ function event(longitude, latitude, depth, depthError) {
   const when = new Date(Date.UTC(2018, 0, 1) + Math.floor(uniform() * 6 * 365.25 * 86400) * 1000).toISOString();
   const magnitude = 2.8 - Math.log10(1 - uniform()) / 1.05;
   number++;
-  lines.push(`ov${String(number).padStart(4, '0')},${when},${latitude.toFixed(3)},${longitude.toFixed(3)},${depth.toFixed(1)},${depthError === undefined ? '' : depthError.toFixed(1)},${Math.min(7.1, magnitude).toFixed(1)},earthquake`);
+  lines.push(
+    [
+      `ov${String(number).padStart(4, '0')}`, when, latitude.toFixed(3), longitude.toFixed(3), depth.toFixed(1), depthError === undefined ? '' : depthError.toFixed(1),
+      Math.min(7.1, magnitude).toFixed(1), 'earthquake',
+    ].join(','),
+  );
 }
 while (number < 1100) {
   const latitude = south + (north - south) * uniform();

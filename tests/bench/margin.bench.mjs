@@ -54,7 +54,10 @@ const done = performance.now();
 let worst = 0;
 for (let i = 0; i < depths.length; i++) worst = Math.max(worst, Math.abs(depths[i] - known(lons[i], lats[i])));
 check(`depth below 10,000 points is off by ${worst.toFixed(2)} km`, worst < 0.3);
-console.log(`margin: surface through ${points.size} contour points and depth below 10,000 points: ${((done - start) / 1000).toFixed(3)} s / 0.5 s (of which the surface ${((built - start) / 1000).toFixed(3)} s)`);
+console.log(
+  `margin: surface through ${points.size} contour points and depth below 10,000 points: ${((done - start) / 1000).toFixed(3)} s / 0.5 s ` +
+  `(of which the surface ${((built - start) / 1000).toFixed(3)} s)`,
+);
 
 // 20,000 events, 10 % of them in the crust.
 const events = { longitude: [], latitude: [], depth: [] };
@@ -73,8 +76,11 @@ const fitStart = performance.now();
 const fitted = ww.slabFromHypocentres(table);
 const fitDone = performance.now();
 const trial = { longitude: [], latitude: [] };
-for (let x = -131.5; x <= -129; x += 0.25) for (let y = -46.5; y <= -42.5; y += 0.25) trial.longitude.push(x), trial.latitude.push(y);
+for (let x = -131.5; x <= -129; x += 0.25) for (let y = -46.5; y <= -42.5; y += 0.25) (trial.longitude.push(x), trial.latitude.push(y));
 const z = fitted.depthAt(trial.longitude, trial.latitude);
-check('the fitted surface is off by more than 2 km', z.every((value, i) => Math.abs(value - known(trial.longitude[i], trial.latitude[i])) < 2));
+check(
+  'the fitted surface is off by more than 2 km',
+  z.every((value, i) => Math.abs(value - known(trial.longitude[i], trial.latitude[i])) < 2),
+);
 console.log(`margin: surface fitted to 20,000 hypocentres: ${((fitDone - fitStart) / 1000).toFixed(3)} s / 3 s`);
 process.exitCode = wrong ? 1 : 0;

@@ -9,10 +9,18 @@ const caption = (diagram: ww.diagrams.Diagram) => (diagram.spec.title as { text:
 let slab: ww.HypocentreSlab;
 let suite: ww.Suite;
 beforeAll(() => {
-  slab = ww.slabFromHypocentres(ww.hypocentresOf(syntheticEvents(wavySlab, { seed: 2, count: 400, crust: 0.1, noise: 5 })), { trench: ww.trenchLine([-128, -128], [-42, -47]) });
+  slab = ww.slabFromHypocentres(ww.hypocentresOf(syntheticEvents(wavySlab, { seed: 2, count: 400, crust: 0.1, noise: 5 })), {
+    trench: ww.trenchLine([-128, -128], [-42, -47]),
+  });
   const places = { A: [-130.1, -44.2], B: [-130.2, -44.9], C: [-130.5, -43.9], D: [-130.8, -44.5], E: [-131.2, -44.3] } as const;
   const names = Object.keys(places).flatMap((name) => Array.from({ length: 8 }, () => name));
-  const bare = ww.suiteOf({ columns: [ww.column({ symbol: 'SiO2', values: names.map((_, i) => 56 + (i % 8)) }), ww.column({ symbol: 'K2O', values: names.map((name, i) => 0.5 + 0.2 * 'ABCDE'.indexOf(name) + 0.05 * (i % 8)) })], labels: { volcano: names } });
+  const bare = ww.suiteOf({
+    columns: [
+      ww.column({ symbol: 'SiO2', values: names.map((_, i) => 56 + (i % 8)) }),
+      ww.column({ symbol: 'K2O', values: names.map((name, i) => 0.5 + 0.2 * 'ABCDE'.indexOf(name) + 0.05 * (i % 8)) }),
+    ],
+    labels: { volcano: names },
+  });
   suite = ww.slabBelow(slab, ww.withCoordinates(bare, places));
 });
 

@@ -4,7 +4,13 @@ import { column, crustalThickness, crustCalibrations, suiteOf, thicknessFromRati
 import { dataFile } from './files';
 import { random } from './synthetic';
 
-interface Grid { readonly Sr_Y?: number; readonly LaN_YbN?: number; readonly Chapman2015_km?: number; readonly Profeta2015_km?: number; readonly Hu2017_collision_km: number }
+interface Grid {
+  readonly Sr_Y?: number;
+  readonly LaN_YbN?: number;
+  readonly Chapman2015_km?: number;
+  readonly Profeta2015_km?: number;
+  readonly Hu2017_collision_km: number;
+}
 
 describe('calibrations over a grid of ratios', () => {
   // Computed independently from the published formulas (constants from memory): H = 1.11 Sr/Y + 8.05; 21.277 ln(1.0204 (La/Yb)N); Hu et al. 2017:
@@ -22,7 +28,8 @@ describe('calibrations over a grid of ratios', () => {
 
   test('the printed inverse of the linear calibration is its forward form turned round, to 0.2 km', () => {
     // Forward: Sr/Y = 0.90 H − 7.25 (Profeta et al. 2015; from memory)
-    for (const ratio of [5, 20, 40, 60]) expect(Math.abs(thicknessFromRatios('arc-sr-y-2015', { 'Sr/Y': ratio }) - (ratio + 7.25) / 0.9)).toBeLessThan(0.2);
+    for (const ratio of [5, 20, 40, 60])
+      expect(Math.abs(thicknessFromRatios('arc-sr-y-2015', { 'Sr/Y': ratio }) - (ratio + 7.25) / 0.9)).toBeLessThan(0.2);
   });
 
   test('errors', () => {
@@ -36,14 +43,25 @@ describe('calibrations over a grid of ratios', () => {
 function suite(good = 20): Suite {
   const { normal } = random(9);
   const rows = [
-    ...Array.from({ length: good }, () => ({ SiO2: 60, MgO: 2.5, Rb: 40, Sr: 400 * Math.exp(0.05 * normal()), Y: 16, La: 15 * Math.exp(0.05 * normal()), Yb: 1.75 })),
+    ...Array.from({ length: good }, () => ({
+      SiO2: 60,
+      MgO: 2.5,
+      Rb: 40,
+      Sr: 400 * Math.exp(0.05 * normal()),
+      Y: 16,
+      La: 15 * Math.exp(0.05 * normal()),
+      Yb: 1.75,
+    })),
     { SiO2: 50, MgO: 2.5, Rb: 40, Sr: 900, Y: 10, La: 15, Yb: 1 },
     { SiO2: 60, MgO: 5, Rb: 40, Sr: 900, Y: 10, La: 15, Yb: 1 },
     { SiO2: 60, MgO: 2.5, Rb: 200, Sr: 400, Y: 10, La: 15, Yb: 1 },
     { SiO2: 60, MgO: 2.5, Rb: 40, Sr: 400, Y: NaN, La: 15, Yb: NaN },
     { SiO2: 60, MgO: 2.5, Rb: 200, Sr: 2500, Y: 8, La: 90, Yb: 0.6 },
   ];
-  return suiteOf({ columns: (['SiO2', 'MgO', 'Rb', 'Sr', 'Y', 'La', 'Yb'] as const).map((symbol) => column({ symbol, values: rows.map((row) => row[symbol]) })), labels: { volcano: rows.map((_, i) => (i % 2 === 0 ? 'A' : 'B')) } });
+  return suiteOf({
+    columns: (['SiO2', 'MgO', 'Rb', 'Sr', 'Y', 'La', 'Yb'] as const).map((symbol) => column({ symbol, values: rows.map((row) => row[symbol]) })),
+    labels: { volcano: rows.map((_, i) => (i % 2 === 0 ? 'A' : 'B')) },
+  });
 }
 
 describe('thickness from a suite', () => {

@@ -14,18 +14,45 @@ export function csv(name: string, text: string): string {
 
 /** Rows of the published table of slabs below volcanoes (Syracuse & Abers 2006, table S2a); NaN where the table has no number. */
 export interface PublishedVolcano {
-  readonly name: string; readonly arc: string; readonly front: boolean;
-  readonly longitude: number; readonly latitude: number; readonly depth: number; readonly trenchDistance: number; readonly strike: number; readonly dip: number;
-  readonly azimuth: number; readonly total: number; readonly normal: number; readonly age: number; readonly descent: number; readonly phi: number;
+  readonly name: string;
+  readonly arc: string;
+  readonly front: boolean;
+  readonly longitude: number;
+  readonly latitude: number;
+  readonly depth: number;
+  readonly trenchDistance: number;
+  readonly strike: number;
+  readonly dip: number;
+  readonly azimuth: number;
+  readonly total: number;
+  readonly normal: number;
+  readonly age: number;
+  readonly descent: number;
+  readonly phi: number;
 }
 
 export function publishedVolcanoes(): PublishedVolcano[] {
-  const { data } = Papa.parse<Record<string, string>>(readFileSync(dataFile('slab-below-volcanoes.csv'), 'utf8'), { header: true, skipEmptyLines: true });
+  const { data } = Papa.parse<Record<string, string>>(readFileSync(dataFile('slab-below-volcanoes.csv'), 'utf8'), {
+    header: true,
+    skipEmptyLines: true,
+  });
   const number = (text: string) => (text === '' ? NaN : Number(text));
   return data.map((row) => ({
-    name: row['name'], arc: row['arc'], front: row['front'] === 'y', longitude: number(row['Lon_deg']), latitude: number(row['Lat_deg']), depth: number(row['H_km']),
-    trenchDistance: number(row['trench_dist_km']), strike: number(row['strike_deg']), dip: number(row['dip_deg']), azimuth: number(row['az_conv_deg']),
-    total: number(row['Vtot_km_Ma']), normal: number(row['Vc_km_Ma']), age: number(row['age_Ma']), descent: number(row['descent_km_Ma']), phi: number(row['Phi_over_100_km']),
+    name: row['name'],
+    arc: row['arc'],
+    front: row['front'] === 'y',
+    longitude: number(row['Lon_deg']),
+    latitude: number(row['Lat_deg']),
+    depth: number(row['H_km']),
+    trenchDistance: number(row['trench_dist_km']),
+    strike: number(row['strike_deg']),
+    dip: number(row['dip_deg']),
+    azimuth: number(row['az_conv_deg']),
+    total: number(row['Vtot_km_Ma']),
+    normal: number(row['Vc_km_Ma']),
+    age: number(row['age_Ma']),
+    descent: number(row['descent_km_Ma']),
+    phi: number(row['Phi_over_100_km']),
   }));
 }
 

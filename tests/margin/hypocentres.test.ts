@@ -1,5 +1,15 @@
 import { beforeAll, describe, expect, test } from 'vitest';
-import { eventKind, hypocentresOf, readHypocentres, readSlabPoints, slabBelow, slabFromDepths, slabFromHypocentres, slabSupport, trenchLine } from 'wedgework';
+import {
+  eventKind,
+  hypocentresOf,
+  readHypocentres,
+  readSlabPoints,
+  slabBelow,
+  slabFromDepths,
+  slabFromHypocentres,
+  slabSupport,
+  trenchLine,
+} from 'wedgework';
 import { dataFile, median } from './files';
 import { place, syntheticEvents, wavySlab } from './synthetic';
 
@@ -60,7 +70,9 @@ describe('against harder seismicity', () => {
   });
 
   test.each([11, 12, 13])('a double plane 28 km apart: the surface follows the upper plane and finds the separation (seed %i)', (seed) => {
-    const slab = slabFromHypocentres(hypocentresOf(syntheticEvents(wavySlab, { seed, count: 1500, crust: 0.1, noise: 4, lower: { share: 0.4, separation: 28 } })));
+    const slab = slabFromHypocentres(
+      hypocentresOf(syntheticEvents(wavySlab, { seed, count: 1500, crust: 0.1, noise: 4, lower: { share: 0.4, separation: 28 } })),
+    );
     expect(slab.planeSeparation).toBeGreaterThan(25);
     expect(slab.planeSeparation).toBeLessThan(31);
     expect(rms(errors(slab, 40, 250).error)).toBeLessThan(2.5);
@@ -68,7 +80,10 @@ describe('against harder seismicity', () => {
   });
 
   test('one plane is not split', () => {
-    for (const seed of [21, 22]) expect(slabFromHypocentres(hypocentresOf(syntheticEvents(wavySlab, { seed, count: 500, crust: 0.1, noise: 6 }))).planeSeparation).toBeUndefined();
+    for (const seed of [21, 22])
+      expect(
+        slabFromHypocentres(hypocentresOf(syntheticEvents(wavySlab, { seed, count: 500, crust: 0.1, noise: 6 }))).planeSeparation,
+      ).toBeUndefined();
   });
 
   test('a trench line holds the shallow end and gives distances', () => {
@@ -80,10 +95,32 @@ describe('against harder seismicity', () => {
     expect(below.trenchDistance[0]).toBeCloseTo(60, 0);
   });
 
+  test('across the dateline as elsewhere, with an area that crosses it', () => {
+    const given = syntheticEvents(wavySlab, { seed: 8, count: 400, crust: 0.1, noise: 5 });
+    const moved = { ...given, longitude: given.longitude.map((longitude) => (longitude + 309 > 180 ? longitude - 51 : longitude + 309)) };
+    const here = slabFromHypocentres(hypocentresOf(given));
+    const there = slabFromHypocentres(hypocentresOf(moved), { area: { west: 175, east: -178, south: -48, north: -41 } });
+    expect(there.depthAt([-130 + 309], [-44.5])[0]).toBeCloseTo(here.depthAt([-130], [-44.5])[0], 3);
+    expect(there.extent.east - there.extent.west).toBeLessThan(6);
+  });
+
+  test('events that the catalogue calls uncertain weigh less', () => {
+    const given = syntheticEvents(wavySlab, { seed: 9, count: 500, crust: 0, noise: 3 });
+    // Every third event 12 km too deep, and its own error says so.
+    const depth = given.depth.map((z, i) => (i % 3 === 0 ? z + 12 : z));
+    const said = slabFromHypocentres(hypocentresOf({ ...given, depth, depthError: depth.map((_, i) => (i % 3 === 0 ? 25 : 2)) }));
+    const unsaid = slabFromHypocentres(hypocentresOf({ ...given, depth }));
+    expect(Math.abs(median(errors(said, 60, 200).error))).toBeLessThan(Math.abs(median(errors(unsaid, 60, 200).error)));
+  });
+
   test('the same events give the same surface, in any order', () => {
     const given = syntheticEvents(wavySlab, { seed: 6, count: 400, crust: 0.1, noise: 5 });
     const order = given.depth.map((_, i) => i).reverse();
-    const turned = { longitude: order.map((i) => given.longitude[i]), latitude: order.map((i) => given.latitude[i]), depth: order.map((i) => given.depth[i]) };
+    const turned = {
+      longitude: order.map((i) => given.longitude[i]),
+      latitude: order.map((i) => given.latitude[i]),
+      depth: order.map((i) => given.depth[i]),
+    };
     const a = slabFromHypocentres(hypocentresOf(given));
     const b = slabFromHypocentres(hypocentresOf(turned));
     expect(slabFromHypocentres(hypocentresOf(given)).depthAt([-130], [-44.5])[0]).toBe(a.depthAt([-130], [-44.5])[0]);
@@ -94,13 +131,17 @@ describe('against harder seismicity', () => {
 describe('refusals', () => {
   test('too few events, and what to do', () => {
     const few = syntheticEvents(wavySlab, { seed: 7, count: 18, crust: 0, noise: 5 });
-    expect(() => slabFromHypocentres(hypocentresOf(few))).toThrow(/only \d+ of 18 events are deeper than 50 km.*Widen the area, use a longer catalogue, or take published depths/s);
+    expect(() => slabFromHypocentres(hypocentresOf(few))).toThrow(
+      /only \d+ of 18 events are deeper than 50 km.*Widen the area, use a longer catalogue, or take published depths/s,
+    );
     const crustOnly = syntheticEvents(wavySlab, { seed: 8, count: 500, crust: 1, noise: 5 });
     expect(() => slabFromHypocentres(hypocentresOf(crustOnly))).toThrow(/only 0 of 500/);
   });
   test('deep events on one line', () => {
     const along = Array.from({ length: 80 }, (_, i) => -46 + i * 0.03);
-    expect(() => slabFromHypocentres(hypocentresOf({ longitude: along.map(() => -130), latitude: along, depth: along.map(() => 100) }))).toThrow(/along a line/);
+    expect(() => slabFromHypocentres(hypocentresOf({ longitude: along.map(() => -130), latitude: along, depth: along.map(() => 100) }))).toThrow(
+      /along a line/,
+    );
   });
   test('the whole world at once, an area without events, bad options', () => {
     const world = { longitude: [] as number[], latitude: [] as number[], depth: [] as number[] };
@@ -133,7 +174,8 @@ describe('one month of a real catalogue against published contours', () => {
         for (let latitude = area.south; latitude <= area.north; latitude += 0.5) {
           const a = fitted.at([longitude], [latitude]);
           const b = published.at([longitude], [latitude]);
-          if (a.support[0] === slabSupport.within && b.support[0] === slabSupport.within && b.depth[0] > 40 && b.depth[0] < 110) difference[follow].push(a.depth[0] - b.depth[0]);
+          if (a.support[0] === slabSupport.within && b.support[0] === slabSupport.within && b.depth[0] > 40 && b.depth[0] < 110)
+            difference[follow].push(a.depth[0] - b.depth[0]);
         }
       }
     }

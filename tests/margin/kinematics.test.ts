@@ -21,7 +21,13 @@ describe('every volcano of a published table', () => {
     const oblique = Math.abs(Math.sin(found.obliquity * degree)) * degree + 0.5 * degree ** 2;
     expect(Math.abs(found.normal - v.normal)).toBeLessThanOrEqual(v.total * oblique + 0.1);
     // The rest from the printed trench-normal rate, so that one rounding does not hide in another.
-    const straight = slabKinematics({ rate: { value: v.normal, unit: 'km/Ma' }, azimuth: strike + 90, strike, dip: v.dip, age: Number.isFinite(v.age) ? v.age : undefined });
+    const straight = slabKinematics({
+      rate: { value: v.normal, unit: 'km/Ma' },
+      azimuth: strike + 90,
+      strike,
+      dip: v.dip,
+      age: Number.isFinite(v.age) ? v.age : undefined,
+    });
     const dipRounding = v.normal * Math.cos(v.dip * degree) * 0.5 * degree + 0.05 + 1e-6;
     expect(Math.abs(straight.descent - v.descent)).toBeLessThanOrEqual(dipRounding + 0.05);
     if (Number.isNaN(v.phi)) return; // 44 rows have no plate age
@@ -46,18 +52,37 @@ describe('rates and motion', () => {
     expect(equator.azimuth).toBeCloseTo(90, 9);
     expect(plateVelocity({ latitude: 40, longitude: 20, degreesPerMa: 1 }, 20, 40).rate).toBeCloseTo(0, 9);
     // Rate is ω·R·sin(distance from the pole) (spherical trigonometry)
-    fc.assert(fc.property(fc.double({ min: -89, max: 89, noNaN: true }), fc.double({ min: -180, max: 180, noNaN: true }), fc.double({ min: -89, max: 89, noNaN: true }), (pole, longitude, latitude) => {
-      const cosine = Math.sin((pole * Math.PI) / 180) * Math.sin((latitude * Math.PI) / 180) + Math.cos((pole * Math.PI) / 180) * Math.cos((latitude * Math.PI) / 180) * Math.cos((longitude * Math.PI) / 180);
-      expect(plateVelocity({ latitude: pole, longitude: 0, degreesPerMa: 0.7 }, longitude, latitude).rate).toBeCloseTo(0.7 * 111.19508 * Math.sqrt(Math.max(0, 1 - cosine * cosine)), 3);
-    }));
+    fc.assert(
+      fc.property(
+        fc.double({ min: -89, max: 89, noNaN: true }),
+        fc.double({ min: -180, max: 180, noNaN: true }),
+        fc.double({ min: -89, max: 89, noNaN: true }),
+        (pole, longitude, latitude) => {
+          const cosine =
+            Math.sin((pole * Math.PI) / 180) * Math.sin((latitude * Math.PI) / 180) +
+            Math.cos((pole * Math.PI) / 180) * Math.cos((latitude * Math.PI) / 180) * Math.cos((longitude * Math.PI) / 180);
+          expect(plateVelocity({ latitude: pole, longitude: 0, degreesPerMa: 0.7 }, longitude, latitude).rate).toBeCloseTo(
+            0.7 * 111.19508 * Math.sqrt(Math.max(0, 1 - cosine * cosine)),
+            3,
+          );
+        },
+      ),
+    );
   });
 
   test('the parts make the whole, and obliquity has a side', () => {
-    fc.assert(fc.property(fc.double({ min: 1, max: 120, noNaN: true }), fc.double({ min: -180, max: 360, noNaN: true }), fc.double({ min: 0, max: 360, noNaN: true }), (value, azimuth, strike) => {
-      const { normal, parallel, obliquity } = slabKinematics({ rate: { value, unit: 'mm/yr' }, azimuth, strike, dip: 40, age: 50 });
-      expect(Math.hypot(normal, parallel)).toBeCloseTo(value, 9);
-      expect(Math.abs(obliquity)).toBeLessThanOrEqual(180);
-    }));
+    fc.assert(
+      fc.property(
+        fc.double({ min: 1, max: 120, noNaN: true }),
+        fc.double({ min: -180, max: 360, noNaN: true }),
+        fc.double({ min: 0, max: 360, noNaN: true }),
+        (value, azimuth, strike) => {
+          const { normal, parallel, obliquity } = slabKinematics({ rate: { value, unit: 'mm/yr' }, azimuth, strike, dip: 40, age: 50 });
+          expect(Math.hypot(normal, parallel)).toBeCloseTo(value, 9);
+          expect(Math.abs(obliquity)).toBeLessThanOrEqual(180);
+        },
+      ),
+    );
     expect(slabKinematics({ rate: { value: 60, unit: 'mm/yr' }, azimuth: 300, strike: 180, dip: 40, age: 50 }).obliquity).toBeCloseTo(30, 9);
   });
 
@@ -74,10 +99,15 @@ describe('rates and motion', () => {
   });
 
   test('joined to a suite: from a rate or a pole, with one age or a column of ages', () => {
-    const suite = suiteOf({ columns: [
-      column({ symbol: 'SlabDip', values: [30, 60, NaN], unit: '°' }), column({ symbol: 'SlabStrike', values: [180, 180, 180], unit: '°' }), column({ symbol: 'PlateAge', values: [40, 80, 80], unit: 'Ma' }),
-      column({ symbol: 'latitude', values: [-44, -44, -44] }), column({ symbol: 'longitude', values: [-130, -130, -130] }),
-    ] });
+    const suite = suiteOf({
+      columns: [
+        column({ symbol: 'SlabDip', values: [30, 60, NaN], unit: '°' }),
+        column({ symbol: 'SlabStrike', values: [180, 180, 180], unit: '°' }),
+        column({ symbol: 'PlateAge', values: [40, 80, 80], unit: 'Ma' }),
+        column({ symbol: 'latitude', values: [-44, -44, -44] }),
+        column({ symbol: 'longitude', values: [-130, -130, -130] }),
+      ],
+    });
     const done = withKinematics(suite, { motion: { rate: { value: 6, unit: 'cm/yr' }, azimuth: 270 }, age: 'PlateAge' });
     // 60 × sin 30° = 30 km/Ma; × 40 Ma = 1200 km
     expect(done.values('DescentRate')[0]).toBeCloseTo(30, 9);
@@ -85,7 +115,9 @@ describe('rates and motion', () => {
     expect(done.values('ThermalParameter')[2]).toBeNaN();
     const turned = withKinematics(suite, { motion: { pole: { latitude: 90, longitude: 0, degreesPerMa: -1 } }, age: 40 });
     expect(turned.values('ConvergenceNormal')[0]).toBeCloseTo(111.195 * Math.cos((44 * Math.PI) / 180), 2);
-    expect(() => withKinematics(suiteOf({ columns: [] }), { motion: { rate: { value: 6, unit: 'cm/yr' }, azimuth: 270 }, age: 1 })).toThrow(/slabBelow/);
+    expect(() => withKinematics(suiteOf({ columns: [] }), { motion: { rate: { value: 6, unit: 'cm/yr' }, azimuth: 270 }, age: 1 })).toThrow(
+      /slabBelow/,
+    );
     expect(() => withKinematics(suite, { motion: {} as never, age: 1 })).toThrow(/motion must be/);
     expect(() => withKinematics(suite, { motion: { rate: { value: 6, unit: 'cm/yr' }, azimuth: 270 }, age: 'Age' })).toThrow(/no column "Age"/);
   });

@@ -1,6 +1,17 @@
 import { join } from 'node:path';
 import { beforeAll, describe, expect, test } from 'vitest';
-import { crossArcTrend, crustalThickness, readAssays, readSlabPoints, slabBelow, slabFromDepths, volcanoesAbove, volatileFree, withKinematics, type Suite } from 'wedgework';
+import {
+  crossArcTrend,
+  crustalThickness,
+  readAssays,
+  readSlabPoints,
+  slabBelow,
+  slabFromDepths,
+  volcanoesAbove,
+  volatileFree,
+  withKinematics,
+  type Suite,
+} from 'wedgework';
 import { dataFile, median, publishedVolcanoes } from './files';
 
 // Published analyses of the Kurile Arc (GEOROC, Convergent Margins, doi:10.25625/PVFZCE, CC BY-SA 4.0) above its slab (Slab2, Hayes et al. 2018).
@@ -19,14 +30,21 @@ describe('the Kurile Arc', () => {
   test('every sample has a slab below, within the data', () => {
     expect(islands.size).toBeGreaterThan(400);
     expect(new Set(islands.label('slabSupport'))).toEqual(new Set(['within data']));
-    for (const depth of islands.values('SlabDepth')) expect(depth).toBeGreaterThan(40); // the lowest, 48 km, is a sample with a position off the island
+    // The lowest, 48 km, is a sample with a position off the island.
+    for (const depth of islands.values('SlabDepth')) expect(depth).toBeGreaterThan(40);
   });
 
   test('depths below islands that are one volcano agree with the published table to 25 km', () => {
     // Syracuse & Abers 2006, table S2a: Alaid 124, Chirinkotan 132, Ekarma 98, Raikoke 106, Harimkotan 66 km
     const { volcanoes } = volcanoesAbove(islands);
     const published = new Map(publishedVolcanoes().map(({ name, depth }) => [name, depth]));
-    const pairs: readonly (readonly [string, string])[] = [['Alaid', 'ALAID'], ['Chirinkotan (Shirinkotan)', 'CHIRINKOTAN'], ['Ekarma (Aekarma)', 'EKARMA'], ['Raikoke', 'RAIKOKE'], ['Kharimkotan', 'HARIMKOTAN']];
+    const pairs: readonly (readonly [string, string])[] = [
+      ['Alaid', 'ALAID'],
+      ['Chirinkotan (Shirinkotan)', 'CHIRINKOTAN'],
+      ['Ekarma (Aekarma)', 'EKARMA'],
+      ['Raikoke', 'RAIKOKE'],
+      ['Kharimkotan', 'HARIMKOTAN'],
+    ];
     const differences = pairs.map(([island, volcano]) => volcanoes.find(({ group }) => group === island)!.depth - published.get(volcano)!);
     for (const difference of differences) expect(Math.abs(difference)).toBeLessThan(25);
     expect(Math.abs(median(differences))).toBeLessThan(16);
@@ -42,7 +60,11 @@ describe('the Kurile Arc', () => {
   test('the thermal parameter is that of the published table: some 6100 km in the south, 6300 in the north', () => {
     // Syracuse & Abers 2006, table S2a: 59–65 hundred km along the Kuriles; Slab2 dips 10° less below the volcanoes
     const phi = withKinematics(islands, { motion: { rate: { value: 79.5, unit: 'km/Ma' }, azimuth: -57 }, age: 107 });
-    const published = median(publishedVolcanoes().filter(({ arc }) => arc.endsWith('Kurile')).map((volcano) => volcano.phi * 100));
+    const published = median(
+      publishedVolcanoes()
+        .filter(({ arc }) => arc.endsWith('Kurile'))
+        .map((volcano) => volcano.phi * 100),
+    );
     expect(median([...phi.values('ThermalParameter')]) / published).toBeGreaterThan(0.75);
     expect(median([...phi.values('ThermalParameter')]) / published).toBeLessThan(1.05);
   });

@@ -43,16 +43,25 @@ describe('a surface through published depths', () => {
   });
 
   test('is exact for a plane, whatever the points', () => {
-    fc.assert(fc.property(fc.array(fc.tuple(fc.double({ min: -1, max: 1, noNaN: true }), fc.double({ min: -1, max: 1, noNaN: true })), { minLength: 12, maxLength: 60 }), (places) => {
-      const longitude = [-1.2, 1.2, 1.2, -1.2, ...places.map(([x]) => x)];
-      const latitude = [-1.2, -1.2, 1.2, 1.2, ...places.map(([, y]) => y)];
-      // A plane of the projection through the middle of the region, where it is nearly the ground.
-      const depth = longitude.map((x, i) => 100 + 30 * x - 20 * latitude[i]);
-      const slab = slabFromDepths(slabPoints({ longitude, latitude, depth }), { reach: 400 });
-      const z = slab.depthAt([0.1, -0.4], [0.2, 0.5]);
-      expect(z[0]).toBeCloseTo(100 + 3 - 4, 0);
-      expect(z[1]).toBeCloseTo(100 - 12 - 10, 0);
-    }), { numRuns: 40 });
+    fc.assert(
+      fc.property(
+        fc.array(fc.tuple(fc.double({ min: -1, max: 1, noNaN: true }), fc.double({ min: -1, max: 1, noNaN: true })), {
+          minLength: 12,
+          maxLength: 60,
+        }),
+        (places) => {
+          const longitude = [-1.2, 1.2, 1.2, -1.2, ...places.map(([x]) => x)];
+          const latitude = [-1.2, -1.2, 1.2, 1.2, ...places.map(([, y]) => y)];
+          // A plane of the projection through the middle of the region, where it is nearly the ground.
+          const depth = longitude.map((x, i) => 100 + 30 * x - 20 * latitude[i]);
+          const slab = slabFromDepths(slabPoints({ longitude, latitude, depth }), { reach: 400 });
+          const z = slab.depthAt([0.1, -0.4], [0.2, 0.5]);
+          expect(z[0]).toBeCloseTo(100 + 3 - 4, 0);
+          expect(z[1]).toBeCloseTo(100 - 12 - 10, 0);
+        },
+      ),
+      { numRuns: 40 },
+    );
   });
 
   test('is the same across the dateline as elsewhere', () => {
@@ -61,7 +70,11 @@ describe('a surface through published depths', () => {
     const mixed = contours(309);
     mixed.longitude = mixed.longitude.map((longitude, i) => (i % 2 === 0 ? longitude : longitude - 360));
     const across = slabFromDepths(slabPoints(mixed));
-    for (const [longitude, latitude] of [[-129.5, -44.2], [-130.2, -45.1], [-131, -43.3]]) {
+    for (const [longitude, latitude] of [
+      [-129.5, -44.2],
+      [-130.2, -45.1],
+      [-131, -43.3],
+    ]) {
       const z = here.depthAt([longitude], [latitude])[0];
       expect(there.depthAt([longitude + 309], [latitude])[0]).toBeCloseTo(z, 6);
       expect(across.depthAt([longitude + 309 - 360], [latitude])[0]).toBeCloseTo(z, 6);
@@ -72,7 +85,11 @@ describe('a surface through published depths', () => {
     const points = contours();
     const kept = points.depth.map((_, i) => i).filter((i) => points.depth[i] <= 40 || points.depth[i] >= 220);
     // The gap between the contours at 40 and 220 km is some 190 km wide.
-    const few = slabPoints({ longitude: kept.map((i) => points.longitude[i]), latitude: kept.map((i) => points.latitude[i]), depth: kept.map((i) => points.depth[i]) });
+    const few = slabPoints({
+      longitude: kept.map((i) => points.longitude[i]),
+      latitude: kept.map((i) => points.latitude[i]),
+      depth: kept.map((i) => points.depth[i]),
+    });
     const sparse = slabFromDepths(few, { reach: 120 });
     expect(sparse.at([-130], [-44.5]).support[0]).toBe(slabSupport.extrapolated);
     expect(slabFromDepths(few, { reach: 60 }).at([-130], [-44.5]).support[0]).toBe(slabSupport.none);

@@ -4,9 +4,17 @@ import { csv, dataFile } from './files';
 
 describe('reading tables of points', () => {
   test('a catalogue export: heads are recognised, rows that are not earthquakes are left out and counted', async () => {
-    const events = await readHypocentres(csv('quakes.csv', 'time,latitude,longitude,depth,mag,depthError,type\nt,-44,-129,82.5,4.1,3.2,earthquake\nt,-44,-129,0,1,,quarry blast\nt,-45,-130,,3,,earthquake\n'));
+    const events = await readHypocentres(
+      csv(
+        'quakes.csv',
+        'time,latitude,longitude,depth,mag,depthError,type\nt,-44,-129,82.5,4.1,3.2,earthquake\n' +
+          't,-44,-129,0,1,,quarry blast\nt,-45,-130,,3,,earthquake\n',
+      ),
+    );
     expect(events.size).toBe(1);
-    expect([events.longitude[0], events.latitude[0], events.depth[0], events.depthError![0], events.magnitude![0]]).toEqual([-129, -44, 82.5, 3.2, 4.1]);
+    expect([events.longitude[0], events.latitude[0], events.depth[0], events.depthError![0], events.magnitude![0]]).toEqual([
+      -129, -44, 82.5, 3.2, 4.1,
+    ]);
     expect(events.notes).toHaveLength(2);
     expect(events.lineage[0].detail['sha256']).toMatch(/^[0-9a-f]{64}$/);
   });

@@ -1,5 +1,16 @@
 import { describe, expect, test } from 'vitest';
-import { atComposition, column, crossArcTrend, slabBelow, slabFromDepths, slabPoints, suiteOf, volcanoesAbove, withCoordinates, type Suite } from 'wedgework';
+import {
+  atComposition,
+  column,
+  crossArcTrend,
+  slabBelow,
+  slabFromDepths,
+  slabPoints,
+  suiteOf,
+  volcanoesAbove,
+  withCoordinates,
+  type Suite,
+} from 'wedgework';
 import { random } from './synthetic';
 
 /** Volcanoes of an invented arc: K2O at 60 % SiO2 rises by `rise` wt % per 100 km of slab depth; `each` samples a volcano. */
@@ -10,9 +21,12 @@ function arc(options: { rise: number; depths?: readonly number[]; each?: number;
   const potash = rows.map(({ depth, silica, k }) => 0.8 + (rise * (depth - 100)) / 100 + 0.07 * (silica - 60) + 0.06 * normal() + (k < wild ? 3 : 0));
   return suiteOf({
     columns: [
-      column({ symbol: 'SiO2', values: rows.map(({ silica }) => silica) }), column({ symbol: 'K2O', values: potash }), column({ symbol: 'SumAsGiven', values: rows.map(() => 99) }),
+      column({ symbol: 'SiO2', values: rows.map(({ silica }) => silica) }),
+      column({ symbol: 'K2O', values: potash }),
+      column({ symbol: 'SumAsGiven', values: rows.map(() => 99) }),
       column({ symbol: 'SlabDepth', values: rows.map(({ depth }) => depth), unit: 'km', kind: 'quantity', sigma: rows.map(() => 10) }),
-      column({ symbol: 'Ba', values: rows.map(({ depth }) => 200 + depth + 20 * normal()) }), column({ symbol: 'Th', values: rows.map(() => 2) }),
+      column({ symbol: 'Ba', values: rows.map(({ depth }) => 200 + depth + 20 * normal()) }),
+      column({ symbol: 'Th', values: rows.map(() => 2) }),
     ],
     labels: { volcano: rows.map(({ v }) => `V${v}`) },
   });
@@ -34,8 +48,27 @@ describe('one value a volcano', () => {
 
   test('the errors are honest: values lie within 2σ of the truth for most volcanoes', () => {
     let inside = 0;
-    for (let seed = 1; seed <= 10; seed++) atComposition(arc({ rise: 0, seed }), 'K57.5').groups.forEach(({ value, sigma }) => (inside += Math.abs(value - (0.8 - 0.07 * 2.5)) < 2 * sigma ? 1 : 0));
+    for (let seed = 1; seed <= 10; seed++)
+      atComposition(arc({ rise: 0, seed }), 'K57.5').groups.forEach(
+        ({ value, sigma }) => (inside += Math.abs(value - (0.8 - 0.07 * 2.5)) < 2 * sigma ? 1 : 0),
+      );
     expect(inside / 70).toBeGreaterThan(0.85);
+  });
+
+  test('Na6.0 and Ca6.0: soda and lime at 6 % MgO', () => {
+    const magnesia = [4.2, 4.8, 5.3, 5.9, 6.4, 7.1, 7.7];
+    const suite = suiteOf({
+      columns: [
+        column({ symbol: 'MgO', values: magnesia }),
+        column({ symbol: 'Na2O', values: magnesia.map((value) => 2.6 - 0.2 * (value - 6)) }),
+        column({ symbol: 'CaO', values: magnesia.map((value) => 10.4 + 0.5 * (value - 6)) }),
+      ],
+      labels: { volcano: magnesia.map(() => 'A') },
+    });
+    expect(atComposition(suite, 'Na6.0').groups[0].value).toBeCloseTo(2.6, 9);
+    expect(atComposition(suite, 'Ca6.0').groups[0].value).toBeCloseTo(10.4, 9);
+    expect(atComposition(suite, 'Na6.0').lineage.at(-1)!.sources).toContain('plank_langmuir_1988');
+    expect(atComposition(suite, 'Na6.0').notes.join()).toMatch(/not on a volatile-free basis/);
   });
 
   test('too few samples or too little silica give no value, with the reason', () => {
@@ -100,7 +133,9 @@ describe('trends across an arc', () => {
   test('volcanoes too close in depth are pointed out; too few are refused', () => {
     const close = crossArcTrend(arc({ rise: 1, depths: [100, 101, 102, 103, 104, 105] }), 'K60');
     expect(close.notes.join(' ')).toMatch(/spans only 5 km.*a trend could not be seen/);
-    expect(() => crossArcTrend(arc({ rise: 1, depths: [100, 120, 140, 160] }), 'K60')).toThrow(/4 volcanoes have both K2O and SlabDepth; a trend needs 5/);
+    expect(() => crossArcTrend(arc({ rise: 1, depths: [100, 120, 140, 160] }), 'K60')).toThrow(
+      /4 volcanoes have both K2O and SlabDepth; a trend needs 5/,
+    );
     expect(() => crossArcTrend(arc({ rise: 1 }), 'K60', { against: 'ThermalParameter' })).toThrow(/thermal parameter from withKinematics/);
     expect(() => crossArcTrend(arc({ rise: 1 }), 'K60', { confidence: 95 })).toThrow(/share such as 0.95/);
     expect(() => crossArcTrend(arc({ rise: 1 }), 'K60', { draws: 5 })).toThrow(/whole number from 100/);
@@ -110,7 +145,8 @@ describe('trends across an arc', () => {
 describe('joined to a suite', () => {
   // A plane below 40–60° W: 50 km deep at the trench side, 30 km more each degree west.
   const grid = { longitude: [] as number[], latitude: [] as number[], depth: [] as number[] };
-  for (let x = -135; x <= -127; x += 0.5) for (let y = -48; y <= -41; y += 0.5) grid.longitude.push(x), grid.latitude.push(y), grid.depth.push(20 - 55 * (x + 127.5));
+  for (let x = -135; x <= -127; x += 0.5)
+    for (let y = -48; y <= -41; y += 0.5) (grid.longitude.push(x), grid.latitude.push(y), grid.depth.push(20 - 55 * (x + 127.5)));
   const slab = slabFromDepths(slabPoints(grid));
   const suite = withCoordinates(
     suiteOf({ columns: [column({ symbol: 'SiO2', values: [52, 55, 60, 61] })], labels: { volcano: ['Fore', 'Fore', 'Rear', 'Lost'] } }),

@@ -14,7 +14,10 @@ export interface ContourShape {
 /** A label with a white edge, so that it can be read on a line. */
 export function haloedLabels(canvas: Canvas, labels: readonly PlacedLabel[], style: VegaSpec = {}): readonly VegaSpec[] {
   if (labels.length === 0) return [];
-  return [labelUnit(canvas.frame, labels, { ...style, color: ink.ground, stroke: ink.ground, strokeWidth: 4, strokeJoin: 'round' }), labelUnit(canvas.frame, labels, style)];
+  return [
+    labelUnit(canvas.frame, labels, { ...style, color: ink.ground, stroke: ink.ground, strokeWidth: 4, strokeJoin: 'round' }),
+    labelUnit(canvas.frame, labels, style),
+  ];
 }
 
 /** Contours with their numbers set on them, as maps do: where there is most room to other contours and marks. */
@@ -24,11 +27,13 @@ export function contoursLayer(contours: readonly ContourShape[], marks: readonly
     draw(canvas) {
       const { frame } = canvas;
       const style = { color: ink.line, strokeWidth: 1.1 };
-      const lines = (dashed: boolean) => contours.flatMap(({ pieces }) => pieces.filter((piece) => piece.dashed === dashed).map(({ points }) => points));
+      const lines = (dashed: boolean) =>
+        contours.flatMap(({ pieces }) => pieces.filter((piece) => piece.dashed === dashed).map(({ points }) => points));
       const [whole, dashed] = [lines(false), lines(true)];
       const labels = placeNumbers(canvas, contours, marks);
       return [
-        ...(whole.length === 0 ? [] : [lineUnit(frame, whole, style)]), ...(dashed.length === 0 ? [] : [lineUnit(frame, dashed, { ...style, strokeDash: [4, 3] })]),
+        ...(whole.length === 0 ? [] : [lineUnit(frame, whole, style)]),
+        ...(dashed.length === 0 ? [] : [lineUnit(frame, dashed, { ...style, strokeDash: [4, 3] })]),
         ...haloedLabels(canvas, labels, { color: ink.caption, fontSize: textSize.note }),
       ];
     },

@@ -66,17 +66,40 @@ export function compassLayer(frame: Frame): Layer {
       const middleX = left + size.width / 2;
       const text = (words: string, x: number, y: number, weight: number | string) => {
         const [dx, dy] = at(x, y);
-        return unit(frame, { type: 'text', text: words, align: 'center', baseline: 'bottom', font: fontStack, fontSize: textSize.note, fontWeight: weight, color: ink.text, tooltip: null }, [{ x: specNumber(dx), y: specNumber(dy) }]);
+        return unit(
+          frame,
+          {
+            type: 'text',
+            text: words,
+            align: 'center',
+            baseline: 'bottom',
+            font: fontStack,
+            fontSize: textSize.note,
+            fontWeight: weight,
+            color: ink.text,
+            tooltip: null,
+          },
+          [{ x: specNumber(dx), y: specNumber(dy) }],
+        );
       };
       const [ax, ay] = at(middleX, top + 26);
       const [west2, north2] = at(left, top);
       const [east2, south2] = at(left + size.width, top + size.height);
-      const ground = unit(frame, { type: 'rect', color: ink.ground, opacity: 0.85, tooltip: null }, [{ x: specNumber(west2), y: specNumber(south2), x2: specNumber(east2), y2: specNumber(north2) }], { x2: { field: 'x2' }, y2: { field: 'y2' } });
+      const ground = unit(
+        frame,
+        { type: 'rect', color: ink.ground, opacity: 0.85, tooltip: null },
+        [{ x: specNumber(west2), y: specNumber(south2), x2: specNumber(east2), y2: specNumber(north2) }],
+        { x2: { field: 'x2' }, y2: { field: 'y2' } },
+      );
       return [
         ground,
         lineUnit(frame, [[at(x0, y0 - 4), at(x0, y0), at(x0 + bar, y0), at(x0 + bar, y0 - 4)]], { color: ink.text, strokeWidth: 1.4 }),
         text(`${km} km`, middleX, y0 - 3, 'normal'),
-        unit(frame, { type: 'point', filled: true, shape: 'M0,-1.3L0.62,0.9L0,0.45L-0.62,0.9Z', size: 110, color: ink.text, opacity: 1, tooltip: null }, [{ x: specNumber(ax), y: specNumber(ay) }]),
+        unit(
+          frame,
+          { type: 'point', filled: true, shape: 'M0,-1.3L0.62,0.9L0,0.45L-0.62,0.9Z', size: 110, color: ink.text, opacity: 1, tooltip: null },
+          [{ x: specNumber(ax), y: specNumber(ay) }],
+        ),
         text('N', middleX, top + 14, 600),
       ];
     },
@@ -87,7 +110,10 @@ export function compassLayer(frame: Frame): Layer {
 function emptiestCorner({ frame, placer }: Canvas, size: { width: number; height: number }): Point {
   const pad = 8;
   const corners: Point[] = [
-    [pad, frame.height - size.height - pad], [frame.width - size.width - pad, frame.height - size.height - pad], [pad, pad], [frame.width - size.width - pad, pad],
+    [pad, frame.height - size.height - pad],
+    [frame.width - size.width - pad, frame.height - size.height - pad],
+    [pad, pad],
+    [frame.width - size.width - pad, pad],
   ];
   return corners.find(([left, top]) => placer.isFreeBox({ left, right: left + size.width, top, bottom: top + size.height })) ?? corners[0];
 }
