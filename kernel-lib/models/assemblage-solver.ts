@@ -125,7 +125,8 @@ export function descentOfAssemblage(problem: AssemblageProblem, from: Assemblage
           const ca = (isOxide ? compositions[a * oxides + j] : coefficients[a * elements + j - oxides]) * lever * weights[s];
           if (ca === 0) continue;
           right[a] += ca * target;
-          for (let b = 0; b < phases; b++) gram[a * phases + b] += ca * (isOxide ? compositions[b * oxides + j] : coefficients[b * elements + j - oxides]) * lever;
+          for (let b = 0; b < phases; b++)
+            gram[a * phases + b] += ca * (isOxide ? compositions[b * oxides + j] : coefficients[b * elements + j - oxides]) * lever;
         }
       }
     }

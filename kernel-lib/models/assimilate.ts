@@ -23,10 +23,12 @@ function readEnd(options: AssimilateOptions, q: number, who: string): number {
   if ((downTo === undefined) === (crystallised === undefined)) throw new RangeError(`${who}: give either downTo or crystallised.`);
   if (crystallised !== undefined) {
     readNumber(crystallised, who, 'crystallised', { from: 0, to: Infinity, open: 'from' });
-    if (1 + q * crystallised <= 0) throw new RangeError(`${who}: crystallised is ${crystallised}, but the magma is used up at ${Number((-1 / q).toPrecision(4))}.`);
+    if (1 + q * crystallised <= 0)
+      throw new RangeError(`${who}: crystallised is ${crystallised}, but the magma is used up at ${Number((-1 / q).toPrecision(4))}.`);
     return crystallised;
   }
-  if (Math.abs(q) < 1e-12) throw new RangeError(`${who}: with r + recharge = 1 the magma keeps its mass, so downTo says nothing; give crystallised instead.`);
+  if (Math.abs(q) < 1e-12)
+    throw new RangeError(`${who}: with r + recharge = 1 the magma keeps its mass, so downTo says nothing; give crystallised instead.`);
   const end = readNumber(downTo, who, 'downTo', q < 0 ? { from: 0, to: 1, open: 'both' } : { from: 1, to: Infinity, open: 'from' });
   return (end - 1) / q;
 }
@@ -75,9 +77,15 @@ export function assimilate(options: AssimilateOptions): ModelPath {
     const [start, D, gain] = [setup.amounts[a], setup.bulk[a], gainOf(symbol, () => 1)];
     const values = times.map((time) => openSystemLiquid(start, gain, D, q, time));
     liquid.set(symbol, values);
-    solid.set(symbol, values.map((value) => D * value));
+    solid.set(
+      symbol,
+      values.map((value) => D * value),
+    );
     // What the magma got, less what it still holds, is in the crystals.
-    cumulate.set(symbol, values.map((value, i) => (crystallised[i] === 0 ? D * value : (start + gain * crystallised[i] - mass[i] * value) / crystallised[i])));
+    cumulate.set(
+      symbol,
+      values.map((value, i) => (crystallised[i] === 0 ? D * value : (start + gain * crystallised[i] - mass[i] * value) / crystallised[i])),
+    );
   });
   for (const ratio of setup.isotopes) {
     const element = isotopeElement(ratio)!;
@@ -87,7 +95,8 @@ export function assimilate(options: AssimilateOptions): ModelPath {
     const gain = gainOf(element, (analysis) => amountOf(analysis, ratio));
     const carried = liquid.get(element)!;
     const values = new Float64Array(size);
-    for (let i = 0; i < size; i++) values[i] = i === 0 ? startRatio : openSystemLiquid(setup.amounts[a] * startRatio, gain, setup.bulk[a], q, times[i]) / carried[i];
+    for (let i = 0; i < size; i++)
+      values[i] = i === 0 ? startRatio : openSystemLiquid(setup.amounts[a] * startRatio, gain, setup.bulk[a], q, times[i]) / carried[i];
     liquid.set(ratio, values);
     solid.set(ratio, values);
   }
@@ -97,8 +106,13 @@ export function assimilate(options: AssimilateOptions): ModelPath {
     process: recharge === undefined ? 'Assimilation with fractional crystallisation' : 'Assimilation, recharge and fractional crystallisation',
     F: byMass ? mass : crystallised,
     meaning: byMass ? 'magma, relative to the start' : 'mass crystallised, relative to the magma at the start',
-    liquid, solid, cumulate,
-    quantities: new Map([['crystallised', { unit: '', values: crystallised }], ['assimilated', { unit: '', values: crystallised.map((x) => r * x) }]]),
+    liquid,
+    solid,
+    cumulate,
+    quantities: new Map([
+      ['crystallised', { unit: '', values: crystallised }],
+      ['assimilated', { unit: '', values: crystallised.map((x) => r * x) }],
+    ]),
     coefficients: setup.used,
     notes: setup.notes,
     lineage: joinLineage(setup.start.lineage, assimilant.lineage, recharge?.lineage ?? []),

@@ -15,10 +15,7 @@ export interface MineralRange {
 export type BalanceMinerals = Readonly<Record<string, MineralChoice | MineralRange | undefined>>;
 
 /** How analytical errors are taken. */
-export type BalanceErrors =
-  | 'equal'
-  | { readonly relative: number; readonly floor?: number }
-  | Readonly<Record<string, number>>;
+export type BalanceErrors = 'equal' | { readonly relative: number; readonly floor?: number } | Readonly<Record<string, number>>;
 
 /** What the mass-balance functions share. */
 export interface BalanceOptions {
@@ -68,14 +65,24 @@ function onBasis(analysis: Suite, basis: BalanceOptions['basis'], who: string, a
   if (basis === 'as given') return withTotalIron(analysis);
   const recast = volatileFree(analysis);
   if (!Number.isFinite(recast.values('SumAsGiven')[0])) {
-    throw new RangeError(`${who}: ${argument} lacks an oxide that the volatile-free sum needs (SiO2, Al2O3, MgO, CaO, Na2O, K2O, iron). It holds: ${analysis.analytes.join(', ')}.`);
+    throw new RangeError(
+      `${who}: ${argument} lacks an oxide that the volatile-free sum needs (SiO2, Al2O3, MgO, CaO, Na2O, K2O, iron). It holds: ` +
+        `${analysis.analytes.join(', ')}.`,
+    );
   }
   return recast;
 }
 
-function readErrors(errors: BalanceErrors | undefined, oxides: readonly string[], analyses: readonly Suite[], who: string): { variances: Float64Array[]; model: string; hasErrors: boolean } {
-  const fill = (of: (analysis: Suite, oxide: string) => number) => analyses.map((analysis) => Float64Array.from(oxides, (oxide) => of(analysis, oxide) ** 2));
-  if (errors === 'equal') return { variances: [new Float64Array(oxides.length).fill(1), new Float64Array(oxides.length)], model: 'equal weights', hasErrors: false };
+function readErrors(
+  errors: BalanceErrors | undefined,
+  oxides: readonly string[],
+  analyses: readonly Suite[],
+  who: string,
+): { variances: Float64Array[]; model: string; hasErrors: boolean } {
+  const fill = (of: (analysis: Suite, oxide: string) => number) =>
+    analyses.map((analysis) => Float64Array.from(oxides, (oxide) => of(analysis, oxide) ** 2));
+  if (errors === 'equal')
+    return { variances: [new Float64Array(oxides.length).fill(1), new Float64Array(oxides.length)], model: 'equal weights', hasErrors: false };
   if (errors === undefined) {
     let assumed = 0;
     const variances = fill((analysis, oxide) => {
@@ -85,13 +92,28 @@ function readErrors(errors: BalanceErrors | undefined, oxides: readonly string[]
       return Math.max(usualFloor, usualRelative * amountOf(analysis, oxide));
     });
     const usual = `1σ of ${100 * usualRelative} % with a floor of ${usualFloor} wt %`;
-    return { variances, hasErrors: true, model: assumed === 0 ? 'the analyses’ own 1σ' : assumed === 2 * oxides.length ? `${usual} assumed` : `the analyses’ own 1σ; ${usual} assumed for ${assumed} values without` };
+    return {
+      variances,
+      hasErrors: true,
+      model:
+        assumed === 0
+          ? 'the analyses’ own 1σ'
+          : assumed === 2 * oxides.length
+            ? `${usual} assumed`
+            : `the analyses’ own 1σ; ${usual} assumed for ${assumed} values without`,
+    };
   }
-  if (typeof errors !== 'object' || errors === null) throw new TypeError(`${who}: errors must be "equal", { relative, floor }, or 1σ in wt % by oxide.`);
+  if (typeof errors !== 'object' || errors === null)
+    throw new TypeError(`${who}: errors must be "equal", { relative, floor }, or 1σ in wt % by oxide.`);
   if ('relative' in errors) {
     const { relative, floor = usualFloor } = errors as { relative: number; floor?: number };
-    if (!(relative > 0 && relative < 1) || !(floor >= 0)) throw new RangeError(`${who}: errors.relative must be a fraction between 0 and 1 (0.01 is 1 %), floor a number of wt % of zero or more.`);
-    return { variances: fill((analysis, oxide) => Math.max(floor, relative * amountOf(analysis, oxide), 1e-9)), model: `1σ of ${100 * relative} % with a floor of ${floor} wt %`, hasErrors: true };
+    if (!(relative > 0 && relative < 1) || !(floor >= 0))
+      throw new RangeError(`${who}: errors.relative must be a fraction between 0 and 1 (0.01 is 1 %), floor a number of wt % of zero or more.`);
+    return {
+      variances: fill((analysis, oxide) => Math.max(floor, relative * amountOf(analysis, oxide), 1e-9)),
+      model: `1σ of ${100 * relative} % with a floor of ${floor} wt %`,
+      hasErrors: true,
+    };
   }
   const given = errors as Readonly<Record<string, number>>;
   const lacking = oxides.filter((oxide) => !(given[oxide] > 0));
@@ -118,7 +140,8 @@ export function readPhaseColumns(minerals: BalanceMinerals | undefined, who: str
 export function readBalance(options: BalanceOptions, minerals: BalanceMinerals, who: string): BalanceInput {
   if (typeof options !== 'object' || options === null) throw new TypeError(`${who}: give an object of options with parent, daughter and minerals.`);
   const { basis = 'volatile-free', closure = 'exact' } = options;
-  if (basis !== 'volatile-free' && basis !== 'as given') throw new RangeError(`${who}: basis must be "volatile-free" or "as given", not "${String(basis)}".`);
+  if (basis !== 'volatile-free' && basis !== 'as given')
+    throw new RangeError(`${who}: basis must be "volatile-free" or "as given", not "${String(basis)}".`);
   if (closure !== 'exact' && closure !== 'free') throw new RangeError(`${who}: closure must be "exact" or "free", not "${String(closure)}".`);
   const read = (from: Composition, argument: string) => onBasis(oneAnalysis(from, who, argument), basis, who, argument);
   const parent = read(options.parent, 'parent');
@@ -130,11 +153,13 @@ export function readBalance(options: BalanceOptions, minerals: BalanceMinerals, 
   const notes: string[] = [];
   const oxides = wanted.filter(usable);
   const left = wanted.filter((oxide) => !usable(oxide));
-  if (left.length > 0 && options.oxides !== undefined) throw new RangeError(`${who}: oxides holds ${left.join(', ')}, which not all of the analyses have.`);
+  if (left.length > 0 && options.oxides !== undefined)
+    throw new RangeError(`${who}: oxides holds ${left.join(', ')}, which not all of the analyses have.`);
   if (left.length > 0) notes.push(`Not used, because an analysis has no usable value: ${left.join(', ')}.`);
   const columns = readPhaseColumns(minerals, who);
   const k = columns.length + (assimilant === undefined ? 0 : 1);
-  if (oxides.length < k + (closure === 'free' ? 1 : 0)) throw new RangeError(`${who}: ${k} unknowns need at least as many oxides; there are ${oxides.length} (${oxides.join(', ')}).`);
+  if (oxides.length < k + (closure === 'free' ? 1 : 0))
+    throw new RangeError(`${who}: ${k} unknowns need at least as many oxides; there are ${oxides.length} (${oxides.join(', ')}).`);
   const n = oxides.length;
   const phases = new Float64Array(k * n);
   columns.forEach(({ chosen }, j) => oxides.forEach((oxide, i) => (phases[j * n + i] = chosen.oxides.get(oxide) ?? 0)));
@@ -144,7 +169,24 @@ export function readBalance(options: BalanceOptions, minerals: BalanceMinerals, 
   const { variances, model, hasErrors } = readErrors(options.errors, oxides, [parent, daughter], who);
   const values = (analysis: Suite) => Float64Array.from(oxides, (oxide) => amountOf(analysis, oxide));
   return {
-    parent, daughter, assimilant, oxides, columns, errorModel: model, hasErrors, notes,
-    problem: { n, k, parent: values(parent), daughter: values(daughter), phases, signs, parentVariance: variances[0], daughterVariance: variances[1], closure: closure === 'exact' },
+    parent,
+    daughter,
+    assimilant,
+    oxides,
+    columns,
+    errorModel: model,
+    hasErrors,
+    notes,
+    problem: {
+      n,
+      k,
+      parent: values(parent),
+      daughter: values(daughter),
+      phases,
+      signs,
+      parentVariance: variances[0],
+      daughterVariance: variances[1],
+      closure: closure === 'exact',
+    },
   };
 }

@@ -26,10 +26,20 @@ export function crystalliseInSitu(options: InSituOptions): ModelPath {
   const returned = readNumber(options.returned, who, 'returned', { from: 0, to: 1, open: 'to' });
   const F = evenly(1, downTo, setup.steps);
   return buildPath({
-    who, process: 'In situ crystallisation', F, meaning: 'liquid left',
-    liquid: withConstantIsotopes(follow(setup, F, (D, left) => inSituLiquid(D, left, returned)), setup, F.length),
-    coefficients: setup.used, notes: setup.notes, lineage: setup.start.lineage,
-    detail: { ...setup.detail, downTo, returned }, sources: ['langmuir_1989'],
+    who,
+    process: 'In situ crystallisation',
+    F,
+    meaning: 'liquid left',
+    liquid: withConstantIsotopes(
+      follow(setup, F, (D, left) => inSituLiquid(D, left, returned)),
+      setup,
+      F.length,
+    ),
+    coefficients: setup.used,
+    notes: setup.notes,
+    lineage: setup.start.lineage,
+    detail: { ...setup.detail, downTo, returned },
+    sources: ['langmuir_1989'],
   });
 }
 
@@ -55,9 +65,16 @@ export function refineByZones(options: ZoneRefiningOptions): ModelPath {
   const F = evenly(0, volumes, setup.steps);
   const liquid = withConstantIsotopes(follow(setup, F, zoneRefinedLiquid), setup, F.length);
   return buildPath({
-    who, process: 'Zone refining', F, meaning: 'volumes worked through', liquid,
-    coefficients: setup.used, notes: setup.notes, lineage: setup.start.lineage,
-    detail: { ...setup.detail, volumes }, sources: ['harris_1957'],
+    who,
+    process: 'Zone refining',
+    F,
+    meaning: 'volumes worked through',
+    liquid,
+    coefficients: setup.used,
+    notes: setup.notes,
+    lineage: setup.start.lineage,
+    detail: { ...setup.detail, volumes },
+    sources: ['harris_1957'],
   });
 }
 
@@ -103,9 +120,15 @@ export function refillChamber(options: RefilledChamberOptions): ModelPath {
     steady.push(`${symbol} ${Number((start * refilledSteadyState(D, x, y)).toPrecision(4))}`);
   });
   return buildPath({
-    who, process: 'Refilled and tapped chamber', F, meaning: 'cycles',
+    who,
+    process: 'Refilled and tapped chamber',
+    F,
+    meaning: 'cycles',
     liquid: withConstantIsotopes(liquid, setup, F.length),
-    coefficients: setup.used, notes: [...setup.notes, `Steady-state lava (ppm): ${steady.join(', ')}.`], lineage: setup.start.lineage,
-    detail: { ...setup.detail, crystallised: x, erupted: y, cycles }, sources: ['ohara_1977', 'ohara_mathews_1981'],
+    coefficients: setup.used,
+    notes: [...setup.notes, `Steady-state lava (ppm): ${steady.join(', ')}.`],
+    lineage: setup.start.lineage,
+    detail: { ...setup.detail, crystallised: x, erupted: y, cycles },
+    sources: ['ohara_1977', 'ohara_mathews_1981'],
   });
 }

@@ -48,20 +48,28 @@ export class MissingCoefficientsError extends Error {
     }
     const sets = [...new Set(missing.flatMap((each) => each.meltTypes))].join(', ');
     super(
-      `${who}: no partition coefficient (${sets} melt) for ${[...byMineral].map(([mineral, list]) => `${mineral}: ${list.join(', ')}`).join('; ')}. ` +
+      `${who}: no partition coefficient (${sets} melt) for ` +
+        `${[...byMineral].map(([mineral, list]) => `${mineral}: ${list.join(', ')}`).join('; ')}. ` +
         `Supply them in options.coefficients, e.g. { ${missing[0].mineral}: { ${missing[0].analyte}: … } }; or add them to ` +
-        'reference-tables/partition-coefficients.csv with their source; or name another set in meltType, such as ["andesite", "basalt"]; or restrict ' +
+        'reference-tables/partition-coefficients.csv with their source; or name another set in meltType, such as ["andesite", "basalt"]; ' +
+        'or restrict ' +
         `analytes to what is covered: ${covered.length === 0 ? 'none' : covered.join(', ')}.`,
     );
   }
 }
 
 /** @internal Checks an assemblage and scales it to a sum of one. */
-export function readAssemblage(assemblage: Assemblage, who: string, argument = 'assemblage'): { readonly minerals: readonly string[]; readonly shares: Float64Array } {
-  if (typeof assemblage !== 'object' || assemblage === null) throw new TypeError(`${who}: ${argument} must be an object of shares by mineral, such as { olivine: 0.2, plagioclase: 0.8 }.`);
+export function readAssemblage(
+  assemblage: Assemblage,
+  who: string,
+  argument = 'assemblage',
+): { readonly minerals: readonly string[]; readonly shares: Float64Array } {
+  if (typeof assemblage !== 'object' || assemblage === null)
+    throw new TypeError(`${who}: ${argument} must be an object of shares by mineral, such as { olivine: 0.2, plagioclase: 0.8 }.`);
   const entries = Object.entries(assemblage);
   for (const [mineral, share] of entries) {
-    if (typeof share !== 'number' || !Number.isFinite(share) || share < 0) throw new RangeError(`${who}: ${argument}.${mineral} is ${String(share)}; give a share of zero or more.`);
+    if (typeof share !== 'number' || !Number.isFinite(share) || share < 0)
+      throw new RangeError(`${who}: ${argument}.${mineral} is ${String(share)}; give a share of zero or more.`);
   }
   const sum = entries.reduce((total, [, share]) => total + share, 0);
   if (!(sum > 0)) throw new RangeError(`${who}: the shares of ${argument} sum to ${sum}; give at least one mineral a positive share.`);
@@ -77,7 +85,10 @@ export function readAssemblage(assemblage: Assemblage, who: string, argument = '
 export function readMeltTypes(meltType: MeltType | readonly MeltType[], who: string): readonly MeltType[] {
   const list = [meltType].flat() as MeltType[];
   for (const each of list) {
-    if (!meltTypes.includes(each)) throw new RangeError(`${who}: meltType "${String(each)}" is not known; choose from ${meltTypes.map((type) => `"${type}"`).join(', ')}, or an order of preference.`);
+    if (!meltTypes.includes(each))
+      throw new RangeError(
+        `${who}: meltType "${String(each)}" is not known; choose from ${meltTypes.map((type) => `"${type}"`).join(', ')}, or an order of preference.`,
+      );
   }
   if (list.length === 0) throw new RangeError(`${who}: meltType is an empty list.`);
   return list;
@@ -86,10 +97,12 @@ export function readMeltTypes(meltType: MeltType | readonly MeltType[], who: str
 /** @internal Checks coefficients of the user's own. */
 export function checkOwnCoefficients(own: OwnCoefficients, who: string): void {
   for (const [mineral, elements] of Object.entries(own)) {
-    if (typeof elements !== 'object' || elements === null) throw new TypeError(`${who}: coefficients.${mineral} must be an object of numbers by element.`);
+    if (typeof elements !== 'object' || elements === null)
+      throw new TypeError(`${who}: coefficients.${mineral} must be an object of numbers by element.`);
     for (const [analyte, given] of Object.entries(elements)) {
       const value = typeof given === 'number' ? given : given?.value;
-      if (typeof value !== 'number' || !Number.isFinite(value) || value < 0) throw new RangeError(`${who}: coefficients.${mineral}.${analyte} is ${String(value)}; give a number of zero or more.`);
+      if (typeof value !== 'number' || !Number.isFinite(value) || value < 0)
+        throw new RangeError(`${who}: coefficients.${mineral}.${analyte} is ${String(value)}; give a number of zero or more.`);
     }
   }
 }
@@ -125,7 +138,13 @@ function describeMissing(mineral: string, analyte: string, sets: readonly MeltTy
  * @returns `used[m][a]` for mineral m and analyte a
  */
 export function gatherCoefficients(
-  request: { readonly minerals: readonly string[]; readonly analytes: readonly string[]; readonly sets: readonly MeltType[]; readonly own: OwnCoefficients; readonly who: string },
+  request: {
+    readonly minerals: readonly string[];
+    readonly analytes: readonly string[];
+    readonly sets: readonly MeltType[];
+    readonly own: OwnCoefficients;
+    readonly who: string;
+  },
   allOrCovered: 'all' | 'covered' = 'all',
 ): { readonly analytes: readonly string[]; readonly used: readonly (readonly UsedCoefficient[])[]; readonly missing: readonly MissingCoefficient[] } {
   const { minerals, analytes, sets, own, who } = request;
@@ -133,11 +152,15 @@ export function gatherCoefficients(
   const known = partitionMinerals();
   for (const mineral of minerals) {
     if (!known.includes(mineral) && !Object.hasOwn(own, mineral)) {
-      throw new RangeError(`${who}: there are no coefficients for "${mineral}". The tables hold: ${known.join(', ')}; supply others in options.coefficients.`);
+      throw new RangeError(
+        `${who}: there are no coefficients for "${mineral}". The tables hold: ${known.join(', ')}; supply others in options.coefficients.`,
+      );
     }
   }
   const found = minerals.map((mineral) => analytes.map((analyte) => findCoefficient(mineral, analyte, sets, own)));
-  const missing = minerals.flatMap((mineral, m) => analytes.flatMap((analyte, a) => (found[m][a] === undefined ? [describeMissing(mineral, analyte, sets)] : [])));
+  const missing = minerals.flatMap((mineral, m) =>
+    analytes.flatMap((analyte, a) => (found[m][a] === undefined ? [describeMissing(mineral, analyte, sets)] : [])),
+  );
   const covered = analytes.filter((_, a) => found.every((row) => row[a] !== undefined));
   if (missing.length > 0 && (allOrCovered === 'all' || covered.length === 0)) throw new MissingCoefficientsError(who, missing, covered);
   const kept = analytes.flatMap((_, a) => (found.every((row) => row[a] !== undefined) ? [a] : []));
@@ -145,7 +168,11 @@ export function gatherCoefficients(
 }
 
 /** @internal Bulk coefficients: Σ share × coefficient, one an analyte. */
-export function bulkOf(shares: ArrayLike<number>, used: readonly (readonly UsedCoefficient[])[], pick: 'value' | 'low' | 'high' = 'value'): Float64Array {
+export function bulkOf(
+  shares: ArrayLike<number>,
+  used: readonly (readonly UsedCoefficient[])[],
+  pick: 'value' | 'low' | 'high' = 'value',
+): Float64Array {
   const bulk = new Float64Array(used[0]?.length ?? 0);
   for (let m = 0; m < used.length; m++) for (let a = 0; a < bulk.length; a++) bulk[a] += shares[m] * used[m][a][pick];
   return bulk;

@@ -15,18 +15,33 @@ export interface DescentInput extends DescentData {
 }
 
 /** @internal Gathers logs of elements and isotope ratios with their σ; samples with too few elements are left out by name. */
-export function gatherDescent(suite: Suite, wanted: readonly string[] | undefined, ratios: readonly string[] | undefined, errors: { relative: number; scatter: number; ratio: number | undefined }, who: string): DescentInput {
+export function gatherDescent(
+  suite: Suite,
+  wanted: readonly string[] | undefined,
+  ratios: readonly string[] | undefined,
+  errors: { relative: number; scatter: number; ratio: number | undefined },
+  who: string,
+): DescentInput {
   const usableShare = (symbol: string) => {
     const column = resolveColumn(suite, symbol);
     return column === undefined ? 0 : column.values.reduce((count, value) => count + (value > 0 ? 1 : 0), 0) / suite.size;
   };
   for (const symbol of wanted ?? []) {
-    if (findAnalyte(symbol)?.kind !== 'element') throw new RangeError(`${who}: analytes holds "${String(symbol)}", which is not an element symbol (Ti stands for TiO2, K for K2O).`);
+    if (findAnalyte(symbol)?.kind !== 'element')
+      throw new RangeError(`${who}: analytes holds "${String(symbol)}", which is not an element symbol (Ti stands for TiO2, K for K2O).`);
     if (usableShare(symbol) === 0) throw new RangeError(`${who}: the suite has no usable value of ${symbol}.`);
   }
   const elements = wanted ?? suite.analytes.filter((symbol) => findAnalyte(symbol)?.kind === 'element' && usableShare(symbol) >= 0.8);
-  if (elements.length < 4) throw new RangeError(`${who}: ${elements.length} elements have a usable value in four samples of five (${elements.join(', ') || 'none'}); the fit needs 4. Name others in analytes.`);
-  const all = ratios ?? suite.analytes.filter((symbol) => isotopeElement(symbol) !== undefined && elements.includes(isotopeElement(symbol)!) && usableShare(symbol) >= 0.5);
+  if (elements.length < 4)
+    throw new RangeError(
+      `${who}: ${elements.length} elements have a usable value in four samples of five (${elements.join(', ') || 'none'}); the fit needs ` +
+        `4. Name others in analytes.`,
+    );
+  const all =
+    ratios ??
+    suite.analytes.filter(
+      (symbol) => isotopeElement(symbol) !== undefined && elements.includes(isotopeElement(symbol)!) && usableShare(symbol) >= 0.5,
+    );
   for (const symbol of all) {
     const element = isotopeElement(symbol);
     if (element === undefined) throw new RangeError(`${who}: isotopes holds "${String(symbol)}", which is not an isotope ratio of one element.`);
@@ -45,14 +60,29 @@ export function gatherDescent(suite: Suite, wanted: readonly string[] | undefine
   if (rows.length < 5) throw new RangeError(`${who}: only ${rows.length} samples have at least half of the elements; the fit needs 5.`);
   const values = new Float64Array(rows.length * J).fill(NaN);
   const sigma = new Float64Array(rows.length * J).fill(NaN);
-  rows.forEach((row, s) => columns.forEach((column, j) => {
-    const value = column.values[row];
-    if (!(value > 0)) return;
-    const own = column.sigma?.[row] ?? NaN;
-    values[s * J + j] = j < elements.length ? Math.log(value) : value;
-    sigma[s * J + j] = j < elements.length ? Math.hypot(own > 0 ? own / value : errors.relative, errors.scatter) : Math.max(own > 0 ? own : 0, (errors.ratio ?? usualRatioError(column.symbol)) * value);
-  }));
-  return { samples: rows.length, elements, isotopes: all, carriers: all.map((symbol) => elements.indexOf(isotopeElement(symbol)!)), values, sigma, rows, names: rows.map((row) => suite.samples[row]), left };
+  rows.forEach((row, s) =>
+    columns.forEach((column, j) => {
+      const value = column.values[row];
+      if (!(value > 0)) return;
+      const own = column.sigma?.[row] ?? NaN;
+      values[s * J + j] = j < elements.length ? Math.log(value) : value;
+      sigma[s * J + j] =
+        j < elements.length
+          ? Math.hypot(own > 0 ? own / value : errors.relative, errors.scatter)
+          : Math.max(own > 0 ? own : 0, (errors.ratio ?? usualRatioError(column.symbol)) * value);
+    }),
+  );
+  return {
+    samples: rows.length,
+    elements,
+    isotopes: all,
+    carriers: all.map((symbol) => elements.indexOf(isotopeElement(symbol)!)),
+    values,
+    sigma,
+    rows,
+    names: rows.map((row) => suite.samples[row]),
+    left,
+  };
 }
 
 /** @internal A process fitted to the samples that it can explain. */
@@ -92,7 +122,9 @@ export function fitRobustly(input: DescentInput, level: number, make: (counted: 
   let model = make(counted);
   let misfits = fitLatent(model.problem, model.scan);
   for (let round = 0; round < mostRounds; round++) {
-    const out = Array.from(misfits, (misfit, s) => ({ s, over: misfit / limits[s] })).filter(({ over }) => over > 1).sort((a, b) => b.over - a.over);
+    const out = Array.from(misfits, (misfit, s) => ({ s, over: misfit / limits[s] }))
+      .filter(({ over }) => over > 1)
+      .sort((a, b) => b.over - a.over);
     // The worst go first and at most a fifth at once, for one bad sample can make good ones look bad.
     const allowed = Math.max(1, Math.floor(samples / 5)) + (samples - counted.reduce((sum, each) => sum + each, 0));
     const next = new Uint8Array(samples).fill(1);
@@ -125,18 +157,33 @@ export function excludingElement(input: DescentInput, fit: FittedProcess, s: num
 }
 
 /** @internal Fits the three processes; assimilation only where an assimilant is given. */
-export function fitRivals(input: DescentInput, level: number, assimilant: Suite | undefined, who: string): { fits: Map<DescentProcess, FittedProcess>; r: number; notes: string[] } {
+export function fitRivals(
+  input: DescentInput,
+  level: number,
+  assimilant: Suite | undefined,
+  who: string,
+): { fits: Map<DescentProcess, FittedProcess>; r: number; notes: string[] } {
   const fits = new Map<DescentProcess, FittedProcess>();
   const notes: string[] = [];
-  fits.set('crystallisation', fitRobustly(input, level, (counted) => crystallisationModel(input, counted)));
-  fits.set('mixing', fitRobustly(input, level, (counted) => mixingModel(input, counted)));
+  fits.set(
+    'crystallisation',
+    fitRobustly(input, level, (counted) => crystallisationModel(input, counted)),
+  );
+  fits.set(
+    'mixing',
+    fitRobustly(input, level, (counted) => mixingModel(input, counted)),
+  );
   if (assimilant === undefined) {
     notes.push('Assimilation was not compared: give the assimilant.');
     return { fits, r: NaN, notes };
   }
   const lacking = [...input.elements, ...input.isotopes].filter((symbol) => !(amountOf(assimilant, symbol) > 0));
-  if (lacking.length > 0) throw new RangeError(`${who}: the assimilant has no usable ${lacking.join(', ')}; give it, or leave it out of analytes and isotopes.`);
-  const rock = { amounts: Float64Array.from(input.elements, (symbol) => amountOf(assimilant, symbol)), ratios: Float64Array.from(input.isotopes, (symbol) => amountOf(assimilant, symbol)) };
+  if (lacking.length > 0)
+    throw new RangeError(`${who}: the assimilant has no usable ${lacking.join(', ')}; give it, or leave it out of analytes and isotopes.`);
+  const rock = {
+    amounts: Float64Array.from(input.elements, (symbol) => amountOf(assimilant, symbol)),
+    ratios: Float64Array.from(input.isotopes, (symbol) => amountOf(assimilant, symbol)),
+  };
   let best: { r: number; fit: FittedProcess } | undefined;
   const attempt = (r: number) => {
     // The rate is chosen by one fit each; samples are left out at the chosen one alone.
@@ -146,6 +193,9 @@ export function fitRivals(input: DescentInput, level: number, assimilant: Suite 
   for (const r of [0.05, 0.15, 0.3, 0.5, 0.7]) attempt(r);
   const around = best!.r;
   for (const r of [around * 0.75, around * 1.25]) attempt(r);
-  fits.set('assimilation', fitRobustly(input, level, (counted) => assimilationModel(input, counted, rock, best!.r)));
+  fits.set(
+    'assimilation',
+    fitRobustly(input, level, (counted) => assimilationModel(input, counted, rock, best!.r)),
+  );
   return { fits, r: best!.r, notes };
 }

@@ -94,9 +94,20 @@ export function crystallisationModel(data: DescentData, counted: Uint8Array): De
   for (let i = 0; i < I; i++) parameters[2 * (E + i)] = isotopeMean(data, i);
   const counts = new Uint8Array(E + I).fill(2, 0, E).fill(1, E);
   return {
-    process: 'crystallisation', scan: 0, free: 2 * E + I + data.samples - 2,
+    process: 'crystallisation',
+    scan: 0,
+    free: 2 * E + I + data.samples - 2,
     problem: {
-      samples: data.samples, observables: E + I, values: data.values, sigma: data.sigma, counts, parameters, hidden, from: -50, to: 50, counted,
+      samples: data.samples,
+      observables: E + I,
+      values: data.values,
+      sigma: data.sigma,
+      counts,
+      parameters,
+      hidden,
+      from: -50,
+      to: 50,
+      counted,
       predict: (j, p, t) => (j < E ? p[2 * j] + p[2 * j + 1] * t : p[2 * j]),
     },
   };
@@ -119,10 +130,20 @@ export function mixingModel(data: DescentData, counted: Uint8Array): DescentMode
     [parameters[2 * (E + i)], parameters[2 * (E + i) + 1]] = [ratio * parameters[2 * carrier], ratio * parameters[2 * carrier + 1]];
   }
   return {
-    process: 'mixing', scan: 24, free: 2 * E + 2 * I + data.samples - 2,
+    process: 'mixing',
+    scan: 24,
+    free: 2 * E + 2 * I + data.samples - 2,
     problem: {
-      samples: data.samples, observables: E + I, values: data.values, sigma: data.sigma, counts: new Uint8Array(E + I).fill(2), parameters,
-      hidden: hidden.map((t) => (t - low) / span), from: -0.6, to: 1.6, counted,
+      samples: data.samples,
+      observables: E + I,
+      values: data.values,
+      sigma: data.sigma,
+      counts: new Uint8Array(E + I).fill(2),
+      parameters,
+      hidden: hidden.map((t) => (t - low) / span),
+      from: -0.6,
+      to: 1.6,
+      counted,
       predict: (j, p, g) => {
         if (j < E) return Math.log(p[2 * j] + p[2 * j + 1] * g);
         const carrier = data.carriers[j - E];
@@ -136,7 +157,12 @@ export function mixingModel(data: DescentData, counted: Uint8Array): DescentMode
  * Assimilation with crystallisation, for one rate r and a known assimilant: an element has its start (as ln C0) and its D (as ln D, so that it stays
  * positive); an isotope ratio has its start.
  */
-export function assimilationModel(data: DescentData, counted: Uint8Array, assimilant: { readonly amounts: Float64Array; readonly ratios: Float64Array }, r: number): DescentModel {
+export function assimilationModel(
+  data: DescentData,
+  counted: Uint8Array,
+  assimilant: { readonly amounts: Float64Array; readonly ratios: Float64Array },
+  r: number,
+): DescentModel {
   const [E, I] = [data.elements.length, data.isotopes.length];
   const { mean, slope, hidden } = firstGuess(data);
   // The hidden number is −ln F; the element that rises most along the first guess sets its direction and scale.
@@ -155,12 +181,24 @@ export function assimilationModel(data: DescentData, counted: Uint8Array, assimi
     parameters[2 * e + 1] = Math.log(Math.max(0.02, 1 - b));
   }
   for (let i = 0; i < I; i++) parameters[2 * (E + i)] = isotopeMean(data, i);
-  const liquid = (p: Float64Array, e: number, time: number) => openSystemLiquid(Math.exp(p[2 * e]), r * assimilant.amounts[e], Math.exp(p[2 * e + 1]), q, time);
+  const liquid = (p: Float64Array, e: number, time: number) =>
+    openSystemLiquid(Math.exp(p[2 * e]), r * assimilant.amounts[e], Math.exp(p[2 * e + 1]), q, time);
   return {
-    process: 'assimilation', scan: 16, free: 2 * E + I + data.samples - 1 + 1,
+    process: 'assimilation',
+    scan: 16,
+    free: 2 * E + I + data.samples - 1 + 1,
     problem: {
-      samples: data.samples, observables: E + I, values: data.values, sigma: data.sigma, counts: new Uint8Array(E + I).fill(2, 0, E).fill(1, E), parameters,
-      hidden: times.map((t) => Math.max(0, t - least)), from: 0, to: 3, counted, rounds: 60,
+      samples: data.samples,
+      observables: E + I,
+      values: data.values,
+      sigma: data.sigma,
+      counts: new Uint8Array(E + I).fill(2, 0, E).fill(1, E),
+      parameters,
+      hidden: times.map((t) => Math.max(0, t - least)),
+      from: 0,
+      to: 3,
+      counted,
+      rounds: 60,
       predict: (j, p, minusLogF) => {
         const time = chamberTime(Math.expm1(-minusLogF) / q, q);
         if (j < E) return Math.log(liquid(p, j, time));

@@ -56,7 +56,13 @@ export interface AssemblageFit extends Traced, Showable {
 }
 
 /** Values and σ of oxides (wt %) and logs of elements, sample by sample. */
-function gather(dry: Suite, original: Suite, elements: readonly string[], options: FitAssemblageOptions, who: string): { values: Float64Array; sigma: Float64Array; rows: number[]; oxides: readonly string[] } {
+function gather(
+  dry: Suite,
+  original: Suite,
+  elements: readonly string[],
+  options: FitAssemblageOptions,
+  who: string,
+): { values: Float64Array; sigma: Float64Array; rows: number[]; oxides: readonly string[] } {
   const relative = options.relativeError ?? {};
   const forOxides = readNumber(relative.oxides ?? 0.01, who, 'relativeError.oxides', { from: 0, to: 1, open: 'to' });
   const forElements = readNumber(relative.elements ?? 0.05, who, 'relativeError.elements', { from: 0, to: 1, open: 'to' });
@@ -69,18 +75,20 @@ function gather(dry: Suite, original: Suite, elements: readonly string[], option
   if (rows.length < 4) throw new RangeError(`${who}: ${rows.length} samples have a volatile-free analysis; the fit needs 4.`);
   const values = new Float64Array(rows.length * J).fill(NaN);
   const sigma = new Float64Array(rows.length * J).fill(NaN);
-  rows.forEach((row, s) => columns.forEach((column, j) => {
-    const value = column.values[row];
-    const own = column.sigma?.[row] ?? NaN;
-    if (j < oxides.length) {
-      if (!Number.isFinite(value)) return;
-      values[s * J + j] = value;
-      sigma[s * J + j] = Math.hypot(own > 0 ? own : Math.max(0.03, forOxides * value), scatter * value);
-    } else if (value > 0) {
-      values[s * J + j] = Math.log(value);
-      sigma[s * J + j] = Math.hypot(own > 0 ? own / value : forElements, scatter);
-    }
-  }));
+  rows.forEach((row, s) =>
+    columns.forEach((column, j) => {
+      const value = column.values[row];
+      const own = column.sigma?.[row] ?? NaN;
+      if (j < oxides.length) {
+        if (!Number.isFinite(value)) return;
+        values[s * J + j] = value;
+        sigma[s * J + j] = Math.hypot(own > 0 ? own : Math.max(0.03, forOxides * value), scatter * value);
+      } else if (value > 0) {
+        values[s * J + j] = Math.log(value);
+        sigma[s * J + j] = Math.hypot(own > 0 ? own / value : forElements, scatter);
+      }
+    }),
+  );
   if (sigma.some((each) => each === 0)) throw new RangeError(`${who}: relativeError and scatter are both 0; something must be uncertain.`);
   return { values, sigma, rows, oxides };
 }
@@ -100,8 +108,8 @@ function describePhases(columns: readonly PhaseColumn[], state: AssemblageState,
 }
 
 /**
- * Fits parent, liquid fractions and crystallising assemblage to all samples of a suite at once: majors by mineral subtraction, traces (where asked for) by
- * Rayleigh's law with the coefficients of the same minerals.
+ * Fits parent, liquid fractions and crystallising assemblage to all samples of a suite at once: majors by mineral subtraction, traces (where asked
+ * for) by Rayleigh's law with the coefficients of the same minerals.
  *
  * @param suite n ≥ 4 samples with majors in wt %; leave out those that `fitDescent` shows not to belong
  * @param options `minerals` by name, as in `massBalance`; `parent` the sample with F = 1; `analytes` with `meltType` (default `basalt`) and
@@ -109,7 +117,8 @@ function describePhases(columns: readonly PhaseColumn[], state: AssemblageState,
  * @returns shares of the phases with 95 % intervals over samples drawn again, the fitted parent, F and χ² of each sample, rms by analyte in σ
  * @throws MissingCoefficientsError; RangeError naming the bad argument
  * @source Bryan et al. 1969 (subtraction); Gast 1968 (Rayleigh); Allègre et al. 1977 (inverse treatment). One assemblage for the whole suite
- * @example fitAssemblage(suite, { minerals: { olivine: 'Fo80', clinopyroxene: 'Wo42En46Fs12', plagioclase: { between: ['An50', 'An90'] } }, analytes: ['Sr', 'Zr'] }).assemblage
+ * @example fitAssemblage(suite, { minerals: { olivine: 'Fo80', clinopyroxene: 'Wo42En46Fs12', plagioclase: { between: ['An50', 'An90'] } },
+ *   analytes: ['Sr', 'Zr'] }).assemblage
  */
 export function fitAssemblage(suite: Suite, options: FitAssemblageOptions): AssemblageFit {
   const who = 'fitAssemblage';
@@ -124,7 +133,13 @@ export function fitAssemblage(suite: Suite, options: FitAssemblageOptions): Asse
   const draws = readNumber(options.draws ?? 100, who, 'draws', { from: 0, to: 1e5 });
   checkOwnCoefficients(options.coefficients ?? {}, who);
   const minerals = [...new Set(columns.map(({ chosen }) => chosen.mineral))];
-  const { used } = gatherCoefficients({ minerals, analytes: elements, sets: readMeltTypes(options.meltType ?? 'basalt', who), own: options.coefficients ?? {}, who });
+  const { used } = gatherCoefficients({
+    minerals,
+    analytes: elements,
+    sets: readMeltTypes(options.meltType ?? 'basalt', who),
+    own: options.coefficients ?? {},
+    who,
+  });
   const dry = volatileFree(suite);
   const { values, sigma, rows, oxides } = gather(dry, suite, elements, options, who);
   const k = columns.length;
@@ -135,11 +150,24 @@ export function fitAssemblage(suite: Suite, options: FitAssemblageOptions): Asse
   const names = rows.map((row) => suite.samples[row]);
   const MgO = oxides.indexOf('MgO');
   const J = oxides.length + elements.length;
-  const parentAt = options.parent === undefined
-    ? names.reduce((best, _, s) => (values[s * J + MgO] > values[best * J + MgO] ? s : best), 0)
-    : names.indexOf(options.parent);
+  const parentAt =
+    options.parent === undefined
+      ? names.reduce((best, _, s) => (values[s * J + MgO] > values[best * J + MgO] ? s : best), 0)
+      : names.indexOf(options.parent);
   if (parentAt < 0) throw new RangeError(`${who}: parent is "${options.parent}", which is not among the samples with a volatile-free analysis.`);
-  const problem: AssemblageProblem = { samples: rows.length, oxides: oxides.length, elements: elements.length, phases: k, values, sigma, compositions: phases, coefficients: K, coefficientError, parentAt, weights: new Float64Array(rows.length).fill(1) };
+  const problem: AssemblageProblem = {
+    samples: rows.length,
+    oxides: oxides.length,
+    elements: elements.length,
+    phases: k,
+    values,
+    sigma,
+    compositions: phases,
+    coefficients: K,
+    coefficientError,
+    parentAt,
+    weights: new Float64Array(rows.length).fill(1),
+  };
   const state = descentOfAssemblage(problem, undefined, 200);
   const random = seededRandom(options.seed ?? 1, who);
   const drawn: Float64Array[] = [];
@@ -150,19 +178,39 @@ export function fitAssemblage(suite: Suite, options: FitAssemblageOptions): Asse
   }
   const because = step(
     who,
-    { samples: rows.length, oxides: [...oxides], elements: [...elements], parent: names[parentAt], coefficientError, scatter: options.scatter ?? 0.02, draws, seed: options.seed ?? 1, phases: columns.map(({ phase, chosen }) => [phase, chosen.label, chosen.source, chosen.standing]) },
-    { sources: ['bryan_1969', 'gast_1968', 'allegre_1977', ...sourcesOf(used.flat())], tables: ['mineral-compositions.csv', 'atomic-weights.csv', ...(elements.length > 0 ? ['partition-coefficients.csv'] : [])] },
+    {
+      samples: rows.length,
+      oxides: [...oxides],
+      elements: [...elements],
+      parent: names[parentAt],
+      coefficientError,
+      scatter: options.scatter ?? 0.02,
+      draws,
+      seed: options.seed ?? 1,
+      phases: columns.map(({ phase, chosen }) => [phase, chosen.label, chosen.source, chosen.standing]),
+    },
+    {
+      sources: ['bryan_1969', 'gast_1968', 'allegre_1977', ...sourcesOf(used.flat())],
+      tables: ['mineral-compositions.csv', 'atomic-weights.csv', ...(elements.length > 0 ? ['partition-coefficients.csv'] : [])],
+    },
   );
   const lineage = [...suite.lineage, because];
   const parent = suiteOf({
-    columns: [...oxides.map((oxide, i) => derivedColumn(oxide, Float64Array.of(state.parent[i]), 'wt%', undefined, 'oxide')), ...elements.map((symbol, e) => derivedColumn(symbol, Float64Array.of(Math.exp(state.parent[oxides.length + e])), 'ppm', undefined, 'element'))],
-    labels: { sample: ['fitted parent'] }, lineage,
+    columns: [
+      ...oxides.map((oxide, i) => derivedColumn(oxide, Float64Array.of(state.parent[i]), 'wt%', undefined, 'oxide')),
+      ...elements.map((symbol, e) => derivedColumn(symbol, Float64Array.of(Math.exp(state.parent[oxides.length + e])), 'ppm', undefined, 'element')),
+    ],
+    labels: { sample: ['fitted parent'] },
+    lineage,
   });
   const result = {
-    assemblage: describePhases(columns, state, drawn), parent,
+    assemblage: describePhases(columns, state, drawn),
+    parent,
     samples: names.map((sample, s) => ({ sample, F: state.F[s], chiSquare: state.misfits[s], count: state.counts[s] })),
     quantities: [...oxides, ...elements].map((analyte, j) => ({ analyte, rms: state.rms[j] })),
-    coefficients: used.flat(), notes: rows.length < suite.size ? [`${suite.size - rows.length} samples without a volatile-free analysis were left out.`] : [], lineage,
+    coefficients: used.flat(),
+    notes: rows.length < suite.size ? [`${suite.size - rows.length} samples without a volatile-free analysis were left out.`] : [],
+    lineage,
   };
   return showAs(result, (it) => ({
     title: `Assemblage of ${it.samples.length} samples at once, from ${names[parentAt]}`,
@@ -170,7 +218,8 @@ export function fitAssemblage(suite: Suite, options: FitAssemblageOptions): Asse
     rows: it.assemblage.map((each): TableCell[] => [each.phase, each.label, 100 * each.share, 100 * each.sigma, 100 * each.low, 100 * each.high]),
     notes: [
       `F: ${it.samples.map(({ sample, F }) => `${sample} ${F.toFixed(2)}`).join(', ')}.`,
-      `Root mean square residual in σ: ${it.quantities.map(({ analyte, rms }) => `${analyte} ${rms.toFixed(1)}`).join(', ')}.`, ...it.notes,
+      `Root mean square residual in σ: ${it.quantities.map(({ analyte, rms }) => `${analyte} ${rms.toFixed(1)}`).join(', ')}.`,
+      ...it.notes,
     ],
   }));
 }

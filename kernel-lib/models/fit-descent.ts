@@ -1,8 +1,9 @@
 import { jStat } from 'jstat';
-import { showAs, type Showable, type TableCell } from '../display';
+import { showAs, type Showable } from '../display';
 import { derivedColumn, step, suiteOf, Suite, type Traced } from '../suite';
 import { gatherDescent, excludingElement, fitRivals, type DescentInput, type FittedProcess } from './descent-fit';
 import type { DescentProcess } from './descent-laws';
+import { descentFindings, descentView, evidenceNeeded } from './descent-view';
 import { joinLineage, oneAnalysis, type Composition } from './one-analysis';
 import { readNumber } from './trace-setup';
 
@@ -96,18 +97,6 @@ export interface DescentFit extends Traced, Showable {
   readonly notes: readonly string[];
 }
 
-/** Kass & Raftery's words for a difference in BIC. */
-function strength(difference: number): string {
-  return difference > 10 ? 'very strong' : difference > 6 ? 'strong' : difference > 2 ? 'positive' : 'hardly any';
-}
-
-/** Whether the samples off the line are all more evolved than every sample on it. */
-function atTheEnd(samples: readonly DescentSample[]): boolean {
-  const out = samples.filter(({ belongs }) => !belongs);
-  const least = Math.min(...samples.filter(({ belongs }) => belongs).map(({ F }) => F));
-  return out.length > 0 && out.every(({ F }) => F < least);
-}
-
 /** Slopes, F and parent from the crystallisation fit. */
 function describeLine(input: DescentInput, fit: FittedProcess, options: FitDescentOptions, who: string) {
   const { problem } = fit.model;
@@ -128,22 +117,34 @@ function describeLine(input: DescentInput, fit: FittedProcess, options: FitDesce
   const slopeOf = (e: number) => parameters[2 * e + 1];
   const upward = input.elements.reduce((sum, _, e) => sum + Math.sign(slopeOf(e)), 0) >= 0 ? 1 : -1;
   let reference = options.incompatible === undefined ? -1 : input.elements.indexOf(options.incompatible);
-  if (options.incompatible !== undefined && reference < 0) throw new RangeError(`${who}: incompatible is "${options.incompatible}", which is not among the elements used (${input.elements.join(', ')}).`);
+  if (options.incompatible !== undefined && reference < 0)
+    throw new RangeError(`${who}: incompatible is "${options.incompatible}", which is not among the elements used (${input.elements.join(', ')}).`);
   if (reference < 0) reference = input.elements.reduce((best, _, e) => (upward * slopeOf(e) > upward * slopeOf(best) ? e : best), 0);
   const fastest = slopeOf(reference);
   const D0 = readNumber(options.incompatibleD ?? 0, who, 'incompatibleD', { from: 0, to: 1, open: 'to' });
   // −ln F = (t − t of the parent)·fastest/(1 − D0)
   const perT = fastest / (1 - D0);
   const inLine = input.names.map((_, s) => s).filter((s) => fit.counted[s] === 1);
-  let parentAt = options.parent === undefined ? inLine.reduce((best, s) => (hidden[s] * perT < hidden[best] * perT ? s : best), inLine[0]) : input.names.indexOf(options.parent);
+  let parentAt =
+    options.parent === undefined
+      ? inLine.reduce((best, s) => (hidden[s] * perT < hidden[best] * perT ? s : best), inLine[0])
+      : input.names.indexOf(options.parent);
   if (parentAt < 0) throw new RangeError(`${who}: parent is "${options.parent}", which is not among the samples used.`);
   const start = hidden[parentAt];
   const elements = input.elements.map((element, e): DescentElement => {
     const slope = slopeOf(e) / fastest;
     const own = 1 / Math.sqrt(spread[e]);
-    const slopeSigma = e === reference ? 0 : Math.hypot(own / Math.abs(fastest), (slope / Math.abs(fastest)) / Math.sqrt(spread[reference]));
+    const slopeSigma = e === reference ? 0 : Math.hypot(own / Math.abs(fastest), slope / Math.abs(fastest) / Math.sqrt(spread[reference]));
     const parent = Math.exp(parameters[2 * e] + slopeOf(e) * start);
-    return { element, slope, slopeSigma, D: 1 - (1 - D0) * slope, DSigma: (1 - D0) * slopeSigma, parent, parentSigma: Math.sqrt(1 / weights[e] + (start - centre[e]) ** 2 / spread[e]) };
+    return {
+      element,
+      slope,
+      slopeSigma,
+      D: 1 - (1 - D0) * slope,
+      DSigma: (1 - D0) * slopeSigma,
+      parent,
+      parentSigma: Math.sqrt(1 / weights[e] + (start - centre[e]) ** 2 / spread[e]),
+    };
   });
   const samples = input.names.map((sample, s): DescentSample => {
     let curvature = 0;
@@ -152,7 +153,15 @@ function describeLine(input: DescentInput, fit: FittedProcess, options: FitDesce
     const belongs = fit.misfits[s] <= fit.limits[s];
     const { symbol, off } = belongs ? { symbol: '', off: NaN } : excludingElement(input, fit, s);
     return {
-      sample, F, FSigma: (F * Math.abs(perT)) / Math.sqrt(curvature), chiSquare: fit.misfits[s], degreesOfFreedom: fit.freedom[s], probability: 1 - jStat.chisquare.cdf(fit.misfits[s], fit.freedom[s]), belongs, excludedBy: symbol, off,
+      sample,
+      F,
+      FSigma: (F * Math.abs(perT)) / Math.sqrt(curvature),
+      chiSquare: fit.misfits[s],
+      degreesOfFreedom: fit.freedom[s],
+      probability: 1 - jStat.chisquare.cdf(fit.misfits[s], fit.freedom[s]),
+      belongs,
+      excludedBy: symbol,
+      off,
     };
   });
   return { elements, samples, reference, parentName: input.names[parentAt] };
@@ -181,8 +190,15 @@ function companionOf(input: DescentInput, elements: readonly DescentElement[]): 
     for (let k = 0; k <= 4; k++) S[k] += w * u ** k;
     for (let k = 0; k <= 2; k++) T[k] += w * u ** k * y;
   }
-  const det = (m: number[][]) => m[0][0] * (m[1][1] * m[2][2] - m[1][2] * m[2][1]) - m[0][1] * (m[1][0] * m[2][2] - m[1][2] * m[2][0]) + m[0][2] * (m[1][0] * m[2][1] - m[1][1] * m[2][0]);
-  const normal = [[S[0], S[1], S[2]], [S[1], S[2], S[3]], [S[2], S[3], S[4]]];
+  const det = (m: number[][]) =>
+    m[0][0] * (m[1][1] * m[2][2] - m[1][2] * m[2][1]) -
+    m[0][1] * (m[1][0] * m[2][2] - m[1][2] * m[2][0]) +
+    m[0][2] * (m[1][0] * m[2][1] - m[1][1] * m[2][0]);
+  const normal = [
+    [S[0], S[1], S[2]],
+    [S[1], S[2], S[3]],
+    [S[2], S[3], S[4]],
+  ];
   const D = det(normal);
   const c2 = det(normal.map((row, i) => [row[0], row[1], T[i]])) / D;
   const variance = (S[0] * S[2] - S[1] ** 2) / D;
@@ -198,7 +214,8 @@ function companionOf(input: DescentInput, elements: readonly DescentElement[]): 
  * mixing and assimilation compared on the same data.
  *
  * @param suite n ≥ 5 samples with at least 4 elements in ppm; isotope ratios are used where they are there
- * @param options `analytes`, `isotopes`, `incompatible` with `incompatibleD`, `parent`, `assimilant`, `relativeError`, `scatter`, `ratioError`, `level`
+ * @param options `analytes`, `isotopes`, `incompatible` with `incompatibleD`, `parent`, `assimilant`, `relativeError`, `scatter`, `ratioError`,
+ *   `level`
  * @returns elements (slope, D, parent ppm), samples (F, chi-square, whether they belong), rivals by BIC, the companion test, and the finding in words
  * @throws RangeError naming the bad argument, or too few samples or elements
  * @source Allègre et al. 1977; Minster & Allègre 1978; Langmuir et al. 1978 (companion plot); DePaolo 1981; Kass & Raftery 1995 (words for
@@ -209,7 +226,11 @@ export function fitDescent(suite: Suite, options: FitDescentOptions = {}): Desce
   const who = 'fitDescent';
   if (!(suite instanceof Suite)) throw new TypeError(`${who}: the first argument must be a suite.`);
   const fraction = (value: number | undefined, name: string, usual: number) => readNumber(value ?? usual, who, name, { from: 0, to: 1, open: 'to' });
-  const errors = { relative: fraction(options.relativeError, 'relativeError', 0.05), scatter: fraction(options.scatter, 'scatter', 0.03), ratio: options.ratioError === undefined ? undefined : fraction(options.ratioError, 'ratioError', 0) };
+  const errors = {
+    relative: fraction(options.relativeError, 'relativeError', 0.05),
+    scatter: fraction(options.scatter, 'scatter', 0.03),
+    ratio: options.ratioError === undefined ? undefined : fraction(options.ratioError, 'ratioError', 0),
+  };
   if (errors.relative + errors.scatter === 0) throw new RangeError(`${who}: relativeError and scatter are both 0; something must be uncertain.`);
   const level = readNumber(options.level ?? 0.01, who, 'level', { from: 0, to: 1, open: 'both' });
   const input = gatherDescent(suite, options.analytes, options.isotopes, errors, who);
@@ -218,41 +239,65 @@ export function fitDescent(suite: Suite, options: FitDescentOptions = {}): Desce
   if (input.left.length > 0) notes.push(`Left out for too few elements: ${input.left.join(', ')}.`);
   const line = describeLine(input, fits.get('crystallisation')!, options, who);
   const best = Math.min(...[...fits.values()].map(({ bic }) => bic));
-  const rivals = [...fits].map(([process, fit]): DescentRival => ({
-    process, misfit: fit.misfit, parameters: fit.model.free, bic: fit.bic, difference: fit.bic - best, unexplained: input.names.filter((_, s) => fit.misfits[s] > fit.limits[s]),
-  })).sort((a, b) => a.bic - b.bic);
+  const rivals = [...fits]
+    .map(
+      ([process, fit]): DescentRival => ({
+        process,
+        misfit: fit.misfit,
+        parameters: fit.model.free,
+        bic: fit.bic,
+        difference: fit.bic - best,
+        unexplained: input.names.filter((_, s) => fit.misfits[s] > fit.limits[s]),
+      }),
+    )
+    .sort((a, b) => a.bic - b.bic);
   const lead = rivals[1].difference;
-  const preferred = lead < 2 ? 'not distinguished' : rivals[0].process;
+  const preferred = lead < evidenceNeeded ? 'not distinguished' : rivals[0].process;
   const companion = companionOf(input, line.elements);
-  notes.push(`Errors: elements ${100 * errors.relative} % where they have none of their own, with ${100 * errors.scatter} % scatter of the lavas. F is by ${input.elements[line.reference]}, taken as D = ${options.incompatibleD ?? 0}.`);
-  const out = line.samples.filter(({ belongs }) => !belongs);
-  const why = [
-    preferred === 'not distinguished'
-      ? `Not distinguished: ${rivals[0].process} and ${rivals[1].process} explain the suite equally well (BIC differs by ${lead.toFixed(1)}).`
-      : `${rivals[0].process[0].toUpperCase()}${rivals[0].process.slice(1)} is preferred over ${rivals.slice(1).map((each) => `${each.process} (BIC ${each.difference.toFixed(1)} higher)`).join(' and ')}: ${strength(lead)} evidence.`,
-    rivals[0].unexplained.length > 0.3 * input.samples ? `Yet it leaves ${rivals[0].unexplained.length} of ${input.samples} samples unexplained, so no single process of these fits the whole suite.` : '',
-    out.length === 0 ? 'All samples lie on one liquid line of descent within their errors.' : `Not on the line of descent: ${out.map(({ sample, excludedBy, off }) => `${sample} (${excludedBy}, ${Math.abs(off).toFixed(1)}σ too ${off > 0 ? 'high' : 'low'})`).join(', ')}.`,
-    atTheEnd(line.samples) ? 'They are the most evolved ones, all together: a change in the crystallising assemblage would look the same, so fit the two segments apart before calling them foreign.' : '',
-  ].filter((text) => text !== '').join(' ');
+  notes.push(
+    `Errors: elements ${100 * errors.relative} % where they have none of their own, with ${100 * errors.scatter} % scatter of the lavas. ` +
+      `F is by ${input.elements[line.reference]}, taken as D = ${options.incompatibleD ?? 0}.`,
+  );
+  const why = descentFindings(rivals, line.samples);
   const because = step(
-    who, { samples: input.samples, elements: [...input.elements], isotopes: [...input.isotopes], relative: errors.relative, scatter: errors.scatter, ratio: errors.ratio ?? 'usual', level, incompatible: input.elements[line.reference], incompatibleD: options.incompatibleD ?? 0, parent: line.parentName, preferred },
-    { sources: ['allegre_1977', 'minster_allegre_1978', 'langmuir_1978', 'kass_raftery_1995', ...(assimilant === undefined ? [] : ['depaolo_1981'])] },
+    who,
+    {
+      samples: input.samples,
+      elements: [...input.elements],
+      isotopes: [...input.isotopes],
+      relative: errors.relative,
+      scatter: errors.scatter,
+      ratio: errors.ratio ?? 'usual',
+      level,
+      incompatible: input.elements[line.reference],
+      incompatibleD: options.incompatibleD ?? 0,
+      parent: line.parentName,
+      preferred,
+    },
+    {
+      sources: ['allegre_1977', 'minster_allegre_1978', 'langmuir_1978', 'kass_raftery_1995', ...(assimilant === undefined ? [] : ['depaolo_1981'])],
+    },
   );
   const lineage = [...joinLineage(suite.lineage, assimilant?.lineage ?? []), because];
   const parent = suiteOf({
-    columns: line.elements.map(({ element, parent: value, parentSigma }) => derivedColumn(element, Float64Array.of(value), 'ppm', Float64Array.of(value * parentSigma), 'element')),
-    labels: { sample: ['parent of the line'] }, lineage,
+    columns: line.elements.map(({ element, parent: value, parentSigma }) =>
+      derivedColumn(element, Float64Array.of(value), 'ppm', Float64Array.of(value * parentSigma), 'element'),
+    ),
+    labels: { sample: ['parent of the line'] },
+    lineage,
   });
-  const result = { elements: line.elements, samples: line.samples, parent, incompatible: input.elements[line.reference], rivals, preferred, r, companion, why, notes, lineage } satisfies Omit<DescentFit, 'toMimeBundle'>;
-  return showAs(result, (it) => ({
-    title: it.why,
-    columns: ['Sample', 'F', '1σ', 'χ²', 'Degrees of freedom', 'Probability', 'On the line', 'Excluded by', 'Off by (σ)'],
-    rows: [...it.samples].sort((a, b) => b.F - a.F).map((each): TableCell[] => [each.sample, each.F, each.FSigma, each.chiSquare, each.degreesOfFreedom, each.probability, each.belongs ? 'yes' : 'no', each.excludedBy, each.off]),
-    notes: [
-      `Slopes in log–log space against ${it.incompatible}, and the bulk D they mean: ${it.elements.map(({ element, slope, slopeSigma, D, DSigma }) => `${element} ${slope.toFixed(2)} ± ${slopeSigma.toFixed(2)} (D ${D.toFixed(2)} ± ${DSigma.toFixed(2)})`).join(', ')}.`,
-      `Rivals: ${it.rivals.map(({ process, bic, parameters, unexplained }) => `${process} BIC ${bic.toFixed(1)} with ${parameters} parameters, ${unexplained.length} unexplained`).join('; ')}${Number.isNaN(it.r) ? '' : ` (best r ${it.r.toFixed(2)})`}.`,
-      `Companion plot ${it.companion.y} against ${it.companion.x}: correlation ${it.companion.correlation.toFixed(3)}, bend ${it.companion.bend.toFixed(1)}σ (${Math.abs(it.companion.bend) > 3 ? 'not straight: two-component mixing is not the whole story' : 'straight within error'}).`,
-      ...it.notes,
-    ],
-  }));
+  const result = {
+    elements: line.elements,
+    samples: line.samples,
+    parent,
+    incompatible: input.elements[line.reference],
+    rivals,
+    preferred,
+    r,
+    companion,
+    why,
+    notes,
+    lineage,
+  } satisfies Omit<DescentFit, 'toMimeBundle'>;
+  return showAs(result, descentView);
 }

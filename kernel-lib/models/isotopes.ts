@@ -12,8 +12,8 @@ export function isotopeElement(symbol: string): string | undefined {
 }
 
 /**
- * Relative 1σ of an isotope ratio where an analysis does not give its own: 0.00003 for Sr, Nd and Hf, 0.001 for Pb and Os, whose mass fractionation is
- * larger. Common practice, between laboratories.
+ * Relative 1σ of an isotope ratio where an analysis does not give its own: 0.00003 for Sr, Nd and Hf, 0.001 for Pb and Os, whose mass fractionation
+ * is larger. Common practice, between laboratories.
  */
 export function usualRatioError(ratio: string): number {
   return ['Pb', 'Os'].includes(isotopeElement(ratio) ?? '') ? 1e-3 : 3e-5;

@@ -35,7 +35,8 @@ export function checkRedox(redox: LiquidRedox, who: string): void {
     readNumber(redox, who, 'redox', { from: 0, to: 1 });
     return;
   }
-  if (typeof redox !== 'object' || redox === null || !buffers.includes(redox.buffer)) throw new RangeError(`${who}: redox must be Fe3+/ΣFe from 0 to 1, or { buffer: ${buffers.map((name) => `"${name}"`).join(' | ')}, offset }.`);
+  if (typeof redox !== 'object' || redox === null || !buffers.includes(redox.buffer))
+    throw new RangeError(`${who}: redox must be Fe3+/ΣFe from 0 to 1, or { buffer: ${buffers.map((name) => `"${name}"`).join(' | ')}, offset }.`);
   if (redox.offset !== undefined) readNumber(redox.offset, who, 'redox.offset', { from: -10, to: 10 });
 }
 
@@ -49,8 +50,16 @@ export function ferricShareOf(oxides: ArrayLike<number>, redox: LiquidRedox, tem
   return (2 * ratio) / (1 + 2 * ratio);
 }
 
-/** @internal Temperature (°C) and Fe3+/ΣFe of one liquid. The olivine thermometer and the redox state depend on each other, so they settle together. */
-export function settle(oxides: ArrayLike<number>, thermometer: LiquidThermometer, water: number, pressure: number, redox: LiquidRedox): { temperature: number; ferric: number } {
+/**
+ * @internal Temperature (°C) and Fe3+/ΣFe of one liquid. The olivine thermometer and the redox state depend on each other, so they settle together.
+ */
+export function settle(
+  oxides: ArrayLike<number>,
+  thermometer: LiquidThermometer,
+  water: number,
+  pressure: number,
+  redox: LiquidRedox,
+): { temperature: number; ferric: number } {
   let temperature = thermometer === 'magnesia' ? magnesiaTemperature(oxides) : liquidTemperature(oxides, water);
   let ferric = ferricShareOf(oxides, redox, temperature, pressure);
   if (thermometer !== 'olivine-liquid') return { temperature, ferric };
@@ -66,12 +75,26 @@ export function settle(oxides: ArrayLike<number>, thermometer: LiquidThermometer
 }
 
 /** @internal What of a liquid is outside the published ranges of the methods used. */
-export function outsideRanges(oxides: ArrayLike<number>, thermometer: string | undefined, water: number, temperature: number, pressure: number): string[] {
+export function outsideRanges(
+  oxides: ArrayLike<number>,
+  thermometer: string | undefined,
+  water: number,
+  temperature: number,
+  pressure: number,
+): string[] {
   const flags: string[] = [];
   const table = thermometers();
   const of: Readonly<Record<string, number>> = { MgO: oxides[place.MgO], SiO2: oxides[place.SiO2], H2O: water };
-  const ranges = thermometer === 'magnesia' ? table.magnesia.range : thermometer === 'liquid' ? table.liquid.range : thermometer === 'olivine-liquid' ? table.olivineLiquid.range : {};
-  for (const [what, [low, high]] of Object.entries(ranges)) if (of[what] < low || of[what] > high) flags.push(`temperature: ${what} outside ${low}–${high} wt %`);
+  const ranges =
+    thermometer === 'magnesia'
+      ? table.magnesia.range
+      : thermometer === 'liquid'
+        ? table.liquid.range
+        : thermometer === 'olivine-liquid'
+          ? table.olivineLiquid.range
+          : {};
+  for (const [what, [low, high]] of Object.entries(ranges))
+    if (of[what] < low || of[what] > high) flags.push(`temperature: ${what} outside ${low}–${high} wt %`);
   const [dryLow, dryHigh] = densityTable().range.temperature;
   if (temperature < dryLow || temperature > dryHigh) flags.push(`density: extrapolated from ${dryLow}–${dryHigh} °C`);
   const [low, high] = viscosityTable().range.temperature;
@@ -100,7 +123,8 @@ export function withLiquidProperties(suite: Suite, conditions: LiquidConditions)
   const { temperature } = conditions ?? {};
   const isThermometer = typeof temperature === 'string' && thermometerNames.includes(temperature);
   if (typeof temperature === 'number') readNumber(temperature, who, 'temperature', { from: 300, to: 2500 });
-  else if (typeof temperature !== 'string') throw new RangeError(`${who}: temperature must be °C, the name of a column, or one of ${thermometerNames.join(', ')}.`);
+  else if (typeof temperature !== 'string')
+    throw new RangeError(`${who}: temperature must be °C, the name of a column, or one of ${thermometerNames.join(', ')}.`);
   const temperatures = typeof temperature === 'string' && !isThermometer ? suite.column(temperature).values : undefined;
   const { water = resolveColumn(suite, 'H2O') === undefined ? 0 : 'H2O' } = conditions;
   if (typeof water === 'number') readNumber(water, who, 'water', { from: 0, to: 30 });
@@ -129,11 +153,23 @@ export function withLiquidProperties(suite: Suite, conditions: LiquidConditions)
     flags[i] = outsideRanges(oxides, isThermometer ? (temperature as string) : undefined, H2O[i], T[i], pressure).join('; ');
   }
   const sources = propertySources(isThermometer ? (temperature as LiquidThermometer) : undefined, redox);
-  const because = step(who, { temperature, pressure, water, redox: typeof redox === 'number' ? redox : { buffer: redox.buffer, offset: redox.offset ?? 0 } }, { sources, tables: ['thermometers.json', 'melt-density.json', 'melt-viscosity.json', 'iron-oxidation.json', 'atomic-weights.csv'] });
-  return suite.with(
-    [derivedColumn('temperature', T, '°C'), derivedColumn('water', H2O, 'wt%'), derivedColumn('ferric share', share, ''), derivedColumn('density', density, 'g/cm³'), derivedColumn('viscosity', viscosity, 'log10 Pa s')],
-    because,
-  ).withLabels({ 'liquid range': flags });
+  const because = step(
+    who,
+    { temperature, pressure, water, redox: typeof redox === 'number' ? redox : { buffer: redox.buffer, offset: redox.offset ?? 0 } },
+    { sources, tables: ['thermometers.json', 'melt-density.json', 'melt-viscosity.json', 'iron-oxidation.json', 'atomic-weights.csv'] },
+  );
+  return suite
+    .with(
+      [
+        derivedColumn('temperature', T, '°C'),
+        derivedColumn('water', H2O, 'wt%'),
+        derivedColumn('ferric share', share, ''),
+        derivedColumn('density', density, 'g/cm³'),
+        derivedColumn('viscosity', viscosity, 'log10 Pa s'),
+      ],
+      because,
+    )
+    .withLabels({ 'liquid range': flags });
 }
 
 /** @internal Source keys of the methods behind a liquid's properties. */
@@ -141,8 +177,17 @@ export function propertySources(thermometer: LiquidThermometer | undefined, redo
   const table = thermometers();
   const { silicates, sodaTitania, water } = densityTable();
   return [
-    ...(thermometer === 'magnesia' ? [table.magnesia.source] : thermometer === 'liquid' ? [table.liquid.source] : thermometer === 'olivine-liquid' ? [table.olivineLiquid.source, table.exchange.source] : []),
+    ...(thermometer === 'magnesia'
+      ? [table.magnesia.source]
+      : thermometer === 'liquid'
+        ? [table.liquid.source]
+        : thermometer === 'olivine-liquid'
+          ? [table.olivineLiquid.source, table.exchange.source]
+          : []),
     ...(typeof redox === 'number' ? [] : ['kress_carmichael_1991', 'frost_br_1991']),
-    silicates.source, sodaTitania.source, water.source, viscosityTable().source,
+    silicates.source,
+    sodaTitania.source,
+    water.source,
+    viscosityTable().source,
   ];
 }

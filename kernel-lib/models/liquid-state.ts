@@ -11,7 +11,10 @@ let cached: { molar: Float64Array; cations: Float64Array } | undefined;
 
 /** @internal Molar masses and cations a formula unit, in the majors' order. */
 export function majorMasses(): { molar: Float64Array; cations: Float64Array } {
-  return (cached ??= { molar: Float64Array.from(majorOxides, (oxide) => molarMass(oxide)), cations: Float64Array.from(majorOxides, (oxide) => cationsPerFormula(oxide)) });
+  return (cached ??= {
+    molar: Float64Array.from(majorOxides, (oxide) => molarMass(oxide)),
+    cations: Float64Array.from(majorOxides, (oxide) => cationsPerFormula(oxide)),
+  });
 }
 
 /** @internal Cation fractions of an anhydrous liquid (wt % in the majors' order), written into `out`. */

@@ -104,7 +104,11 @@ export function settledLabel(columns: readonly { readonly chosen: Pick<ChosenMin
 }
 
 /** Where a range settled: as a point of the solid solution where both ends are (`An71`), else as shares of the ends. */
-function settled(first: { label: string; oxides: ReadonlyMap<string, number> }, second: { label: string; oxides: ReadonlyMap<string, number> }, share: number): string {
+function settled(
+  first: { label: string; oxides: ReadonlyMap<string, number> },
+  second: { label: string; oxides: ReadonlyMap<string, number> },
+  share: number,
+): string {
   const numbers = [/^([A-Za-z]+)(\d+(?:\.\d+)?)$/.exec(first.label), /^([A-Za-z]+)(\d+(?:\.\d+)?)$/.exec(second.label)];
   if (numbers[0] !== null && numbers[1] !== null && numbers[0][1] === numbers[1][1]) {
     const molar = molarFraction(numbers[0][1], first.oxides, second.oxides, share);
@@ -204,7 +208,8 @@ export function freedom(input: BalanceInput, solver: BalanceSolver): number {
  * @returns F, masses and shares of the phases with intervals, residuals by oxide (wt %), ΣR², chi-square with its probability, correlations
  * @throws RangeError or TypeError naming the argument and what is allowed
  * @source Bryan et al. 1969; Wright & Doherty 1970; Bro & De Jong 1997 (non-negative least squares)
- * @example massBalance({ parent: suite.sample('KE-20'), daughter: suite.sample('KE-10'), minerals: { olivine: 'Fo80', clinopyroxene: 'Wo42En46Fs12', plagioclase: { between: ['An50', 'An90'] } } })
+ * @example massBalance({ parent: suite.sample('KE-20'), daughter: suite.sample('KE-10'), minerals: { olivine: 'Fo80', clinopyroxene:
+ *   'Wo42En46Fs12', plagioclase: { between: ['An50', 'An90'] } } })
  */
 export function massBalance(options: MassBalanceOptions): MassBalance {
   const who = 'massBalance';
@@ -220,13 +225,23 @@ export function massBalance(options: MassBalanceOptions): MassBalance {
   const { phases: names, masses } = joinColumns(input, solver.x);
   const width = names.length + 1;
   const crystals = masses.reduce((sum, mass) => sum + Math.max(0, mass), 0);
-  const phases = names.map((phase, j): BalancePhase => ({
-    phase, ...labelOf(input, phase, solver.x), ...spread(rows, width, j + 1, masses[j]), ofCrystals: masses[j] > 0 ? masses[j] / crystals : 0,
-  }));
-  const residuals = oxides.map((oxide, i): BalanceResidual => ({
-    oxide, parent: problem.parent[i], fitted: problem.parent[i] - solver.residuals[i], residual: solver.residuals[i],
-    sigma: hasErrors ? Math.sqrt(problem.parentVariance[i] + solver.F ** 2 * problem.daughterVariance[i]) : NaN,
-  }));
+  const phases = names.map(
+    (phase, j): BalancePhase => ({
+      phase,
+      ...labelOf(input, phase, solver.x),
+      ...spread(rows, width, j + 1, masses[j]),
+      ofCrystals: masses[j] > 0 ? masses[j] / crystals : 0,
+    }),
+  );
+  const residuals = oxides.map(
+    (oxide, i): BalanceResidual => ({
+      oxide,
+      parent: problem.parent[i],
+      fitted: problem.parent[i] - solver.residuals[i],
+      residual: solver.residuals[i],
+      sigma: hasErrors ? Math.sqrt(problem.parentVariance[i] + solver.F ** 2 * problem.daughterVariance[i]) : NaN,
+    }),
+  );
   const degreesOfFreedom = freedom(input, solver);
   const chiSquare = hasErrors ? solver.chiSquare : NaN;
   const probability = degreesOfFreedom > 0 && hasErrors ? 1 - jStat.chisquare.cdf(chiSquare, degreesOfFreedom) : NaN;
@@ -238,14 +253,38 @@ export function massBalance(options: MassBalanceOptions): MassBalance {
   const because = step(
     who,
     {
-      oxides: [...oxides], basis: options.basis ?? 'volatile-free', closure: options.closure ?? 'exact', errors: input.errorModel, draws: hasErrors ? draws : 0, seed,
+      oxides: [...oxides],
+      basis: options.basis ?? 'volatile-free',
+      closure: options.closure ?? 'exact',
+      errors: input.errorModel,
+      draws: hasErrors ? draws : 0,
+      seed,
       phases: input.columns.map(({ phase, chosen }) => [phase, chosen.mineral, chosen.label, chosen.source, chosen.standing]),
     },
-    { sources: ['bryan_1969', 'wright_doherty_1970', 'bro_de_jong_1997', ...new Set(input.columns.filter(({ chosen }) => chosen.standing !== 'supplied').map(({ chosen }) => chosen.source))], tables: ['mineral-compositions.csv', 'atomic-weights.csv'] },
+    {
+      sources: [
+        'bryan_1969',
+        'wright_doherty_1970',
+        'bro_de_jong_1997',
+        ...new Set(input.columns.filter(({ chosen }) => chosen.standing !== 'supplied').map(({ chosen }) => chosen.source)),
+      ],
+      tables: ['mineral-compositions.csv', 'atomic-weights.csv'],
+    },
   );
   const result = {
-    F: spread(rows, width, 0, solver.F), phases, residuals, sumOfSquares, chiSquare, degreesOfFreedom, probability,
-    correlation: correlations(rows, width), parent: input.parent, daughter: input.daughter, draws: rows, errorModel: input.errorModel, notes,
+    F: spread(rows, width, 0, solver.F),
+    phases,
+    residuals,
+    sumOfSquares,
+    chiSquare,
+    degreesOfFreedom,
+    probability,
+    correlation: correlations(rows, width),
+    parent: input.parent,
+    daughter: input.daughter,
+    draws: rows,
+    errorModel: input.errorModel,
+    notes,
     lineage: [...joinLineage(input.parent.lineage, input.daughter.lineage, input.assimilant?.lineage ?? []), because],
   };
   return showAs(result, (it) => balanceView(it));
@@ -253,13 +292,26 @@ export function massBalance(options: MassBalanceOptions): MassBalance {
 
 function balanceView(it: Omit<MassBalance, 'toMimeBundle'>) {
   const percent = (value: number): TableCell => (Number.isFinite(value) ? Number((100 * value).toFixed(2)) : null);
-  const row = (name: string, label: string, of: BalanceEstimate, share: number): TableCell[] => [name, label, percent(of.value), percent(of.sigma), percent(of.low), percent(of.high), percent(share)];
+  const row = (name: string, label: string, of: BalanceEstimate, share: number): TableCell[] => [
+    name,
+    label,
+    percent(of.value),
+    percent(of.sigma),
+    percent(of.low),
+    percent(of.high),
+    percent(share),
+  ];
   const { daughter, parent, residuals, sumOfSquares, chiSquare, degreesOfFreedom, probability } = it;
-  const fit = Number.isFinite(chiSquare) ? `; chi-square ${chiSquare.toPrecision(3)} for ${degreesOfFreedom} degrees of freedom (probability ${probability.toPrecision(2)})` : '';
+  const fit = Number.isFinite(chiSquare)
+    ? `; chi-square ${chiSquare.toPrecision(3)} for ${degreesOfFreedom} degrees of freedom (probability ${probability.toPrecision(2)})`
+    : '';
   return {
     title: `${parent.samples[0]} = F · ${daughter.samples[0]} + crystals, % of the parent's mass`,
     columns: ['Part', 'Composition', 'Mass %', '1σ', '95 % from', 'to', '% of crystals'],
-    rows: [row('liquid (daughter)', daughter.samples[0], it.F, NaN), ...it.phases.map((phase) => row(phase.phase, phase.label, phase, phase.value > 0 ? phase.ofCrystals : NaN))],
+    rows: [
+      row('liquid (daughter)', daughter.samples[0], it.F, NaN),
+      ...it.phases.map((phase) => row(phase.phase, phase.label, phase, phase.value > 0 ? phase.ofCrystals : NaN)),
+    ],
     notes: [
       `ΣR² ${sumOfSquares.toPrecision(3)}${fit}. Errors: ${it.errorModel}.`,
       `Residuals, parent − fit (wt %): ${residuals.map(({ oxide, residual }) => `${oxide} ${residual.toFixed(3)}`).join(', ')}.`,

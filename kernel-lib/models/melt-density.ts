@@ -17,8 +17,10 @@ function volumes(): NonNullable<typeof cached> {
   const table = densityTable().silicates.volumes;
   const of = (oxide: string) => table[oxide === 'FeOT' ? 'FeO' : oxide] ?? { V: 0, dVdT: 0, dVdP: 0 };
   return (cached = {
-    order: Float64Array.from(majorOxides, (oxide) => of(oxide).V), dT: Float64Array.from(majorOxides, (oxide) => of(oxide).dVdT),
-    dP: Float64Array.from(majorOxides, (oxide) => of(oxide).dVdP), ferric: table.Fe2O3,
+    order: Float64Array.from(majorOxides, (oxide) => of(oxide).V),
+    dT: Float64Array.from(majorOxides, (oxide) => of(oxide).dVdT),
+    dP: Float64Array.from(majorOxides, (oxide) => of(oxide).dVdP),
+    ferric: table.Fe2O3,
   });
 }
 

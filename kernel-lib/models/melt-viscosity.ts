@@ -19,16 +19,39 @@ export function meltViscosityOf(oxides: ArrayLike<number>, water: number, temper
   for (let i = 0; i < majors; i++) mol[i] *= 100 / moles;
   const H2O = (100 * (water / molarMass('H2O'))) / moles;
   const [SiO2, TiO2, Al2O3, FeO, MnO, MgO, CaO, Na2O, K2O, P2O5] = [
-    mol[place.SiO2], mol[place.TiO2], mol[place.Al2O3], mol[place.FeOT], mol[place.MnO], mol[place.MgO], mol[place.CaO], mol[place.Na2O], mol[place.K2O], mol[place.P2O5],
+    mol[place.SiO2],
+    mol[place.TiO2],
+    mol[place.Al2O3],
+    mol[place.FeOT],
+    mol[place.MnO],
+    mol[place.MgO],
+    mol[place.CaO],
+    mol[place.Na2O],
+    mol[place.K2O],
+    mol[place.P2O5],
   ];
   const TA = TiO2 + Al2O3;
   const FM = FeO + MnO + MgO;
   const NK = Na2O + K2O;
   const b =
-    B['SiO2+TiO2'] * (SiO2 + TiO2) + B['Al2O3'] * Al2O3 + B['FeO+MnO+P2O5'] * (FeO + MnO + P2O5) + B['MgO'] * MgO + B['CaO'] * CaO + B['Na2O+V'] * (Na2O + H2O) +
-    B['V+ln(1+H2O)'] * (H2O + Math.log(1 + H2O)) + B['(SiO2+TiO2)*FM'] * (SiO2 + TiO2) * FM + B['(SiO2+TA+P2O5)*(NK+H2O)'] * (SiO2 + TA + P2O5) * (NK + H2O) + B['Al2O3*NK'] * Al2O3 * NK;
+    B['SiO2+TiO2'] * (SiO2 + TiO2) +
+    B['Al2O3'] * Al2O3 +
+    B['FeO+MnO+P2O5'] * (FeO + MnO + P2O5) +
+    B['MgO'] * MgO +
+    B['CaO'] * CaO +
+    B['Na2O+V'] * (Na2O + H2O) +
+    B['V+ln(1+H2O)'] * (H2O + Math.log(1 + H2O)) +
+    B['(SiO2+TiO2)*FM'] * (SiO2 + TiO2) * FM +
+    B['(SiO2+TA+P2O5)*(NK+H2O)'] * (SiO2 + TA + P2O5) * (NK + H2O) +
+    B['Al2O3*NK'] * Al2O3 * NK;
   const c =
-    C['SiO2'] * SiO2 + C['TA'] * TA + C['FM'] * FM + C['CaO'] * CaO + C['NK'] * NK + C['ln(1+V)'] * Math.log(1 + H2O) + C['(Al2O3+FM+CaO-P2O5)*(NK+V)'] * (Al2O3 + FM + CaO - P2O5) * (NK + H2O);
+    C['SiO2'] * SiO2 +
+    C['TA'] * TA +
+    C['FM'] * FM +
+    C['CaO'] * CaO +
+    C['NK'] * NK +
+    C['ln(1+V)'] * Math.log(1 + H2O) +
+    C['(Al2O3+FM+CaO-P2O5)*(NK+V)'] * (Al2O3 + FM + CaO - P2O5) * (NK + H2O);
   return { log10: A + b / (temperature + celsius - c), B: b, C: c };
 }
 
@@ -42,6 +65,7 @@ export function meltViscosityOf(oxides: ArrayLike<number>, water: number, temper
  */
 export function suspensionFactor(crystals: number): number {
   const { most, power } = viscosityTable().crystals;
-  if (!(crystals >= 0 && crystals < most)) throw new RangeError(`suspensionFactor: crystals is ${String(crystals)}; give a volume fraction from 0 to below ${most}, where crystals lock.`);
+  if (!(crystals >= 0 && crystals < most))
+    throw new RangeError(`suspensionFactor: crystals is ${String(crystals)}; give a volume fraction from 0 to below ${most}, where crystals lock.`);
   return (1 - crystals / most) ** power;
 }

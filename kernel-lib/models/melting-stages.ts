@@ -62,7 +62,12 @@ export interface MeltedElement {
  * @param retained Φ: melt held in the rock, as a mass fraction of solid and melt together (0 ≤ Φ < 1)
  * @param fractions ascending melt fractions, of the solid at the start
  */
-export function meltByExtraction(stages: readonly MeltingStage[], coefficients: ArrayLike<number>, retained: number, fractions: ArrayLike<number>): readonly MeltedElement[] {
+export function meltByExtraction(
+  stages: readonly MeltingStage[],
+  coefficients: ArrayLike<number>,
+  retained: number,
+  fractions: ArrayLike<number>,
+): readonly MeltedElement[] {
   const perSolid = retained / (1 - retained);
   const results: MeltedElement[] = [];
   const held = (stage: MeltingStage, F: number): number => {
@@ -113,7 +118,11 @@ export function meltByExtraction(stages: readonly MeltingStage[], coefficients: 
 }
 
 /** Batch melting of one element: the melt stays with the solid, whatever phases have run out on the way. */
-export function meltInBatch(stages: readonly MeltingStage[], coefficients: ArrayLike<number>, fractions: ArrayLike<number>): readonly MeltedElement[] {
+export function meltInBatch(
+  stages: readonly MeltingStage[],
+  coefficients: ArrayLike<number>,
+  fractions: ArrayLike<number>,
+): readonly MeltedElement[] {
   return Array.from(fractions, (F) => {
     const at = stages.find((stage) => F <= stage.to) ?? stages[stages.length - 1];
     let hold = 0;

@@ -22,18 +22,33 @@ export interface ChosenMineral {
 type Moles = Readonly<Record<string, number>>;
 
 /** Moles of oxides for one formula unit along each solid solution, from the end members' ideal formulas. */
-const solidSolutions: readonly { readonly mineral: string; readonly pattern: RegExp; readonly moles: (parts: readonly number[]) => Moles | undefined }[] = [
+const solidSolutions: readonly {
+  readonly mineral: string;
+  readonly pattern: RegExp;
+  readonly moles: (parts: readonly number[]) => Moles | undefined;
+}[] = [
   { mineral: 'olivine', pattern: /^Fo(\d+(?:\.\d+)?)$/, moles: ([Fo]) => (Fo <= 100 ? { SiO2: 1, MgO: Fo / 50, FeO: 2 - Fo / 50 } : undefined) },
   {
-    mineral: 'plagioclase', pattern: /^An(\d+(?:\.\d+)?)$/,
+    mineral: 'plagioclase',
+    pattern: /^An(\d+(?:\.\d+)?)$/,
     moles: ([An]) => (An <= 100 ? { SiO2: 3 - An / 100, Al2O3: (1 + An / 100) / 2, CaO: An / 100, Na2O: (1 - An / 100) / 2 } : undefined),
   },
   ...['clinopyroxene', 'orthopyroxene'].map((mineral) => ({
-    mineral, pattern: /^Wo(\d+(?:\.\d+)?)En(\d+(?:\.\d+)?)Fs(\d+(?:\.\d+)?)$/,
-    moles: ([Wo, En, Fs]: readonly number[]) => (Math.abs(Wo + En + Fs - 100) <= 1.5 ? { SiO2: (Wo + En + Fs) / 50, CaO: Wo / 50, MgO: En / 50, FeO: Fs / 50 } : undefined),
+    mineral,
+    pattern: /^Wo(\d+(?:\.\d+)?)En(\d+(?:\.\d+)?)Fs(\d+(?:\.\d+)?)$/,
+    moles: ([Wo, En, Fs]: readonly number[]) =>
+      Math.abs(Wo + En + Fs - 100) <= 1.5 ? { SiO2: (Wo + En + Fs) / 50, CaO: Wo / 50, MgO: En / 50, FeO: Fs / 50 } : undefined,
   })),
-  { mineral: 'magnetite', pattern: /^(?:titanomagnetite )?Usp(\d+(?:\.\d+)?)$/, moles: ([Usp]) => (Usp <= 100 ? { TiO2: Usp / 100, FeO: 1 + Usp / 100, Fe2O3: 1 - Usp / 100 } : undefined) },
-  { mineral: 'ilmenite', pattern: /^Ilm(\d+(?:\.\d+)?)$/, moles: ([Ilm]) => (Ilm <= 100 ? { TiO2: Ilm / 100, FeO: Ilm / 100, Fe2O3: 1 - Ilm / 100 } : undefined) },
+  {
+    mineral: 'magnetite',
+    pattern: /^(?:titanomagnetite )?Usp(\d+(?:\.\d+)?)$/,
+    moles: ([Usp]) => (Usp <= 100 ? { TiO2: Usp / 100, FeO: 1 + Usp / 100, Fe2O3: 1 - Usp / 100 } : undefined),
+  },
+  {
+    mineral: 'ilmenite',
+    pattern: /^Ilm(\d+(?:\.\d+)?)$/,
+    moles: ([Ilm]) => (Ilm <= 100 ? { TiO2: Ilm / 100, FeO: Ilm / 100, Fe2O3: 1 - Ilm / 100 } : undefined),
+  },
 ];
 
 /**
@@ -61,7 +76,9 @@ const known = (mineral: string): boolean => mineralCompositions().some((entry) =
 
 /** The mineral that a name begins with: `plagioclase`, `plagioclase 2` and `plagioclase rim` are all plagioclase. */
 export function mineralOf(name: string): string {
-  return [...new Set(mineralCompositions().map((entry) => entry.mineral))].find((mineral) => name === mineral || name.startsWith(`${mineral} `)) ?? name;
+  return (
+    [...new Set(mineralCompositions().map((entry) => entry.mineral))].find((mineral) => name === mineral || name.startsWith(`${mineral} `)) ?? name
+  );
 }
 
 function lookUp(name: string, choice: string): Omit<ChosenMineral, 'name' | 'oxides'> & { raw: ReadonlyMap<string, number> } {
@@ -82,23 +99,41 @@ export function chooseMineral(name: string, choice: MineralChoice | undefined, w
     const labels = mineralCompositions().filter((entry) => entry.mineral === mineralOf(name));
     if (labels.length === 1) return chooseMineral(name, labels[0], who);
     const list = labels.map(({ label }) => `"${label}"`).join(', ');
-    throw new RangeError(`${who}: the composition of ${name} is not given. ${list === '' ? 'Give an analysis: oxides in wt %.' : `Choose from the tables (${list}), a point of its solid solution, or give an analysis.`}`);
+    const advice =
+      labels.length === 0 ? 'Give an analysis: oxides in wt %.' : `Choose from the tables (${list}), a point of its solid solution, or an analysis.`;
+    throw new RangeError(`${who}: the composition of ${name} is not given. ${advice}`);
   }
   if (typeof choice === 'string') {
     const { raw, ...rest } = lookUp(name, choice);
     return { name, ...rest, oxides: onBasis(raw, `${who}: ${name}`) };
   }
-  if (typeof choice !== 'object' || choice === null) throw new TypeError(`${who}: the composition of ${name} must be a label or an object of oxides in wt %.`);
+  if (typeof choice !== 'object' || choice === null)
+    throw new TypeError(`${who}: the composition of ${name} must be a label or an object of oxides in wt %.`);
   if (choice.oxides instanceof Map) {
     const entry = choice as MineralComposition;
-    return { name, mineral: entry.mineral, label: entry.label, oxides: onBasis(entry.oxides, `${who}: ${name}`), source: entry.source, standing: entry.standing };
+    return {
+      name,
+      mineral: entry.mineral,
+      label: entry.label,
+      oxides: onBasis(entry.oxides, `${who}: ${name}`),
+      source: entry.source,
+      standing: entry.standing,
+    };
   }
   const raw = new Map<string, number>();
   for (const [oxide, value] of Object.entries(choice as Readonly<Record<string, number>>)) {
-    if (typeof value !== 'number' || !Number.isFinite(value) || value < 0) throw new RangeError(`${who}: ${oxide} of ${name} is ${String(value)}; give wt %.`);
+    if (typeof value !== 'number' || !Number.isFinite(value) || value < 0)
+      throw new RangeError(`${who}: ${oxide} of ${name} is ${String(value)}; give wt %.`);
     raw.set(oxide, value);
   }
-  return { name, mineral: mineralOf(name), label: 'own analysis', oxides: onBasis(raw, `${who}: ${name}`), source: 'supplied by the user', standing: 'supplied' };
+  return {
+    name,
+    mineral: mineralOf(name),
+    label: 'own analysis',
+    oxides: onBasis(raw, `${who}: ${name}`),
+    source: 'supplied by the user',
+    standing: 'supplied',
+  };
 }
 
 /** Oxides that stay on the volatile-free basis besides the ten majors. */
@@ -108,9 +143,10 @@ const others = ['Cr2O3', 'NiO', 'ZrO2'];
 function onBasis(raw: ReadonlyMap<string, number>, what: string): ReadonlyMap<string, number> {
   const oxides = new Map<string, number>();
   for (const oxide of [...majorOxides, ...others]) {
-    const value = oxide === 'FeOT'
-      ? (raw.get('FeOT') ?? (raw.get('FeO') ?? 0) + ((raw.get('Fe2O3') ?? 0) + (raw.get('Fe2O3T') ?? 0)) * massFactor('Fe2O3', 'FeO'))
-      : (raw.get(oxide) ?? 0);
+    const value =
+      oxide === 'FeOT'
+        ? (raw.get('FeOT') ?? (raw.get('FeO') ?? 0) + ((raw.get('Fe2O3') ?? 0) + (raw.get('Fe2O3T') ?? 0)) * massFactor('Fe2O3', 'FeO'))
+        : (raw.get(oxide) ?? 0);
     if (value > 0) oxides.set(oxide, value);
   }
   const sum = [...oxides.values()].reduce((total, value) => total + value, 0);

@@ -19,7 +19,8 @@ export interface MixOptions {
 
 function nameComponents(components: readonly Suite[], names: readonly string[] | undefined, who: string): readonly string[] {
   if (names !== undefined) {
-    if (!Array.isArray(names) || names.length !== components.length || new Set(names).size !== names.length) throw new RangeError(`${who}: names must hold ${components.length} different names.`);
+    if (!Array.isArray(names) || names.length !== components.length || new Set(names).size !== names.length)
+      throw new RangeError(`${who}: names must hold ${components.length} different names.`);
     return names;
   }
   const found = components.map((each) => each.samples[0]);
@@ -34,7 +35,10 @@ function chooseAnalytes(components: readonly Suite[], wanted: readonly string[] 
   };
   if (wanted !== undefined) {
     for (const symbol of wanted) {
-      if (!mixable(symbol)) throw new RangeError(`${who}: analytes holds "${String(symbol)}", which does not mix by mass; mix its parts and take the ratio of the result.`);
+      if (!mixable(symbol))
+        throw new RangeError(
+          `${who}: analytes holds "${String(symbol)}", which does not mix by mass; mix its parts and take the ratio of the result.`,
+        );
       if (!usable(symbol)) throw new RangeError(`${who}: not every component has a usable value of ${symbol}.`);
     }
     return wanted;
@@ -68,7 +72,8 @@ function sharesOf(count: number, steps: number): readonly Float64Array[] {
  */
 export function mix(options: MixOptions): ModelPath {
   const who = 'mix';
-  if (!Array.isArray(options?.components) || options.components.length < 2 || options.components.length > 3) throw new RangeError(`${who}: components must hold two or three analyses.`);
+  if (!Array.isArray(options?.components) || options.components.length < 2 || options.components.length > 3)
+    throw new RangeError(`${who}: components must hold two or three analyses.`);
   const components = options.components.map((each, i) => oneAnalysis(each, who, `components[${i}]`));
   const names = nameComponents(components, options.names, who);
   const notes: string[] = [];
@@ -77,7 +82,11 @@ export function mix(options: MixOptions): ModelPath {
     const element = isotopeElement(symbol);
     return element !== undefined && !components.every((each) => (resolveColumn(each, element)?.values[0] ?? NaN) >= 0);
   });
-  if (weightless.length > 0) throw new RangeError(`${who}: ${weightless.join(', ')} cannot be mixed without ${[...new Set(weightless.map((symbol) => isotopeElement(symbol)))].join(', ')} in every component.`);
+  if (weightless.length > 0)
+    throw new RangeError(
+      `${who}: ${weightless.join(', ')} cannot be mixed without ` +
+        `${[...new Set(weightless.map((symbol) => isotopeElement(symbol)))].join(', ')} in every component.`,
+    );
   const shares = sharesOf(components.length, readSteps(options.steps, who, 20));
   const size = shares[0].length;
   const liquid = new Map<string, Float64Array>();
@@ -97,10 +106,17 @@ export function mix(options: MixOptions): ModelPath {
   }
   const last = components.length - 1;
   return buildPath({
-    who, process: components.length === 2 ? 'Mixing of two' : 'Mixing of three', F: shares[last].slice(), meaning: `share of ${names[last]}`,
-    liquid, quantities: new Map(names.map((name, k) => [`share of ${name}`, { unit: '', values: shares[k] }])),
-    coefficients: [], notes, lineage: joinLineage(...components.map((each) => each.lineage)),
-    detail: { components: [...names], analytes: [...analytes] }, sources: ['langmuir_1978'],
+    who,
+    process: components.length === 2 ? 'Mixing of two' : 'Mixing of three',
+    F: shares[last].slice(),
+    meaning: `share of ${names[last]}`,
+    liquid,
+    quantities: new Map(names.map((name, k) => [`share of ${name}`, { unit: '', values: shares[k] }])),
+    coefficients: [],
+    notes,
+    lineage: joinLineage(...components.map((each) => each.lineage)),
+    detail: { components: [...names], analytes: [...analytes] },
+    sources: ['langmuir_1978'],
   });
 }
 
@@ -133,8 +149,12 @@ export interface MixingEnd {
  * @source Langmuir et al. 1978
  */
 export function mixingHyperbola(first: MixingEnd, second: MixingEnd): MixingHyperbola {
-  for (const [name, end] of [['first', first], ['second', second]] as const) {
-    for (const key of ['x', 'y', 'a', 'b'] as const) if (!Number.isFinite(end?.[key])) throw new RangeError(`mixingHyperbola: ${name}.${key} is ${String(end?.[key])}; give a number.`);
+  for (const [name, end] of [
+    ['first', first],
+    ['second', second],
+  ] as const) {
+    for (const key of ['x', 'y', 'a', 'b'] as const)
+      if (!Number.isFinite(end?.[key])) throw new RangeError(`mixingHyperbola: ${name}.${key} is ${String(end?.[key])}; give a number.`);
   }
   const [a1, b1, x1, y1] = [first.a, first.b, first.x, first.y];
   const [a2, b2, x2, y2] = [second.a, second.b, second.x, second.y];

@@ -12,7 +12,9 @@ export type Composition = Suite | Readonly<Record<string, number>>;
 export function oneAnalysis(from: Composition, who: string, argument: string): Suite {
   if (from instanceof Suite) {
     if (from.size !== 1) {
-      throw new RangeError(`${who}: ${argument} must be one analysis, but this suite has ${from.size} rows. Choose one with suite.sample('name') or suite.rows([0]).`);
+      throw new RangeError(
+        `${who}: ${argument} must be one analysis, but this suite has ${from.size} rows. Choose one with suite.sample('name') or suite.rows([0]).`,
+      );
     }
     return from;
   }

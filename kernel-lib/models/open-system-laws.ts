@@ -18,9 +18,8 @@ export function chamberTime(crystallised: number, q: number): number {
 }
 
 /**
- * Concentration in a magma that crystallises, assimilates and is recharged at constant rates:
- * C = C0·e^(−sτ) + (r·Ca + p·Cr)·(1 − e^(−sτ))/s with s = r + p + D − 1, τ from `chamberTime`. This one form holds DePaolo's separate cases
- * and passes smoothly through r + D = 1 and r = 1.
+ * Concentration in a magma that crystallises, assimilates and is recharged at constant rates: C = C0·e^(−sτ) + (r·Ca + p·Cr)·(1 − e^(−sτ))/s with s
+ * = r + p + D − 1, τ from `chamberTime`. This one form holds DePaolo's separate cases and passes smoothly through r + D = 1 and r = 1.
  *
  * @param start C0; `gain` r·Ca + p·Cr, in the unit of C0
  * @source DePaolo 1981, eq. 6a; DePaolo 1985 (with recharge)

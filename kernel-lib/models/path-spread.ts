@@ -64,7 +64,10 @@ export async function spreadOfPath(options: PathSpreadOptions): Promise<PathSpre
   const F = evenly(1, downTo, setup.steps);
   const law = mode === 'rayleigh' ? rayleighLiquid : equilibriumLiquid;
   // used is mineral by mineral, analyte by analyte.
-  const ranges = setup.used.map(({ value, low, high }) => [Math.log(Math.max(1e-9, Math.min(low, value * (1 - leastSpread)))), Math.log(Math.max(1e-9, high, value * (1 + leastSpread)))]);
+  const ranges = setup.used.map(({ value, low, high }) => [
+    Math.log(Math.max(1e-9, Math.min(low, value * (1 - leastSpread)))),
+    Math.log(Math.max(1e-9, high, value * (1 + leastSpread))),
+  ]);
   const spread = setup.analytes.map((symbol, a) => {
     const own = errorOf(setup.start, symbol);
     return own > 0 ? own / setup.amounts[a] : startError;
@@ -93,14 +96,50 @@ export async function spreadOfPath(options: PathSpreadOptions): Promise<PathSpre
   }
   options.progress?.(draws, draws);
   const because = step(
-    who, { ...setup.detail, downTo, mode, draws, seed: options.seed ?? 1, startError, shareError, leastSpread, coefficients: setup.used.map(({ mineral, analyte, meltType, value, low, high, source, standing }) => [mineral, analyte, meltType, value, low, high, source, standing]) },
-    { sources: [...new Set([...(mode === 'rayleigh' ? ['neumann_1954', 'gast_1968'] : ['shaw_1970']), ...sourcesOf(setup.used)])], tables: ['partition-coefficients.csv'] },
+    who,
+    {
+      ...setup.detail,
+      downTo,
+      mode,
+      draws,
+      seed: options.seed ?? 1,
+      startError,
+      shareError,
+      leastSpread,
+      coefficients: setup.used.map(({ mineral, analyte, meltType, value, low, high, source, standing }) => [
+        mineral,
+        analyte,
+        meltType,
+        value,
+        low,
+        high,
+        source,
+        standing,
+      ]),
+    },
+    {
+      sources: [...new Set([...(mode === 'rayleigh' ? ['neumann_1954', 'gast_1968'] : ['shaw_1970']), ...sourcesOf(setup.used)])],
+      tables: ['partition-coefficients.csv'],
+    },
   );
   const lineage = [...setup.start.lineage, because];
-  const at = (quantile: number): Suite => suiteOf({
-    columns: [derivedColumn('F', F.slice(), ''), ...setup.analytes.map((symbol, a) => derivedColumn(symbol, F.map((_, i) => sorted(a, i)[Math.round(quantile * (draws - 1))]), 'ppm', undefined, 'element'))],
-    labels: { sample: Array.from(F, (value) => `F = ${Number(value.toFixed(4))}`) }, lineage,
-  });
+  const at = (quantile: number): Suite =>
+    suiteOf({
+      columns: [
+        derivedColumn('F', F.slice(), ''),
+        ...setup.analytes.map((symbol, a) =>
+          derivedColumn(
+            symbol,
+            F.map((_, i) => sorted(a, i)[Math.round(quantile * (draws - 1))]),
+            'ppm',
+            undefined,
+            'element',
+          ),
+        ),
+      ],
+      labels: { sample: Array.from(F, (value) => `F = ${Number(value.toFixed(4))}`) },
+      lineage,
+    });
   // Each step's draws stand together, so they are sorted in place once.
   const done = new Uint8Array(A * F.length);
   const sorted = (a: number, i: number): Float64Array => {
@@ -114,7 +153,15 @@ export async function spreadOfPath(options: PathSpreadOptions): Promise<PathSpre
   return showAs({ F, low, median, high, coefficients: setup.used, notes: setup.notes, lineage }, (it) => ({
     title: `Liquid at F = ${downTo}: median and 95 % range of ${draws} draws`,
     columns: ['Element', 'Start (ppm)', 'from', 'median', 'to'],
-    rows: setup.analytes.map((symbol, a): TableCell[] => [symbol, setup.amounts[a], ...[it.low, it.median, it.high].map((suite) => suite.values(symbol)[F.length - 1])]),
-    notes: [...it.notes, `Coefficients over their published ranges, at least ±${100 * leastSpread} %; start ±${100 * startError} % where it has no 1σ of its own; shares ±${shareError}.`],
+    rows: setup.analytes.map((symbol, a): TableCell[] => [
+      symbol,
+      setup.amounts[a],
+      ...[it.low, it.median, it.high].map((suite) => suite.values(symbol)[F.length - 1]),
+    ]),
+    notes: [
+      ...it.notes,
+      `Coefficients over their published ranges, at least ±${100 * leastSpread} %; start ±${100 * startError} % where it has no 1σ of its ` +
+        `own; shares ±${shareError}.`,
+    ],
   }));
 }

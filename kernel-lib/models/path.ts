@@ -65,34 +65,64 @@ export function buildPath(parts: PathParts): ModelPath {
   const { who, process, F, meaning, coefficients, notes } = parts;
   const because = step(
     who,
-    { process, ...parts.detail, steps: F.length - 1, coefficients: coefficients.map(({ mineral, analyte, meltType, value, source, standing }) => [mineral, analyte, meltType, value, source, standing]) },
-    { sources: [...new Set([...(parts.sources ?? []), ...sourcesOf(coefficients)])], tables: [...new Set([...(coefficients.length > 0 ? ['partition-coefficients.csv'] : []), ...(parts.tables ?? [])])] },
+    {
+      process,
+      ...parts.detail,
+      steps: F.length - 1,
+      coefficients: coefficients.map(({ mineral, analyte, meltType, value, source, standing }) => [
+        mineral,
+        analyte,
+        meltType,
+        value,
+        source,
+        standing,
+      ]),
+    },
+    {
+      sources: [...new Set([...(parts.sources ?? []), ...sourcesOf(coefficients)])],
+      tables: [...new Set([...(coefficients.length > 0 ? ['partition-coefficients.csv'] : []), ...(parts.tables ?? [])])],
+    },
   );
   const lineage = [...parts.lineage, because];
   const samples = Array.from(F, (value) => `F = ${shortF(value)}`);
   const phase = (columns: PhaseColumns, extra: Iterable<Column>): Suite =>
     suiteOf({
-      columns: [derivedColumn('F', F.slice(), ''), ...extra, ...[...columns].map(([symbol, values]) => {
-        const known = findAnalyte(symbol);
-        return derivedColumn(symbol, values, known?.unit ?? '', undefined, known?.kind ?? 'quantity');
-      })],
+      columns: [
+        derivedColumn('F', F.slice(), ''),
+        ...extra,
+        ...[...columns].map(([symbol, values]) => {
+          const known = findAnalyte(symbol);
+          return derivedColumn(symbol, values, known?.unit ?? '', undefined, known?.kind ?? 'quantity');
+        }),
+      ],
       labels: { sample: samples, process: samples.map(() => process), ...parts.labels },
       lineage,
     });
   const extra = [...(parts.quantities ?? [])].map(([symbol, { unit, values }]) => derivedColumn(symbol, values, unit));
   const path = {
-    process, F, meaning,
+    process,
+    F,
+    meaning,
     liquid: phase(parts.liquid, extra),
     ...(parts.solid === undefined ? {} : { solid: phase(parts.solid, []) }),
     ...(parts.cumulate === undefined ? {} : { cumulate: phase(parts.cumulate, []) }),
-    coefficients, notes, lineage,
+    coefficients,
+    notes,
+    lineage,
   };
   return showAs(path, (it) => {
     const shown = pickRows(F.length, 12);
     const columns = [...it.liquid.columns.values()];
-    const heads = columns.map(({ symbol, unit }) => (symbol === 'F' ? `F (${meaning})` : unit === '' ? symbol : `${symbol} (${unit === 'wt%' ? 'wt %' : unit})`));
+    const heads = columns.map(({ symbol, unit }) =>
+      symbol === 'F' ? `F (${meaning})` : unit === '' ? symbol : `${symbol} (${unit === 'wt%' ? 'wt %' : unit})`,
+    );
     const rows = shown.map((row): TableCell[] => columns.map(({ values }) => values[row]));
-    return { title: `${process}: liquid at ${shown.length} of ${F.length} steps`, columns: heads, rows, notes: [...notes, ...describeCoefficients(coefficients)] };
+    return {
+      title: `${process}: liquid at ${shown.length} of ${F.length} steps`,
+      columns: heads,
+      rows,
+      notes: [...notes, ...describeCoefficients(coefficients)],
+    };
   });
 }
 

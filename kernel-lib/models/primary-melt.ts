@@ -72,8 +72,14 @@ export function primaryMelt(options: PrimaryMeltOptions): PrimaryMelt {
   if (typeof options !== 'object' || options === null) throw new TypeError(`${who}: give an object of options with from, until and redox.`);
   const { start, oxides, notes } = startMajors(options.from, who);
   const until = options.until as { Fo?: number; magnesiumNumber?: number } | undefined;
-  if ((until?.Fo === undefined) === (until?.magnesiumNumber === undefined)) throw new RangeError(`${who}: until must be { Fo } or { magnesiumNumber }.`);
-  const target = readNumber(until!.Fo ?? until!.magnesiumNumber, who, until!.Fo === undefined ? 'until.magnesiumNumber' : 'until.Fo', { from: 0, to: 100, open: 'both' }) / 100;
+  if ((until?.Fo === undefined) === (until?.magnesiumNumber === undefined))
+    throw new RangeError(`${who}: until must be { Fo } or { magnesiumNumber }.`);
+  const target =
+    readNumber(until!.Fo ?? until!.magnesiumNumber, who, until!.Fo === undefined ? 'until.magnesiumNumber' : 'until.Fo', {
+      from: 0,
+      to: 100,
+      open: 'both',
+    }) / 100;
   checkRedox(options.redox, who);
   const pressure = readNumber(options.pressure ?? 1e4, who, 'pressure', { from: 0, to: 1e5 });
   const water = readNumber(options.water ?? 0, who, 'water', { from: 0, to: 30 });
@@ -83,9 +89,16 @@ export function primaryMelt(options: PrimaryMeltOptions): PrimaryMelt {
   const wanted = options.analytes ?? [];
   const elements = Array.isArray(wanted) && wanted.length === 0 ? [] : chooseElements(start, wanted, who, notes);
   const sets = readMeltTypes(options.meltType ?? 'basalt', who);
-  const { analytes, used, missing } = gatherCoefficients({ minerals: ['olivine'], analytes: elements, sets, own: options.coefficients ?? {}, who }, wanted === 'covered' ? 'covered' : 'all');
+  const { analytes, used, missing } = gatherCoefficients(
+    { minerals: ['olivine'], analytes: elements, sets, own: options.coefficients ?? {}, who },
+    wanted === 'covered' ? 'covered' : 'all',
+  );
   if (missing.length > 0) notes.push(`Not carried, because a coefficient is missing: ${missing.map(({ analyte }) => analyte).join(', ')}.`);
-  if (oxides[place.MgO] < 8) notes.push(`The lava has ${oxides[place.MgO].toFixed(1)} wt % MgO: it has likely crystallised more than olivine, so the estimate leans on a part of the descent that olivine alone does not undo.`);
+  if (oxides[place.MgO] < 8)
+    notes.push(
+      `The lava has ${oxides[place.MgO].toFixed(1)} wt % MgO: it has likely crystallised more than olivine, so the estimate leans on a ` +
+        `part of the descent that olivine alone does not undo.`,
+    );
 
   const { molar } = majorMasses();
   const ferrousAtStart = typeof options.redox === 'number' ? options.redox * oxides[place.FeOT] : NaN;
@@ -116,10 +129,18 @@ export function primaryMelt(options: PrimaryMeltOptions): PrimaryMelt {
     rows.push({ mass, oxides: now.slice(), Fo, number, ferric, water: waterAt() });
     const reached = (until!.Fo === undefined ? number : Fo) - target;
     if (reached >= 0) {
-      if (rows.length === 1 && reached > 1e-9) throw new RangeError(`${who}: the lava is already past the target (${until!.Fo === undefined ? `Mg-number ${(100 * number).toFixed(1)}` : `equilibrium olivine Fo${(100 * Fo).toFixed(1)}`}).`);
+      if (rows.length === 1 && reached > 1e-9)
+        throw new RangeError(
+          `${who}: the lava is already past the target ` +
+            `(${until!.Fo === undefined ? `Mg-number ${(100 * number).toFixed(1)}` : `equilibrium olivine Fo${(100 * Fo).toFixed(1)}`}).`,
+        );
       break;
     }
-    if (mass - 1 >= most) throw new RangeError(`${who}: the target is not reached with ${100 * most} wt % of olivine (equilibrium olivine Fo${(100 * Fo).toFixed(1)}); the lava is too evolved for olivine addition alone.`);
+    if (mass - 1 >= most)
+      throw new RangeError(
+        `${who}: the target is not reached with ${100 * most} wt % of olivine (equilibrium olivine Fo${(100 * Fo).toFixed(1)}); the lava ` +
+          `is too evolved for olivine addition alone.`,
+      );
     olivineOxides(Fo, olivine);
     for (let j = 0; j < majors; j++) now[j] = (now[j] + stepSize * olivine[j]) / (1 + stepSize);
     mass *= 1 + stepSize;
@@ -128,47 +149,98 @@ export function primaryMelt(options: PrimaryMeltOptions): PrimaryMelt {
 
   const F = Float64Array.from(rows, (row) => row.mass);
   const liquid = new Map<string, Float64Array>();
-  majorOxides.forEach((oxide, j) => liquid.set(oxide, Float64Array.from(rows, (row) => row.oxides[j])));
+  majorOxides.forEach((oxide, j) =>
+    liquid.set(
+      oxide,
+      Float64Array.from(rows, (row) => row.oxides[j]),
+    ),
+  );
   // Adding equilibrium crystals is Rayleigh crystallisation backwards.
-  analytes.forEach((symbol, a) => liquid.set(symbol, F.map((value) => amountOf(start, symbol) * value ** (used[0][a].value - 1))));
+  analytes.forEach((symbol, a) =>
+    liquid.set(
+      symbol,
+      F.map((value) => amountOf(start, symbol) * value ** (used[0][a].value - 1)),
+    ),
+  );
   const end = rows[rows.length - 1];
   const temperatures = Float64Array.from(rows, (row) => olivineLiquidTemperature(row.oxides, row.Fo, pressure, row.water));
   const table = thermometers();
-  const sources = [...new Set([table.exchange.source, table.olivineLiquid.source, 'putirka_2007', ...(typeof options.redox === 'number' ? [] : ['kress_carmichael_1991', 'frost_br_1991'])])];
+  const sources = [
+    ...new Set([
+      table.exchange.source,
+      table.olivineLiquid.source,
+      'putirka_2007',
+      ...(typeof options.redox === 'number' ? [] : ['kress_carmichael_1991', 'frost_br_1991']),
+    ]),
+  ];
   const quantity = (of: (row: (typeof rows)[number]) => number, unit = '') => ({ unit, values: Float64Array.from(rows, of) });
   const path = buildPath({
-    who, process: 'Olivine addition', F, meaning: 'mass relative to the lava', liquid,
+    who,
+    process: 'Olivine addition',
+    F,
+    meaning: 'mass relative to the lava',
+    liquid,
     quantities: new Map([
-      ['Fo', quantity((row) => 100 * row.Fo)], ['Mg-number', quantity((row) => 100 * row.number)], ['ferric share', quantity((row) => row.ferric)],
-      ['water', quantity((row) => row.water, 'wt%')], ['temperature', { unit: '°C', values: temperatures }],
+      ['Fo', quantity((row) => 100 * row.Fo)],
+      ['Mg-number', quantity((row) => 100 * row.number)],
+      ['ferric share', quantity((row) => row.ferric)],
+      ['water', quantity((row) => row.water, 'wt%')],
+      ['temperature', { unit: '°C', values: temperatures }],
     ]),
-    coefficients: used.flat(), notes, lineage: start.lineage,
-    detail: { until: { ...until }, redox: options.redox as number, pressure, water, Kd, stepSize: 100 * stepSize }, sources, tables: ['thermometers.json', 'iron-oxidation.json', 'atomic-weights.csv'],
+    coefficients: used.flat(),
+    notes,
+    lineage: start.lineage,
+    detail: { until: { ...until }, redox: options.redox as number, pressure, water, Kd, stepSize: 100 * stepSize },
+    sources,
+    tables: ['thermometers.json', 'iron-oxidation.json', 'atomic-weights.csv'],
   });
   const result = {
     melt: suiteOf({
-      columns: [...path.liquid.columns.values()].filter(({ symbol }) => symbol !== 'F').map(({ symbol, unit, kind, values }) => derivedColumn(symbol, values.slice(-1), unit, undefined, kind)),
+      columns: [...path.liquid.columns.values()]
+        .filter(({ symbol }) => symbol !== 'F')
+        .map(({ symbol, unit, kind, values }) => derivedColumn(symbol, values.slice(-1), unit, undefined, kind)),
       labels: { sample: [`${start.samples[0]} primary melt`] },
       lineage: [...path.lineage, step('primaryMelt.melt', { olivineAdded: 100 * (end.mass - 1) })],
     }),
-    olivineAdded: 100 * (end.mass - 1), Fo: 100 * end.Fo, magnesiumNumber: 100 * end.number, ferricShare: end.ferric, temperature: temperatures[rows.length - 1], water: end.water, path, notes, lineage: path.lineage,
+    olivineAdded: 100 * (end.mass - 1),
+    Fo: 100 * end.Fo,
+    magnesiumNumber: 100 * end.number,
+    ferricShare: end.ferric,
+    temperature: temperatures[rows.length - 1],
+    water: end.water,
+    path,
+    notes,
+    lineage: path.lineage,
   };
   return showAs(result, (it) => ({
-    title: `Primary melt of ${start.samples[0]}: ${it.olivineAdded.toFixed(1)} wt % olivine added, ${it.temperature.toFixed(0)} °C at ${(pressure / 1e4).toFixed(2)} GPa`,
+    title:
+      `Primary melt of ${start.samples[0]}: ${it.olivineAdded.toFixed(1)} wt % olivine added, ${it.temperature.toFixed(0)} °C at ` +
+      `${(pressure / 1e4).toFixed(2)} GPa`,
     columns: ['', ...it.melt.analytes],
-    rows: [['lava', ...it.melt.analytes.map((symbol): TableCell => path.liquid.values(symbol)[0])], ['primary melt', ...it.melt.analytes.map((symbol): TableCell => it.melt.values(symbol)[0])]],
+    rows: [
+      ['lava', ...it.melt.analytes.map((symbol): TableCell => path.liquid.values(symbol)[0])],
+      ['primary melt', ...it.melt.analytes.map((symbol): TableCell => it.melt.values(symbol)[0])],
+    ],
     notes: it.notes,
   }));
 }
 
 /** Moves the last state back along its step to where the target is met. */
-function interpolateEnd(rows: { mass: number; oxides: Float64Array; Fo: number; number: number; ferric: number; water: number }[], target: number, key: 'Fo' | 'number'): void {
+function interpolateEnd(
+  rows: { mass: number; oxides: Float64Array; Fo: number; number: number; ferric: number; water: number }[],
+  target: number,
+  key: 'Fo' | 'number',
+): void {
   if (rows.length < 2) return;
   const [before, after] = rows.slice(-2);
   const t = (target - before[key]) / (after[key] - before[key]);
   const between = (a: number, b: number) => a + t * (b - a);
   rows[rows.length - 1] = {
-    mass: between(before.mass, after.mass), oxides: before.oxides.map((value, j) => between(value, after.oxides[j])), Fo: between(before.Fo, after.Fo), number: between(before.number, after.number),
-    ferric: between(before.ferric, after.ferric), water: between(before.water, after.water),
+    mass: between(before.mass, after.mass),
+    oxides: before.oxides.map((value, j) => between(value, after.oxides[j])),
+    Fo: between(before.Fo, after.Fo),
+    number: between(before.number, after.number),
+    ferric: between(before.ferric, after.ferric),
+    water: between(before.water, after.water),
   };
 }

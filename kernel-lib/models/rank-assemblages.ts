@@ -63,7 +63,8 @@ function choices(n: number, most: number): number[] {
  * @returns all assemblages best first, and the best of each size. Chi-square counts the errors of both analyses as known
  * @throws RangeError or TypeError naming the argument and what is allowed
  * @source Burnham & Anderson 2002 (information criteria and weights); Bryan et al. 1969
- * @example rankAssemblages({ parent, daughter, candidates: { olivine: 'Fo80', clinopyroxene: 'Wo42En46Fs12', plagioclase: 'An75', magnetite: 'Usp30' } }).ranked[0].phases
+ * @example rankAssemblages({ parent, daughter, candidates: { olivine: 'Fo80', clinopyroxene: 'Wo42En46Fs12', plagioclase: 'An75', magnetite:
+ *   'Usp30' } }).ranked[0].phases
  */
 export function rankAssemblages(options: RankAssemblagesOptions): AssemblageRanking {
   const who = 'rankAssemblages';
@@ -89,7 +90,12 @@ export function rankAssemblages(options: RankAssemblagesOptions): AssemblageRank
       tooMany++;
       continue;
     }
-    const problem = joinProblems(chosen.map((part) => part.problem), chosen.map((part) => part.columns.length), k, hasAssimilant);
+    const problem = joinProblems(
+      chosen.map((part) => part.problem),
+      chosen.map((part) => part.columns.length),
+      k,
+      hasAssimilant,
+    );
     const input = { ...base, columns, problem };
     const solver = new BalanceSolver(n, k);
     solver.solve(problem);
@@ -98,8 +104,14 @@ export function rankAssemblages(options: RankAssemblagesOptions): AssemblageRank
     const fitted = k + (problem.closure ? 0 : 1);
     const aicc = n - fitted - 1 > 0 ? solver.chiSquare + 2 * fitted + (2 * fitted * (fitted + 1)) / (n - fitted - 1) : Infinity;
     ranked.push({
-      phases, F: solver.F, masses: Object.fromEntries(phases.map((phase, j) => [phase, masses[j]])), aicc, bic: solver.chiSquare + fitted * Math.log(n),
-      sumOfSquares: solver.residuals.reduce((sum, each) => sum + each * each, 0), chiSquare: solver.chiSquare, degreesOfFreedom: freedom(input, solver),
+      phases,
+      F: solver.F,
+      masses: Object.fromEntries(phases.map((phase, j) => [phase, masses[j]])),
+      aicc,
+      bic: solver.chiSquare + fitted * Math.log(n),
+      sumOfSquares: solver.residuals.reduce((sum, each) => sum + each * each, 0),
+      chiSquare: solver.chiSquare,
+      degreesOfFreedom: freedom(input, solver),
     });
   }
   ranked.sort((a, b) => a[criterion] - b[criterion] || a.phases.length - b.phases.length);
@@ -113,22 +125,45 @@ export function rankAssemblages(options: RankAssemblagesOptions): AssemblageRank
   if (all.length === 0) notes.push('No subset makes the daughter from the parent with all of its phases at work.');
   const because = step(
     who,
-    { candidates: names, most, criterion, tried: subsets.length - tooMany, errors: base.errorModel, oxides: [...base.oxides], phases: parts.flatMap((part) => part.columns.map(({ phase, chosen }) => [phase, chosen.label, chosen.source, chosen.standing])) },
+    {
+      candidates: names,
+      most,
+      criterion,
+      tried: subsets.length - tooMany,
+      errors: base.errorModel,
+      oxides: [...base.oxides],
+      phases: parts.flatMap((part) => part.columns.map(({ phase, chosen }) => [phase, chosen.label, chosen.source, chosen.standing])),
+    },
     { sources: ['burnham_anderson_2002', 'bryan_1969', 'bro_de_jong_1997'], tables: ['mineral-compositions.csv', 'atomic-weights.csv'] },
   );
   const result = {
-    ranked: all, bestOfSize: sizes.map((size) => all.find(({ phases }) => phases.length === size)!), tried: subsets.length - tooMany, criterion, notes,
+    ranked: all,
+    bestOfSize: sizes.map((size) => all.find(({ phases }) => phases.length === size)!),
+    tried: subsets.length - tooMany,
+    criterion,
+    notes,
     lineage: [...joinLineage(base.parent.lineage, base.daughter.lineage, base.assimilant?.lineage ?? []), because],
   };
   return showAs(result, (it) => ({
     title: `Assemblages between ${base.parent.samples[0]} and ${base.daughter.samples[0]}, best first (${criterion === 'aicc' ? 'AICc' : 'BIC'})`,
     columns: ['Assemblage', 'Phases', 'F', 'ΣR²', 'χ²', 'Degrees of freedom', criterion === 'aicc' ? 'AICc' : 'BIC', 'Difference', 'Weight'],
-    rows: it.ranked.slice(0, 15).map((each): TableCell[] => [
-      each.phases.map((phase) => `${phase} ${(100 * each.masses[phase]).toFixed(1)}`).join(', '), each.phases.length, each.F, each.sumOfSquares, each.chiSquare, each.degreesOfFreedom, each[criterion], each.difference, each.weight,
-    ]),
+    rows: it.ranked
+      .slice(0, 15)
+      .map((each): TableCell[] => [
+        each.phases.map((phase) => `${phase} ${(100 * each.masses[phase]).toFixed(1)}`).join(', '),
+        each.phases.length,
+        each.F,
+        each.sumOfSquares,
+        each.chiSquare,
+        each.degreesOfFreedom,
+        each[criterion],
+        each.difference,
+        each.weight,
+      ]),
     totalRows: it.ranked.length,
     notes: [
-      `Best of each size: ${it.bestOfSize.map((each) => `${each.phases.length}: ${each.phases.join(' + ')} (${each[criterion].toFixed(1)})`).join('; ')}.`,
+      `Best of each size: ` +
+        `${it.bestOfSize.map((each) => `${each.phases.length}: ${each.phases.join(' + ')} (${each[criterion].toFixed(1)})`).join('; ')}.`,
       `${it.tried} subsets solved. Errors: ${base.errorModel}.`,
       ...it.notes,
     ],

@@ -34,7 +34,9 @@ function zirconTable(model: ZirconModel, who: string) {
 export function zirconSolubility(M: number, temperature: number, model: ZirconModel = 'boehnke-2013'): number {
   const { constant, perM, perInverseT } = zirconTable(model, 'zirconSolubility');
   const T = temperature + celsius;
-  return model === 'shao-2020' ? Math.exp(constant + perM * M + perInverseT / T) : zirconiumInZircon() / Math.exp(constant + perM * (M - 1) + perInverseT / T);
+  return model === 'shao-2020'
+    ? Math.exp(constant + perM * M + perInverseT / T)
+    : zirconiumInZircon() / Math.exp(constant + perM * (M - 1) + perInverseT / T);
 }
 
 /** The temperature (°C) at which a melt with this Zr (ppm) is saturated with zircon; inverse of `zirconSolubility`. */
@@ -107,11 +109,21 @@ export function withSaturationTemperatures(suite: Suite, options: { readonly mod
       }
       if (oxides[place.P2O5] > 0) {
         apatiteT[i] = apatiteTemperature(silica, oxides[place.P2O5]);
-        if (silica < apatite.range.SiO2[0] || silica > apatite.range.SiO2[1]) outside.push(`apatite: SiO2 outside ${apatite.range.SiO2.join('–')} wt %`);
+        if (silica < apatite.range.SiO2[0] || silica > apatite.range.SiO2[1])
+          outside.push(`apatite: SiO2 outside ${apatite.range.SiO2.join('–')} wt %`);
       }
     }
     flags.push(outside.join('; '));
   }
-  const because = step('withSaturationTemperatures', { model }, { sources: [table.source, apatite.source], tables: ['saturation.json', 'atomic-weights.csv'] });
-  return suite.with([derivedColumn('M', Ms, ''), derivedColumn('zircon saturation', zirconT, '°C'), derivedColumn('apatite saturation', apatiteT, '°C')], because).withLabels({ 'saturation range': flags });
+  const because = step(
+    'withSaturationTemperatures',
+    { model },
+    { sources: [table.source, apatite.source], tables: ['saturation.json', 'atomic-weights.csv'] },
+  );
+  return suite
+    .with(
+      [derivedColumn('M', Ms, ''), derivedColumn('zircon saturation', zirconT, '°C'), derivedColumn('apatite saturation', apatiteT, '°C')],
+      because,
+    )
+    .withLabels({ 'saturation range': flags });
 }

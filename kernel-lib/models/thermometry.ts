@@ -15,7 +15,14 @@ export function liquidTemperature(oxides: ArrayLike<number>, water: number): num
   const { molar } = majorMasses();
   const mg = oxides[place.MgO] / molar[place.MgO];
   const fe = oxides[place.FeOT] / molar[place.FeOT];
-  return constant + magnesiumNumber * (mg / (mg + fe)) + MgO * oxides[place.MgO] + FeO * oxides[place.FeOT] + alkalis * (oxides[place.Na2O] + oxides[place.K2O]) + H2O * water;
+  return (
+    constant +
+    magnesiumNumber * (mg / (mg + fe)) +
+    MgO * oxides[place.MgO] +
+    FeO * oxides[place.FeOT] +
+    alkalis * (oxides[place.Na2O] + oxides[place.K2O]) +
+    H2O * water
+  );
 }
 
 /** @internal °C of olivine (Fo as a fraction) and liquid (Putirka 2008, equation 22); pressure in bar, water in wt %. */

@@ -1,7 +1,15 @@
 import { findAnalyte } from '../chemistry';
 import type { Suite } from '../suite';
 import type { MeltType } from '../tables';
-import { bulkOf, gatherCoefficients, readAssemblage, readMeltTypes, type Assemblage, type OwnCoefficients, type UsedCoefficient } from './coefficients';
+import {
+  bulkOf,
+  gatherCoefficients,
+  readAssemblage,
+  readMeltTypes,
+  type Assemblage,
+  type OwnCoefficients,
+  type UsedCoefficient,
+} from './coefficients';
 import { isotopeElement } from './isotopes';
 import { amountOf, oneAnalysis, type Composition } from './one-analysis';
 
@@ -32,13 +40,18 @@ export interface TraceSetup {
   readonly isotopes: readonly string[];
   readonly steps: number;
   readonly notes: string[];
-  readonly detail: { readonly assemblage: Readonly<Record<string, number>>; readonly meltType: readonly string[]; readonly analytes: readonly string[] };
+  readonly detail: {
+    readonly assemblage: Readonly<Record<string, number>>;
+    readonly meltType: readonly string[];
+    readonly analytes: readonly string[];
+  };
 }
 
 /** @internal A whole number of steps, or an error. */
 export function readSteps(steps: number | undefined, who: string, usual = 60): number {
   const count = steps ?? usual;
-  if (!Number.isInteger(count) || count < 1 || count > 100_000) throw new RangeError(`${who}: steps is ${String(steps)}; give a whole number from 1 to 100000.`);
+  if (!Number.isInteger(count) || count < 1 || count > 100_000)
+    throw new RangeError(`${who}: steps is ${String(steps)}; give a whole number from 1 to 100000.`);
   return count;
 }
 
@@ -62,13 +75,18 @@ export function chooseElements(start: Suite, wanted: 'all' | 'covered' | readonl
     const unusable = elements.filter((symbol) => !Number.isFinite(amountOf(start, symbol)));
     if (unusable.length > 0) notes.push(`Not modelled, because the start has no usable value: ${unusable.join(', ')}.`);
     const usable = elements.filter((symbol) => !unusable.includes(symbol));
-    if (usable.length === 0) throw new RangeError(`${who}: from holds no element in ppm with a usable value. It holds: ${start.analytes.join(', ')}.`);
+    if (usable.length === 0)
+      throw new RangeError(`${who}: from holds no element in ppm with a usable value. It holds: ${start.analytes.join(', ')}.`);
     return usable;
   }
   if (!Array.isArray(wanted)) throw new TypeError(`${who}: analytes must be "all", "covered" or a list of element symbols, not ${String(wanted)}.`);
   for (const symbol of wanted as readonly string[]) {
-    if (findAnalyte(symbol)?.kind !== 'element') throw new RangeError(`${who}: analytes holds "${String(symbol)}", which is not an element symbol (such as Ba, or Ti for titanium given as TiO2).`);
-    if (!Number.isFinite(amountOf(start, symbol))) throw new RangeError(`${who}: from has no usable value of ${symbol}; leave it out of analytes, or give one.`);
+    if (findAnalyte(symbol)?.kind !== 'element')
+      throw new RangeError(
+        `${who}: analytes holds "${String(symbol)}", which is not an element symbol (such as Ba, or Ti for titanium given as TiO2).`,
+      );
+    if (!Number.isFinite(amountOf(start, symbol)))
+      throw new RangeError(`${who}: from has no usable value of ${symbol}; leave it out of analytes, or give one.`);
   }
   return [...new Set(wanted as readonly string[])];
 }
@@ -84,10 +102,14 @@ export function setUpTrace(options: TraceModelOptions, who: string): TraceSetup 
   const elements = chooseElements(start, wanted, who, notes);
   const request = { minerals, analytes: elements, sets, own: options.coefficients ?? {}, who };
   const { analytes, used, missing } = gatherCoefficients(request, wanted === 'covered' ? 'covered' : 'all');
-  if (missing.length > 0) notes.push(`Not modelled, because a coefficient is missing: ${[...new Set(missing.map(({ analyte }) => analyte))].join(', ')}.`);
+  if (missing.length > 0)
+    notes.push(`Not modelled, because a coefficient is missing: ${[...new Set(missing.map(({ analyte }) => analyte))].join(', ')}.`);
   const isotopes = start.analytes.filter((symbol) => isotopeElement(symbol) !== undefined && Number.isFinite(amountOf(start, symbol)));
   return {
-    start, analytes, isotopes, notes,
+    start,
+    analytes,
+    isotopes,
+    notes,
     amounts: Float64Array.from(analytes, (symbol) => amountOf(start, symbol)),
     bulk: bulkOf(shares, used),
     used: used.flat(),

@@ -2,9 +2,18 @@ import { findAnalyte } from '../chemistry';
 import { showAs, type Showable, type TableCell } from '../display';
 import { step, type Suite, type Traced } from '../suite';
 import { coefficientRange, meltTypes, partitionMinerals, type MeltType } from '../tables';
-import { checkOwnCoefficients, findCoefficient, MissingCoefficientsError, readMeltTypes, sourcesOf, type MissingCoefficient, type OwnCoefficients, type UsedCoefficient } from './coefficients';
+import {
+  checkOwnCoefficients,
+  findCoefficient,
+  MissingCoefficientsError,
+  readMeltTypes,
+  sourcesOf,
+  type MissingCoefficient,
+  type OwnCoefficients,
+  type UsedCoefficient,
+} from './coefficients';
 import type { MassBalance } from './mass-balance';
-import { isotopeElement, usualRatioError } from './isotopes';
+import { compareRatios, judgeTraces } from './trace-verdict';
 import { amountOf, errorOf } from './one-analysis';
 import { readNumber } from './trace-setup';
 
@@ -80,7 +89,10 @@ export interface TraceTest extends Traced, Showable {
 
 /** Limits of silica (wt %, volatile-free) between basalt, andesite, dacite and rhyolite sets: common practice, after the IUGS names. */
 export const silicaOfMeltTypes: readonly { readonly below: number; readonly set: MeltType }[] = [
-  { below: 52, set: 'basalt' }, { below: 63, set: 'andesite' }, { below: 69, set: 'dacite' }, { below: Infinity, set: 'rhyolite' },
+  { below: 52, set: 'basalt' },
+  { below: 63, set: 'andesite' },
+  { below: 69, set: 'dacite' },
+  { below: Infinity, set: 'rhyolite' },
 ];
 
 /** @internal The set of coefficients that goes with a silica content. */
@@ -96,11 +108,21 @@ function setsBetween(parent: Suite, daughter: Suite): readonly MeltType[] {
 /** The other lavas' sets, nearest first. */
 function nearestTo(sets: readonly MeltType[]): readonly MeltType[] {
   const distance = (type: MeltType) => Math.min(...sets.map((set) => Math.abs(meltTypes.indexOf(type) - meltTypes.indexOf(set))));
-  return silicaOfMeltTypes.map(({ set }) => set).filter((set) => !sets.includes(set)).sort((a, b) => distance(a) - distance(b));
+  return silicaOfMeltTypes
+    .map(({ set }) => set)
+    .filter((set) => !sets.includes(set))
+    .sort((a, b) => distance(a) - distance(b));
 }
 
 /** The preferred coefficient with the range over all the sets, widened to the least spread. */
-function ranged(mineral: string, element: string, sets: readonly MeltType[], spare: readonly MeltType[], own: OwnCoefficients, leastSpread: number): UsedCoefficient | undefined {
+function ranged(
+  mineral: string,
+  element: string,
+  sets: readonly MeltType[],
+  spare: readonly MeltType[],
+  own: OwnCoefficients,
+  leastSpread: number,
+): UsedCoefficient | undefined {
   const preferred = findCoefficient(mineral, element, [...sets, ...spare], own);
   if (preferred === undefined) return undefined;
   let { low, high } = preferred;
@@ -124,8 +146,9 @@ const share = (values: readonly number[], p: number) => values[Math.min(values.l
  * the solution's own uncertainty.
  *
  * Rejected: an element more than 3σ outside its range, or more than one in ten (and more than one) beyond 2σ, or majors that do not fit
- * (probability below 1 %), or an isotope ratio that moved by more than 3σ. Accepted: no such thing, and at least four elements agree with ranges narrow enough to tell, one that the
- * crystals take up (D > 1) and one that they do not (D < 0.5) among them. Otherwise undecided. The rule is the library's own.
+ * (probability below 1 %), or an isotope ratio that moved by more than 3σ. Accepted: no such thing, and at least four elements agree with ranges
+ * narrow enough to tell, one that the crystals take up (D > 1) and one that they do not (D < 0.5) among them. Otherwise undecided. The rule is the
+ * library's own.
  *
  * @param balance a solved mass balance whose parent and daughter hold elements in ppm (oxides are left to the majors)
  * @param options `mode`, `meltTypes`, `analytes`, `coefficients`, `relativeError`, `leastSpread`
@@ -136,18 +159,21 @@ const share = (values: readonly number[], p: number) => values[Math.min(values.l
  */
 export function testTraces(balance: MassBalance, options: TraceTestOptions = {}): TraceTest {
   const who = 'testTraces';
-  if (typeof balance !== 'object' || balance === null || !Array.isArray(balance.phases) || balance.parent === undefined) throw new TypeError(`${who}: give a solved mass balance, as massBalance returns it.`);
+  if (typeof balance !== 'object' || balance === null || !Array.isArray(balance.phases) || balance.parent === undefined)
+    throw new TypeError(`${who}: give a solved mass balance, as massBalance returns it.`);
   const { mode = 'rayleigh', coefficients: own = {} } = options;
   if (mode !== 'rayleigh' && mode !== 'equilibrium') throw new RangeError(`${who}: mode must be "rayleigh" or "equilibrium", not "${String(mode)}".`);
   const relativeError = readNumber(options.relativeError ?? 0.05, who, 'relativeError', { from: 0, to: 1, open: 'both' });
   const leastSpread = readNumber(options.leastSpread ?? 0.25, who, 'leastSpread', { from: 0, to: 1, open: 'to' });
-  if (balance.phases.some(({ phase }) => phase === 'assimilant')) throw new RangeError(`${who}: this balance takes in an assimilant; compare with assimilate(…) instead.`);
+  if (balance.phases.some(({ phase }) => phase === 'assimilant'))
+    throw new RangeError(`${who}: this balance takes in an assimilant; compare with assimilate(…) instead.`);
   checkOwnCoefficients(own, who);
   const { parent, daughter } = balance;
   const sets = options.meltTypes === undefined ? setsBetween(parent, daughter) : readMeltTypes(options.meltTypes, who);
   const spare = options.meltTypes === undefined ? nearestTo(sets) : [];
   const usable = (symbol: string) => amountOf(parent, symbol) > 0 && amountOf(daughter, symbol) > 0;
-  for (const symbol of options.analytes ?? []) if (!usable(symbol)) throw new RangeError(`${who}: analytes holds ${symbol}, which parent and daughter do not both have above zero.`);
+  for (const symbol of options.analytes ?? [])
+    if (!usable(symbol)) throw new RangeError(`${who}: analytes holds ${symbol}, which parent and daughter do not both have above zero.`);
   const candidates = options.analytes ?? parent.analytes.filter((symbol) => findAnalyte(symbol)?.kind === 'element' && usable(symbol));
   const crystals = balance.phases.flatMap((phase, j) => (phase.value > 0 ? [{ ...phase, column: j + 1 }] : []));
   const known = partitionMinerals();
@@ -196,64 +222,92 @@ export function testTraces(balance: MassBalance, options: TraceTestOptions = {})
     const relative = Math.hypot(sigmaOf(parent), sigmaOf(daughter));
     const outside = observed > high ? Math.log(observed / high) / relative : observed < low ? Math.log(observed / low) / relative : 0;
     elements.push({
-      element, parent: start, observed, observedSigma: sigmaOf(daughter) * observed, predicted, low, high, bulk: bulk('value', best), bulkLow: bulk('low', best), bulkHigh: bulk('high', best), outside,
+      element,
+      parent: start,
+      observed,
+      observedSigma: sigmaOf(daughter) * observed,
+      predicted,
+      low,
+      high,
+      bulk: bulk('value', best),
+      bulkLow: bulk('low', best),
+      bulkHigh: bulk('high', best),
+      outside,
       finding: Math.abs(outside) > 2 ? 'disagrees' : high / low > factorTooWide && low <= start && start <= high ? 'too wide' : 'agrees',
     });
   }
-  if (missing.length > 0 && options.analytes !== undefined) throw new MissingCoefficientsError(who, missing, elements.map(({ element }) => element));
-  const ratios = compareRatios(parent, daughter, options.ratioError === undefined ? undefined : readNumber(options.ratioError, who, 'ratioError', { from: 0, to: 1, open: 'both' }));
-  const { verdict, why } = judge(balance, elements, ratios);
+  if (missing.length > 0 && options.analytes !== undefined)
+    throw new MissingCoefficientsError(
+      who,
+      missing,
+      elements.map(({ element }) => element),
+    );
+  const ratios = compareRatios(
+    parent,
+    daughter,
+    options.ratioError === undefined ? undefined : readNumber(options.ratioError, who, 'ratioError', { from: 0, to: 1, open: 'both' }),
+  );
+  const { verdict, why } = judgeTraces(balance, elements, ratios);
   const borrowed = used.filter(({ meltType }) => meltType !== 'supplied' && !sets.includes(meltType));
   const notes = [
-    `Coefficients of ${sets.join(' to ')} melts; each range is widened to at least ±${100 * leastSpread} %. Elements without 1σ of their own: ${100 * relativeError} %.`,
-    ...(borrowed.length > 0 ? [`Borrowed from another melt’s set: ${borrowed.map(({ mineral, analyte, meltType }) => `${analyte} in ${mineral} (${meltType})`).join(', ')}.`] : []),
-    ...(missing.length > 0 ? [`Not tested, because a coefficient is missing (supply it in options.coefficients): ${[...new Set(missing.map(({ mineral, analyte }) => `${analyte} in ${mineral}`))].join(', ')}.`] : []),
+    `Coefficients of ${sets.join(' to ')} melts; each range is widened to at least ±${100 * leastSpread} %. Elements without 1σ of their ` +
+      `own: ${100 * relativeError} %.`,
+    ...(borrowed.length > 0
+      ? [
+          `Borrowed from another melt’s set: ` +
+            `${borrowed.map(({ mineral, analyte, meltType }) => `${analyte} in ${mineral} (${meltType})`).join(', ')}.`,
+        ]
+      : []),
+    ...(missing.length > 0
+      ? [
+          `Not tested, because a coefficient is missing (supply it in options.coefficients): ` +
+            `${[...new Set(missing.map(({ mineral, analyte }) => `${analyte} in ${mineral}`))].join(', ')}.`,
+        ]
+      : []),
   ];
   const because = step(
-    who, { mode, meltTypes: [...sets], relativeError, leastSpread, verdict, coefficients: used.map(({ mineral, analyte, meltType, value, low, high, source, standing }) => [mineral, analyte, meltType, value, low, high, source, standing]) },
+    who,
+    {
+      mode,
+      meltTypes: [...sets],
+      relativeError,
+      leastSpread,
+      verdict,
+      coefficients: used.map(({ mineral, analyte, meltType, value, low, high, source, standing }) => [
+        mineral,
+        analyte,
+        meltType,
+        value,
+        low,
+        high,
+        source,
+        standing,
+      ]),
+    },
     { sources: [...new Set([mode === 'rayleigh' ? 'neumann_1954' : 'shaw_1970', ...sourcesOf(used)])], tables: ['partition-coefficients.csv'] },
   );
   return showAs({ verdict, why, elements, ratios, coefficients: used, missing, notes, lineage: [...balance.lineage, because] }, (it) => ({
     title: it.why,
     columns: ['Element', 'Parent (ppm)', 'Observed (ppm)', '1σ', 'Predicted (ppm)', 'from', 'to', 'D', 'D from', 'D to', 'Outside by (σ)', 'Finding'],
-    rows: it.elements.map((each): TableCell[] => [each.element, each.parent, each.observed, each.observedSigma, each.predicted, each.low, each.high, each.bulk, each.bulkLow, each.bulkHigh, each.outside, each.finding]),
-    notes: [...(it.ratios.length > 0 ? [`Isotope ratios, daughter less parent: ${it.ratios.map(({ ratio, off }) => `${ratio} ${off.toFixed(1)}σ`).join(', ')}.`] : []), ...it.notes],
+    rows: it.elements.map((each): TableCell[] => [
+      each.element,
+      each.parent,
+      each.observed,
+      each.observedSigma,
+      each.predicted,
+      each.low,
+      each.high,
+      each.bulk,
+      each.bulkLow,
+      each.bulkHigh,
+      each.outside,
+      each.finding,
+    ]),
+    notes: [
+      ...(it.ratios.length > 0
+        ? [`Isotope ratios, daughter less parent: ${it.ratios.map(({ ratio, off }) => `${ratio} ${off.toFixed(1)}σ`).join(', ')}.`]
+        : []),
+      ...it.notes,
+    ],
   }));
 }
-
-function compareRatios(parent: Suite, daughter: Suite, least: number | undefined): TraceTestRatio[] {
-  const both = parent.analytes.filter((symbol) => isotopeElement(symbol) !== undefined && !symbol.startsWith('epsilon') && amountOf(parent, symbol) > 0 && amountOf(daughter, symbol) > 0);
-  return both.map((ratio) => {
-    const [before, after] = [amountOf(parent, ratio), amountOf(daughter, ratio)];
-    const sigmaOf = (analysis: Suite) => Math.max(errorOf(analysis, ratio) || 0, (least ?? usualRatioError(ratio)) * amountOf(analysis, ratio));
-    return { ratio, parent: before, daughter: after, off: (after - before) / Math.hypot(sigmaOf(parent), sigmaOf(daughter)) };
-  });
-}
-
-function judge(balance: MassBalance, elements: readonly TraceTestElement[], ratios: readonly TraceTestRatio[]): { verdict: TraceTest['verdict']; why: string } {
-  const pair = `${balance.daughter.samples[0]} from ${balance.parent.samples[0]} by crystallisation`;
-  const off = elements.filter(({ finding }) => finding === 'disagrees').sort((a, b) => Math.abs(b.outside) - Math.abs(a.outside));
-  const far = off.filter(({ outside }) => Math.abs(outside) > 3);
-  const told = elements.filter(({ finding }) => finding === 'agrees');
-  const say = (list: readonly TraceTestElement[]) => list.slice(0, 6).map(({ element, observed, low, high, outside }) => `${element} (observed ${format(observed)}, predicted ${format(low)}–${format(high)} ppm, ${Math.abs(outside).toFixed(1)}σ ${outside > 0 ? 'above' : 'below'})`).join('; ');
-  const moved = ratios.filter((each) => Math.abs(each.off) > 3);
-  const against = [
-    ...(balance.probability < 0.01 ? [`The majors do not fit (chi-square ${balance.chiSquare.toPrecision(3)}, probability ${balance.probability.toPrecision(2)})`] : []),
-    ...(moved.length > 0 ? [`The system was not closed: ${moved.map(({ ratio, parent, daughter, off: by }) => `${ratio} went from ${parent} to ${daughter} (${Math.abs(by).toFixed(1)}σ)`).join(', ')}`] : []),
-  ];
-  if (against.length > 0) return { verdict: 'rejected', why: `Rejected: ${pair}. ${against.join('. ')}.${off.length > 0 ? ` Outside what the published coefficients allow: ${say(off)}.` : ''}` };
-  if (balance.F.value >= 0.99) return { verdict: 'undecided', why: `Undecided: ${pair}. Next to nothing crystallised (F = ${balance.F.value.toFixed(3)}), so nothing is tested.` };
-  if (far.length > 0 || off.length > Math.max(1, 0.1 * elements.length)) return { verdict: 'rejected', why: `Rejected: ${pair}. Outside what the published coefficients allow: ${say(off)}.` };
-  const compatible = told.some(({ bulk }) => bulk > 1);
-  const incompatible = told.some(({ bulk }) => bulk < 0.5);
-  if (told.length >= 4 && compatible && incompatible) {
-    return { verdict: 'accepted', why: `Accepted: ${pair}. ${told.length} of ${elements.length} elements agree within ranges narrow enough to tell (${told.map(({ element }) => element).join(', ')})${off.length > 0 ? `; ${say(off)} is the one exception` : ''}.` };
-  }
-  const lack = [
-    ...(told.length < 4 ? [`only ${told.length} of ${elements.length} elements have ranges narrow enough to tell`] : []),
-    ...(compatible ? [] : ['none that the crystals take up (D > 1) is among them']), ...(incompatible ? [] : ['none that stays in the liquid (D < 0.5) is among them']),
-  ];
-  return { verdict: 'undecided', why: `Undecided: ${pair}. Nothing contradicts it, but ${lack.join(', and ')}.` };
-}
-
-const format = (value: number): string => String(Number(value.toPrecision(3)));

@@ -48,7 +48,13 @@ export function olivineOxides(Fo: number, out: Float64Array): Float64Array {
   return out;
 }
 
-function temperatureAt(conditions: Required<PathConditions>, oxides: Float64Array, water: number, F: number, end: number): { temperature: number; ferric: number } {
+function temperatureAt(
+  conditions: Required<PathConditions>,
+  oxides: Float64Array,
+  water: number,
+  F: number,
+  end: number,
+): { temperature: number; ferric: number } {
   const { temperature, pressure, redox } = conditions;
   if (typeof temperature === 'string') return settle(oxides, temperature as LiquidThermometer, water, pressure, redox);
   const value = typeof temperature === 'number' ? temperature : temperature.from + ((1 - F) / (1 - end)) * (temperature.to - temperature.from);
@@ -61,7 +67,13 @@ function temperatureAt(conditions: Required<PathConditions>, oxides: Float64Arra
  * @param names minerals of all stages, for the notes; shares has one place for each, and one for apatite
  */
 export function followMajors(
-  start: Float64Array, F: Float64Array, stages: readonly ReadStage[], names: readonly string[], conditions: Required<PathConditions> | undefined, withApatite: boolean, who: string,
+  start: Float64Array,
+  F: Float64Array,
+  stages: readonly ReadStage[],
+  names: readonly string[],
+  conditions: Required<PathConditions> | undefined,
+  withApatite: boolean,
+  who: string,
 ): MajorsPath {
   const states = F.length;
   const width = names.length + 1;
@@ -86,7 +98,11 @@ export function followMajors(
       const limit = waterAtSaturation(conditions.pressure);
       let content = (100 * waterMass) / (waterMass + 100 * F[i]);
       if (content > limit && conditions.water > 0) {
-        if (waterMass === dissolved) notes.push(`Water reaches saturation (${limit.toFixed(2)} wt % at ${conditions.pressure} bar) at F = ${F[i].toFixed(3)}; what is above it is lost as vapour.`);
+        if (waterMass === dissolved)
+          notes.push(
+            `Water reaches saturation (${limit.toFixed(2)} wt % at ${conditions.pressure} bar) at F = ${F[i].toFixed(3)}; what is above ` +
+              `it is lost as vapour.`,
+          );
         content = limit;
         waterMass = (limit * 100 * F[i]) / (100 - limit);
       }
@@ -111,7 +127,10 @@ export function followMajors(
     if (apatite !== undefined) {
       // A prescribed temperature is known for the state after the step; a thermometer's is that of the state before it.
       const prescribed = typeof conditions!.temperature !== 'string';
-      const limit = apatiteSolubility(now[place.SiO2], prescribed ? temperatureAt(conditions!, now, water[i], after, F[states - 1]).temperature : temperature[i]);
+      const limit = apatiteSolubility(
+        now[place.SiO2],
+        prescribed ? temperatureAt(conditions!, now, water[i], after, F[states - 1]).temperature : temperature[i],
+      );
       accessory = (before * now[place.P2O5] - step * crystal[place.P2O5] - limit * after) / (step * (apatite[place.P2O5] - crystal[place.P2O5]));
       accessory = Math.min(1, Math.max(0, accessory));
       if (accessory > 0) {
@@ -138,7 +157,15 @@ export function followMajors(
   }
   if (!Number.isNaN(apatiteAt)) notes.push(`Apatite joins at F = ${apatiteAt.toFixed(3)}.`);
   return {
-    F: F.slice(0, ended), liquid: liquid.slice(0, ended * majors), crystals: crystals.slice(0, (ended - 1) * majors), shares: shares.slice(0, (ended - 1) * width), stageOf: stageOf.slice(0, ended),
-    temperature: temperature.slice(0, ended), ferric: ferric.slice(0, ended), water: water.slice(0, ended), Fo: Fo.slice(0, ended), notes,
+    F: F.slice(0, ended),
+    liquid: liquid.slice(0, ended * majors),
+    crystals: crystals.slice(0, (ended - 1) * majors),
+    shares: shares.slice(0, (ended - 1) * width),
+    stageOf: stageOf.slice(0, ended),
+    temperature: temperature.slice(0, ended),
+    ferric: ferric.slice(0, ended),
+    water: water.slice(0, ended),
+    Fo: Fo.slice(0, ended),
+    notes,
   };
 }

@@ -79,7 +79,10 @@ export function startMajors(from: Composition, who: string): { start: Suite; oxi
   const start = oneAnalysis(from, who, 'from');
   const dry = volatileFree(start);
   if (!Number.isFinite(dry.values('SumAsGiven')[0])) {
-    throw new RangeError(`${who}: from lacks an oxide that the volatile-free sum needs (SiO2, Al2O3, MgO, CaO, Na2O, K2O, iron). It holds: ${start.analytes.join(', ')}.`);
+    throw new RangeError(
+      `${who}: from lacks an oxide that the volatile-free sum needs (SiO2, Al2O3, MgO, CaO, Na2O, K2O, iron). It holds: ` +
+        `${start.analytes.join(', ')}.`,
+    );
   }
   const lacking = majorOxides.filter((oxide) => !Number.isFinite(amountOf(dry, oxide)));
   const oxides = new Float64Array(majors);
@@ -88,8 +91,12 @@ export function startMajors(from: Composition, who: string): { start: Suite; oxi
 }
 
 /** @internal The stages with their minerals. */
-export function readStages(options: WholeRockOptions, who: string): { stages: readonly ReadStage[]; names: readonly string[]; chosen: readonly ChosenMineral[]; usesExchange: boolean } {
-  if ((options.stages === undefined) === (options.assemblage === undefined)) throw new RangeError(`${who}: give either assemblage with downTo, or stages.`);
+export function readStages(
+  options: WholeRockOptions,
+  who: string,
+): { stages: readonly ReadStage[]; names: readonly string[]; chosen: readonly ChosenMineral[]; usesExchange: boolean } {
+  if ((options.stages === undefined) === (options.assemblage === undefined))
+    throw new RangeError(`${who}: give either assemblage with downTo, or stages.`);
   const given = options.stages ?? [{ assemblage: options.assemblage!, downTo: options.downTo! }];
   if (!Array.isArray(given) || given.length === 0) throw new RangeError(`${who}: stages must hold at least one stage.`);
   const names: string[] = [];
@@ -104,7 +111,8 @@ export function readStages(options: WholeRockOptions, who: string): { stages: re
       const choice = stage.compositions?.[name] ?? options.compositions?.[name];
       if (choice === 'exchange') {
         if (mineralOf(name) !== 'olivine') throw new RangeError(`${who}: "exchange" is for olivine; give ${name} a composition.`);
-        if (options.conditions === undefined) throw new RangeError(`${who}: olivine in exchange with the liquid needs conditions, with redox for the liquid's ferrous iron.`);
+        if (options.conditions === undefined)
+          throw new RangeError(`${who}: olivine in exchange with the liquid needs conditions, with redox for the liquid's ferrous iron.`);
         usesExchange = true;
         return undefined;
       }

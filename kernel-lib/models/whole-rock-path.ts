@@ -1,6 +1,13 @@
 import { findAnalyte, majorOxides } from '../chemistry';
 import type { MeltType } from '../tables';
-import { checkOwnCoefficients, gatherCoefficients, MissingCoefficientsError, readMeltTypes, type MissingCoefficient, type UsedCoefficient } from './coefficients';
+import {
+  checkOwnCoefficients,
+  gatherCoefficients,
+  MissingCoefficientsError,
+  readMeltTypes,
+  type MissingCoefficient,
+  type UsedCoefficient,
+} from './coefficients';
 import { isotopeElement } from './isotopes';
 import { outsideRanges, propertySources, type LiquidThermometer } from './liquid-properties';
 import { majors, place } from './liquid-state';
@@ -32,7 +39,14 @@ interface TraceSets {
 }
 
 /** Every coefficient that the path will need, over all sets that come into force; or one error with all that are missing. */
-function gatherSets(options: WholeRockOptions, elements: readonly string[], needs: ReadonlyMap<string, readonly string[]>, orders: ReadonlyMap<string, readonly MeltType[]>, names: readonly string[], who: string): TraceSets {
+function gatherSets(
+  options: WholeRockOptions,
+  elements: readonly string[],
+  needs: ReadonlyMap<string, readonly string[]>,
+  orders: ReadonlyMap<string, readonly MeltType[]>,
+  names: readonly string[],
+  who: string,
+): TraceSets {
   const own = options.coefficients ?? {};
   checkOwnCoefficients(own, who);
   const missing: MissingCoefficient[] = [];
@@ -47,12 +61,17 @@ function gatherSets(options: WholeRockOptions, elements: readonly string[], need
   const lacking = new Set(missing.map(({ analyte }) => analyte));
   const analytes = elements.filter((symbol) => !lacking.has(symbol));
   if (missing.length > 0 && (options.analytes !== 'covered' || analytes.length === 0)) throw new MissingCoefficientsError(who, missing, analytes);
-  const none = analytes.map((analyte): UsedCoefficient => ({ mineral: '', analyte, meltType: 'supplied', value: 0, low: 0, high: 0, source: '', standing: 'supplied' }));
+  const none = analytes.map(
+    (analyte): UsedCoefficient => ({ mineral: '', analyte, meltType: 'supplied', value: 0, low: 0, high: 0, source: '', standing: 'supplied' }),
+  );
   const tables = new Map<string, readonly (readonly UsedCoefficient[])[]>();
   const used = new Map<string, UsedCoefficient>();
   for (const [set, minerals] of needs) {
     const { used: rows } = gatherCoefficients({ minerals, analytes, sets: orders.get(set)!, own, who });
-    tables.set(set, names.map((name) => (minerals.includes(mineralOf(name)) ? rows[minerals.indexOf(mineralOf(name))] : none)));
+    tables.set(
+      set,
+      names.map((name) => (minerals.includes(mineralOf(name)) ? rows[minerals.indexOf(mineralOf(name))] : none)),
+    );
     for (const each of rows.flat()) used.set(`${each.mineral}\n${each.analyte}\n${each.meltType}`, each);
   }
   return { analytes, tables, used: [...used.values()], missing };
@@ -89,15 +108,28 @@ function setsAlong(options: WholeRockOptions, majorsPath: MajorsPath, who: strin
  */
 export function wholeRockPath(options: WholeRockOptions): ModelPath {
   const who = 'wholeRockPath';
-  if (typeof options !== 'object' || options === null) throw new TypeError(`${who}: give an object of options with from, assemblage, downTo and compositions.`);
+  if (typeof options !== 'object' || options === null)
+    throw new TypeError(`${who}: give an object of options with from, assemblage, downTo and compositions.`);
   const { start, oxides, notes } = startMajors(options.from, who);
   const { stages, names, chosen } = readStages(options, who);
   const conditions = readConditions(options.conditions, who);
   const { apatite = false, zircon = false } = options.accessories ?? {};
-  if ((apatite || zircon !== false) && conditions === undefined) throw new RangeError(`${who}: accessories need conditions: their saturation depends on temperature.`);
+  if ((apatite || zircon !== false) && conditions === undefined)
+    throw new RangeError(`${who}: accessories need conditions: their saturation depends on temperature.`);
   const zirconModel: ZirconModel = typeof zircon === 'string' ? zircon : 'boehnke-2013';
   const steps = readSteps(options.steps, who, 100);
-  const found = followMajors(oxides, stageGrid(stages.map(({ downTo }) => downTo), steps), stages, names, conditions, apatite, who);
+  const found = followMajors(
+    oxides,
+    stageGrid(
+      stages.map(({ downTo }) => downTo),
+      steps,
+    ),
+    stages,
+    names,
+    conditions,
+    apatite,
+    who,
+  );
   const { F, liquid: majorLiquid, shares, crystals } = found;
   const size = F.length;
   const width = names.length + 1;
@@ -116,7 +148,8 @@ export function wholeRockPath(options: WholeRockOptions): ModelPath {
     needs.set(sets[i], list);
   }
   const traces = gatherSets(options, elements, needs, orders, phases, who);
-  if (traces.missing.length > 0) notes.push(`Not modelled, because a coefficient is missing: ${elements.filter((symbol) => !traces.analytes.includes(symbol)).join(', ')}.`);
+  if (traces.missing.length > 0)
+    notes.push(`Not modelled, because a coefficient is missing: ${elements.filter((symbol) => !traces.analytes.includes(symbol)).join(', ')}.`);
   const carried = followTraces(traces, found, sets, start, hasZircon ? zirconModel : undefined, width, phases);
   notes.push(...found.notes, ...carried.notes);
 
@@ -138,32 +171,58 @@ export function wholeRockPath(options: WholeRockOptions): ModelPath {
   majorOxides.forEach((oxide, j) => column(oxide, majorLiquid, majors, j, (step) => crystals[step * majors + j]));
   const T = traces.analytes.length;
   traces.analytes.forEach((symbol, a) => column(symbol, carried.liquid, T, a, (step) => carried.crystals[step * T + a]));
-  for (const symbol of start.analytes) if (isotopeElement(symbol) !== undefined && Number.isFinite(amountOf(start, symbol))) liquid.set(symbol, new Float64Array(size).fill(amountOf(start, symbol)));
+  for (const symbol of start.analytes)
+    if (isotopeElement(symbol) !== undefined && Number.isFinite(amountOf(start, symbol)))
+      liquid.set(symbol, new Float64Array(size).fill(amountOf(start, symbol)));
 
   const { quantities, flags } = propertiesAlong(found, conditions);
   const isHydrous = names.some((name) => ['amphibole', 'biotite'].includes(mineralOf(name)));
-  if (isHydrous && conditions !== undefined && conditions.water > 0) notes.push('The water in amphibole and biotite is not taken from the liquid: its water is an upper limit.');
+  if (isHydrous && conditions !== undefined && conditions.water > 0)
+    notes.push('The water in amphibole and biotite is not taken from the liquid: its water is an upper limit.');
   const table = saturationTable();
   const thermometer = typeof conditions?.temperature === 'string' ? (conditions.temperature as LiquidThermometer) : undefined;
   return buildPath({
-    who, process: 'Whole-rock crystallisation', F, meaning: 'liquid left', liquid, solid, cumulate, quantities,
-    coefficients: traces.used, notes, lineage: start.lineage,
+    who,
+    process: 'Whole-rock crystallisation',
+    F,
+    meaning: 'liquid left',
+    liquid,
+    solid,
+    cumulate,
+    quantities,
+    coefficients: traces.used,
+    notes,
+    lineage: start.lineage,
     labels: {
       'coefficient set': sets,
       assemblage: Array.from(F, (_, i) => phases.filter((__, m) => carried.shares[Math.min(i, size - 2) * phases.length + m] > 0).join(' + ')),
       ...(conditions === undefined ? {} : { 'liquid range': flags }),
     },
     detail: {
-      stages: stages.map((stage) => ({ downTo: stage.downTo, assemblage: Object.fromEntries(stage.places.map((at, m) => [names[at], stage.shares[m]])) })),
+      stages: stages.map((stage) => ({
+        downTo: stage.downTo,
+        assemblage: Object.fromEntries(stage.places.map((at, m) => [names[at], stage.shares[m]])),
+      })),
       compositions: chosen.map(({ name, label, source, standing }) => [name, label, source, standing]),
-      conditions: conditions === undefined ? null : { ...conditions, temperature: conditions.temperature as string, redox: conditions.redox as number },
-      accessories: { apatite, zircon: zircon === false ? false : zirconModel }, sets: [...new Set(sets)],
+      conditions:
+        conditions === undefined ? null : { ...conditions, temperature: conditions.temperature as string, redox: conditions.redox as number },
+      accessories: { apatite, zircon: zircon === false ? false : zirconModel },
+      sets: [...new Set(sets)],
     },
     sources: [
-      'bryan_1969', 'gast_1968', ...chosen.filter(({ standing }) => standing !== 'supplied').map(({ source }) => source), ...(conditions === undefined ? [] : propertySources(thermometer, conditions.redox)),
-      ...(found.Fo.some(Number.isFinite) ? ['roeder_emslie_1970'] : []), ...(apatite ? [table.apatite.source] : []), ...(hasZircon ? [table.zircon[zirconModel].source] : []),
+      'bryan_1969',
+      'gast_1968',
+      ...chosen.filter(({ standing }) => standing !== 'supplied').map(({ source }) => source),
+      ...(conditions === undefined ? [] : propertySources(thermometer, conditions.redox)),
+      ...(found.Fo.some(Number.isFinite) ? ['roeder_emslie_1970'] : []),
+      ...(apatite ? [table.apatite.source] : []),
+      ...(hasZircon ? [table.zircon[zirconModel].source] : []),
     ],
-    tables: ['mineral-compositions.csv', ...(conditions === undefined ? [] : ['thermometers.json', 'melt-density.json', 'melt-viscosity.json', 'iron-oxidation.json']), ...(apatite || hasZircon ? ['saturation.json'] : [])],
+    tables: [
+      'mineral-compositions.csv',
+      ...(conditions === undefined ? [] : ['thermometers.json', 'melt-density.json', 'melt-viscosity.json', 'iron-oxidation.json']),
+      ...(apatite || hasZircon ? ['saturation.json'] : []),
+    ],
   });
 }
 
@@ -173,7 +232,15 @@ function couldSaturate(found: MajorsPath, state: number, start: Parameters<typeo
   return amountOf(start, 'Zr') / found.F[state + 1] > zirconSolubility(M, found.temperature[state + 1], model);
 }
 
-function followTraces(traces: TraceSets, found: MajorsPath, sets: readonly string[], start: Parameters<typeof amountOf>[0], zircon: ZirconModel | undefined, width: number, phases: readonly string[]) {
+function followTraces(
+  traces: TraceSets,
+  found: MajorsPath,
+  sets: readonly string[],
+  start: Parameters<typeof amountOf>[0],
+  zircon: ZirconModel | undefined,
+  width: number,
+  phases: readonly string[],
+) {
   const { analytes, tables } = traces;
   const { F, shares: majorShares } = found;
   const T = analytes.length;
@@ -221,7 +288,10 @@ function followTraces(traces: TraceSets, found: MajorsPath, sets: readonly strin
   return { liquid, crystals, shares, notes };
 }
 
-function propertiesAlong(found: MajorsPath, conditions: ReturnType<typeof readConditions>): { quantities: Map<string, { unit: string; values: Float64Array }>; flags: string[] } {
+function propertiesAlong(
+  found: MajorsPath,
+  conditions: ReturnType<typeof readConditions>,
+): { quantities: Map<string, { unit: string; values: Float64Array }>; flags: string[] } {
   const quantities = new Map<string, { unit: string; values: Float64Array }>();
   const size = found.F.length;
   const flags = new Array<string>(size).fill('');

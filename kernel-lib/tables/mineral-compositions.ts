@@ -17,10 +17,27 @@ export interface MineralComposition {
 const oxideNames = ['SiO2', 'TiO2', 'Al2O3', 'Cr2O3', 'Fe2O3', 'FeO', 'MnO', 'MgO', 'CaO', 'Na2O', 'K2O', 'P2O5', 'H2O', 'ZrO2', 'F', 'Cl'] as const;
 
 const rowSchema = z.strictObject({
-  mineral: field.text, label: field.text, SiO2: field.optionalNumber, TiO2: field.optionalNumber, Al2O3: field.optionalNumber, Cr2O3: field.optionalNumber,
-  Fe2O3: field.optionalNumber, FeO: field.optionalNumber, MnO: field.optionalNumber, MgO: field.optionalNumber, CaO: field.optionalNumber,
-  Na2O: field.optionalNumber, K2O: field.optionalNumber, P2O5: field.optionalNumber, H2O: field.optionalNumber, ZrO2: field.optionalNumber,
-  F: field.optionalNumber, Cl: field.optionalNumber, source: field.text, standing: field.standing, note: field.optionalText,
+  mineral: field.text,
+  label: field.text,
+  SiO2: field.optionalNumber,
+  TiO2: field.optionalNumber,
+  Al2O3: field.optionalNumber,
+  Cr2O3: field.optionalNumber,
+  Fe2O3: field.optionalNumber,
+  FeO: field.optionalNumber,
+  MnO: field.optionalNumber,
+  MgO: field.optionalNumber,
+  CaO: field.optionalNumber,
+  Na2O: field.optionalNumber,
+  K2O: field.optionalNumber,
+  P2O5: field.optionalNumber,
+  H2O: field.optionalNumber,
+  ZrO2: field.optionalNumber,
+  F: field.optionalNumber,
+  Cl: field.optionalNumber,
+  source: field.text,
+  standing: field.standing,
+  note: field.optionalText,
 });
 
 const all = once((): readonly MineralComposition[] => {
@@ -49,7 +66,9 @@ export function mineralCompositions(): readonly MineralComposition[] {
 export function mineralComposition(mineral: string, label: string): MineralComposition {
   const found = all().find((entry) => entry.mineral === mineral && entry.label === label);
   if (found !== undefined) return found;
-  const labels = all().filter((entry) => entry.mineral === mineral).map((entry) => `"${entry.label}"`);
+  const labels = all()
+    .filter((entry) => entry.mineral === mineral)
+    .map((entry) => `"${entry.label}"`);
   const known = labels.length > 0 ? `It has: ${labels.join(', ')}.` : `It has: ${[...new Set(all().map((entry) => entry.mineral))].join(', ')}.`;
   throw new RangeError(`reference-tables/mineral-compositions.csv has no ${mineral} "${label}". ${known}`);
 }

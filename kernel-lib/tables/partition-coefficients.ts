@@ -28,11 +28,20 @@ export interface PartitionCoefficient {
 
 const confidences = ['high', 'medium', 'low'] as const;
 
-const rowSchema = z.strictObject({
-  mineral: field.text, melt: z.enum(['basalt', 'andesite', 'dacite', 'rhyolite', 'mantle-melting']), analyte: field.text, value: field.optionalNumber,
-  minimum: field.optionalNumber, maximum: field.optionalNumber, source: field.text, standing: field.standing, confidence: z.enum(confidences),
-  note: field.optionalText,
-}).refine((row) => row.value !== undefined || (row.minimum !== undefined && row.maximum !== undefined), 'needs a value, or a minimum and a maximum');
+const rowSchema = z
+  .strictObject({
+    mineral: field.text,
+    melt: z.enum(['basalt', 'andesite', 'dacite', 'rhyolite', 'mantle-melting']),
+    analyte: field.text,
+    value: field.optionalNumber,
+    minimum: field.optionalNumber,
+    maximum: field.optionalNumber,
+    source: field.text,
+    standing: field.standing,
+    confidence: z.enum(confidences),
+    note: field.optionalText,
+  })
+  .refine((row) => row.value !== undefined || (row.minimum !== undefined && row.maximum !== undefined), 'needs a value, or a minimum and a maximum');
 
 const all = once((): readonly PartitionCoefficient[] => readCsvTable('partition-coefficients.csv', rowSchema));
 
@@ -71,7 +80,11 @@ export function coefficientsFor(mineral: string, melt: MeltType, analyte: string
 }
 
 /** The least and the greatest published coefficient of one element between one mineral and one kind of melt; undefined when there is none. */
-export function coefficientRange(mineral: string, melt: MeltType, analyte: string): { readonly low: number; readonly high: number; readonly sources: readonly string[] } | undefined {
+export function coefficientRange(
+  mineral: string,
+  melt: MeltType,
+  analyte: string,
+): { readonly low: number; readonly high: number; readonly sources: readonly string[] } | undefined {
   const rows = coefficientsFor(mineral, melt, analyte);
   if (rows.length === 0) return undefined;
   const numbers = rows.flatMap(({ value, minimum, maximum }) => [value, minimum, maximum]).filter((number) => number !== undefined);

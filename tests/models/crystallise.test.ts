@@ -4,7 +4,12 @@ import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
 import { column, crystallise, evaluate, MissingCoefficientsError, suiteOf } from 'wedgework';
 
-const cases = JSON.parse(readFileSync(join(__dirname, '../data/models/closed-forms.json'), 'utf8')) as { key: string; inputs: any; expected: any; computed_independently?: any }[];
+const cases = JSON.parse(readFileSync(join(__dirname, '../data/models/closed-forms.json'), 'utf8')) as {
+  key: string;
+  inputs: any;
+  expected: any;
+  computed_independently?: any;
+}[];
 const byKey = (key: string) => cases.find((each) => each.key === key)!;
 const bulk = (D: number, element = 'Ba') => ({ assemblage: { bulk: 1 }, coefficients: { bulk: { [element]: D } } });
 const last = (values: Float64Array) => values[values.length - 1];
@@ -39,17 +44,28 @@ describe('crystallise', () => {
   });
 
   it('shows every coefficient with mineral, melt type, source and standing', () => {
-    const path = crystallise({ from: { Sr: 520, Ba: 210, Ni: 90 }, assemblage: { olivine: 0.15, clinopyroxene: 0.35, plagioclase: 0.5 }, downTo: 0.4 });
+    const path = crystallise({
+      from: { Sr: 520, Ba: 210, Ni: 90 },
+      assemblage: { olivine: 0.15, clinopyroxene: 0.35, plagioclase: 0.5 },
+      downTo: 0.4,
+    });
     expect(path.coefficients).toHaveLength(9);
     expect(path.coefficients.find(({ mineral, analyte }) => mineral === 'plagioclase' && analyte === 'Sr')).toMatchObject({
-      meltType: 'basalt', value: 1.83, source: 'arth_1976', standing: 'from memory', // Arth 1976
+      meltType: 'basalt',
+      value: 1.83,
+      source: 'arth_1976',
+      standing: 'from memory', // Arth 1976
     });
     expect(path.lineage.at(-1)!.sources).toContain('arth_1976');
     expect(String(path.toMimeBundle instanceof Function && (path.toMimeBundle() as any)['text/plain'])).toMatch(/Arth 1976, from memory/);
   });
 
   it('lets any expression work on the liquid', () => {
-    const path = crystallise({ from: { Ba: 210, Th: 2.1 }, ...{ assemblage: { bulk: 1 }, coefficients: { bulk: { Ba: 0.2, Th: 0.2 } } }, downTo: 0.3 });
+    const path = crystallise({
+      from: { Ba: 210, Th: 2.1 },
+      ...{ assemblage: { bulk: 1 }, coefficients: { bulk: { Ba: 0.2, Th: 0.2 } } },
+      downTo: 0.3,
+    });
     for (const ratio of evaluate(path.liquid, 'Ba/Th').values) expect(ratio).toBeCloseTo(100, 9);
   });
 
@@ -64,7 +80,12 @@ describe('crystallise', () => {
       expect(covered).toEqual(['Ba', 'Sr']);
       expect(message).toMatch(/options\.coefficients/);
     }
-    const covered = crystallise({ from: { Ba: 210, Cs: 1.2, Sr: 500 }, assemblage: { olivine: 0.2, plagioclase: 0.8 }, downTo: 0.5, analytes: 'covered' });
+    const covered = crystallise({
+      from: { Ba: 210, Cs: 1.2, Sr: 500 },
+      assemblage: { olivine: 0.2, plagioclase: 0.8 },
+      downTo: 0.5,
+      analytes: 'covered',
+    });
     expect(covered.liquid.has('Cs')).toBe(false);
     expect(covered.notes.join(' ')).toMatch(/Cs/);
   });
@@ -108,7 +129,8 @@ describe('crystallise', () => {
   it('agrees between Rayleigh and equilibrium to first order as F goes to 1', () => {
     for (const D of [0, 0.1, 0.5, 2, 8]) {
       const gap = (removed: number) => {
-        const end = (mode: 'rayleigh' | 'equilibrium') => last(crystallise({ from: { Ba: 1 }, ...bulk(D), downTo: 1 - removed, mode, steps: 1 }).liquid.values('Ba'));
+        const end = (mode: 'rayleigh' | 'equilibrium') =>
+          last(crystallise({ from: { Ba: 1 }, ...bulk(D), downTo: 1 - removed, mode, steps: 1 }).liquid.values('Ba'));
         return Math.abs(end('rayleigh') - end('equilibrium'));
       };
       // A difference of second order falls fourfold when the crystallised fraction is halved.

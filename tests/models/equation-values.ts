@@ -8,7 +8,12 @@ export function equationValues(equation: string): { inputs: Record<string, numbe
   const rows = Papa.parse<Record<string, string>>(text, { header: true, skipEmptyLines: true }).data.filter((row) => row.equation === equation);
   if (rows.length === 0) throw new Error(`No equation values for "${equation}"`);
   return rows.map((row) => ({
-    inputs: Object.fromEntries(row.inputs.split(';').map((pair) => pair.split('=')).map(([name, value]) => [name.trim(), parseFloat(value)])),
+    inputs: Object.fromEntries(
+      row.inputs
+        .split(';')
+        .map((pair) => pair.split('='))
+        .map(([name, value]) => [name.trim(), parseFloat(value)]),
+    ),
     output: row.output,
     value: Number(row.value),
   }));

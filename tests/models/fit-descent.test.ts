@@ -10,12 +10,19 @@ const elements = Object.keys(D);
 function suite(rows: Record<string, number>[], noise: number, seed: number): Suite {
   const random = seededDraws(seed);
   return suiteOf({
-    columns: Object.keys(rows[0]).map((symbol) => column({ symbol, values: rows.map((row) => row[symbol] * (symbol.includes('/') ? 1 + 1e-5 * random.normal() : Math.exp(noise * random.normal()))) })),
+    columns: Object.keys(rows[0]).map((symbol) =>
+      column({
+        symbol,
+        values: rows.map((row) => row[symbol] * (symbol.includes('/') ? 1 + 1e-5 * random.normal() : Math.exp(noise * random.normal()))),
+      }),
+    ),
     labels: { sample: rows.map((_, i) => `S${i + 1}`) },
   });
 }
-const line = (count: number) => Array.from({ length: count }, (_, i) => Object.fromEntries(elements.map((e) => [e, parent[e] * (1 - (0.75 * i) / (count - 1)) ** (D[e] - 1)])));
-const mixed = (count: number) => Array.from({ length: count }, (_, i) => Object.fromEntries(elements.map((e) => [e, parent[e] + (i / (count - 1)) * (felsic[e] - parent[e])])));
+const line = (count: number) =>
+  Array.from({ length: count }, (_, i) => Object.fromEntries(elements.map((e) => [e, parent[e] * (1 - (0.75 * i) / (count - 1)) ** (D[e] - 1)])));
+const mixed = (count: number) =>
+  Array.from({ length: count }, (_, i) => Object.fromEntries(elements.map((e) => [e, parent[e] + (i / (count - 1)) * (felsic[e] - parent[e])])));
 const errors = { relativeError: 0.03, scatter: 0 };
 
 describe('fitDescent', () => {
@@ -37,14 +44,17 @@ describe('fitDescent', () => {
     rows[11].Ba *= 0.6;
     rows[20].Ni *= 3;
     const fit = fitDescent(suite(rows, 0.03, 2), errors);
-    const flagged = fit.samples.filter(({ belongs }) => !belongs).map(({ sample, excludedBy, off }) => `${sample} ${excludedBy} ${off > 0 ? 'high' : 'low'}`);
+    const flagged = fit.samples
+      .filter(({ belongs }) => !belongs)
+      .map(({ sample, excludedBy, off }) => `${sample} ${excludedBy} ${off > 0 ? 'high' : 'low'}`);
     expect(flagged).toEqual(['S5 Sr high', 'S12 Ba low', 'S21 Ni high']);
     expect(fit.preferred).toBe('crystallisation');
   });
 
   it('seldom flags a sample of a suite that is in line', () => {
     let alarms = 0;
-    for (let seed = 0; seed < 20; seed++) alarms += fitDescent(suite(line(20), 0.03, 100 + seed), errors).samples.some(({ belongs }) => !belongs) ? 1 : 0;
+    for (let seed = 0; seed < 20; seed++)
+      alarms += fitDescent(suite(line(20), 0.03, 100 + seed), errors).samples.some(({ belongs }) => !belongs) ? 1 : 0;
     expect(alarms).toBeLessThanOrEqual(2);
   });
 
@@ -61,19 +71,38 @@ describe('fitDescent', () => {
 
   it('tells assimilation from its rivals by isotopes, and finds its rate', () => {
     const path = assimilate({
-      from: { ...parent, '87Sr/86Sr': 0.7036 }, assimilant: { ...felsic, '87Sr/86Sr': 0.713 }, r: 0.3, assemblage: { bulk: 1 }, coefficients: { bulk: D }, downTo: 0.4, steps: 23,
+      from: { ...parent, '87Sr/86Sr': 0.7036 },
+      assimilant: { ...felsic, '87Sr/86Sr': 0.713 },
+      r: 0.3,
+      assemblage: { bulk: 1 },
+      coefficients: { bulk: D },
+      downTo: 0.4,
+      steps: 23,
     });
-    const rows = Array.from({ length: 24 }, (_, i) => Object.fromEntries([...elements, '87Sr/86Sr'].map((symbol) => [symbol, path.liquid.values(symbol)[i]])));
+    const rows = Array.from({ length: 24 }, (_, i) =>
+      Object.fromEntries([...elements, '87Sr/86Sr'].map((symbol) => [symbol, path.liquid.values(symbol)[i]])),
+    );
     const fit = fitDescent(suite(rows, 0.02, 5), { relativeError: 0.02, scatter: 0, assimilant: { ...felsic, '87Sr/86Sr': 0.713 } });
     expect(fit.preferred).toBe('assimilation');
     expect(fit.r).toBeGreaterThan(0.15);
     expect(fit.r).toBeLessThan(0.5);
-    expect(fitDescent(suite(line(24).map((row) => ({ ...row, '87Sr/86Sr': 0.7036 })), 0.02, 6), { relativeError: 0.02, scatter: 0, assimilant: { ...felsic, '87Sr/86Sr': 0.713 } }).preferred).toBe('crystallisation');
+    expect(
+      fitDescent(
+        suite(
+          line(24).map((row) => ({ ...row, '87Sr/86Sr': 0.7036 })),
+          0.02,
+          6,
+        ),
+        { relativeError: 0.02, scatter: 0, assimilant: { ...felsic, '87Sr/86Sr': 0.713 } },
+      ).preferred,
+    ).toBe('crystallisation');
   });
 
   it('works around gaps, and says what it cannot do', () => {
     const gappy = suite(line(20), 0.03, 7);
-    const withGaps = gappy.with(['Th', 'Sc'].map((symbol) => column({ symbol, values: gappy.values(symbol).map((value, i) => (i % 7 === 0 ? NaN : value)) })));
+    const withGaps = gappy.with(
+      ['Th', 'Sc'].map((symbol) => column({ symbol, values: gappy.values(symbol).map((value, i) => (i % 7 === 0 ? NaN : value)) })),
+    );
     expect(fitDescent(withGaps, errors).preferred).toBe('crystallisation');
     expect(fitDescent(withGaps).notes.join(' ')).toMatch(/give the assimilant/);
     expect(() => fitDescent(withGaps, { analytes: ['Ba', 'Sr'] })).toThrow(/needs 4/);

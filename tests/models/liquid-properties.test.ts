@@ -1,8 +1,26 @@
 import { readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
-import { apatiteSolubility, apatiteTemperature, column, suiteOf, suspensionFactor, volatileFree, withLiquidProperties, withSaturationTemperatures, zirconSolubility, zirconTemperature } from 'wedgework';
-import { equilibriumOlivine, exchangeOf, liquidTemperature, magnesiaTemperature, olivineLiquidTemperature, waterAtSaturation } from '../../kernel-lib/models/thermometry';
+import {
+  apatiteSolubility,
+  apatiteTemperature,
+  column,
+  suiteOf,
+  suspensionFactor,
+  volatileFree,
+  withLiquidProperties,
+  withSaturationTemperatures,
+  zirconSolubility,
+  zirconTemperature,
+} from 'wedgework';
+import {
+  equilibriumOlivine,
+  exchangeOf,
+  liquidTemperature,
+  magnesiaTemperature,
+  olivineLiquidTemperature,
+  waterAtSaturation,
+} from '../../kernel-lib/models/thermometry';
 import { meltDensityOf } from '../../kernel-lib/models/melt-density';
 import { meltViscosityOf } from '../../kernel-lib/models/melt-viscosity';
 import { zirconM } from '../../kernel-lib/models/saturation';
@@ -14,7 +32,8 @@ const averages = data('average-rocks.json').rocks as Record<string, Record<strin
 const cases = data('liquid-properties.json') as { key: string; expected: any[] }[];
 const byKey = (key: string) => cases.find((each) => each.key === key)!;
 const symbols = ['SiO2', 'TiO2', 'Al2O3', 'FeOT', 'MnO', 'MgO', 'CaO', 'Na2O', 'K2O', 'P2O5'];
-const suite = (analysis: Record<string, number>) => suiteOf({ columns: Object.entries(analysis).map(([symbol, value]) => column({ symbol, values: [value] })) });
+const suite = (analysis: Record<string, number>) =>
+  suiteOf({ columns: Object.entries(analysis).map(([symbol, value]) => column({ symbol, values: [value] })) });
 const dry = (analysis: Record<string, number>) => {
   const recast = volatileFree(suite(analysis));
   return symbols.map((symbol) => (recast.has(symbol) ? recast.values(symbol)[0] : 0));
@@ -109,7 +128,8 @@ describe('saturation', () => {
 
   it('inverts its own solubilities and flags what is outside the calibration', () => {
     for (const T of [700, 850, 1000]) {
-      for (const model of ['watson-harrison-1983', 'boehnke-2013', 'shao-2020'] as const) expect(zirconTemperature(1.4, zirconSolubility(1.4, T, model), model)).toBeCloseTo(T, 8);
+      for (const model of ['watson-harrison-1983', 'boehnke-2013', 'shao-2020'] as const)
+        expect(zirconTemperature(1.4, zirconSolubility(1.4, T, model), model)).toBeCloseTo(T, 8);
       expect(apatiteTemperature(68, apatiteSolubility(68, T))).toBeCloseTo(T, 8);
     }
     const flagged = withSaturationTemperatures(suite({ ...averages.basalt, Zr: 100 }));
@@ -120,7 +140,12 @@ describe('saturation', () => {
 
 describe('withLiquidProperties', () => {
   it('adds the properties with units, flags and sources', () => {
-    const found = withLiquidProperties(suite({ ...averages.basalt, Ba: 100 }), { temperature: 'olivine-liquid', pressure: 2000, water: 2, redox: { buffer: 'NNO' } });
+    const found = withLiquidProperties(suite({ ...averages.basalt, Ba: 100 }), {
+      temperature: 'olivine-liquid',
+      pressure: 2000,
+      water: 2,
+      redox: { buffer: 'NNO' },
+    });
     expect(found.column('density').unit).toBe('g/cm³');
     const temperature = found.values('temperature')[0];
     expect(temperature).toBeGreaterThan(1100);
@@ -130,7 +155,9 @@ describe('withLiquidProperties', () => {
     expect(found.values('ferric share')[0]).toBeCloseTo(ferric, 6);
     expect(temperature).toBeCloseTo(olivineLiquidTemperature(oxides, equilibriumOlivine(oxides, ferric, 0.3), 2000, 2), 4);
     expect(found.label('liquid range')[0]).toMatch(/density: extrapolated/);
-    expect(found.lineage.at(-2)!.sources).toEqual(expect.arrayContaining(['putirka_2008', 'kress_carmichael_1991', 'giordano_2008', 'ochs_lange_1999']));
+    expect(found.lineage.at(-2)!.sources).toEqual(
+      expect.arrayContaining(['putirka_2008', 'kress_carmichael_1991', 'giordano_2008', 'ochs_lange_1999']),
+    );
   });
 
   it('agrees with the redox state computed independently', () => {

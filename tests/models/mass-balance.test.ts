@@ -15,33 +15,38 @@ describe('NonNegativeSolver', () => {
   it('meets the conditions of the minimum, and agrees with an independent solver', () => {
     const number = fc.double({ min: -20, max: 60, noNaN: true });
     fc.assert(
-      fc.property(fc.array(fc.array(number, { minLength: 6, maxLength: 6 }), { minLength: 10, maxLength: 10 }), fc.array(number, { minLength: 10, maxLength: 10 }), (rows, target) => {
-        const k = 6;
-        const gram = new Float64Array(k * k);
-        const right = new Float64Array(k);
-        for (let a = 0; a < k; a++) {
-          rows.forEach((row, i) => (right[a] += row[a] * target[i]));
-          for (let b = 0; b < k; b++) rows.forEach((row) => (gram[a * k + b] += row[a] * row[b]));
-        }
-        const x = new Float64Array(k);
-        new NonNegativeSolver(k).solve(gram, right, x, k, k);
-        const sumOfSquares = (of: ArrayLike<number>) => rows.reduce((sum, row, i) => sum + (target[i] - row.reduce((fit, value, j) => fit + value * of[j], 0)) ** 2, 0);
-        for (let j = 0; j < k; j++) {
-          let slope = right[j];
-          for (let m = 0; m < k; m++) slope -= gram[j * k + m] * x[m];
-          const scale = Math.sqrt(gram[j * k + j]) * 200 + 1e-9;
-          expect(x[j]).toBeGreaterThanOrEqual(0);
-          expect(slope / scale).toBeLessThan(1e-7);
-          if (x[j] > 0) expect(Math.abs(slope) / scale).toBeLessThan(1e-7);
-        }
-        let independent: number[];
-        try {
-          independent = fcnnlsVector(rows, target).K.to1DArray();
-        } catch {
-          return; // it gave up: nothing to compare with
-        }
-        expect(sumOfSquares(x)).toBeLessThanOrEqual(sumOfSquares(independent) * (1 + 1e-9) + 1e-7);
-      }),
+      fc.property(
+        fc.array(fc.array(number, { minLength: 6, maxLength: 6 }), { minLength: 10, maxLength: 10 }),
+        fc.array(number, { minLength: 10, maxLength: 10 }),
+        (rows, target) => {
+          const k = 6;
+          const gram = new Float64Array(k * k);
+          const right = new Float64Array(k);
+          for (let a = 0; a < k; a++) {
+            rows.forEach((row, i) => (right[a] += row[a] * target[i]));
+            for (let b = 0; b < k; b++) rows.forEach((row) => (gram[a * k + b] += row[a] * row[b]));
+          }
+          const x = new Float64Array(k);
+          new NonNegativeSolver(k).solve(gram, right, x, k, k);
+          const sumOfSquares = (of: ArrayLike<number>) =>
+            rows.reduce((sum, row, i) => sum + (target[i] - row.reduce((fit, value, j) => fit + value * of[j], 0)) ** 2, 0);
+          for (let j = 0; j < k; j++) {
+            let slope = right[j];
+            for (let m = 0; m < k; m++) slope -= gram[j * k + m] * x[m];
+            const scale = Math.sqrt(gram[j * k + j]) * 200 + 1e-9;
+            expect(x[j]).toBeGreaterThanOrEqual(0);
+            expect(slope / scale).toBeLessThan(1e-7);
+            if (x[j] > 0) expect(Math.abs(slope) / scale).toBeLessThan(1e-7);
+          }
+          let independent: number[];
+          try {
+            independent = fcnnlsVector(rows, target).K.to1DArray();
+          } catch {
+            return; // it gave up: nothing to compare with
+          }
+          expect(sumOfSquares(x)).toBeLessThanOrEqual(sumOfSquares(independent) * (1 + 1e-9) + 1e-7);
+        },
+      ),
       { seed: 6, numRuns: 150 },
     );
   });
@@ -85,12 +90,26 @@ describe('massBalance', () => {
     // Computed independently by ordinary least squares at 40 digits; method of Bryan et al. 1969 and Wright & Doherty 1970.
     const { inputs, expected } = byKey('mb-rounded-synthetic');
     const asMinerals = (it: Record<string, Record<string, number>>) => Object.fromEntries(Object.entries(it).map(([name, oxides]) => [name, oxides]));
-    const rounded = massBalance({ parent: inputs.parent_rounded_0_01, daughter: inputs.daughter, minerals: asMinerals(inputs.minerals), errors: 'equal', closure: 'free', basis: 'as given' });
+    const rounded = massBalance({
+      parent: inputs.parent_rounded_0_01,
+      daughter: inputs.daughter,
+      minerals: asMinerals(inputs.minerals),
+      errors: 'equal',
+      closure: 'free',
+      basis: 'as given',
+    });
     expect(rounded.F.value).toBeCloseTo(expected.coefficients.daughter, 4);
     for (const { phase, value } of rounded.phases) expect(value).toBeCloseTo(expected.coefficients[phase], 4);
     expect(rounded.sumOfSquares).toBeCloseTo(expected.sum_of_squares, 6);
     const exact = byKey('mb-exact-synthetic');
-    const solved = massBalance({ parent: exact.inputs.parent, daughter: exact.inputs.daughter, minerals: asMinerals(exact.inputs.minerals), errors: 'equal', closure: 'free', basis: 'as given' });
+    const solved = massBalance({
+      parent: exact.inputs.parent,
+      daughter: exact.inputs.daughter,
+      minerals: asMinerals(exact.inputs.minerals),
+      errors: 'equal',
+      closure: 'free',
+      basis: 'as given',
+    });
     expect(solved.F.value).toBeCloseTo(0.55, 4);
     for (const { phase, ofCrystals } of solved.phases) expect(ofCrystals).toBeCloseTo(exact.expected.crystal_proportions[phase], 3);
     expect(solved.sumOfSquares).toBeLessThan(1e-5);
@@ -100,10 +119,23 @@ describe('massBalance', () => {
   it('finds An and Fo as unknowns, and what was taken in', () => {
     const daughter = { SiO2: 60, TiO2: 0.9, Al2O3: 16.5, FeOT: 7, MnO: 0.15, MgO: 3, CaO: 6.2, Na2O: 4, K2O: 2, P2O5: 0.25 };
     const assimilant = { SiO2: 72, TiO2: 0.3, Al2O3: 14, FeOT: 2.5, MnO: 0.05, MgO: 0.7, CaO: 2, Na2O: 3.6, K2O: 4.7, P2O5: 0.15 };
-    const { parent } = plantedParent(daughter, { olivine: ['Fo83', 0.08], clinopyroxene: ['Wo42En46Fs12', 0.15], plagioclase: ['An72', 0.25], magnetite: ['Usp30', 0.03] }, { composition: assimilant, mass: 0.12 });
+    const { parent } = plantedParent(
+      daughter,
+      { olivine: ['Fo83', 0.08], clinopyroxene: ['Wo42En46Fs12', 0.15], plagioclase: ['An72', 0.25], magnetite: ['Usp30', 0.03] },
+      { composition: assimilant, mass: 0.12 },
+    );
     const found = massBalance({
-      parent, daughter, assimilant, draws: 0, errors: { relative: 1e-4, floor: 1e-4 },
-      minerals: { olivine: { between: ['Fo60', 'Fo90'] }, clinopyroxene: 'Wo42En46Fs12', plagioclase: { between: ['An40', 'An95'] }, magnetite: 'Usp30' },
+      parent,
+      daughter,
+      assimilant,
+      draws: 0,
+      errors: { relative: 1e-4, floor: 1e-4 },
+      minerals: {
+        olivine: { between: ['Fo60', 'Fo90'] },
+        clinopyroxene: 'Wo42En46Fs12',
+        plagioclase: { between: ['An40', 'An95'] },
+        magnetite: 'Usp30',
+      },
     });
     const of = (phase: string) => found.phases.find((each) => each.phase === phase)!;
     expect(of('olivine').value).toBeCloseTo(0.08, 3);
@@ -118,7 +150,11 @@ describe('massBalance', () => {
     const random = seededDraws(11);
     for (let i = 0; i < 40; i++) {
       const daughter = daughterOf(random);
-      const { parent, minerals } = plantedParent(daughter, { olivine: ['Fo80', 0.05], clinopyroxene: ['Wo42En46Fs12', 0.12], plagioclase: ['An75', 0.2] });
+      const { parent, minerals } = plantedParent(daughter, {
+        olivine: ['Fo80', 0.05],
+        clinopyroxene: ['Wo42En46Fs12', 0.12],
+        plagioclase: ['An75', 0.2],
+      });
       const { F, phases } = massBalance({ parent: noisy(parent, 0.02, random), daughter: noisy(daughter, 0.02, random), minerals, draws: 0 });
       expect(F.value + phases.reduce((sum, { value }) => sum + value, 0)).toBeCloseTo(1, 10);
       for (const { value } of phases) expect(value).toBeGreaterThanOrEqual(0);
@@ -131,12 +167,20 @@ describe('massBalance', () => {
     for (let i = 0; i < 300; i++) {
       const daughter = daughterOf(random);
       const planted = {
-        olivine: ['Fo80', 0.03 + 0.07 * random.uniform()], clinopyroxene: ['Wo42En46Fs12', 0.06 + 0.14 * random.uniform()],
-        plagioclase: ['An75', 0.12 + 0.2 * random.uniform()], magnetite: ['Usp30', 0.02 + 0.03 * random.uniform()],
+        olivine: ['Fo80', 0.03 + 0.07 * random.uniform()],
+        clinopyroxene: ['Wo42En46Fs12', 0.06 + 0.14 * random.uniform()],
+        plagioclase: ['An75', 0.12 + 0.2 * random.uniform()],
+        magnetite: ['Usp30', 0.02 + 0.03 * random.uniform()],
       } as const;
       const { parent, minerals, masses } = plantedParent(daughter, planted);
       const { phases, F, probability } = massBalance({
-        parent: noisy(parent, 0.02, random), daughter: noisy(daughter, 0.02, random), minerals, errors: { relative: 0.02, floor: 0 }, basis: 'as given', seed: i, draws: 200,
+        parent: noisy(parent, 0.02, random),
+        daughter: noisy(daughter, 0.02, random),
+        minerals,
+        errors: { relative: 0.02, floor: 0 },
+        basis: 'as given',
+        seed: i,
+        draws: 200,
       });
       for (const { phase, low, high } of phases) {
         all++;

@@ -30,20 +30,35 @@ describe('melt', () => {
   });
 
   it('agrees with the table of equation values', () => {
-    for (const { inputs, value } of equationValues('batch non-modal')) expect(Number(batchMelt(inputs.D0, inputs.P, inputs.F).toPrecision(6))).toBe(value);
-    for (const { inputs, value } of equationValues('fractional non-modal inst')) expect(Number(fractionalMelt(inputs.D0, inputs.P, inputs.F).toPrecision(6))).toBe(value);
-    for (const { inputs, value } of equationValues('fractional non-modal aggregated')) expect(Number(pooledFractionalMelt(inputs.D0, inputs.P, inputs.F).toPrecision(6))).toBe(value);
+    for (const { inputs, value } of equationValues('batch non-modal'))
+      expect(Number(batchMelt(inputs.D0, inputs.P, inputs.F).toPrecision(6))).toBe(value);
+    for (const { inputs, value } of equationValues('fractional non-modal inst'))
+      expect(Number(fractionalMelt(inputs.D0, inputs.P, inputs.F).toPrecision(6))).toBe(value);
+    for (const { inputs, value } of equationValues('fractional non-modal aggregated'))
+      expect(Number(pooledFractionalMelt(inputs.D0, inputs.P, inputs.F).toPrecision(6))).toBe(value);
     for (const kind of ['inst', 'aggregated'] as const) {
       for (const { inputs, value } of equationValues(`dynamic melting ${kind} (modal)`)) {
         const { X, D, phi } = inputs;
-        const path = melt({ source: { Ba: 1 }, mode: { a: 1 }, coefficients: { a: { Ba: D } }, process: kind === 'inst' ? 'dynamic' : 'pooled', retained: phi, upTo: phi + X * (1 - phi), steps: 2 });
+        const path = melt({
+          source: { Ba: 1 },
+          mode: { a: 1 },
+          coefficients: { a: { Ba: D } },
+          process: kind === 'inst' ? 'dynamic' : 'pooled',
+          retained: phi,
+          upTo: phi + X * (1 - phi),
+          steps: 2,
+        });
         expect(Number(last(path.liquid.values('Ba')).toPrecision(6))).toBe(value); // Zou 1998
       }
     }
   });
 
   it('agrees with Shaw’s non-modal closed forms while no mineral runs out', () => {
-    for (const [D0, P] of [[0.05, 0.052], [0.5, 0.52], [0.2, 0.19]]) {
+    for (const [D0, P] of [
+      [0.05, 0.052],
+      [0.5, 0.52],
+      [0.2, 0.19],
+    ]) {
       const options = { source: { Ba: 1 }, ...rock(D0, P), upTo: 0.3, steps: 6 };
       const [batch, fractional, pooled] = (['batch', 'fractional', 'pooled'] as const).map((process) => melt({ ...options, process }));
       batch.F.forEach((F, i) => {
@@ -56,11 +71,17 @@ describe('melt', () => {
 
   it('gives the printed bulk coefficients of a worked example', () => {
     const { inputs, expected } = byKey('model-imperial-bulkD'); // Imperial College London, High-Temperature Geochemistry practicals
-    const names = { ol: 'olivine', opx: 'orthopyroxene', cpx: 'clinopyroxene', sp: 'spinel', gn: 'garnet', plag: 'plagioclase' } as Record<string, string>;
+    const names = { ol: 'olivine', opx: 'orthopyroxene', cpx: 'clinopyroxene', sp: 'spinel', gn: 'garnet', plag: 'plagioclase' } as Record<
+      string,
+      string
+    >;
     const long = (record: Record<string, number>) => Object.fromEntries(Object.entries(record).map(([short, value]) => [names[short], value]));
     const K = { Rb: long(inputs.KD_mineral_melt.Rb), Sm: long(inputs.KD_mineral_melt.Sm) };
     const coefficients = Object.fromEntries(Object.values(names).map((mineral) => [mineral, { Rb: K.Rb[mineral], Sm: K.Sm[mineral] }]));
-    for (const [facies, mode] of [['spinel', inputs.spinel_peridotite_wt], ['garnet', inputs.garnet_peridotite_wt]] as const) {
+    for (const [facies, mode] of [
+      ['spinel', inputs.spinel_peridotite_wt],
+      ['garnet', inputs.garnet_peridotite_wt],
+    ] as const) {
       // The first drop of melt has C0/D.
       const path = melt({ source: { Rb: 1, Sm: 1 }, mode: long(mode), coefficients, upTo: 0.1, startAt: 0, steps: 1 });
       expect(Number((1 / path.liquid.values('Rb')[0]).toPrecision(2))).toBe(expected[`D_Rb_${facies}`]);
@@ -99,10 +120,24 @@ describe('melt', () => {
   it('conserves mass: source = melt + residue', () => {
     const K = fc.double({ min: 1e-3, max: 5, noNaN: true });
     fc.assert(
-      fc.property(K, K, fc.double({ min: 0.05, max: 0.9, noNaN: true }), fc.constantFrom('batch' as const, 'pooled' as const), (ka, kb, upTo, process) => {
-        const path = melt({ source: { Ba: 5 }, mode: { a: 0.7, b: 0.3 }, reaction: { a: 0.3, b: 0.7 }, coefficients: { a: { Ba: ka }, b: { Ba: kb } }, process, upTo, steps: 9 });
-        path.F.forEach((F, i) => expect((F * path.liquid.values('Ba')[i] + (1 - F) * path.solid!.values('Ba')[i]) / 5).toBeCloseTo(1, 9));
-      }),
+      fc.property(
+        K,
+        K,
+        fc.double({ min: 0.05, max: 0.9, noNaN: true }),
+        fc.constantFrom('batch' as const, 'pooled' as const),
+        (ka, kb, upTo, process) => {
+          const path = melt({
+            source: { Ba: 5 },
+            mode: { a: 0.7, b: 0.3 },
+            reaction: { a: 0.3, b: 0.7 },
+            coefficients: { a: { Ba: ka }, b: { Ba: kb } },
+            process,
+            upTo,
+            steps: 9,
+          });
+          path.F.forEach((F, i) => expect((F * path.liquid.values('Ba')[i] + (1 - F) * path.solid!.values('Ba')[i]) / 5).toBeCloseTo(1, 9));
+        },
+      ),
       { seed: 6, numRuns: 100 },
     );
   });
@@ -110,8 +145,11 @@ describe('melt', () => {
   it('takes modes, reactions and sources from the tables and says where a mineral is used up', () => {
     const path = melt({
       source: 'primitive-mantle-1989',
-      mode: mantleMode('mode', 'workman_hart_2005'), reaction: mantleMode('melting reaction', 'wasylenki_2003'),
-      process: 'pooled', upTo: 0.25, analytes: ['La', 'Sm', 'Yb'],
+      mode: mantleMode('mode', 'workman_hart_2005'),
+      reaction: mantleMode('melting reaction', 'wasylenki_2003'),
+      process: 'pooled',
+      upTo: 0.25,
+      analytes: ['La', 'Sm', 'Yb'],
     });
     expect(path.notes.join(' ')).toMatch(/clinopyroxene at F = 0\.1769/); // 0.13 / (0.72/0.98)
     expect(path.lineage.at(-1)!.sources).toEqual(expect.arrayContaining(['workman_hart_2005', 'wasylenki_2003', 'shaw_1970']));
@@ -121,7 +159,16 @@ describe('melt', () => {
   it('pools facies by their shares', () => {
     const coefficients = { a: { Ba: 0.1 }, b: { Ba: 0.5 } };
     const of = (mode: Record<string, number>) => melt({ source: { Ba: 1 }, mode, coefficients, upTo: 0.1, steps: 2 }).liquid.values('Ba');
-    const both = melt({ source: { Ba: 1 }, facies: [{ mode: { a: 1 }, share: 0.25 }, { mode: { b: 1 }, share: 0.75 }], coefficients, upTo: 0.1, steps: 2 }).liquid.values('Ba');
+    const both = melt({
+      source: { Ba: 1 },
+      facies: [
+        { mode: { a: 1 }, share: 0.25 },
+        { mode: { b: 1 }, share: 0.75 },
+      ],
+      coefficients,
+      upTo: 0.1,
+      steps: 2,
+    }).liquid.values('Ba');
     both.forEach((value, i) => expect(value).toBeCloseTo(0.25 * of({ a: 1 })[i] + 0.75 * of({ b: 1 })[i], 12));
   });
 

@@ -4,7 +4,12 @@ import { daughterOf, plantedParent, seededDraws } from './planted';
 
 const daughter = daughterOf(seededDraws(5));
 const { parent, minerals } = plantedParent(daughter, { olivine: ['Fo80', 0.06], clinopyroxene: ['Wo42En46Fs12', 0.12], plagioclase: ['An75', 0.2] });
-const balance = massBalance({ parent: { ...parent, Ba: 200, Sr: 480, Rb: 12, Y: 20 }, daughter: { ...daughter, Ba: 300, Sr: 470, Rb: 19, Y: 28 }, minerals, draws: 40 });
+const balance = massBalance({
+  parent: { ...parent, Ba: 200, Sr: 480, Rb: 12, Y: 20 },
+  daughter: { ...daughter, Ba: 300, Sr: 470, Rb: 19, Y: 28 },
+  minerals,
+  draws: 40,
+});
 const specText = (diagram: { spec: unknown }) => JSON.stringify(diagram.spec);
 
 describe('diagrams of balances and paths', () => {
@@ -29,7 +34,12 @@ describe('diagrams of balances and paths', () => {
   });
 
   it('draw patterns and crystals along a path', () => {
-    const path = crystallise({ from: { La: 8, Ce: 18, Nd: 11, Sm: 2.8, Eu: 0.95, Yb: 2, Sr: 480 }, assemblage: { clinopyroxene: 0.4, plagioclase: 0.6 }, downTo: 0.4, analytes: ['La', 'Ce', 'Nd', 'Sm', 'Eu', 'Yb', 'Sr'] });
+    const path = crystallise({
+      from: { La: 8, Ce: 18, Nd: 11, Sm: 2.8, Eu: 0.95, Yb: 2, Sr: 480 },
+      assemblage: { clinopyroxene: 0.4, plagioclase: 0.6 },
+      downTo: 0.4,
+      analytes: ['La', 'Ce', 'Nd', 'Sm', 'Eu', 'Yb', 'Sr'],
+    });
     expect(diagrams.pathPatterns(path, { at: [1, 0.7, 0.4] }).counts.plotted).toBe(3);
     expect(() => diagrams.pathPatterns(path, { at: [0.1] })).toThrow(/the path runs from F = 1 to 0.4/);
     expect(() => diagrams.pathPatterns({} as never)).toThrow(/path of a model/);
@@ -37,13 +47,20 @@ describe('diagrams of balances and paths', () => {
     expect(specText(crystals)).toMatch(/all crystals/);
     expect(diagrams.specWarnings(crystals.spec)).toEqual([]);
     expect(() => diagrams.cumulateComposition(path, { show: ['Ba'] })).toThrow(/have no Ba/);
-    expect(() => diagrams.cumulateComposition(melt({ source: { Ba: 1 }, mode: { a: 1 }, coefficients: { a: { Ba: 1 } }, upTo: 0.1 }))).toThrow(/no account of its crystals/);
+    expect(() => diagrams.cumulateComposition(melt({ source: { Ba: 1 }, mode: { a: 1 }, coefficients: { a: { Ba: 1 } }, upTo: 0.1 }))).toThrow(
+      /no account of its crystals/,
+    );
   });
 
   it('draw a suite with its line of descent', () => {
     const D: Record<string, number> = { Rb: 0.02, Ba: 0.2, Zr: 0.1, Sr: 1.2, Ni: 4 };
     const rows = Array.from({ length: 12 }, (_, i) => 1 - 0.055 * i);
-    const suite = suiteOf({ columns: Object.keys(D).map((symbol) => column({ symbol, values: rows.map((F, i) => 100 * F ** (D[symbol] - 1) * (symbol === 'Sr' && i === 6 ? 1.6 : 1)) })), labels: { sample: rows.map((_, i) => `S${i}`) } });
+    const suite = suiteOf({
+      columns: Object.keys(D).map((symbol) =>
+        column({ symbol, values: rows.map((F, i) => 100 * F ** (D[symbol] - 1) * (symbol === 'Sr' && i === 6 ? 1.6 : 1)) }),
+      ),
+      labels: { sample: rows.map((_, i) => `S${i}`) },
+    });
     const fit = fitDescent(suite);
     const drawn = diagrams.descentLine(suite, fit, 'Rb', 'Ni');
     expect(specText(drawn)).toMatch(/on the line/);

@@ -21,7 +21,12 @@ describe('assimilate', () => {
       const [element, ratio] = nd ? ['Nd', '143Nd/144Nd'] : ['Sr', '87Sr/86Sr'];
       const ratios = row.em === null ? [{}, {}] : [{ [ratio]: row.em }, { [ratio]: row.ea }];
       const path = assimilate({
-        from: { [element]: row.Cm0, ...ratios[0] }, assimilant: { [element]: row.Ca, ...ratios[1] }, r: row.r, ...bulk(row.D, element), downTo: row.F, steps: 4,
+        from: { [element]: row.Cm0, ...ratios[0] },
+        assimilant: { [element]: row.Ca, ...ratios[1] },
+        r: row.r,
+        ...bulk(row.D, element),
+        downTo: row.F,
+        steps: 4,
       });
       expect(last(path.liquid.values(element)) / row.C, JSON.stringify(row)).toBeCloseTo(1, 10);
       if (row.em !== null) expect(last(path.liquid.values(ratio))).toBeCloseTo(row.isotope, 10);
@@ -36,21 +41,48 @@ describe('assimilate', () => {
     }
     for (const { inputs, value } of equationValues('AFC isotope fraction')) {
       const { F, D, r } = inputs;
-      const path = assimilate({ from: { Sr: 1, '87Sr/86Sr': 0.7 }, assimilant: { Sr: inputs['Ca/Cm0'], '87Sr/86Sr': 0.71 }, r, ...bulk(D), downTo: F, steps: 2 });
+      const path = assimilate({
+        from: { Sr: 1, '87Sr/86Sr': 0.7 },
+        assimilant: { Sr: inputs['Ca/Cm0'], '87Sr/86Sr': 0.71 },
+        r,
+        ...bulk(D),
+        downTo: F,
+        steps: 2,
+      });
       expect((last(path.liquid.values('87Sr/86Sr')) - 0.7) / 0.01).toBeCloseTo(value, 5);
     }
     for (const { inputs, value } of equationValues('AFC r=1')) {
-      const got = last(assimilate({ from: { Sr: 1 }, assimilant: { Sr: inputs['Ca/Cm0'] }, r: 1, ...bulk(inputs.D), crystallised: inputs['Ma/Mm'], steps: 2 }).liquid.values('Sr'));
+      const got = last(
+        assimilate({
+          from: { Sr: 1 },
+          assimilant: { Sr: inputs['Ca/Cm0'] },
+          r: 1,
+          ...bulk(inputs.D),
+          crystallised: inputs['Ma/Mm'],
+          steps: 2,
+        }).liquid.values('Sr'),
+      );
       expect(Number(got.toPrecision(6))).toBe(value);
     }
   });
 
   it('agrees with numerical integration of the mass balance, recharge and isotopes included', () => {
     const [C0, Ca, Cr, R0, Ra, Rr] = [500, 150, 420, 0.7035, 0.72, 0.7042];
-    for (const [r, p, D] of [[0.3, 0.2, 1.4], [0.4, 0.6, 0.3], [0.5, 0.9, 2], [0.2, 0, 0.8], [0.7, 0.3, 1e-3]]) {
+    for (const [r, p, D] of [
+      [0.3, 0.2, 1.4],
+      [0.4, 0.6, 0.3],
+      [0.5, 0.9, 2],
+      [0.2, 0, 0.8],
+      [0.7, 0.3, 1e-3],
+    ]) {
       const path = assimilate({
-        from: { Sr: C0, '87Sr/86Sr': R0 }, assimilant: { Sr: Ca, '87Sr/86Sr': Ra }, recharge: { with: { Sr: Cr, '87Sr/86Sr': Rr }, rate: p },
-        r, ...bulk(D), crystallised: 0.6, steps: 3,
+        from: { Sr: C0, '87Sr/86Sr': R0 },
+        assimilant: { Sr: Ca, '87Sr/86Sr': Ra },
+        recharge: { with: { Sr: Cr, '87Sr/86Sr': Rr }, rate: p },
+        r,
+        ...bulk(D),
+        crystallised: 0.6,
+        steps: 3,
       });
       // Masses of magma, of the element, and of the ratio's numerator, stepped by the classical fourth-order Runge–Kutta rule.
       let state = [1, C0, C0 * R0];
@@ -75,9 +107,11 @@ describe('assimilate', () => {
     fc.assert(
       fc.property(fc.double({ min: 0.05, max: 0.95, noNaN: true }), fc.double({ min: 0.05, max: 0.9, noNaN: true }), (r, x) => {
         const middle = at(r, 1 - r, x);
-        for (const step of [1e-3, 1e-6, 1e-9, 1e-12, 1e-14]) for (const sign of [-1, 1]) expect(Math.abs(at(r, 1 - r + sign * step, x) / middle - 1)).toBeLessThan(10 * step + 1e-12);
+        for (const step of [1e-3, 1e-6, 1e-9, 1e-12, 1e-14])
+          for (const sign of [-1, 1]) expect(Math.abs(at(r, 1 - r + sign * step, x) / middle - 1)).toBeLessThan(10 * step + 1e-12);
         const one = at(1, r, x);
-        for (const step of [1e-3, 1e-6, 1e-9, 1e-12, 1e-14]) for (const sign of [-1, 1]) expect(Math.abs(at(1 + sign * step, r, x) / one - 1)).toBeLessThan(10 * step + 1e-12);
+        for (const step of [1e-3, 1e-6, 1e-9, 1e-12, 1e-14])
+          for (const sign of [-1, 1]) expect(Math.abs(at(1 + sign * step, r, x) / one - 1)).toBeLessThan(10 * step + 1e-12);
       }),
       { seed: 6, numRuns: 200 },
     );
@@ -85,7 +119,12 @@ describe('assimilate', () => {
 
   it('conserves mass at every step, and without assimilation is Rayleigh crystallisation', () => {
     const path = assimilate({ from: { Sr: 500 }, assimilant: { Sr: 150 }, r: 0.3, ...bulk(1.5), downTo: 0.4 });
-    const [liquid, solids, x, taken] = [path.liquid.values('Sr'), path.cumulate!.values('Sr'), path.liquid.values('crystallised'), path.liquid.values('assimilated')];
+    const [liquid, solids, x, taken] = [
+      path.liquid.values('Sr'),
+      path.cumulate!.values('Sr'),
+      path.liquid.values('crystallised'),
+      path.liquid.values('assimilated'),
+    ];
     path.F.forEach((F, i) => expect((F * liquid[i] + x[i] * solids[i]) / (500 + taken[i] * 150)).toBeCloseTo(1, 10));
     // The cumulate is also the integral of what crystallised step by step.
     const forming = path.solid!.values('Sr');
@@ -114,7 +153,9 @@ describe('other chambers', () => {
       expect(Number(last(path.liquid.values('Sr')).toPrecision(6))).toBe(value);
     }
     for (const { inputs, value } of equationValues('zone refining')) {
-      expect(Number(last(refineByZones({ from: { Sr: 1 }, ...bulk(inputs.D), volumes: inputs.n, steps: 2 }).liquid.values('Sr')).toPrecision(6))).toBe(value);
+      expect(
+        Number(last(refineByZones({ from: { Sr: 1 }, ...bulk(inputs.D), volumes: inputs.n, steps: 2 }).liquid.values('Sr')).toPrecision(6)),
+      ).toBe(value);
     }
     for (const { inputs, value } of equationValues('RTF steady-state lava')) {
       expect(Number(refilledSteadyState(inputs.D, inputs.x, inputs.y).toPrecision(6))).toBe(value);
@@ -136,7 +177,10 @@ describe('other chambers', () => {
       amount += dM * (f * E * C - C);
       mass -= dM * (1 - f);
     }
-    expect(last(crystalliseInSitu({ from: { Sr: 1 }, ...bulk(D), downTo: end, returned: f, steps: 1 }).liquid.values('Sr'))).toBeCloseTo(amount / mass, 4);
+    expect(last(crystalliseInSitu({ from: { Sr: 1 }, ...bulk(D), downTo: end, returned: f, steps: 1 }).liquid.values('Sr'))).toBeCloseTo(
+      amount / mass,
+      4,
+    );
     // Zone refining: rock of C0 = 1 melts in, D·C crystallises out.
     let C = 1;
     for (let i = 0; i < steps; i++) C += (5 / steps) * (1 - D * C);
@@ -161,7 +205,13 @@ describe('mix', () => {
     for (const row of expected) {
       const i = Math.round(row.f_B * 20);
       expect(path.F[i]).toBeCloseTo(row.f_B, 12);
-      for (const [symbol, value] of [['Sr', row.Sr], ['Nd', row.Nd], ['87Sr/86Sr', row.Sr8786], ['143Nd/144Nd', row.Nd143144]] as const) expect(path.liquid.values(symbol)[i]).toBeCloseTo(value, 10);
+      for (const [symbol, value] of [
+        ['Sr', row.Sr],
+        ['Nd', row.Nd],
+        ['87Sr/86Sr', row.Sr8786],
+        ['143Nd/144Nd', row.Nd143144],
+      ] as const)
+        expect(path.liquid.values(symbol)[i]).toBeCloseTo(value, 10);
     }
     const hyperbola = mixingHyperbola(
       { x: inputs.A.Nd143144, y: inputs.A.Sr8786, b: inputs.A.Nd, a: inputs.A.Sr },
@@ -175,7 +225,15 @@ describe('mix', () => {
   });
 
   it('fills a triangle with three components and conserves mass', () => {
-    const path = mix({ components: [{ Ba: 100, SiO2: 50 }, { Ba: 400, SiO2: 60 }, { Ba: 900, SiO2: 72 }], names: ['a', 'b', 'c'], steps: 5 });
+    const path = mix({
+      components: [
+        { Ba: 100, SiO2: 50 },
+        { Ba: 400, SiO2: 60 },
+        { Ba: 900, SiO2: 72 },
+      ],
+      names: ['a', 'b', 'c'],
+      steps: 5,
+    });
     expect(path.liquid.size).toBe(21);
     const share = (name: string) => path.liquid.values(`share of ${name}`);
     path.liquid.values('Ba').forEach((value, i) => {

@@ -1,7 +1,13 @@
 import { describe, expect, it } from 'vitest';
 import { crystallise, spreadOfPath } from 'wedgework';
 
-const options = { from: { Sr: 500, Ba: 200, Zr: 70 }, assemblage: { olivine: 0.2, clinopyroxene: 0.3, plagioclase: 0.5 }, downTo: 0.5, steps: 10, draws: 800 } as const;
+const options = {
+  from: { Sr: 500, Ba: 200, Zr: 70 },
+  assemblage: { olivine: 0.2, clinopyroxene: 0.3, plagioclase: 0.5 },
+  downTo: 0.5,
+  steps: 10,
+  draws: 800,
+} as const;
 
 describe('spreadOfPath', () => {
   it('spans the path of the preferred coefficients, and is exact when nothing is uncertain', async () => {
@@ -13,13 +19,29 @@ describe('spreadOfPath', () => {
         expect(spread.high.values(symbol)[i]).toBeGreaterThan(path.liquid.values(symbol)[i]);
       });
     }
-    const known = await spreadOfPath({ ...options, assemblage: { bulk: 1 }, coefficients: { bulk: { Sr: 1.2, Ba: 0.1, Zr: 0.1 } }, startError: 0, shareError: 0, leastSpread: 0, draws: 20 });
+    const known = await spreadOfPath({
+      ...options,
+      assemblage: { bulk: 1 },
+      coefficients: { bulk: { Sr: 1.2, Ba: 0.1, Zr: 0.1 } },
+      startError: 0,
+      shareError: 0,
+      leastSpread: 0,
+      draws: 20,
+    });
     const exact = crystallise({ ...options, assemblage: { bulk: 1 }, coefficients: { bulk: { Sr: 1.2, Ba: 0.1, Zr: 0.1 } } });
     known.median.values('Sr').forEach((value, i) => expect(value).toBeCloseTo(exact.liquid.values('Sr')[i], 9));
   });
 
   it('has the spread of the start where that alone is uncertain', async () => {
-    const spread = await spreadOfPath({ ...options, assemblage: { bulk: 1 }, coefficients: { bulk: { Sr: 1.2, Ba: 0.1, Zr: 0.1 } }, startError: 0.1, shareError: 0, leastSpread: 0, draws: 5000 });
+    const spread = await spreadOfPath({
+      ...options,
+      assemblage: { bulk: 1 },
+      coefficients: { bulk: { Sr: 1.2, Ba: 0.1, Zr: 0.1 } },
+      startError: 0.1,
+      shareError: 0,
+      leastSpread: 0,
+      draws: 5000,
+    });
     // 95 % of a normal lies within 1.96 σ.
     expect(Math.log(spread.high.values('Sr')[10] / spread.low.values('Sr')[10]) / (2 * 1.96 * 0.1)).toBeCloseTo(1, 1);
   });

@@ -11,8 +11,16 @@ export const seededDraws = (seed: number): SeededRandom => seededRandom(seed, 't
 export function daughterOf(random: SeededRandom): Analysis {
   const silica = 56 + 8 * random.uniform();
   const raw: Analysis = {
-    SiO2: silica, TiO2: 0.7 + 0.4 * random.uniform(), Al2O3: 15.5 + 2 * random.uniform(), FeOT: 9 - 0.45 * (silica - 56), MnO: 0.16, MgO: 3.6 - 0.25 * (silica - 56),
-    CaO: 7.4 - 0.35 * (silica - 56), Na2O: 3.4 + 0.8 * random.uniform(), K2O: 1.1 + 0.14 * (silica - 56), P2O5: 0.2,
+    SiO2: silica,
+    TiO2: 0.7 + 0.4 * random.uniform(),
+    Al2O3: 15.5 + 2 * random.uniform(),
+    FeOT: 9 - 0.45 * (silica - 56),
+    MnO: 0.16,
+    MgO: 3.6 - 0.25 * (silica - 56),
+    CaO: 7.4 - 0.35 * (silica - 56),
+    Na2O: 3.4 + 0.8 * random.uniform(),
+    K2O: 1.1 + 0.14 * (silica - 56),
+    P2O5: 0.2,
   };
   return scaled(raw);
 }

@@ -1,5 +1,14 @@
 import { describe, expect, it } from 'vitest';
-import { coefficientRange, coefficientsFor, findSource, mantleMode, mantleModes, mineralComposition, mineralCompositions, partitionCoefficients } from 'wedgework';
+import {
+  coefficientRange,
+  coefficientsFor,
+  findSource,
+  mantleMode,
+  mantleModes,
+  mineralComposition,
+  mineralCompositions,
+  partitionCoefficients,
+} from 'wedgework';
 
 describe('tables of mineral–melt partitioning', () => {
   it('cites a work of the bibliography in every row', () => {

@@ -9,36 +9,82 @@ import { daughterOf, noisy, plantedParent, scaled, seededDraws, type Analysis } 
 const labels = { olivine: 'Fo80', clinopyroxene: 'Wo42En46Fs12', plagioclase: 'An75', magnetite: 'Usp30' } as const;
 const elements = ['Rb', 'Sr', 'Ba', 'Zr', 'Y', 'Nb', 'Cr', 'Ce', 'Nd', 'Sm', 'Yb'];
 const sets = ['basalt', 'andesite'] as const;
-const preferred = (mineral: string, element: string) => sets.map((set) => coefficientsFor(mineral, set, element)[0]?.value).find((value) => value !== undefined);
+const preferred = (mineral: string, element: string) =>
+  sets.map((set) => coefficientsFor(mineral, set, element)[0]?.value).find((value) => value !== undefined);
 
 function basalt(random: SeededRandom): Analysis {
   const between = (low: number, high: number) => low + (high - low) * random.uniform();
   const majors = scaled({
-    SiO2: between(50, 52), TiO2: between(0.8, 1.1), Al2O3: between(16, 18), FeOT: between(8.5, 10), MnO: 0.17, MgO: between(6, 8.5), CaO: between(9.8, 11), Na2O: between(2.3, 2.9), K2O: between(0.4, 0.9),
+    SiO2: between(50, 52),
+    TiO2: between(0.8, 1.1),
+    Al2O3: between(16, 18),
+    FeOT: between(8.5, 10),
+    MnO: 0.17,
+    MgO: between(6, 8.5),
+    CaO: between(9.8, 11),
+    Na2O: between(2.3, 2.9),
+    K2O: between(0.4, 0.9),
     P2O5: between(0.15, 0.22),
   });
   return {
-    ...majors, Rb: between(8, 20), Ba: between(150, 300), Sr: between(350, 600), Zr: between(50, 100), Y: between(18, 25), Nb: between(1.5, 4), Cr: between(80, 300), Ce: between(14, 28), Nd: between(9, 16),
-    Sm: between(2.4, 3.6), Yb: between(1.8, 2.5),
+    ...majors,
+    Rb: between(8, 20),
+    Ba: between(150, 300),
+    Sr: between(350, 600),
+    Zr: between(50, 100),
+    Y: between(18, 25),
+    Nb: between(1.5, 4),
+    Cr: between(80, 300),
+    Ce: between(14, 28),
+    Nd: between(9, 16),
+    Sm: between(2.4, 3.6),
+    Yb: between(1.8, 2.5),
   };
 }
 
 function rhyolite(random: SeededRandom): Analysis {
   const between = (low: number, high: number) => low + (high - low) * random.uniform();
   const majors = scaled({
-    SiO2: between(71, 75), TiO2: between(0.15, 0.4), Al2O3: between(13, 14.8), FeOT: between(1.5, 3), MnO: 0.06, MgO: between(0.2, 0.8), CaO: between(1, 2.4), Na2O: between(3.4, 4.2), K2O: between(2.6, 4.4),
+    SiO2: between(71, 75),
+    TiO2: between(0.15, 0.4),
+    Al2O3: between(13, 14.8),
+    FeOT: between(1.5, 3),
+    MnO: 0.06,
+    MgO: between(0.2, 0.8),
+    CaO: between(1, 2.4),
+    Na2O: between(3.4, 4.2),
+    K2O: between(2.6, 4.4),
     P2O5: between(0.04, 0.1),
   });
   return {
-    ...majors, Rb: between(70, 180), Ba: between(500, 1100), Sr: between(80, 250), Zr: between(120, 350), Y: between(20, 50), Nb: between(5, 14), Cr: between(1, 6), Ce: between(40, 100), Nd: between(18, 45),
-    Sm: between(3.5, 9), Yb: between(2, 5),
+    ...majors,
+    Rb: between(70, 180),
+    Ba: between(500, 1100),
+    Sr: between(80, 250),
+    Zr: between(120, 350),
+    Y: between(20, 50),
+    Nb: between(5, 14),
+    Cr: between(1, 6),
+    Ce: between(40, 100),
+    Nd: between(18, 45),
+    Sm: between(3.5, 9),
+    Yb: between(2, 5),
   };
 }
 
 const solve = (parent: Analysis, daughter: Analysis, seed: number) =>
   massBalance({
-    parent, daughter, seed, draws: 60, errors: { relative: 0.02, floor: 0.02 },
-    minerals: { olivine: { between: ['Fo65', 'Fo90'] }, clinopyroxene: labels.clinopyroxene, plagioclase: { between: ['An45', 'An92'] }, magnetite: labels.magnetite },
+    parent,
+    daughter,
+    seed,
+    draws: 60,
+    errors: { relative: 0.02, floor: 0.02 },
+    minerals: {
+      olivine: { between: ['Fo65', 'Fo90'] },
+      clinopyroxene: labels.clinopyroxene,
+      plagioclase: { between: ['An45', 'An92'] },
+      magnetite: labels.magnetite,
+    },
   });
 
 describe('testTraces', () => {
@@ -61,8 +107,10 @@ describe('testTraces', () => {
     for (let i = 0; i < 100; i++) {
       const daughter = daughterOf(random);
       const { parent, masses } = plantedParent(daughter, {
-        olivine: [labels.olivine, 0.03 + 0.07 * random.uniform()], clinopyroxene: [labels.clinopyroxene, 0.06 + 0.14 * random.uniform()],
-        plagioclase: [labels.plagioclase, 0.12 + 0.2 * random.uniform()], magnetite: [labels.magnetite, 0.02 + 0.03 * random.uniform()],
+        olivine: [labels.olivine, 0.03 + 0.07 * random.uniform()],
+        clinopyroxene: [labels.clinopyroxene, 0.06 + 0.14 * random.uniform()],
+        plagioclase: [labels.plagioclase, 0.12 + 0.2 * random.uniform()],
+        magnetite: [labels.magnetite, 0.02 + 0.03 * random.uniform()],
       });
       const traces = basalt(random);
       for (const element of elements) {
@@ -83,7 +131,11 @@ describe('testTraces', () => {
     const random = seededDraws(79);
     const daughter = daughterOf(random);
     const { parent } = plantedParent(daughter, { olivine: ['Fo80', 0.05], plagioclase: ['An75', 0.2] });
-    const balance = massBalance({ parent: { ...parent, Ba: 200, Cs: 1, Sr: 500 }, daughter: { ...daughter, Ba: 260, Cs: 1.3, Sr: 480 }, minerals: { olivine: 'Fo80', plagioclase: 'An75' } });
+    const balance = massBalance({
+      parent: { ...parent, Ba: 200, Cs: 1, Sr: 500 },
+      daughter: { ...daughter, Ba: 260, Cs: 1.3, Sr: 480 },
+      minerals: { olivine: 'Fo80', plagioclase: 'An75' },
+    });
     const test = testTraces(balance);
     expect(test.elements.map(({ element }) => element)).toEqual(['Ba', 'Sr']);
     // The tables hold Cs for plagioclase in rhyolite, and none for olivine.
@@ -106,8 +158,19 @@ describe('a published pair', () => {
     // Salina, Fossa delle Felci: GEOROC compilation, Convergent Margins, doi:10.25625/PVFZCE, CC BY-SA 4.0 (notebooks/data/salina-pair.csv).
     const text = readFileSync(join(__dirname, '../../notebooks/data/salina-pair.csv'), 'utf8');
     const [basalt, dacite] = Papa.parse<Record<string, string>>(text, { header: true, skipEmptyLines: true }).data.map((row) =>
-      Object.fromEntries(Object.entries(row).flatMap(([head, cell]) => (/\((wt%|ppm)\)$|^\d+\w+\/\d+\w+$/.test(head) && !head.startsWith('LOI') ? [[head.split(' ')[0], Number(cell)]] : []))));
-    const minerals = { plagioclase: { between: ['An45', 'An92'] }, amphibole: 'magnesiohornblende, Sierra Nevada batholith', orthopyroxene: 'Wo3En67Fs30', magnetite: 'Usp30', apatite: 'fluorapatite Ca5(PO4)3F' } as const;
+      Object.fromEntries(
+        Object.entries(row).flatMap(([head, cell]) =>
+          /\((wt%|ppm)\)$|^\d+\w+\/\d+\w+$/.test(head) && !head.startsWith('LOI') ? [[head.split(' ')[0], Number(cell)]] : [],
+        ),
+      ),
+    );
+    const minerals = {
+      plagioclase: { between: ['An45', 'An92'] },
+      amphibole: 'magnesiohornblende, Sierra Nevada batholith',
+      orthopyroxene: 'Wo3En67Fs30',
+      magnetite: 'Usp30',
+      apatite: 'fluorapatite Ca5(PO4)3F',
+    } as const;
     const balance = massBalance({ parent: basalt, daughter: dacite, minerals });
     expect(balance.probability).toBeGreaterThan(0.05);
     expect(balance.sumOfSquares).toBeLessThan(0.5);
@@ -122,11 +185,29 @@ describe('rankAssemblages', () => {
   it('puts the planted assemblage first in most cases, and a phase too many below it', () => {
     const random = seededDraws(80);
     let first = 0;
-    const candidates = { ...labels, orthopyroxene: 'Wo3En67Fs30', amphibole: 'pargasite Mg#0.75', ilmenite: 'Ilm90', apatite: 'fluorapatite Ca5(PO4)3F', quartz: 'SiO2', garnet: 'Py70Alm17Gr13' };
+    const candidates = {
+      ...labels,
+      orthopyroxene: 'Wo3En67Fs30',
+      amphibole: 'pargasite Mg#0.75',
+      ilmenite: 'Ilm90',
+      apatite: 'fluorapatite Ca5(PO4)3F',
+      quartz: 'SiO2',
+      garnet: 'Py70Alm17Gr13',
+    };
     for (let i = 0; i < 10; i++) {
       const daughter = daughterOf(random);
-      const { parent } = plantedParent(daughter, { olivine: ['Fo80', 0.08], clinopyroxene: ['Wo42En46Fs12', 0.14], plagioclase: ['An75', 0.25], magnetite: ['Usp30', 0.035] });
-      const ranking = rankAssemblages({ parent: noisy(parent, 0.005, random), daughter: noisy(daughter, 0.005, random), candidates, errors: { relative: 0.005, floor: 0.005 } });
+      const { parent } = plantedParent(daughter, {
+        olivine: ['Fo80', 0.08],
+        clinopyroxene: ['Wo42En46Fs12', 0.14],
+        plagioclase: ['An75', 0.25],
+        magnetite: ['Usp30', 0.035],
+      });
+      const ranking = rankAssemblages({
+        parent: noisy(parent, 0.005, random),
+        daughter: noisy(daughter, 0.005, random),
+        candidates,
+        errors: { relative: 0.005, floor: 0.005 },
+      });
       expect(ranking.tried).toBe(847); // 10 candidates, 1 to 6 at a time
       if ([...ranking.ranked[0].phases].sort().join() === 'clinopyroxene,magnetite,olivine,plagioclase') first++;
       const weights = ranking.ranked.reduce((sum, { weight }) => sum + weight, 0);
