@@ -1,9 +1,8 @@
 import { showAs, type Showable, type TableCell } from '../display';
 import { evaluate, step, type Step, type Suite } from '../suite';
-import { bibliography } from '../tables';
 import { operandsOf, type IronBasis } from './axes';
 import { findScheme, sourceText } from './catalogue';
-import { classifyOptions, judge } from './classify';
+import { classifyOptions, judge, schemesCarried } from './classify';
 import type { SchemeVerdict } from './verdicts';
 
 /** What published criteria say about the kind of arc magma, each list apart (n). */
@@ -63,12 +62,7 @@ export function arcMagmaKinds(suite: Suite, options: { readonly iron?: IronBasis
     kinds[i] = met.join('; ');
     disagreements[i] = apart.join('. ');
   }
-  const sources = [...new Set(keys.flatMap((key) => findScheme(key).sources))].filter((key) => bibliography().has(key));
-  const because = step(
-    'arcMagmaKinds',
-    { schemes: keys, iron },
-    { sources: [...sources, 'pearce_2008'], tables: keys.map((key) => `schemes/${key}.json`) },
-  );
+  const because = step('arcMagmaKinds', { schemes: keys, iron }, schemesCarried([...keys, 'th-nb'].map(findScheme)));
   const made = {
     suite,
     schemes: verdicts,

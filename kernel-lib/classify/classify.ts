@@ -1,7 +1,8 @@
-import { derivedColumn, step, type Column, type Step, type StepDetail, type Suite } from '../suite';
+import { basename } from 'node:path';
+import { derivedColumn, step, type Column, type Step, type StepCarries, type StepDetail, type Suite } from '../suite';
 import { bibliography } from '../tables';
 import { axisValues, isVolatileFree, operandsOf, whyMissing, type AxisValues, type IronBasis, type Operands } from './axes';
-import { findScheme } from './catalogue';
+import { findScheme, sourceText } from './catalogue';
 import { compileScheme } from './compile';
 import { judgeCriteria } from './criteria';
 import { distanceToEdge, fieldAt } from './geometry';
@@ -80,16 +81,26 @@ export function classify(suite: Suite, which: string | Scheme | readonly (string
   for (const scheme of asked) found.set(scheme.key, judge(operands, scheme));
   const chance = probabilities(suite, [...found.values()], settings);
   for (const [key, probability] of chance.byScheme) found.set(key, { ...found.get(key)!, probability });
+  const own = asked.filter(({ origin }) => origin !== 'built in').map(({ origin }) => basename(origin));
   const detail: StepDetail = {
     schemes: asked.map(({ key }) => key),
     iron: isVolatileFree(suite) ? 'as recast before' : settings.iron,
+    ...(own.length === 0 ? {} : { ownSchemes: own }),
     ...chance.detail,
   };
-  const because: Step = step('classify', detail, {
+  const because: Step = step('classify', detail, schemesCarried(asked));
+  return verdictsOf(suite, found, [...operands.onBasis('volatile-free').lineage, because]);
+}
+
+/** @internal What a step that asked these schemes carries: works, tables, what is cited from memory, and words for a methods section. */
+export function schemesCarried(asked: readonly Scheme[]): StepCarries {
+  const cited = ({ title, sources }: Scheme) => `${title} (${sources.map(sourceText).join('; ')})`;
+  return {
     sources: [...new Set(asked.flatMap(({ sources }) => sources))].filter((key) => bibliography().has(key)),
     tables: asked.filter(({ origin }) => origin === 'built in').map(({ key }) => `schemes/${key}.json`),
-  });
-  return verdictsOf(suite, found, [...operands.onBasis('volatile-free').lineage, because]);
+    fromMemory: asked.filter(({ standing }) => standing === 'from memory').map((scheme) => `boundaries of ${cited(scheme)}`),
+    says: `Samples were classified by ${asked.map(cited).join(', ')}.`,
+  };
 }
 
 /** One scheme on one suite, without probabilities. */

@@ -1,14 +1,14 @@
 import { showAs, type Showable, type TableCell } from '../display';
 import type { IronSplitOptions } from '../recast';
-import { joinLineages, step, type Step, type Suite } from '../suite';
+import { joinLineages, step, type Step, type StepCarries, type Suite } from '../suite';
 import { alterationFlags, movedFor } from './alteration';
 import { operandsOf, type IronBasis } from './axes';
 import { findScheme } from './catalogue';
-import { classifyOptions, judge } from './classify';
-import { immobileAffinity, type ImmobileAffinity } from './immobile-affinity';
+import { classifyOptions, judge, schemesCarried } from './classify';
+import { affinityKeys, immobileAffinity, type ImmobileAffinity } from './immobile-affinity';
 import { nameWith, type RockNames } from './name-rocks';
 import { probabilities, type ProbabilityMethod, type Uncertainty } from './probability';
-import { verdictsOf, type SchemeVerdict, type Verdicts } from './verdicts';
+import { probabilityText, verdictsOf, type SchemeVerdict, type Verdicts } from './verdicts';
 
 /** How `consensus` works. */
 export interface ConsensusOptions {
@@ -99,10 +99,7 @@ export function consensus(suite: Suite, options: ConsensusOptions = {}): Consens
   const made = step(
     'consensus',
     { iron: settings.iron, movedWeight, clearMajority: 'two thirds of the weight', audited: flags !== undefined, ...chance.detail },
-    {
-      sources: [...new Set([...keys.flatMap((key) => findScheme(key).sources), 'ross_bedard_2009'])],
-      tables: keys.map((key) => `schemes/${key}.json`),
-    },
+    consensusCarried(),
   );
   const lineage = [...joinLineages(names.lineage, affinity.lineage), made];
   const result = {
@@ -119,6 +116,12 @@ export function consensus(suite: Suite, options: ConsensusOptions = {}): Consens
     lineage,
   };
   return showAs(result, consensusTable);
+}
+
+function consensusCarried(): StepCarries {
+  const carried = schemesCarried([...keys, ...affinityKeys].map(findScheme));
+  const rule = 'A series was read where two thirds of them agree; schemes that rest on elements flagged as moved counted a quarter.';
+  return { ...carried, says: `${carried.says} ${rule}` };
 }
 
 /** What one row says, in words. */
@@ -220,10 +223,7 @@ function sentence(from: {
         .join(' and ')}, so the subalkaline series are not asked`,
     );
   else if (side === undefined) parts.push('no scheme of the subalkaline series could be asked');
-  else if (side === 0)
-    parts.push(
-      `${voices.map(({ who, vote }) => `${who} ${sideWords[Math.sign(vote) + 1]}`).join(', ')}: no clear majority`,
-    );
+  else if (side === 0) parts.push(`${voices.map(({ who, vote }) => `${who} ${sideWords[Math.sign(vote) + 1]}`).join(', ')}: no clear majority`);
   else parts.push(`${sideName} by ${agree.join(', ')}${against.length === 0 ? '' : `, against ${against.join(', ')}`}`);
   if (flag !== '') parts.push(`flagged as altered (${flag})${setBack.length === 0 ? '' : `; counted less: ${setBack.join(', ')}`}`);
   const [first] = parts;
@@ -232,10 +232,13 @@ function sentence(from: {
 
 function consensusTable(made: Omit<Consensus, 'toMimeBundle'>) {
   const { suite, names, verdicts, affinity, alteration, agree, against, notAsked, reading, because } = made;
+  const tas = verdicts.schemes.get('tas')!;
+  const sure = tas.probability !== undefined;
   const by = (key: string, i: number) => verdicts.schemes.get(key)!.symbols[i];
   const rows = Array.from({ length: Math.min(60, suite.size) }, (_, i): TableCell[] => [
     suite.samples[i],
     names.names[i] === '' ? 'not named' : names.names[i],
+    ...(sure ? [probabilityText(tas, i)] : []),
     by('potassium-silica', i),
     by('potassium-silica-1976', i),
     by('iron-enrichment', i),
@@ -254,6 +257,7 @@ function consensusTable(made: Omit<Consensus, 'toMimeBundle'>) {
     columns: [
       'sample',
       'name',
+      ...(sure ? ['TAS: how sure'] : []),
       'K2O',
       'K2O 1976',
       'FeO*/MgO',

@@ -2,7 +2,7 @@ import { showAs, type Showable, type TableCell } from '../display';
 import { step, type Step, type Suite } from '../suite';
 import { operandsOf } from './axes';
 import { findScheme } from './catalogue';
-import { judge } from './classify';
+import { judge, schemesCarried } from './classify';
 import type { SchemeVerdict } from './verdicts';
 
 /** Affinity by immobile elements (n). */
@@ -17,7 +17,8 @@ export interface ImmobileAffinity extends Showable {
   readonly lineage: readonly Step[];
 }
 
-const keys = ['affinity-zr-y', 'affinity-la-yb', 'affinity-th-yb'] as const;
+/** The schemes behind it. */
+export const affinityKeys = ['affinity-zr-y', 'affinity-la-yb', 'affinity-th-yb'] as const;
 const ratioNames = ['Zr/Y', 'La/Yb', 'Th/Yb'] as const;
 
 /**
@@ -31,7 +32,7 @@ const ratioNames = ['Zr/Y', 'La/Yb', 'Th/Yb'] as const;
  */
 export function immobileAffinity(suite: Suite): ImmobileAffinity {
   const operands = operandsOf(suite, 'measured');
-  const ratios = keys.map((key) => judge(operands, findScheme(key)));
+  const ratios = affinityKeys.map((key) => judge(operands, findScheme(key)));
   const affinity = new Array<string>(suite.size).fill('');
   const because = new Array<string>(suite.size).fill('');
   const byFields = new Map<number, { affinity: string; because: string }>();
@@ -52,11 +53,7 @@ export function immobileAffinity(suite: Suite): ImmobileAffinity {
     // Rows with all three ratios fall into 27 kinds; the others have reasons of their own.
     if (key >= 0) byFields.set(key, { affinity: affinity[i], because: because[i] });
   }
-  const made = step(
-    'immobileAffinity',
-    { ratios: [...ratioNames] },
-    { sources: ['ross_bedard_2009'], tables: keys.map((key) => `schemes/${key}.json`) },
-  );
+  const made = step('immobileAffinity', { ratios: [...ratioNames] }, schemesCarried(affinityKeys.map(findScheme)));
   return showAs({ suite, affinity, because, ratios, lineage: [...suite.lineage, made] }, (shown) => ({
     title: 'Affinity by immobile elements',
     columns: ['sample', 'affinity', 'because'],

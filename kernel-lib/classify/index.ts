@@ -14,3 +14,4 @@ export { arcMagmaKinds, type ArcMagmaKinds } from './arc-magma-kinds';
 export { consensus, type Consensus, type ConsensusOptions } from './consensus';
 export { explain, type Explanation, type ExplanationStep } from './explain';
 export { typicalDoubt } from './typical-doubt';
+export { withVerdicts } from './with-verdicts';

@@ -215,6 +215,7 @@ function rootName(symbol: string, fieldName: string, values: NamingValues, i: nu
       if (noNorm) return { ...plain, remark: `trachyte or trachydacite not determined: ${reasons[row]}` };
       const name = quartzShare(values, i) > rules.trachyte.quartzAbove ? 'trachydacite' : 'trachyte';
       if (!(agpaitic(values, i) > rules.peralkaline.above)) return { ...plain, name };
+      if (name === 'trachydacite') return { ...plain, name, remark: 'peralkaline; the rule has names for trachytes and rhyolites only' };
       return { ...plain, name: `${comenditic(values, i) ? 'comenditic' : 'pantelleritic'} ${name}` };
     }
     case 'R':

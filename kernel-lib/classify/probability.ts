@@ -53,8 +53,7 @@ export function probabilities(suite: Suite, verdicts: readonly SchemeVerdict[], 
     raw,
     wanted.map(({ scheme }) => scheme),
   );
-  if (uncertain.length === 0)
-    return { byScheme: new Map(), detail: { probability: 'none: no 1σ known' } };
+  if (uncertain.length === 0) return { byScheme: new Map(), detail: { probability: 'none: no 1σ known' } };
   const method = settings.probability ?? 'analytic';
   const unknown = [...new Set(wanted.flatMap(({ scheme }) => touched(scheme)))].filter((symbol) => raw.has(symbol) && !uncertain.includes(symbol));
   const detail = {

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { arcMagmaKinds, classify, consensus, explain, immobileAffinity, nameRocks, suiteTrend } from 'wedgework';
+import { arcMagmaKinds, classify, consensus, explain, immobileAffinity, nameRocks, splitIron, suiteTrend, withVerdicts } from 'wedgework';
 import { rock, suiteFrom, type Cells } from './suites';
 
 /** A suite on a straight trend of given rise of SiO2 for one unit of FeOT/MgO, with a little scatter. */
@@ -172,5 +172,29 @@ describe('explain', () => {
     expect(explain(consensus(suite), 'KE-12').steps.at(-1)!.stage).toBe('reading');
     expect(() => explain(classify(suite, 'tas'), 'KE-13')).toThrow(/no sample "KE-13"/);
     expect(() => explain(undefined as never, 'KE-12')).toThrow(TypeError);
+  });
+});
+
+describe('withVerdicts', () => {
+  const suite = suiteFrom([rock({ SiO2: 57.1, Na2O: 2.5, K2O: 0.5 }), rock({ K2O: NaN })], { sigma: { SiO2: 0.4 } });
+
+  it('writes symbols, names, distances and probabilities into the suite', () => {
+    const made = withVerdicts(classify(suite, ['tas', 'iron-enrichment']));
+    expect(made.label('tas')).toEqual(['O2', '']);
+    expect(made.label('tas name')).toEqual(['andesite', '']);
+    expect(made.values('tas distance')[1]).toBeNaN();
+    expect(made.values('tas probability')[0]).toBeGreaterThan(0.5);
+    expect(made.lineage.map(({ what }) => what)).toEqual(['volatileFree', 'classify', 'withVerdicts']);
+    expect(suite.labels.has('tas')).toBe(false);
+  });
+
+  it('gives the labels that other functions ask for', () => {
+    const named = withVerdicts(nameRocks(suite));
+    expect([...named.groupBy('rock').keys()]).toEqual(['low-K andesite', '']);
+    // The label `tas` is what the split of iron by rock type (Middlemost 1989) reads.
+    const split = splitIron(named, { method: 'middlemost-1989' });
+    expect(split.values('Fe2O3')[0] / split.values('FeO')[0]).toBeCloseTo(0.35, 12);
+    expect(withVerdicts(consensus(suite)).label('reading')[0]).toMatch(/low-K/);
+    expect(() => withVerdicts({} as never)).toThrow(TypeError);
   });
 });
