@@ -6,10 +6,11 @@ import { eventKind, eventKindNames } from './event-choice';
 import { centreOf, planeAbout, type Plane } from './geodesy';
 import type { Hypocentres } from './hypocentres';
 import { emptyBelow, slabSupport, type SlabBelow, type SlabSurface } from './slab';
-import { splineAt, splineBasis, splineGrid, type SplineGrid } from './spline';
+import { splineAt, splineBasis, type SplineGrid } from './spline';
 import { fitSurface, type SurfaceFit } from './surface-fit';
 import { checkedPoints } from './table-input';
 import type { TrenchLine } from './trench';
+import { gridFor, turnedFrame, type TurnedFrame } from './turned-frame';
 
 /** How a surface is fitted to hypocentres. */
 export interface HypocentreSlabOptions {
@@ -70,8 +71,6 @@ const supportEvents = 3;
 const supportRadius = 40;
 /** No depth is given further than this from the nearest slab event, km. */
 const reach = 150;
-/** Most basis functions: what keeps a fit of 20,000 events under three seconds. */
-const mostTerms = 320;
 
 /**
  * Fits a slab surface to hypocentres, choosing the slab's events against crustal and double-plane seismicity.
@@ -166,65 +165,6 @@ function rowsInArea(events: Hypocentres, area: HypocentreSlabOptions['area']): n
   }
   for (let i = 0; i < events.size; i++) rows.push(i);
   return rows;
-}
-
-/** Events on a plane turned so that the deep seismicity is longest along x. */
-interface TurnedFrame {
-  readonly x: Float64Array;
-  readonly y: Float64Array;
-  readonly cosine: number;
-  readonly sine: number;
-  turn(points: { readonly x: Float64Array; readonly y: Float64Array }): { x: Float64Array; y: Float64Array };
-}
-
-function turnedFrame(plane: Plane, longitude: Float64Array, latitude: Float64Array, depth: Float64Array, crustDepth: number): TurnedFrame {
-  const flat = plane.project(longitude, latitude);
-  let [n, meanX, meanY, xx, xy, yy, farthest] = [0, 0, 0, 0, 0, 0, 0];
-  for (let i = 0; i < depth.length; i++) {
-    farthest = Math.max(farthest, Math.hypot(flat.x[i], flat.y[i]));
-    if (depth[i] < crustDepth) continue;
-    n++;
-    meanX += flat.x[i];
-    meanY += flat.y[i];
-  }
-  if (farthest > 3000 || !Number.isFinite(farthest)) {
-    throw new RangeError(
-      `slabFromHypocentres: the events reach ${Math.round(farthest)} km from their centre, which is more than one slab. Choose one with { ` +
-        'area: { west, east, south, north } }.',
-    );
-  }
-  for (let i = 0; i < depth.length; i++) {
-    if (depth[i] < crustDepth) continue;
-    xx += (flat.x[i] - meanX / n) ** 2;
-    xy += (flat.x[i] - meanX / n) * (flat.y[i] - meanY / n);
-    yy += (flat.y[i] - meanY / n) ** 2;
-  }
-  const least = Math.sqrt(Math.max(0, (xx + yy) / 2 - Math.hypot((xx - yy) / 2, xy)) / n);
-  if (least < 5) {
-    throw new RangeError(
-      `slabFromHypocentres: the events deeper than ${crustDepth} km lie along a line on the map (1σ across it ${least.toFixed(1)} km), so ` +
-        'they define no surface. Take a wider area.',
-    );
-  }
-  const angle = 0.5 * Math.atan2(2 * xy, xx - yy);
-  const cosine = Math.cos(angle);
-  const sine = Math.sin(angle);
-  const turn = (points: { readonly x: Float64Array; readonly y: Float64Array }) => ({
-    x: points.x.map((value, i) => cosine * value + sine * points.y[i]),
-    y: points.y.map((value, i) => cosine * value - sine * points.x[i]),
-  });
-  return { ...turn(flat), cosine, sine, turn };
-}
-
-function gridFor(frame: TurnedFrame, spacing: number | undefined): SplineGrid {
-  const range = (values: Float64Array) => [values.reduce((a, b) => Math.min(a, b), Infinity), values.reduce((a, b) => Math.max(a, b), -Infinity)];
-  const [left, right] = range(frame.x);
-  const [bottom, top] = range(frame.y);
-  const box = { left, right, bottom, top };
-  let knots = spacing ?? 50;
-  let grid = splineGrid(box, knots);
-  while (grid.size > mostTerms) grid = splineGrid(box, (knots *= 1.05));
-  return grid;
 }
 
 const quantile = (values: readonly number[], share: number): number =>
