@@ -51,7 +51,7 @@ export class ByteSink {
   }
 
   private write(bytes: Uint8Array): void {
-    for (let from = 0; from < bytes.length; ) from += writeSync(this.file, bytes, from);
+    for (let from = 0; from < bytes.length;) from += writeSync(this.file, bytes, from);
   }
 
   /** Gives the file its name. */

@@ -4,7 +4,8 @@ import { CellDecoder, type CellConventions } from './cells';
 import { cellAddress, cellLook } from './grid';
 import { unguarded } from './guarded';
 import type { Layout } from './layout';
-import { columnPlace, type PlannedColumn } from './plan-columns';
+import { columnPlace } from './plan-columns';
+import type { PlannedColumn } from './planned-column';
 import type { ImportedColumn } from './report';
 
 /** Rows decoded together: small enough that a block of the file stays in the processor's cache while its columns are read. */
@@ -29,12 +30,16 @@ class Filling {
   private readonly divisor: number;
   private readonly tens: boolean;
 
-  constructor(readonly plan: PlannedColumn, size: number) {
+  constructor(
+    readonly plan: PlannedColumn,
+    size: number,
+  ) {
     this.values = new Float64Array(size);
     this.states = new Uint8Array(size);
     // 12.3 ppb is 12.3 / 1000 ppm: dividing by a whole number is correctly rounded, multiplying by 0.001 is not.
     const inverse = 1 / plan.factor;
-    this.divisor = plan.factor !== 1 && Math.abs(plan.factor) < 1 && Math.abs(inverse - Math.round(inverse)) < 1e-9 * inverse ? Math.round(inverse) : 0;
+    this.divisor =
+      plan.factor !== 1 && Math.abs(plan.factor) < 1 && Math.abs(inverse - Math.round(inverse)) < 1e-9 * inverse ? Math.round(inverse) : 0;
     this.tens = plan.factor >= 10 && Number.isInteger(Math.log10(plan.factor));
   }
 
@@ -63,11 +68,19 @@ export interface DecodedSheet {
  *
  * @param withheld rows and columns whose numbers are not to be taken
  */
-export function decodeColumns(layout: Layout, plan: readonly PlannedColumn[], conventions: CellConventions, sheet: string, withheld: Withheld): DecodedSheet {
+export function decodeColumns(
+  layout: Layout,
+  plan: readonly PlannedColumn[],
+  conventions: CellConventions,
+  sheet: string,
+  withheld: Withheld,
+): DecodedSheet {
   const { body } = layout;
   const size = body.length;
   const decoder = new CellDecoder(conventions);
-  const fillings = plan.filter(({ role }) => role === 'analyte' || role === 'quantity' || role === 'uncertainty').map((column) => new Filling(column, size));
+  const fillings = plan
+    .filter(({ role }) => role === 'analyte' || role === 'quantity' || role === 'uncertainty')
+    .map((column) => new Filling(column, size));
   for (let from = 0; from < size; from += blockRows) {
     const to = Math.min(size, from + blockRows);
     for (const filling of fillings) fillBlock(layout, filling, from, to, decoder, withheld);
@@ -81,7 +94,14 @@ export function decodeColumns(layout: Layout, plan: readonly PlannedColumn[], co
   return {
     columns: [...byName.values()].map(toColumn),
     labels,
-    imported: plan.map((column) => imported(layout, column, fillings.find((filling) => filling.plan === column), sheet)),
+    imported: plan.map((column) =>
+      imported(
+        layout,
+        column,
+        fillings.find((filling) => filling.plan === column),
+        sheet,
+      ),
+    ),
     remarks: fillings.flatMap(remarksOf),
   };
 }
@@ -126,7 +146,8 @@ function fillSlowly(layout: Layout, filling: Filling, i: number, decoder: CellDe
   filling.values[i] = decoder.state === cellState.measured ? filling.convert(decoder.value) : NaN;
   if (decoder.fault !== '') {
     counts.unreadable++;
-    if (filling.unreadable.length < mostListed) filling.unreadable.push({ address, text: text.length > 60 ? `${text.slice(0, 59)}…` : text, why: decoder.fault });
+    if (filling.unreadable.length < mostListed)
+      filling.unreadable.push({ address, text: text.length > 60 ? `${text.slice(0, 59)}…` : text, why: decoder.fault });
     return;
   }
   if (decoder.state === cellState.measured) counts.measured++;
@@ -152,7 +173,10 @@ function addressOf(layout: Layout, row: number, column: number): string {
 
 /** Cells below detection (or above range) without a limit of their own take the one in the header, where there is one. */
 function headLimits(layout: Layout, filling: Filling, decoder: CellDecoder): void {
-  for (const [row, state] of [[layout.header.limit, cellState.belowDetection], [layout.header.upperLimit, cellState.aboveRange]] as const) {
+  for (const [row, state] of [
+    [layout.header.limit, cellState.belowDetection],
+    [layout.header.upperLimit, cellState.aboveRange],
+  ] as const) {
     if (row === undefined) continue;
     decoder.decode(layout.grid.text(row, filling.plan.index), 'any');
     const limit = decoder.state === cellState.measured ? decoder.value : decoder.limit;
@@ -202,16 +226,29 @@ function attachStates(layout: Layout, index: number, to: Filling | undefined): v
 
 function toColumn({ plan, values, states, limits, sigma }: Filling): Column {
   const kind = findAnalyte(plan.name)?.kind ?? 'quantity';
-  return { symbol: plan.name, kind, unit: plan.unit, values, states, ...(limits === undefined ? {} : { limits }), ...(sigma === undefined ? {} : { sigma }) };
+  return {
+    symbol: plan.name,
+    kind,
+    unit: plan.unit,
+    values,
+    states,
+    ...(limits === undefined ? {} : { limits }),
+    ...(sigma === undefined ? {} : { sigma }),
+  };
 }
 
 function imported(layout: Layout, plan: PlannedColumn, filling: Filling | undefined, sheet: string): ImportedColumn {
   const none = { measured: 0, below: 0, above: 0, missing: 0, unreadable: 0 };
   return {
-    head: plan.head, sheet, place: columnPlace(layout, plan.index),
+    head: plan.head,
+    sheet,
+    place: columnPlace(layout, plan.index),
     became: plan.role === 'states' ? 'cell states' : plan.role,
     name: plan.role === 'ignored' ? '' : plan.name,
-    sheetUnit: plan.sheetUnit, unit: plan.unit, factor: plan.factor, method: plan.method,
+    sheetUnit: plan.sheetUnit,
+    unit: plan.unit,
+    factor: plan.factor,
+    method: plan.method,
     ...(filling?.counts ?? none),
     unreadableCells: filling?.unreadable ?? [],
     note: [plan.note, plan.method === '' ? '' : `method ${plan.method}`].filter(Boolean).join('; '),
@@ -229,6 +266,7 @@ const remarkText: Readonly<Record<string, string>> = {
 
 function remarksOf({ plan, remarks, unreadable, counts }: Filling): string[] {
   const texts = [...remarks].map(([remark, { count, first }]) => `"${plan.head}": ${count} ${remarkText[remark]} (first: ${first})`);
-  if (counts.unreadable > 0) texts.push(`"${plan.head}": ${counts.unreadable} unreadable (first: ${unreadable[0].address} "${unreadable[0].text}", ${unreadable[0].why})`);
+  if (counts.unreadable > 0)
+    texts.push(`"${plan.head}": ${counts.unreadable} unreadable (first: ${unreadable[0].address} "${unreadable[0].text}", ${unreadable[0].why})`);
   return texts;
 }

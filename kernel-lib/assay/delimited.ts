@@ -30,7 +30,11 @@ export class DelimitedGrid implements Grid {
   private readonly rowFirst: Uint32Array;
   private readonly rowEnd: Uint32Array;
 
-  constructor(private readonly bytes: Buffer, delimiter: string, limits: { readonly columns: number }) {
+  constructor(
+    private readonly bytes: Buffer,
+    delimiter: string,
+    limits: { readonly columns: number },
+  ) {
     const cut = tokenize(bytes, delimiter.charCodeAt(0), limits.columns);
     this.starts = cut.starts;
     this.rowFirst = cut.rowFirst;

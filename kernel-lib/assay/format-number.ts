@@ -22,7 +22,26 @@ export function significantDigits(value: number, to: Uint8Array, at: number): nu
   const size = value < 0 ? -value : value;
   if (!(size >= 1e-4 && size < 999_999)) return slowly(value, to, at);
   // `exponent` is that of the leading digit; the six digits are size × 10^(5 − exponent), rounded.
-  const exponent = size >= 1 ? (size >= 1e3 ? (size >= 1e5 ? 5 : size >= 1e4 ? 4 : 3) : size >= 100 ? 2 : size >= 10 ? 1 : 0) : size >= 0.1 ? -1 : size >= 0.01 ? -2 : size >= 1e-3 ? -3 : -4;
+  const exponent =
+    size >= 1
+      ? size >= 1e3
+        ? size >= 1e5
+          ? 5
+          : size >= 1e4
+            ? 4
+            : 3
+        : size >= 100
+          ? 2
+          : size >= 10
+            ? 1
+            : 0
+      : size >= 0.1
+        ? -1
+        : size >= 0.01
+          ? -2
+          : size >= 1e-3
+            ? -3
+            : -4;
   const scaled = size * exactPowers[5 - exponent];
   let whole = Math.floor(scaled);
   const rest = scaled - whole;

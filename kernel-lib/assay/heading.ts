@@ -4,10 +4,24 @@ import { plainSigns, spellingKey, vocabulary, type SpelledUnit } from './spellin
 
 /** What one column head says about its column. */
 export type Heading =
-  | { readonly role: 'analyte'; readonly symbol: string; readonly unit?: SpelledUnit; readonly unitText: string; readonly method: string; readonly note?: string }
+  | {
+      readonly role: 'analyte';
+      readonly symbol: string;
+      readonly unit?: SpelledUnit;
+      readonly unitText: string;
+      readonly method: string;
+      readonly note?: string;
+    }
   | { readonly role: 'label'; readonly label: string; readonly rank: number }
   | { readonly role: 'quantity'; readonly symbol: string; readonly unit: string; readonly limit: number; readonly negated: boolean }
-  | { readonly role: 'uncertainty'; readonly of: string; readonly sigmas: number; readonly unit?: SpelledUnit; readonly unitText: string; readonly relative: boolean }
+  | {
+      readonly role: 'uncertainty';
+      readonly of: string;
+      readonly sigmas: number;
+      readonly unit?: SpelledUnit;
+      readonly unitText: string;
+      readonly relative: boolean;
+    }
   | { readonly role: 'states'; readonly of: string }
   | { readonly role: 'unknown' };
 
@@ -53,7 +67,10 @@ function parseHeading(text: string, upperCase: boolean): Heading {
 
 /** The symbol that a text without unit and method names, or undefined. `sure`: a unit stands beside it, so a word in the wrong case is meant. */
 function symbolOf(text: string, sure: boolean): string | undefined {
-  const trimmed = text.replace(/^[\s_,;:|-]+|[\s_,;:|]+$/g, '').replace(/^\(\s*\)|\(\s*\)$/g, '').trim();
+  const trimmed = text
+    .replace(/^[\s_,;:|-]+|[\s_,;:|]+$/g, '')
+    .replace(/^\(\s*\)|\(\s*\)$/g, '')
+    .trim();
   if (trimmed === '') return undefined;
   const exact = findAnalyte(trimmed);
   if (exact !== undefined) return exact.symbol;
@@ -74,7 +91,14 @@ function isotopeRatio(text: string): string | undefined {
   const massFirst = /^(\d{2,3})([A-Za-z]{1,2})\/?(\d{2,3})([A-Za-z]{1,2})$/.exec(compact);
   const symbolFirst = /^([A-Za-z]{1,2})(\d{2,3})\/?([A-Za-z]{1,2})(\d{2,3})$/.exec(compact);
   const short = /^([A-Za-z]{1,2})(\d{2,3})\/(\d{2,3})$/.exec(compact) ?? undefined;
-  const parts = massFirst !== null ? massFirst.slice(1) : symbolFirst !== null ? [symbolFirst[2], symbolFirst[1], symbolFirst[4], symbolFirst[3]] : short !== undefined ? [short[2], short[1], short[3], short[1]] : undefined;
+  const parts =
+    massFirst !== null
+      ? massFirst.slice(1)
+      : symbolFirst !== null
+        ? [symbolFirst[2], symbolFirst[1], symbolFirst[4], symbolFirst[3]]
+        : short !== undefined
+          ? [short[2], short[1], short[3], short[1]]
+          : undefined;
   if (parts === undefined) return undefined;
   const proper = (symbol: string) => symbol[0].toUpperCase() + symbol.slice(1).toLowerCase();
   return findAnalyte(`${parts[0]}${proper(parts[1])}/${parts[2]}${proper(parts[3])}`)?.symbol;
@@ -94,7 +118,8 @@ function takeUnit(text: string): { rest: string; unit?: SpelledUnit; unitText: s
   const { units } = vocabulary();
   for (const match of text.matchAll(brackets)) {
     const unit = units.get(spellingKey(match[1]));
-    if (unit !== undefined && match[1].trim() !== '') return { rest: `${text.slice(0, match.index)} ${text.slice(match.index + match[0].length)}`.trim(), unit, unitText: match[1].trim() };
+    if (unit !== undefined && match[1].trim() !== '')
+      return { rest: `${text.slice(0, match.index)} ${text.slice(match.index + match[0].length)}`.trim(), unit, unitText: match[1].trim() };
   }
   const bracketed = /^(.*)[([]([^()[\]]*)[)\]]\s*$/.exec(text);
   if (bracketed !== null) {
@@ -119,7 +144,9 @@ function takeUnit(text: string): { rest: string; unit?: SpelledUnit; unitText: s
     const unit = units.get(spellingKey(pieces[at]));
     if (unit !== undefined) return { rest: pieces.filter((_, i) => i !== at).join(' '), unit, unitText: pieces[at] };
   }
-  const glued = /^(.*?[A-Za-z0-9)*+])[-/]?(wt\.?%|wt\.?-%|mass%|ppm|ppb|ppt|%)$/i.exec(text) ?? /^([A-Z][A-Za-z0-9()*]*)\/(ppm|ppb|ppt|wt\.?%|mg\/kg|μg\/g)$/.exec(text);
+  const glued =
+    /^(.*?[A-Za-z0-9)*+])[-/]?(wt\.?%|wt\.?-%|mass%|ppm|ppb|ppt|%)$/i.exec(text) ??
+    /^([A-Z][A-Za-z0-9()*]*)\/(ppm|ppb|ppt|wt\.?%|mg\/kg|μg\/g)$/.exec(text);
   if (glued !== null) return { rest: glued[1], unit: units.get(spellingKey(glued[2])), unitText: glued[2] };
   return { rest: text, unitText: '' };
 }

@@ -23,7 +23,8 @@ export function matchSamples(first: readonly string[], second: readonly string[]
   if (a.length === b.length && a.every((name, i) => name === b[i])) return { to: Int32Array.from(b, (_, i) => i), size: a.length };
   const place = new Map(a.map((name, i) => [name, i]));
   const shared = b.filter((name) => name !== '' && place.has(name)).length;
-  if (shared === 0 || shared < 0.5 * Math.min(a.length, b.length)) return { refused: `${shared} of its ${b.length} sample names occur in the other sheet` };
+  if (shared === 0 || shared < 0.5 * Math.min(a.length, b.length))
+    return { refused: `${shared} of its ${b.length} sample names occur in the other sheet` };
   if (place.size < a.length || new Set(b).size < b.length) return { refused: 'sample names occur more than once, so rows cannot be matched' };
   let size = a.length;
   const to = Int32Array.from(b, (name) => place.get(name) ?? size++);
@@ -50,7 +51,11 @@ export function joinSheet(whole: Joined, sheet: ReadSheet, match: { readonly to:
     const placed = spreadTexts(texts, match.to, match.size);
     const known = labels.get(name);
     if (known === undefined) labels.set(name, placed);
-    else if (name === 'sample' || known.every((text, i) => text === '' || placed[i] === '' || text === placed[i])) labels.set(name, known.map((text, i) => (text === '' ? placed[i] : text)));
+    else if (name === 'sample' || known.every((text, i) => text === '' || placed[i] === '' || text === placed[i]))
+      labels.set(
+        name,
+        known.map((text, i) => (text === '' ? placed[i] : text)),
+      );
     else labels.set(`${name} (${sheet.name})`, placed);
   }
   if (match.size > before) remarks.push(`${match.size - before} samples stand only in sheet "${sheet.name}"`);

@@ -8,7 +8,13 @@ export interface Layout {
   readonly grid: Grid;
   readonly samplesIn: 'rows' | 'columns';
   /** Rows of the header block, by what they hold. */
-  readonly header: { readonly analyte: number; readonly unit?: number; readonly method?: number; readonly limit?: number; readonly upperLimit?: number };
+  readonly header: {
+    readonly analyte: number;
+    readonly unit?: number;
+    readonly method?: number;
+    readonly limit?: number;
+    readonly upperLimit?: number;
+  };
   /** The head of each column as written. */
   readonly heads: readonly string[];
   /** Unit and method written beside the head in rows of their own ('' where none), and the detection limits. */
@@ -129,7 +135,14 @@ function layOut(grid: Grid, head: HeadRow, settings: Readonly<Record<string, unk
       const text = row === undefined ? '' : grid.text(row, column);
       const key = spellingKey(text);
       if (heads[column] === '' || words.headerRows.has(spellingKey(heads[column]))) {
-        if (text !== '' && grid.look(row!, column) === cellLook.text && !words.headerRows.has(key) && !words.units.has(key) && !words.methods.has(key)) heads[column] = text;
+        if (
+          text !== '' &&
+          grid.look(row!, column) === cellLook.text &&
+          !words.headerRows.has(key) &&
+          !words.units.has(key) &&
+          !words.methods.has(key)
+        )
+          heads[column] = text;
       }
     }
   }
@@ -138,7 +151,13 @@ function layOut(grid: Grid, head: HeadRow, settings: Readonly<Record<string, unk
   const { body, skipped, limit, upperLimit } = findBody(grid, bottom + 1, heads, isAnalyte, words);
   for (const { why, text } of skipped) if (why === 'no analysis in it') prose.push(text);
   return {
-    grid, samplesIn, heads, body, skipped, prose, upperCase: head.upperCase,
+    grid,
+    samplesIn,
+    heads,
+    body,
+    skipped,
+    prose,
+    upperCase: head.upperCase,
     header: { ...header, limit: header.limit ?? limit, upperLimit: header.upperLimit ?? upperLimit },
     units: heads.map((_, column) => unitTexts[column] ?? ''),
     methods: heads.map((_, column) => methodTexts[column] ?? ''),
@@ -187,7 +206,11 @@ function headerKind(grid: Grid, row: number, isAnalyte: readonly boolean[], word
 
 /** The key of a unit that may stand in brackets of its own. */
 export function unitKey(text: string): string {
-  return spellingKey(plainSigns(text).replace(/^[([]\s*|\s*[)\]]$/g, '').replace(/^in /i, ''));
+  return spellingKey(
+    plainSigns(text)
+      .replace(/^[([]\s*|\s*[)\]]$/g, '')
+      .replace(/^in /i, ''),
+  );
 }
 
 /** A row of units or methods in which a merged cell stands for those to its right: filled to the right where few cells are written. */

@@ -36,7 +36,10 @@ export async function openFile(path: string, options: { readonly delimiter?: str
   const file = basename(path);
   const size = await sizeOf(path, file);
   if (size === 0) throw new AssayError(`${file} is empty (0 bytes). Save the sheet again, as .csv or .xlsx.`);
-  if (size > sizeLimits.fileBytes) throw new AssayError(`${file} has ${Math.round(size / 1e6)} MB; sheets up to ${Math.round(sizeLimits.fileBytes / 1e6)} MB are read. Split it by rows.`);
+  if (size > sizeLimits.fileBytes)
+    throw new AssayError(
+      `${file} has ${Math.round(size / 1e6)} MB; sheets up to ${Math.round(sizeLimits.fileBytes / 1e6)} MB are read. Split it by rows.`,
+    );
   const handle = await open(path);
   try {
     const head = Buffer.alloc(Math.min(size, sizeLimits.rowBytes));
@@ -60,7 +63,9 @@ async function sizeOf(path: string, file: string): Promise<number> {
     const found = await stat(path);
     if (found.isFile()) return found.size;
   } catch (error) {
-    throw new AssayError(`${file} cannot be opened (${(error as NodeJS.ErrnoException).code ?? 'unknown reason'}). Check the path: it is taken from the folder of the notebook.`);
+    throw new AssayError(
+      `${file} cannot be opened (${(error as NodeJS.ErrnoException).code ?? 'unknown reason'}). Check the path: it is taken from the folder of the notebook.`,
+    );
   }
   throw new AssayError(`${file} is a folder, not a sheet. Give the path of a .csv, .tsv, .xlsx, .xls or .ods file.`);
 }
@@ -79,16 +84,25 @@ async function readRest(handle: Awaited<ReturnType<typeof open>>, head: Buffer, 
 
 function openText(raw: Buffer, file: string, wanted?: string): Pick<OpenFile, 'encoding' | 'delimiter' | 'sheets'> {
   const { bytes, encoding } = decodeText(raw);
-  if (bytes.subarray(0, 4096).includes(0)) throw new AssayError(`${file} is neither text nor a workbook that the library reads. Save it as .csv or .xlsx.`);
+  if (bytes.subarray(0, 4096).includes(0))
+    throw new AssayError(`${file} is neither text nor a workbook that the library reads. Save it as .csv or .xlsx.`);
   const delimiter = wanted ?? guessDelimiter(bytes);
   let grid: DelimitedGrid;
   try {
     grid = new DelimitedGrid(bytes, delimiter, { columns: sizeLimits.columns });
   } catch (error) {
-    if (error instanceof RangeError) throw new AssayError(`${file}: ${error.message}. Sheets of up to ${sizeLimits.columns} columns are read; check the delimiter.`);
+    if (error instanceof RangeError)
+      throw new AssayError(`${file}: ${error.message}. Sheets of up to ${sizeLimits.columns} columns are read; check the delimiter.`);
     throw error;
   }
-  const remarks = grid.faults.slice(0, 20).map(({ row, kind }) => (kind === 'line breaks inside' ? `row ${row + 1}: a cell holds line breaks; if it should not, a quotation mark is broken there` : `row ${row + 1}: a quotation mark is broken (${kind})`));
-  if (grid.faults.length > remarks.length) remarks.push(`${grid.faults.length - remarks.length} more rows with broken quotation marks or line breaks in a cell`);
+  const remarks = grid.faults
+    .slice(0, 20)
+    .map(({ row, kind }) =>
+      kind === 'line breaks inside'
+        ? `row ${row + 1}: a cell holds line breaks; if it should not, a quotation mark is broken there`
+        : `row ${row + 1}: a quotation mark is broken (${kind})`,
+    );
+  if (grid.faults.length > remarks.length)
+    remarks.push(`${grid.faults.length - remarks.length} more rows with broken quotation marks or line breaks in a cell`);
   return { encoding, delimiter, sheets: [{ name: '', grid, hidden: false, remarks }] };
 }

@@ -1,42 +1,17 @@
 import { findAnalyte, isMassUnit, massUnitFactor, type MassUnit } from '../chemistry';
 import { massFactor } from '../tables';
-import type { Signs } from './cells';
 import { AssayError } from './errors';
 import { cellLook, columnLetters } from './grid';
 import { ownTag, readHeading, type Heading } from './heading';
-import type { Layout } from './layout';
-import { unitKey } from './layout';
-import { plausibleRanges, spellingKey, vocabulary, type SpelledUnit } from './spellings';
+import { inferUnits } from './infer-units';
+import { unitKey, type Layout } from './layout';
+import { headKey, type Draft, type PlanNotes, type PlannedColumn } from './planned-column';
+import { keepApart } from './several-methods';
+import { spellingKey, vocabulary, type SpelledUnit } from './spellings';
 
 /** What the user settles for one column: a symbol, `label`, `ignore`, or a symbol with its unit and method. */
 export type ColumnSetting =
-  | string
-  | { readonly as?: string; readonly unit?: string; readonly label?: string; readonly quantity?: string; readonly ignore?: boolean };
-
-/** One column of the sheet and what it shall become. */
-export interface PlannedColumn {
-  readonly index: number;
-  readonly head: string;
-  readonly role: 'analyte' | 'quantity' | 'label' | 'uncertainty' | 'states' | 'ignored';
-  readonly name: string;
-  readonly unit: string;
-  readonly sheetUnit: string;
-  readonly factor: number;
-  readonly method: string;
-  readonly sigmas: number;
-  readonly relative: boolean;
-  readonly signs: Signs;
-  /** Largest size a coordinate may have. */
-  readonly limit: number;
-  readonly note: string;
-}
-
-/** What planning has to say besides the columns. */
-export interface PlanNotes {
-  readonly inferred: string[];
-  readonly ignored: string[];
-  readonly pleaseCheck: string[];
-}
+  string | { readonly as?: string; readonly unit?: string; readonly label?: string; readonly quantity?: string; readonly ignore?: boolean };
 
 export interface PlanOptions {
   readonly columns: Readonly<Record<string, ColumnSetting>>;
@@ -48,8 +23,6 @@ export interface PlanOptions {
 
 /** Water not told apart is often loss on ignition by another name, and so can be negative like it. */
 const signedAnalytes = new Set(['LOI', 'H2O', 'epsilon-Nd', 'epsilon-Hf']);
-
-type Draft = { -readonly [Key in keyof PlannedColumn]: PlannedColumn[Key] } & { knownUnit: boolean; rank: number; settled: boolean };
 
 /**
  * Decides what every column of a laid-out sheet becomes.
@@ -92,8 +65,6 @@ export function columnPlace(layout: Layout, index: number): string {
   return layout.samplesIn === 'rows' ? columnLetters(index) : `row ${index + 1}`;
 }
 
-const headKey = (text: string) => text.replace(/\s+/g, ' ').trim();
-
 function settingFor(settings: Readonly<Record<string, ColumnSetting>>, head: string, place: string, used: Set<string>): ColumnSetting | undefined {
   for (const key of [`column ${place}`, place.startsWith('row ') ? place : '', headKey(head)]) {
     if (key !== '' && Object.hasOwn(settings, key)) {
@@ -120,7 +91,10 @@ function unitWithin(text: string): SpelledUnit | undefined {
   }
   const words = text.split(/[\s,:;]+/);
   for (let count = 2; count >= 1; count--) {
-    const unit = words.length > count ? (units.get(spellingKey(words.slice(-count).join(' '))) ?? units.get(spellingKey(words.slice(0, count).join(' ')))) : undefined;
+    const unit =
+      words.length > count
+        ? (units.get(spellingKey(words.slice(-count).join(' '))) ?? units.get(spellingKey(words.slice(0, count).join(' '))))
+        : undefined;
     if (unit !== undefined) return unit;
   }
   return undefined;
@@ -128,12 +102,34 @@ function unitWithin(text: string): SpelledUnit | undefined {
 
 function blankDraft(index: number, head: string): Draft {
   return {
-    index, head, role: 'label', name: headKey(head), unit: '', sheetUnit: '', factor: 1, method: '', sigmas: 1, relative: false, signs: 'positive',
-    limit: Infinity, note: '', knownUnit: true, rank: Infinity, settled: false,
+    index,
+    head,
+    role: 'label',
+    name: headKey(head),
+    unit: '',
+    sheetUnit: '',
+    factor: 1,
+    method: '',
+    sigmas: 1,
+    relative: false,
+    signs: 'positive',
+    limit: Infinity,
+    note: '',
+    knownUnit: true,
+    rank: Infinity,
+    settled: false,
   };
 }
 
-function draft(layout: Layout, index: number, head: string, place: string, setting: ColumnSetting | undefined, sectionUnit: SpelledUnit | undefined, notes: PlanNotes): Draft {
+function draft(
+  layout: Layout,
+  index: number,
+  head: string,
+  place: string,
+  setting: ColumnSetting | undefined,
+  sectionUnit: SpelledUnit | undefined,
+  notes: PlanNotes,
+): Draft {
   const made = blankDraft(index, head);
   if (head === '') made.name = layout.samplesIn === 'rows' ? `column ${place}` : place;
   if (setting !== undefined) return settle(made, setting, head === '' ? `column ${place}` : head, layout);
@@ -151,20 +147,32 @@ function draft(layout: Layout, index: number, head: string, place: string, setti
       return made;
     case 'quantity':
       return Object.assign(made, {
-        role: 'quantity', name: heading.symbol, unit: heading.unit, sheetUnit: heading.unit, signs: 'signed', limit: heading.limit,
-        factor: heading.negated ? -1 : 1, note: heading.negated ? 'south or west: sign turned' : '',
+        role: 'quantity',
+        name: heading.symbol,
+        unit: heading.unit,
+        sheetUnit: heading.unit,
+        signs: 'signed',
+        limit: heading.limit,
+        factor: heading.negated ? -1 : 1,
+        note: heading.negated ? 'south or west: sign turned' : '',
       } satisfies Partial<Draft>);
     case 'uncertainty':
       return Object.assign(made, {
-        role: 'uncertainty', name: heading.of, sigmas: heading.sigmas, relative: heading.relative, sheetUnit: heading.unit?.unit ?? rowUnit?.unit ?? '',
-        factor: heading.unit?.factor ?? 1, knownUnit: (heading.unit ?? rowUnit) !== undefined,
+        role: 'uncertainty',
+        name: heading.of,
+        sigmas: heading.sigmas,
+        relative: heading.relative,
+        sheetUnit: heading.unit?.unit ?? rowUnit?.unit ?? '',
+        factor: heading.unit?.factor ?? 1,
+        knownUnit: (heading.unit ?? rowUnit) !== undefined,
       } satisfies Partial<Draft>);
     case 'analyte': {
       const unit = heading.unit ?? rowUnit ?? sectionUnit;
       made.method = heading.method !== '' ? heading.method : layout.methods[index];
       made.note = heading.note ?? '';
       asAnalyte(made, heading.symbol, unit);
-      if (unitText !== '' && rowUnit === undefined && findAnalyte(heading.symbol)!.unit !== '') notes.pleaseCheck.push(`${place} "${head}": its unit "${unitText}" is not known`);
+      if (unitText !== '' && rowUnit === undefined && findAnalyte(heading.symbol)!.unit !== '')
+        notes.pleaseCheck.push(`${place} "${head}": its unit "${unitText}" is not known`);
       return made;
     }
     default:
@@ -190,21 +198,40 @@ function asAnalyte(made: Draft, symbol: string, unit: SpelledUnit | undefined): 
 function settle(made: Draft, setting: ColumnSetting, head: string, layout: Layout): Draft {
   made.settled = true;
   made.note = 'as settled by the user';
-  const given = typeof setting === 'string' ? (setting === 'ignore' ? { ignore: true } : setting === 'label' ? { label: headKey(head) } : findAnalyte(setting) !== undefined ? { as: setting } : { label: setting }) : setting;
+  const given =
+    typeof setting === 'string'
+      ? setting === 'ignore'
+        ? { ignore: true }
+        : setting === 'label'
+          ? { label: headKey(head) }
+          : findAnalyte(setting) !== undefined
+            ? { as: setting }
+            : { label: setting }
+      : setting;
   if (given.ignore === true) return Object.assign(made, { role: 'ignored', name: '' } as const);
-  if (given.label !== undefined) return Object.assign(made, { role: 'label', name: given.label, rank: given.label === 'sample' ? -1 : Infinity } as const);
+  if (given.label !== undefined)
+    return Object.assign(made, { role: 'label', name: given.label, rank: given.label === 'sample' ? -1 : Infinity } as const);
   if (given.quantity !== undefined) {
-    return Object.assign(made, { role: 'quantity', name: given.quantity, unit: given.unit ?? '', sheetUnit: given.unit ?? '', signs: 'signed' } as const);
+    return Object.assign(made, {
+      role: 'quantity',
+      name: given.quantity,
+      unit: given.unit ?? '',
+      sheetUnit: given.unit ?? '',
+      signs: 'signed',
+    } as const);
   }
   const own = readHeading(head, layout.upperCase);
   const symbol = given.as ?? (own.role === 'analyte' ? own.symbol : undefined);
   if (symbol === undefined || findAnalyte(symbol) === undefined) {
-    throw new AssayError(`columns: "${head}" cannot become "${String(given.as)}". Give a symbol such as SiO2 or Ba as \`as\`, or { label: … }, { quantity: …, unit: … } or 'ignore'.`);
+    throw new AssayError(
+      `columns: "${head}" cannot become "${String(given.as)}". Give a symbol such as SiO2 or Ba as \`as\`, or { label: … }, { quantity: …, unit: … } or 'ignore'.`,
+    );
   }
   let unit: SpelledUnit | undefined = own.role === 'analyte' ? own.unit : undefined;
   if (given.unit !== undefined) {
     unit = vocabulary().units.get(spellingKey(given.unit));
-    if (unit === undefined) throw new AssayError(`columns: the unit "${given.unit}" of "${head}" is not known. Use wt%, ppm, ppb, ppt, mg/kg, µg/g, ng/g or g/t.`);
+    if (unit === undefined)
+      throw new AssayError(`columns: the unit "${given.unit}" of "${head}" is not known. Use wt%, ppm, ppb, ppt, mg/kg, µg/g, ng/g or g/t.`);
   }
   unit ??= vocabulary().units.get(unitKey(layout.units[made.index]));
   asAnalyte(made, symbol, unit);
@@ -265,47 +292,10 @@ function attachUncertainty(drafts: Draft[], notes: PlanNotes): void {
       Object.assign(made, { role: 'label', name: headKey(made.head) } as const);
       return;
     }
-    if (!ownTag.test(made.head)) notes.inferred.push(`"${made.head}" is taken as ${made.sigmas}σ of ${made.name}${made.relative ? ', relative in %' : ''}`);
+    if (!ownTag.test(made.head))
+      notes.inferred.push(`"${made.head}" is taken as ${made.sigmas}σ of ${made.name}${made.relative ? ', relative in %' : ''}`);
     made.unit = of.unit;
   });
-}
-
-/** A missing unit is concluded only where one unit alone makes the numbers possible for a rock. */
-function inferUnits(layout: Layout, drafts: Draft[], notes: PlanNotes): void {
-  const step = Math.max(1, Math.floor(layout.body.length / 2000));
-  for (const made of drafts) {
-    if (made.role !== 'analyte' || made.unit === '') continue;
-    const range = plausibleRanges().get(made.name);
-    const values: number[] = [];
-    for (let i = 0; i < layout.body.length; i += step) {
-      if (layout.grid.look(layout.body[i], made.index) === cellLook.number && layout.grid.seen > 0) values.push(layout.grid.seen);
-    }
-    const fits = (unit: MassUnit): boolean => {
-      const factor = massUnitFactor(unit, made.unit as MassUnit);
-      const inside = values.filter((value) => value * factor >= range!.low && value * factor <= range!.high).length;
-      return inside >= 0.8 * values.length;
-    };
-    if (made.knownUnit) {
-      if (range !== undefined && values.length >= 3 && isMassUnit(made.sheetUnit) && values.every((value) => value * made.factor > range.high)) {
-        notes.pleaseCheck.push(`"${made.head}": every value is too high for ${made.name} in ${made.sheetUnit}; is the unit right?`);
-      }
-      continue;
-    }
-    const possible = range === undefined || values.length === 0 ? [] : (['wt%', 'ppm', 'ppb'] as const).filter(fits);
-    if (values.length === 0) {
-      made.sheetUnit = made.unit;
-      made.knownUnit = true;
-      made.note = 'no number in it';
-    } else if (possible.length === 1) {
-      made.sheetUnit = possible[0];
-      made.factor = massUnitFactor(possible[0], made.unit as MassUnit);
-      made.knownUnit = true;
-      notes.inferred.push(`"${made.head}" has no unit: its size allows only ${possible[0]}`);
-    } else {
-      notes.pleaseCheck.push(`"${made.head}" has no unit, and its size allows ${possible.length === 0 ? 'none for sure' : possible.join(' or ')}: kept as a label until columns: { '${headKey(made.head)}': { unit: … } } says which`);
-      Object.assign(made, { role: 'label', name: headKey(made.head), unit: '', factor: 1, note: 'unit not known' } as const);
-    }
-  }
 }
 
 /** Iron given as the element is total iron; the suite holds iron as FeO. */
@@ -316,42 +306,6 @@ function ironAsTotal(drafts: Draft[], notes: PlanNotes): void {
     Object.assign(made, { name: 'FeOT', unit: 'wt%', factor: made.factor * toOxide, note: 'element Fe as FeO' } as const);
     notes.inferred.push(`"${made.head}" is taken as total iron and expressed as FeO`);
   }
-}
-
-/** One analyte by several methods: the preferred one has the analyte's name, the others stay beside it under their method's. */
-function keepApart(drafts: Draft[], prefer: Readonly<Record<string, string>>, notes: PlanNotes): void {
-  const groups = new Map<string, Draft[]>();
-  for (const made of drafts) {
-    if (made.role !== 'analyte' && made.role !== 'quantity') continue;
-    const group = groups.get(made.name);
-    if (group === undefined) groups.set(made.name, [made]);
-    else group.push(made);
-  }
-  for (const [symbol, group] of groups) {
-    if (group.length < 2) continue;
-    const ranks = group.map((made) => (made.settled ? -1 : methodRank(symbol, made.method, prefer[symbol])));
-    const chosen = group[ranks.indexOf(Math.min(...ranks))];
-    const taken = new Set<string>([symbol]);
-    for (const other of group) {
-      if (other === chosen) continue;
-      let name = `${symbol} ${other.method === '' ? '(2)' : other.method}`;
-      for (let count = 2; taken.has(name); count++) name = `${symbol} ${other.method} (${count})`;
-      taken.add(name);
-      const { head } = other;
-      for (const made of drafts) if (made.role === 'uncertainty' && made.name === symbol && drafts.indexOf(made) === drafts.indexOf(other) + 1) made.name = name;
-      Object.assign(other, { role: 'quantity', name, note: `also ${symbol}; kept apart` } as const);
-      notes.pleaseCheck.push(`${symbol} stands in ${group.length} columns: "${chosen.head}" is taken, "${head}" is kept as "${name}"`);
-    }
-  }
-}
-
-function methodRank(symbol: string, method: string, wanted: string | undefined): number {
-  const { methodPreference } = vocabulary();
-  const key = spellingKey(method).replace(/-/g, '');
-  if (wanted !== undefined && key.includes(spellingKey(wanted).replace(/-/g, ''))) return 0;
-  const order = findAnalyte(symbol)?.kind === 'oxide' ? methodPreference.oxides : methodPreference.resistant.elements.includes(symbol) ? methodPreference.resistant.order : methodPreference.elements;
-  const at = order.findIndex((each) => key.includes(each.toLowerCase()));
-  return 1 + (at < 0 ? order.length : at);
 }
 
 function uniqueLabels(drafts: Draft[]): void {

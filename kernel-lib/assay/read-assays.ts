@@ -34,27 +34,47 @@ export async function readAssays(path: string, options: ReadAssaysOptions = {}):
   checkReadOptions(path, options);
   const opened = await openFile(path, { delimiter: options.delimiter });
   const headerRow = options.headerRow === undefined ? undefined : options.headerRow - 1;
-  const sheets = opened.sheets.map((sheet) => ({ sheet, layout: findLayout(sheet.grid, { samplesIn: options.samplesIn, headerRow, settings: options.columns }) }));
+  const sheets = opened.sheets.map((sheet) => ({
+    sheet,
+    layout: findLayout(sheet.grid, { samplesIn: options.samplesIn, headerRow, settings: options.columns }),
+  }));
   const { read, whole, remarks } = readSheets(opened, sheets, options);
-  const noAnalyte = read.every(({ decoded }) => decoded.imported.every(({ became, name }) => became !== 'analyte' && findAnalyte(name) === undefined));
-  const pleaseCheck = [...(noAnalyte ? ['no column names an analyte'] : []), ...read.flatMap((each) => each.pleaseCheck), ...whole.remarks, ...remarks];
+  const noAnalyte = read.every(({ decoded }) =>
+    decoded.imported.every(({ became, name }) => became !== 'analyte' && findAnalyte(name) === undefined),
+  );
+  const pleaseCheck = [
+    ...(noAnalyte ? ['no column names an analyte'] : []),
+    ...read.flatMap((each) => each.pleaseCheck),
+    ...whole.remarks,
+    ...remarks,
+  ];
   let { columns } = whole;
   let iron: TotalIronCounts | undefined;
   if (options.iron !== 'as-given' && columns.some(({ symbol }) => /^(FeOT|Fe2O3T|FeO|Fe2O3)$/.test(symbol))) {
     const total = totalIron(suiteOf({ columns, labels: whole.labels }));
     iron = total.counts;
     columns = withIron(columns, total.column);
-    if (iron.ferricAlone + iron.ferrousAlone > 0) pleaseCheck.push(`total iron: ${iron.ferricAlone} rows have Fe2O3 alone and ${iron.ferrousAlone} FeO alone, taken as total iron`);
+    if (iron.ferricAlone + iron.ferrousAlone > 0)
+      pleaseCheck.push(`total iron: ${iron.ferricAlone} rows have Fe2O3 alone and ${iron.ferrousAlone} FeO alone, taken as total iron`);
   }
   const first = read[0];
   const inferred = read.flatMap((each) => each.inferred);
   const report = showAs(
     {
-      file: opened.file, sha256: opened.sha256, encoding: opened.encoding ?? '', delimiter: opened.delimiter ?? '', decimal: first.conventions.decimal,
+      file: opened.file,
+      sha256: opened.sha256,
+      encoding: opened.encoding ?? '',
+      delimiter: opened.delimiter ?? '',
+      decimal: first.conventions.decimal,
       sheets: sheets.map(({ sheet, layout }) => ({ name: sheet.name, rows: sheet.grid.rows, columns: sheet.grid.columns, holds: holds(layout) })),
-      sheetsRead: read.map(({ name }) => name), samplesIn: first.layout.samplesIn, rows: whole.labels.get('sample')?.length ?? columns[0].values.length,
-      columns: read.flatMap(({ decoded }) => decoded.imported), ...(iron === undefined ? {} : { iron }), inferred,
-      ignored: read.flatMap((each) => each.ignored), pleaseCheck: [...inferred, ...pleaseCheck],
+      sheetsRead: read.map(({ name }) => name),
+      samplesIn: first.layout.samplesIn,
+      rows: whole.labels.get('sample')?.length ?? columns[0].values.length,
+      columns: read.flatMap(({ decoded }) => decoded.imported),
+      ...(iron === undefined ? {} : { iron }),
+      inferred,
+      ignored: read.flatMap((each) => each.ignored),
+      pleaseCheck: [...inferred, ...pleaseCheck],
     } satisfies ImportReport,
     reportView,
   );
@@ -67,10 +87,29 @@ function lineageStep(report: ImportReport, read: readonly ReadSheet[], options: 
   return step(
     'readAssays',
     {
-      file: report.file, sha256: report.sha256, sheet: report.sheetsRead.join(' + '), encoding: report.encoding, delimiter: report.delimiter, decimal: report.decimal,
-      samplesIn: report.samplesIn, headerRow: read[0].layout.header.analyte + 1, rows: report.rows, negative: read[0].conventions.negative, notDetermined: read[0].conventions.notDetermined,
-      columns: report.columns.map(({ sheet, place, head, became, name, sheetUnit, factor }) => ({ sheet, place, head, became, name, unit: sheetUnit, factor })),
-      inferred: report.inferred, settled: JSON.parse(JSON.stringify(options)) as StepDetail, ...(report.iron === undefined ? {} : { ironFound: { ...report.iron } }),
+      file: report.file,
+      sha256: report.sha256,
+      sheet: report.sheetsRead.join(' + '),
+      encoding: report.encoding,
+      delimiter: report.delimiter,
+      decimal: report.decimal,
+      samplesIn: report.samplesIn,
+      headerRow: read[0].layout.header.analyte + 1,
+      rows: report.rows,
+      negative: read[0].conventions.negative,
+      notDetermined: read[0].conventions.notDetermined,
+      columns: report.columns.map(({ sheet, place, head, became, name, sheetUnit, factor }) => ({
+        sheet,
+        place,
+        head,
+        became,
+        name,
+        unit: sheetUnit,
+        factor,
+      })),
+      inferred: report.inferred,
+      settled: JSON.parse(JSON.stringify(options)) as StepDetail,
+      ...(report.iron === undefined ? {} : { ironFound: { ...report.iron } }),
     },
     {
       tables: ['analyte-spellings.json', 'plausible-ranges.csv', 'atomic-weights.csv'],
@@ -82,13 +121,18 @@ function lineageStep(report: ImportReport, read: readonly ReadSheet[], options: 
 type LaidOut = { readonly sheet: OpenSheet; readonly layout: Layout | undefined };
 
 /** Reads the chosen sheet, and joins the others that hold more of its samples. */
-function readSheets(opened: OpenFile, sheets: readonly LaidOut[], options: ReadAssaysOptions): { read: ReadSheet[]; whole: Joined; remarks: string[] } {
+function readSheets(
+  opened: OpenFile,
+  sheets: readonly LaidOut[],
+  options: ReadAssaysOptions,
+): { read: ReadSheet[]; whole: Joined; remarks: string[] } {
   const sheetOptions = { ...options, columns: options.columns ?? {}, prefer: options.prefer ?? {}, unknown: options.unknown ?? ('labels' as const) };
   const used = new Set<string>();
   const chosen = chooseSheet(opened, sheets, options.sheet);
   const where = whereIs(opened, chosen.sheet);
   const first = readSheet(chosen.sheet, chosen.layout, sheetOptions, where, used);
-  if (chosen.layout.body.length === 0) throw new AssayError(`${where}: there is a head row (row ${chosen.layout.header.analyte + 1}) but no samples below it.`);
+  if (chosen.layout.body.length === 0)
+    throw new AssayError(`${where}: there is a head row (row ${chosen.layout.header.analyte + 1}) but no samples below it.`);
   const read = [first];
   const remarks: string[] = [];
   let whole: Joined = { columns: first.decoded.columns, labels: first.decoded.labels, remarks: [] };
@@ -100,8 +144,10 @@ function readSheets(opened: OpenFile, sheets: readonly LaidOut[], options: ReadA
     }
     const next = readSheet(sheet, layout, sheetOptions, whereIs(opened, sheet), used);
     const names = next.decoded.labels.get('sample');
-    const match = names === undefined || !whole.labels.has('sample') ? { refused: 'it has no sample names' } : matchSamples(whole.labels.get('sample')!, names);
-    if ('refused' in match) remarks.push(`sheet "${sheet.name}" (${holds(layout)}) is not read: ${match.refused}. Read it with { sheet: '${sheet.name}' }`);
+    const match =
+      names === undefined || !whole.labels.has('sample') ? { refused: 'it has no sample names' } : matchSamples(whole.labels.get('sample')!, names);
+    if ('refused' in match)
+      remarks.push(`sheet "${sheet.name}" (${holds(layout)}) is not read: ${match.refused}. Read it with { sheet: '${sheet.name}' }`);
     else {
       whole = joinSheet(whole, next, match);
       read.push(next);
@@ -109,16 +155,23 @@ function readSheets(opened: OpenFile, sheets: readonly LaidOut[], options: ReadA
   }
   const unused = Object.keys(sheetOptions.columns).find((name) => !used.has(name));
   if (unused !== undefined) {
-    throw new AssayError(`${where}: columns: no column is headed "${unused}". The heads are: ${chosen.layout.heads.filter(Boolean).slice(0, 40).join(' | ')}.`);
+    throw new AssayError(
+      `${where}: columns: no column is headed "${unused}". The heads are: ${chosen.layout.heads.filter(Boolean).slice(0, 40).join(' | ')}.`,
+    );
   }
   return { read, whole, remarks };
 }
 
 function chooseSheet(opened: OpenFile, sheets: readonly LaidOut[], wanted: string | undefined): { sheet: OpenSheet; layout: Layout } {
   const readable = sheets.filter(({ layout }) => layout !== undefined && layout.body.length > 0);
-  const found = wanted === undefined ? (readable.find(({ sheet }) => !sheet.hidden) ?? readable[0] ?? sheets.find(({ layout }) => layout !== undefined)) : sheets.find(({ sheet }) => sheet.name === wanted);
+  const found =
+    wanted === undefined
+      ? (readable.find(({ sheet }) => !sheet.hidden) ?? readable[0] ?? sheets.find(({ layout }) => layout !== undefined))
+      : sheets.find(({ sheet }) => sheet.name === wanted);
   if (found === undefined && wanted !== undefined) {
-    throw new AssayError(`${opened.file} has no sheet "${wanted}". Its sheets: ${sheets.map(({ sheet, layout }) => `${sheet.name} (${holds(layout)})`).join(', ')}.`);
+    throw new AssayError(
+      `${opened.file} has no sheet "${wanted}". Its sheets: ${sheets.map(({ sheet, layout }) => `${sheet.name} (${holds(layout)})`).join(', ')}.`,
+    );
   }
   if (found?.layout === undefined) {
     const empty = (found === undefined ? sheets : [found]).every(({ sheet }) => sheet.grid.rows === 0 || sheet.grid.columns === 0);

@@ -26,22 +26,35 @@ export interface ReadAssaysOptions {
 }
 
 const allowed: Readonly<Record<keyof ReadAssaysOptions, readonly unknown[] | undefined>> = {
-  sheet: undefined, columns: undefined, prefer: undefined, headerRow: undefined,
-  unknown: ['labels', 'quantities'], negative: ['below-detection', 'error'], notDetermined: ['missing', 'below-detection'], statedSigmas: [1, 2],
-  decimal: ['.', ','], delimiter: [',', ';', '\t', '|'], samplesIn: ['rows', 'columns'], iron: ['complete', 'as-given'],
+  sheet: undefined,
+  columns: undefined,
+  prefer: undefined,
+  headerRow: undefined,
+  unknown: ['labels', 'quantities'],
+  negative: ['below-detection', 'error'],
+  notDetermined: ['missing', 'below-detection'],
+  statedSigmas: [1, 2],
+  decimal: ['.', ','],
+  delimiter: [',', ';', '\t', '|'],
+  samplesIn: ['rows', 'columns'],
+  iron: ['complete', 'as-given'],
 };
 
 /** @throws RangeError naming the option, what was given and what is allowed */
 export function checkReadOptions(path: unknown, options: ReadAssaysOptions): void {
-  if (typeof path !== 'string' || path === '') throw new RangeError('readAssays: path must be the path of a sheet, as text, e.g. "data/my-island.csv".');
+  if (typeof path !== 'string' || path === '')
+    throw new RangeError('readAssays: path must be the path of a sheet, as text, e.g. "data/my-island.csv".');
   if (typeof options !== 'object' || options === null) throw new RangeError('readAssays: options must be an object, e.g. { sheet: "Majors" }.');
   for (const [name, value] of Object.entries(options)) {
     if (!Object.hasOwn(allowed, name)) throw new RangeError(`readAssays: there is no option "${name}". Options: ${Object.keys(allowed).join(', ')}.`);
     const choices = allowed[name as keyof ReadAssaysOptions];
     if (value !== undefined && choices !== undefined && !choices.includes(value)) {
-      throw new RangeError(`readAssays: ${name} must be ${choices.map((choice) => JSON.stringify(choice)).join(' or ')}, not ${JSON.stringify(value)}.`);
+      throw new RangeError(
+        `readAssays: ${name} must be ${choices.map((choice) => JSON.stringify(choice)).join(' or ')}, not ${JSON.stringify(value)}.`,
+      );
     }
   }
   const { headerRow } = options;
-  if (headerRow !== undefined && !(Number.isInteger(headerRow) && headerRow >= 1)) throw new RangeError(`readAssays: headerRow must be a row number from 1, not ${String(headerRow)}.`);
+  if (headerRow !== undefined && !(Number.isInteger(headerRow) && headerRow >= 1))
+    throw new RangeError(`readAssays: headerRow must be a row number from 1, not ${String(headerRow)}.`);
 }

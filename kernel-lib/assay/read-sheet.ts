@@ -37,8 +37,12 @@ export function readSheet(sheet: OpenSheet, layout: Layout, options: SheetOption
   const inferred = [...notes.inferred];
   if (options.decimal === undefined && decimal === ',') inferred.push('the decimal mark is a comma');
   const said = legend(layout.prose);
-  if (options.negative === undefined && said.negative !== undefined) inferred.push(`negative values are below detection: the sheet says "${said.negative}"`);
-  if (options.notDetermined === undefined && said.notDetermined !== undefined) inferred.push(`n.d. is ${said.notDetermined.means === 'missing' ? 'not determined (missing)' : 'not detected (below detection)'}: the sheet says "${said.notDetermined.words}"`);
+  if (options.negative === undefined && said.negative !== undefined)
+    inferred.push(`negative values are below detection: the sheet says "${said.negative}"`);
+  if (options.notDetermined === undefined && said.notDetermined !== undefined)
+    inferred.push(
+      `n.d. is ${said.notDetermined.means === 'missing' ? 'not determined (missing)' : 'not detected (below detection)'}: the sheet says "${said.notDetermined.words}"`,
+    );
   const conventions: CellConventions = {
     decimal,
     negative: options.negative ?? (said.negative === undefined ? 'error' : 'below-detection'),
@@ -50,10 +54,23 @@ export function readSheet(sheet: OpenSheet, layout: Layout, options: SheetOption
   const skipped = layout.skipped.filter(({ why }) => why !== 'detection limits' && why !== 'upper limits');
   const ignored = [
     ...notes.ignored,
-    ...skipped.slice(0, mostSkippedListed).map(({ row, why, text }) => `${layout.samplesIn === 'rows' ? 'row' : 'column'} ${row + 1}: ${why}${text === '' ? '' : ` ("${text.slice(0, 80)}")`}`),
+    ...skipped
+      .slice(0, mostSkippedListed)
+      .map(
+        ({ row, why, text }) =>
+          `${layout.samplesIn === 'rows' ? 'row' : 'column'} ${row + 1}: ${why}${text === '' ? '' : ` ("${text.slice(0, 80)}")`}`,
+      ),
     ...(skipped.length > mostSkippedListed ? [`${skipped.length - mostSkippedListed} more rows`] : []),
   ];
-  return { name: sheet.name, layout, decoded, conventions, inferred, ignored, pleaseCheck: [...sheet.remarks, ...remarks, ...notes.pleaseCheck, ...nameless(layout, decoded), ...decoded.remarks] };
+  return {
+    name: sheet.name,
+    layout,
+    decoded,
+    conventions,
+    inferred,
+    ignored,
+    pleaseCheck: [...sheet.remarks, ...remarks, ...notes.pleaseCheck, ...nameless(layout, decoded), ...decoded.remarks],
+  };
 }
 
 /** Rows that hold values but no sample name: often half of a row that was broken in two. */
@@ -62,7 +79,14 @@ function nameless({ body, samplesIn }: Layout, { labels, columns }: DecodedSheet
   if (names === undefined) return [];
   const rows = names.flatMap((name, i) => (name === '' && columns.some(({ states }) => states[i] !== cellState.missing) ? [i] : []));
   const one = samplesIn === 'rows' ? 'row' : 'column';
-  return rows.length === 0 ? [] : [`no sample name in ${rows.slice(0, 20).map((i) => `${one} ${body[i] + 1}`).join(', ')}${rows.length > 20 ? ` and ${rows.length - 20} more` : ''}`];
+  return rows.length === 0
+    ? []
+    : [
+        `no sample name in ${rows
+          .slice(0, 20)
+          .map((i) => `${one} ${body[i] + 1}`)
+          .join(', ')}${rows.length > 20 ? ` and ${rows.length - 20} more` : ''}`,
+      ];
 }
 
 /** The decimal mark of the sheet: a comma where cells such as `52,1` outnumber cells such as `52.1`. */
@@ -86,8 +110,14 @@ function legend(prose: readonly string[]): { negative?: string; notDetermined?: 
   let negative: string | undefined;
   let notDetermined: { means: 'missing' | 'below-detection'; words: string } | undefined;
   for (const text of prose) {
-    negative ??= /(negative\s+(values?|numbers?|concentrations?|results?)|(?:^|\s)(?:-|minus)\s*sign).{0,40}?(below|less than|under|<)\s*[\w\s]{0,12}(detection|limit|d\.?l\.?)/i.exec(text)?.[0];
-    const means = /\bn\.?\s?d\.?["']?\s*(?:=|:|–|—|-|,|\bis\b|\bmeans\b|\bdenotes\b)\s*["']?((?:not\s+(?:detected|determined|analy[sz]ed|measured|available))|below\s+(?:the\s+)?(?:limit|detection|d\.?l)|no\s+data)/i.exec(text);
+    negative ??=
+      /(negative\s+(values?|numbers?|concentrations?|results?)|(?:^|\s)(?:-|minus)\s*sign).{0,40}?(below|less than|under|<)\s*[\w\s]{0,12}(detection|limit|d\.?l\.?)/i.exec(
+        text,
+      )?.[0];
+    const means =
+      /\bn\.?\s?d\.?["']?\s*(?:=|:|–|—|-|,|\bis\b|\bmeans\b|\bdenotes\b)\s*["']?((?:not\s+(?:detected|determined|analy[sz]ed|measured|available))|below\s+(?:the\s+)?(?:limit|detection|d\.?l)|no\s+data)/i.exec(
+        text,
+      );
     if (means !== null) notDetermined ??= { means: /detected|below/i.test(means[1]) ? 'below-detection' : 'missing', words: means[0] };
   }
   return { negative, notDetermined };
@@ -112,13 +142,24 @@ function unevenRows(sheet: OpenSheet, layout: Layout, where: string): { withheld
   }
   const misfit = [long, sameWidth(grid, short)].find((rows) => rows.length > 0.8 * layout.body.length && layout.body.length > 1);
   if (misfit !== undefined) {
-    throw new AssayError(`${where}: the head row has ${wanted} cells but the rows below it have ${grid.width(misfit[0])}, so heads do not stand over their columns. Add the missing heads, or check the delimiter and the decimal mark.`);
+    throw new AssayError(
+      `${where}: the head row has ${wanted} cells but the rows below it have ${grid.width(misfit[0])}, so heads do not stand over their columns. Add the missing heads, or check the delimiter and the decimal mark.`,
+    );
   }
   const trimmed = short.length >= 3 && short.length > 0.05 * layout.body.length;
   const rows = new Set([...long, ...(trimmed ? [] : short)]);
-  const remarks = [...rows].sort((a, b) => a - b).slice(0, 20).map((row) => `row ${row + 1} has ${grid.width(row)} cells under ${wanted} heads: its numbers are not taken`);
+  const remarks = [...rows]
+    .sort((a, b) => a - b)
+    .slice(0, 20)
+    .map((row) => `row ${row + 1} has ${grid.width(row)} cells under ${wanted} heads: its numbers are not taken`);
   if (rows.size > 20) remarks.push(`${rows.size - 20} more rows have too many or too few cells: their numbers are not taken`);
-  if (trimmed) remarks.push(`${short.length} rows end before the last head: taken as empty cells left off (rows ${short.slice(0, 20).map((row) => row + 1).join(', ')}${short.length > 20 ? ' …' : ''})`);
+  if (trimmed)
+    remarks.push(
+      `${short.length} rows end before the last head: taken as empty cells left off (rows ${short
+        .slice(0, 20)
+        .map((row) => row + 1)
+        .join(', ')}${short.length > 20 ? ' …' : ''})`,
+    );
   return { withheld: { rows, columns: new Set() }, remarks };
 }
 

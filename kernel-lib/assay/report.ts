@@ -63,7 +63,9 @@ export function reportView(report: ImportReport): TableView {
     `${report.file}${report.sheetsRead.filter(Boolean).length > 0 ? `, sheet ${report.sheetsRead.join(' + ')}` : ''}: ${report.rows} samples, which stand in ${report.samplesIn}. SHA-256 ${report.sha256.slice(0, 12)}…`,
     ...(iron === undefined
       ? []
-      : [`Total iron: ${iron.reportedTotal} rows as reported, ${iron.summed} FeO + Fe2O3 summed, ${iron.ferricAlone} Fe2O3 alone taken as total, ${iron.ferrousAlone} FeO alone taken as total, ${iron.none} without.`]),
+      : [
+          `Total iron: ${iron.reportedTotal} rows as reported, ${iron.summed} FeO + Fe2O3 summed, ${iron.ferricAlone} Fe2O3 alone taken as total, ${iron.ferrousAlone} FeO alone taken as total, ${iron.none} without.`,
+        ]),
     ...report.ignored.map((text) => `Left out: ${text}`),
     ...report.pleaseCheck.map((text) => `Please check: ${text}`),
   ];
@@ -78,7 +80,9 @@ export function reportView(report: ImportReport): TableView {
       each.name,
       each.unit,
       each.factor === 1 ? '' : `${each.sheetUnit} × ${each.factor}`,
-      ...(each.became === 'analyte' || each.became === 'quantity' ? [each.measured, each.below, each.above, each.missing, each.unreadable] : [null, null, null, null, null]),
+      ...(each.became === 'analyte' || each.became === 'quantity'
+        ? [each.measured, each.below, each.above, each.missing, each.unreadable]
+        : [null, null, null, null, null]),
       [each.note, ...each.unreadableCells.slice(0, 5).map(({ address, text }) => `${address} "${text}"`)].filter(Boolean).join('; '),
     ]),
     notes,

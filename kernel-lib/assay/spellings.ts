@@ -11,7 +11,12 @@ const schema = z.strictObject({
   elementNames: z.record(z.string(), z.string()),
   units: z.array(z.strictObject({ unit: z.string(), factor: z.number(), spellings: words })),
   methods: words,
-  methodPreference: z.strictObject({ about: z.string(), oxides: words, resistant: z.strictObject({ elements: words, order: words }), elements: words }),
+  methodPreference: z.strictObject({
+    about: z.string(),
+    oxides: words,
+    resistant: z.strictObject({ elements: words, order: words }),
+    elements: words,
+  }),
   labels: z.record(z.string(), words),
   quantities: z.record(z.string(), z.strictObject({ unit: z.string(), limit: z.number(), negative: z.string(), spellings: words })),
   uncertainty: z.array(z.strictObject({ sigmas: z.number(), spellings: words })),
@@ -21,7 +26,9 @@ const schema = z.strictObject({
 
 /** A header or cell text as it is compared: plain digits, one form of each sign, no case, blanks, underscores or full stops. */
 export function spellingKey(text: string): string {
-  return plainSigns(text).toLowerCase().replace(/[\s_.]+/g, '');
+  return plainSigns(text)
+    .toLowerCase()
+    .replace(/[\s_.]+/g, '');
 }
 
 /** Text with subscripts and superscripts as plain digits, one minus, one micro sign, single blanks, no invisible characters. */
@@ -42,6 +49,13 @@ export interface SpelledUnit {
   readonly factor: number;
 }
 
+/** Methods in order of preference, for oxides, for elements held in resistant minerals, and for other elements. */
+export interface MethodPreference {
+  readonly oxides: readonly string[];
+  readonly resistant: { readonly elements: readonly string[]; readonly order: readonly string[] };
+  readonly elements: readonly string[];
+}
+
 /** The vocabulary of headers and cells, by spelling key. */
 export interface Vocabulary {
   readonly analytes: ReadonlyMap<string, string>;
@@ -55,7 +69,7 @@ export interface Vocabulary {
   readonly headerRows: ReadonlyMap<string, 'unit' | 'method' | 'limit' | 'upperLimit' | 'analyte'>;
   readonly cells: ReadonlyMap<string, 'missing' | 'below' | 'above' | 'ambiguous'>;
   readonly sentinels: ReadonlySet<number>;
-  readonly methodPreference: z.infer<typeof schema>['methodPreference'];
+  readonly methodPreference: MethodPreference;
 }
 
 /** Single letters and words that stand for an element only when written exactly so. */
@@ -71,18 +85,23 @@ export const vocabulary = once((): Vocabulary => {
   const units = new Map<string, SpelledUnit>();
   for (const { unit, factor, spellings } of table.units) for (const spelling of spellings) units.set(spellingKey(spelling), { unit, factor });
   const labels = new Map<string, { label: string; rank: number }>();
-  for (const [label, spellings] of Object.entries(table.labels)) spellings.forEach((spelling, rank) => labels.set(spellingKey(spelling), { label, rank }));
+  for (const [label, spellings] of Object.entries(table.labels))
+    spellings.forEach((spelling, rank) => labels.set(spellingKey(spelling), { label, rank }));
   const quantities = new Map<string, { symbol: string; unit: string; limit: number; negated: boolean }>();
   for (const [symbol, { unit, limit, negative, spellings }] of Object.entries(table.quantities)) {
     for (const spelling of spellings) {
       quantities.set(spellingKey(spelling), { symbol, unit, limit, negated: new RegExp(`(^|[^a-z])${negative}\\)?$`, 'i').test(spelling) });
     }
   }
-  const uncertainty = new Map(table.uncertainty.flatMap(({ sigmas, spellings }) => spellings.map((spelling): [string, number] => [spellingKey(spelling), sigmas])));
+  const uncertainty = new Map(
+    table.uncertainty.flatMap(({ sigmas, spellings }) => spellings.map((spelling): [string, number] => [spellingKey(spelling), sigmas])),
+  );
   const headerRows = new Map<string, 'unit' | 'method' | 'limit' | 'upperLimit' | 'analyte'>();
-  for (const [kind, spellings] of Object.entries(table.headerRows)) for (const spelling of spellings) headerRows.set(spellingKey(spelling), kind as 'unit');
+  for (const [kind, spellings] of Object.entries(table.headerRows))
+    for (const spelling of spellings) headerRows.set(spellingKey(spelling), kind as 'unit');
   const cells = new Map<string, 'missing' | 'below' | 'above' | 'ambiguous'>();
-  for (const kind of ['missing', 'below', 'above', 'ambiguous'] as const) for (const spelling of table.cells[kind]) cells.set(cellKey(spelling), kind);
+  for (const kind of ['missing', 'below', 'above', 'ambiguous'] as const)
+    for (const spelling of table.cells[kind]) cells.set(cellKey(spelling), kind);
   return {
     analytes,
     exactOnly: new Set(alsoWords.map(spellingKey)),
@@ -109,9 +128,17 @@ export interface PlausibleRange {
   readonly high: number;
 }
 
-const rangeRow = z.strictObject({ analyte: field.text, low: field.number, high: field.number, unit: field.text, note: field.optionalText, standing: field.standing });
+const rangeRow = z.strictObject({
+  analyte: field.text,
+  low: field.number,
+  high: field.number,
+  unit: field.text,
+  note: field.optionalText,
+  standing: field.standing,
+});
 
 /** @internal Plausible ranges by analyte (reference-tables/plausible-ranges.csv): only ever used to rule a unit out. */
 export const plausibleRanges = once(
-  (): ReadonlyMap<string, PlausibleRange> => new Map(readCsvTable('plausible-ranges.csv', rangeRow).map(({ analyte, low, high }) => [analyte, { low, high }])),
+  (): ReadonlyMap<string, PlausibleRange> =>
+    new Map(readCsvTable('plausible-ranges.csv', rangeRow).map(({ analyte, low, high }) => [analyte, { low, high }])),
 );

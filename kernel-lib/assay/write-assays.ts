@@ -40,7 +40,15 @@ function tagged(name: string, unit: string, tag: 'text' | 'number' | 'state' | '
 }
 
 function labelPart(name: string, texts: readonly string[]): SheetPart {
-  const plain = name === 'sample' || name === 'volcano' || (name.trim() === name && name !== '' && !/\s\s|[\t\r\n]/.test(name) && readHeading(name).role === 'unknown' && readHeading(name, true).role === 'unknown' && !ownTag.test(name));
+  const plain =
+    name === 'sample' ||
+    name === 'volcano' ||
+    (name.trim() === name &&
+      name !== '' &&
+      !/\s\s|[\t\r\n]/.test(name) &&
+      readHeading(name).role === 'unknown' &&
+      readHeading(name, true).role === 'unknown' &&
+      !ownTag.test(name));
   return { head: plain ? name : tagged(name, '', 'text'), numbers: false, cell: (row) => escapeSpreadsheet(texts[row]) };
 }
 
@@ -64,8 +72,10 @@ function columnParts(column: Column): SheetPart[] {
       },
     },
   ];
-  if (states.includes(cellState.derived)) parts.push({ head: tagged(symbol, unit, 'state'), numbers: false, cell: (row) => (states[row] === cellState.derived ? 'derived' : '') });
-  if (sigma !== undefined) parts.push({ head: tagged(symbol, unit, '1 sigma'), numbers: true, cell: (row) => (Number.isNaN(sigma[row]) ? '' : sigma[row]) });
+  if (states.includes(cellState.derived))
+    parts.push({ head: tagged(symbol, unit, 'state'), numbers: false, cell: (row) => (states[row] === cellState.derived ? 'derived' : '') });
+  if (sigma !== undefined)
+    parts.push({ head: tagged(symbol, unit, '1 sigma'), numbers: true, cell: (row) => (Number.isNaN(sigma[row]) ? '' : sigma[row]) });
   return parts;
 }
 
@@ -104,10 +114,12 @@ function workbookBytes(size: number, parts: readonly SheetPart[], bare: Uint8Arr
   const firstNumber = parts.findIndex(({ numbers }) => numbers);
   const rows: (string | number | null)[][] = [parts.map(({ head }) => escapeSpreadsheet(head))];
   for (let row = 0; row < size; row++) {
-    rows.push(parts.map((part, j) => {
-      const cell = rowCell(part, row, bare, j === firstNumber);
-      return cell === '' ? null : cell;
-    }));
+    rows.push(
+      parts.map((part, j) => {
+        const cell = rowCell(part, row, bare, j === firstNumber);
+        return cell === '' ? null : cell;
+      }),
+    );
   }
   const book = sheets.utils.book_new();
   sheets.utils.book_append_sheet(book, sheets.utils.aoa_to_sheet(rows), 'assays');

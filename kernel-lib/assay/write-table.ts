@@ -26,7 +26,8 @@ const newline = 0x0a;
  * @example await writeTable('results.csv', [dry.column('SiO2')], { sample: dry.samples })
  */
 export async function writeTable(path: string, columns: readonly TableColumn[], labels: TableLabels = {}): Promise<void> {
-  const texts: [string, readonly string[]][] = labels instanceof Map ? [...labels] : Object.entries(labels as Readonly<Record<string, readonly string[]>>);
+  const texts: [string, readonly string[]][] =
+    labels instanceof Map ? [...labels] : Object.entries(labels as Readonly<Record<string, readonly string[]>>);
   const numbers = columns.map((each): [string, ArrayLike<number>] => ['symbol' in each ? each.symbol : each.name, each.values]);
   const size = checkedSize([...texts, ...numbers]);
   const sink = new ByteSink(path);
@@ -69,7 +70,8 @@ function checkedSize(all: readonly (readonly [string, ArrayLike<unknown>])[]): n
   for (const [name, { length }] of all) {
     if (names.has(name)) throw new RangeError(`writeTable: two columns are named "${name}"; give each its own name.`);
     names.add(name);
-    if (length !== all[0][1].length) throw new RangeError(`writeTable: "${name}" has ${length} rows, "${all[0][0]}" has ${all[0][1].length}; all must agree.`);
+    if (length !== all[0][1].length)
+      throw new RangeError(`writeTable: "${name}" has ${length} rows, "${all[0][0]}" has ${all[0][1].length}; all must agree.`);
   }
   return all[0]?.[1].length ?? 0;
 }

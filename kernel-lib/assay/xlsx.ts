@@ -46,7 +46,8 @@ export function readXlsx(parts: ZipParts, file: string): OpenSheet[] {
     if (!xml.includes('<sheetData')) continue;
     const sheet = readCells(xml, { strings, formats, date1904, file, name: attributes.name ?? '' });
     cells += sheet.cells;
-    if (cells > sizeLimits.workbookCells) throw new AssayError(`${file} has more than ${sizeLimits.workbookCells / 1e6} million cells. Export the sheet as .csv.`);
+    if (cells > sizeLimits.workbookCells)
+      throw new AssayError(`${file} has more than ${sizeLimits.workbookCells / 1e6} million cells. Export the sheet as .csv.`);
     spreadMerges(sheet.rows, mergesOf(xml));
     const remarks = sheet.remarks;
     if (links) remarks.push('the workbook links to other files: links are not followed, the saved values are used');
@@ -125,7 +126,8 @@ function readCells(xml: string, context: CellContext): { rows: RawCell[][]; cell
       const close = xml.indexOf('>', at);
       const number = /\br="(\d+)"/.exec(xml.slice(at, close));
       row = number === null ? row + 1 : Number(number[1]) - 1;
-      if (row > 1_048_575) throw new AssayError(`${context.file}, sheet "${context.name}": row ${row + 1} is beyond what a sheet can have. The file is damaged.`);
+      if (row > 1_048_575)
+        throw new AssayError(`${context.file}, sheet "${context.name}": row ${row + 1} is beyond what a sheet can have. The file is damaged.`);
       column = 0;
       at = close;
     } else if (second === 0x63 && (third === 0x20 || third === 0x3e || third === 0x2f)) {
@@ -135,7 +137,10 @@ function readCells(xml: string, context: CellContext): { rows: RawCell[][]; cell
       const tag = xml.slice(at + 2, close);
       const place = addressColumn(tag);
       if (place >= 0) column = place;
-      if (column >= sizeLimits.columns) throw new AssayError(`${context.file}, sheet "${context.name}": row ${row + 1} has more than ${sizeLimits.columns} columns; no assay sheet has.`);
+      if (column >= sizeLimits.columns)
+        throw new AssayError(
+          `${context.file}, sheet "${context.name}": row ${row + 1} has more than ${sizeLimits.columns} columns; no assay sheet has.`,
+        );
       let value: RawCell;
       if (xml.charCodeAt(close - 1) === 0x2f) at = close;
       else {
@@ -153,7 +158,10 @@ function readCells(xml: string, context: CellContext): { rows: RawCell[][]; cell
   }
   for (let i = 0; i < rows.length; i++) rows[i] ??= [];
   const remarks: string[] = [];
-  if (seen.formulas > 0) remarks.push(`${seen.formulas} cells hold formulas: their saved values are used${seen.unsaved > 0 ? `, ${seen.unsaved} have none and are missing` : ''}`);
+  if (seen.formulas > 0)
+    remarks.push(
+      `${seen.formulas} cells hold formulas: their saved values are used${seen.unsaved > 0 ? `, ${seen.unsaved} have none and are missing` : ''}`,
+    );
   if (seen.percent > 0) remarks.push(`${seen.percent} cells are shown as percentages: taken as shown (0.52 shown as 52 % is 52)`);
   if (seen.dates > 0) remarks.push(`${seen.dates} cells are dates; sample names and values can be turned into dates by a spreadsheet program`);
   return { rows, cells, remarks };
@@ -173,7 +181,12 @@ function addressColumn(tag: string): number {
   return column - 1;
 }
 
-function cellValue(tag: string, inside: string, context: CellContext, seen: { formulas: number; unsaved: number; percent: number; dates: number }): RawCell {
+function cellValue(
+  tag: string,
+  inside: string,
+  context: CellContext,
+  seen: { formulas: number; unsaved: number; percent: number; dates: number },
+): RawCell {
   const start = inside.indexOf('<v');
   let raw: string | undefined;
   if (start >= 0) {
@@ -225,7 +238,12 @@ function cellValue(tag: string, inside: string, context: CellContext, seen: { fo
 function dateText(days: number, date1904: boolean): string {
   const time = Date.UTC(date1904 ? 1904 : 1899, date1904 ? 0 : 11, date1904 ? 1 : 30) + Math.round(days * 86_400_000);
   const date = new Date(time);
-  return Number.isNaN(date.getTime()) ? String(days) : date.toISOString().replace(/T00:00:00\.000Z$/, '').replace(/\.000Z$/, '');
+  return Number.isNaN(date.getTime())
+    ? String(days)
+    : date
+        .toISOString()
+        .replace(/T00:00:00\.000Z$/, '')
+        .replace(/\.000Z$/, '');
 }
 
 function mergesOf(xml: string): Merge[] {

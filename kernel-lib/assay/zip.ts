@@ -18,12 +18,17 @@ export class ZipParts {
   private readonly parts: ReadonlyMap<string, ZipPart>;
 
   /** @throws AssayError for something that is not a whole zip file, is encrypted, or is too large unpacked */
-  constructor(private readonly bytes: Buffer, private readonly file: string) {
+  constructor(
+    private readonly bytes: Buffer,
+    private readonly file: string,
+  ) {
     this.parts = readDirectory(bytes, file);
     let unpacked = 0;
     for (const part of this.parts.values()) unpacked += part.unpacked;
     if (unpacked > sizeLimits.unpackedBytes || (unpacked > 20_000_000 && unpacked > sizeLimits.unpackedRatio * bytes.length)) {
-      throw new AssayError(`${file} would unpack from ${megabytes(bytes.length)} to ${megabytes(unpacked)}, which no assay sheet does. It is not opened; export the sheet as .csv.`);
+      throw new AssayError(
+        `${file} would unpack from ${megabytes(bytes.length)} to ${megabytes(unpacked)}, which no assay sheet does. It is not opened; export the sheet as .csv.`,
+      );
     }
   }
 
@@ -69,7 +74,8 @@ function readDirectory(bytes: Buffer, file: string): Map<string, ZipPart> {
   }
   if (end < 0) throw damaged();
   const count = bytes.readUInt16LE(end + 10);
-  if (count > sizeLimits.parts) throw new AssayError(`${file} has ${count} parts, which no assay workbook has. It is not opened; export the sheet as .csv.`);
+  if (count > sizeLimits.parts)
+    throw new AssayError(`${file} has ${count} parts, which no assay workbook has. It is not opened; export the sheet as .csv.`);
   let at = bytes.readUInt32LE(end + 16);
   const parts = new Map<string, ZipPart>();
   for (let i = 0; i < count; i++) {
@@ -77,7 +83,12 @@ function readDirectory(bytes: Buffer, file: string): Map<string, ZipPart> {
     if ((bytes.readUInt16LE(at + 8) & 1) !== 0) throw new AssayError(`${file} is protected by a password. Save a copy without one.`);
     const nameLength = bytes.readUInt16LE(at + 28);
     const name = bytes.toString('utf8', at + 46, at + 46 + nameLength);
-    parts.set(name.replace(/^\//, ''), { method: bytes.readUInt16LE(at + 10), packed: bytes.readUInt32LE(at + 20), unpacked: bytes.readUInt32LE(at + 24), offset: bytes.readUInt32LE(at + 42) });
+    parts.set(name.replace(/^\//, ''), {
+      method: bytes.readUInt16LE(at + 10),
+      packed: bytes.readUInt32LE(at + 20),
+      unpacked: bytes.readUInt32LE(at + 24),
+      offset: bytes.readUInt32LE(at + 42),
+    });
     at += 46 + nameLength + bytes.readUInt16LE(at + 30) + bytes.readUInt16LE(at + 32);
   }
   return parts;

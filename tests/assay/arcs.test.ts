@@ -39,7 +39,9 @@ describe.each(['kurile-arc.csv', 'aeolian-arc.csv', 'luzon-arc.csv', 'vanuatu-ar
       expect(entry.measured + entry.below + entry.above + entry.missing + entry.unreadable).toBe(rows.length);
     });
     expect(numbers).toBe([...suite.columns.values()].reduce((sum, each) => sum + countStates(each)[cellState.measured], 0));
-    expect(heads.filter((head) => findAnalyte(head.split(' (')[0]) !== undefined).length).toBe([...suite.columns.keys()].filter((symbol) => findAnalyte(symbol) !== undefined).length);
+    expect(heads.filter((head) => findAnalyte(head.split(' (')[0]) !== undefined).length).toBe(
+      [...suite.columns.keys()].filter((symbol) => findAnalyte(symbol) !== undefined).length,
+    );
   });
 
   it('completes total iron row by row and counts how', async () => {
@@ -73,7 +75,11 @@ describe('hypocentres-2015-12.csv', () => {
 
   it('imports exactly when told what its columns are', async () => {
     const { heads, rows } = cellsOf('hypocentres-2015-12.csv');
-    const { suite } = await readAssays(path, { headerRow: 1, unknown: 'quantities', columns: { depth: { quantity: 'depth', unit: 'km' }, mag: { quantity: 'magnitude' }, id: { label: 'sample' } } });
+    const { suite } = await readAssays(path, {
+      headerRow: 1,
+      unknown: 'quantities',
+      columns: { depth: { quantity: 'depth', unit: 'km' }, mag: { quantity: 'magnitude' }, id: { label: 'sample' } },
+    });
     expect(suite.size).toBe(rows.length);
     expect(suite.column('depth').unit).toBe('km');
     const numbers = (head: string) => rows.map((row) => (row[heads.indexOf(head)] === '' ? NaN : Number(row[heads.indexOf(head)])));

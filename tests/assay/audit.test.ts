@@ -3,10 +3,36 @@ import { audit, cellState, column, precisionLine, rockMaterial, rockMaterialName
 
 const normals = (seed: number): (() => number) => seededRandom(seed, 'tests').normal;
 
-const analytes = ['SiO2', 'TiO2', 'Al2O3', 'Fe2O3T', 'MnO', 'MgO', 'CaO', 'Na2O', 'K2O', 'P2O5', 'Rb', 'Sr', 'Y', 'Zr', 'Nb', 'Ba', 'La', 'Ce', 'Nd', 'Sm', 'Yb', 'Th'];
+const analytes = [
+  'SiO2',
+  'TiO2',
+  'Al2O3',
+  'Fe2O3T',
+  'MnO',
+  'MgO',
+  'CaO',
+  'Na2O',
+  'K2O',
+  'P2O5',
+  'Rb',
+  'Sr',
+  'Y',
+  'Zr',
+  'Nb',
+  'Ba',
+  'La',
+  'Ce',
+  'Nd',
+  'Sm',
+  'Yb',
+  'Th',
+];
 
 /** A batch: runs of a reference material among invented samples; `bias` by analyte, 1 % noise. */
-function batch(options: { runs: number; samples: number; bias?: Readonly<Record<string, number>>; noise?: number; seed?: number }): { names: string[]; rows: number[][] } {
+function batch(options: { runs: number; samples: number; bias?: Readonly<Record<string, number>>; noise?: number; seed?: number }): {
+  names: string[];
+  rows: number[][];
+} {
   const normal = normals(options.seed ?? 11);
   const certified = rockMaterial('BHVO-2').values;
   const names: string[] = [];
@@ -15,11 +41,13 @@ function batch(options: { runs: number; samples: number; bias?: Readonly<Record<
   for (let i = 0; i < total; i++) {
     const isRun = i % Math.floor(total / options.runs) === 0 && names.filter((name) => name.startsWith('BHVO')).length < options.runs;
     names.push(isRun ? (i === 0 ? 'BHVO2 std' : `BHVO-2 #${i}`) : `KE-${i}`);
-    const scale = 0.6 + 0.9 * ((i * 7) % 10) / 10;
-    rows.push(analytes.map((symbol, j) => {
-      const truth = isRun ? certified.get(symbol)!.value : certified.get(symbol)!.value * (symbol === 'SiO2' ? 1.1 : scale * (1 + 0.05 * (j % 3)));
-      return truth * (1 + (options.bias?.[symbol] ?? 0)) * (1 + (options.noise ?? 0.01) * normal());
-    }));
+    const scale = 0.6 + (0.9 * ((i * 7) % 10)) / 10;
+    rows.push(
+      analytes.map((symbol, j) => {
+        const truth = isRun ? certified.get(symbol)!.value : certified.get(symbol)!.value * (symbol === 'SiO2' ? 1.1 : scale * (1 + 0.05 * (j % 3)));
+        return truth * (1 + (options.bias?.[symbol] ?? 0)) * (1 + (options.noise ?? 0.01) * normal());
+      }),
+    );
   }
   return { names, rows };
 }
@@ -50,7 +78,12 @@ describe('reference materials', () => {
     expect(verdicts.get('Zr')!.bias).toBeCloseTo(3, 0);
     expect(verdicts.get('Ba')).toMatchObject({ verdict: 'biased' });
     expect(verdicts.get('Ba')!.bias).toBeCloseTo(-3, 0);
-    expect(checked.accuracy.filter(({ verdict }) => verdict === 'biased').map(({ analyte }) => analyte).sort()).toEqual(['Ba', 'Zr']);
+    expect(
+      checked.accuracy
+        .filter(({ verdict }) => verdict === 'biased')
+        .map(({ analyte }) => analyte)
+        .sort(),
+    ).toEqual(['Ba', 'Zr']);
   });
 
   it('gives recovery and z-score against the certified value and its 1σ', () => {
@@ -133,7 +166,10 @@ describe('duplicates', () => {
 
   it('pools the precision of pairs by hand calculation', () => {
     // s² of a pair is d²/2; relative to the mean: (2/√2/101)² and (6/√2/203)², pooled over two degrees of freedom
-    const suite = suiteOf({ columns: [column({ symbol: 'Ba', values: [100, 102, 200, 206, 50] })], labels: { sample: ['A', 'A', 'B', 'B dup', 'C'] } });
+    const suite = suiteOf({
+      columns: [column({ symbol: 'Ba', values: [100, 102, 200, 206, 50] })],
+      labels: { sample: ['A', 'A', 'B', 'B dup', 'C'] },
+    });
     const [ba] = audit(suite).duplicates;
     const byHand = 100 * Math.sqrt(((2 / Math.SQRT2 / 101) ** 2 + (6 / Math.SQRT2 / 203) ** 2) / 2);
     expect(ba).toMatchObject({ groups: 2, degreesOfFreedom: 2 });
@@ -153,7 +189,10 @@ describe('uncertainty of the columns', () => {
     expect(named(checked, 'Cs')).toMatchObject({ from: 'stated by the user', typical: 0.06 });
     expect(named(checked, 'W').from).toBe('none');
     expect(checked.suite.column('W').sigma).toBeUndefined();
-    const twice = { names: [...made.names, 'KE-1', 'KE-2', 'KE-4'], rows: [...made.rows, ...[1, 2, 4].map((row) => made.rows[row].map((value) => value * 1.02))] };
+    const twice = {
+      names: [...made.names, 'KE-1', 'KE-2', 'KE-4'],
+      rows: [...made.rows, ...[1, 2, 4].map((row) => made.rows[row].map((value) => value * 1.02))],
+    };
     expect(named(audit(suiteFrom(twice)), 'Zr').from).toBe('duplicates');
   });
 
@@ -173,7 +212,11 @@ describe('uncertainty of the columns', () => {
 
 describe('totals and blanks', () => {
   const lava = { SiO2: 55, TiO2: 0.8, Al2O3: 17, Fe2O3T: 8, MnO: 0.15, MgO: 4.5, CaO: 8, Na2O: 3.3, K2O: 1.2, P2O5: 0.2 };
-  const oneRow = (more: Record<string, number>) => suiteOf({ columns: Object.entries({ ...lava, ...more }).map(([symbol, value]) => column({ symbol, values: [value] })), labels: { sample: ['A'] } });
+  const oneRow = (more: Record<string, number>) =>
+    suiteOf({
+      columns: Object.entries({ ...lava, ...more }).map(([symbol, value]) => column({ symbol, values: [value] })),
+      labels: { sample: ['A'] },
+    });
 
   it('sums oxides with iron as reported, with LOI, and with the oxygen of F and Cl taken off', () => {
     const sum = 98.15;
@@ -193,16 +236,40 @@ describe('totals and blanks', () => {
   });
 
   it('takes mean + 3 s of the blanks as detection limit', () => {
-    const suite = suiteOf({ columns: [column({ symbol: 'Zn', values: [1, 2, 3, 4, 90] })], labels: { sample: ['blank', 'Blank-2', 'procedural blank 3', 'A', 'B'] } });
+    const suite = suiteOf({
+      columns: [column({ symbol: 'Zn', values: [1, 2, 3, 4, 90] })],
+      labels: { sample: ['blank', 'Blank-2', 'procedural blank 3', 'A', 'B'] },
+    });
     expect(audit(suite).blanks).toEqual([{ analyte: 'Zn', blanks: 3, mean: 2, limit: 5, samplesBelow: 1 }]);
   });
 });
 
 describe('alteration', () => {
-  const fresh: Record<string, number> = { SiO2: 55, TiO2: 0.8, Al2O3: 17, Fe2O3T: 8, MnO: 0.15, MgO: 4.5, CaO: 8, Na2O: 3.3, K2O: 1.2, P2O5: 0.2, LOI: 0.8, La: 10, Ce: 23, Pr: 3.1, Nd: 13 };
+  const fresh: Record<string, number> = {
+    SiO2: 55,
+    TiO2: 0.8,
+    Al2O3: 17,
+    Fe2O3T: 8,
+    MnO: 0.15,
+    MgO: 4.5,
+    CaO: 8,
+    Na2O: 3.3,
+    K2O: 1.2,
+    P2O5: 0.2,
+    LOI: 0.8,
+    La: 10,
+    Ce: 23,
+    Pr: 3.1,
+    Nd: 13,
+  };
   const many = (changes: Record<string, number>[], more: Column[] = []) =>
     suiteOf({
-      columns: [...Object.keys({ ...fresh, ...Object.assign({}, ...changes) }).map((symbol) => column({ symbol, values: changes.map((change) => change[symbol] ?? fresh[symbol] ?? NaN) })), ...more],
+      columns: [
+        ...Object.keys({ ...fresh, ...Object.assign({}, ...changes) }).map((symbol) =>
+          column({ symbol, values: changes.map((change) => change[symbol] ?? fresh[symbol] ?? NaN) }),
+        ),
+        ...more,
+      ],
       labels: { sample: changes.map((_, i) => `S-${i + 1}`) },
     });
 
@@ -255,8 +322,12 @@ describe('alteration', () => {
 describe('bad input', () => {
   const suite = suiteOf({ columns: [column({ symbol: 'Ba', values: [1, 2] })], labels: { sample: ['A', 'B'] } });
   it.each([
-    [{ keep: 'some' }, /keep must be/], [{ tolerance: -1 }, /tolerance/], [{ duplicates: 'batch' }, /no label "batch"/], [{ sigma: { Xx: { percent: 3 } } }, /no column "Xx"/],
-    [{ sigma: { Ba: { percent: 0 } } }, /above 0/], [{ certificate: {} }, /no option "certificate"/],
+    [{ keep: 'some' }, /keep must be/],
+    [{ tolerance: -1 }, /tolerance/],
+    [{ duplicates: 'batch' }, /no label "batch"/],
+    [{ sigma: { Xx: { percent: 3 } } }, /no column "Xx"/],
+    [{ sigma: { Ba: { percent: 0 } } }, /above 0/],
+    [{ certificate: {} }, /no option "certificate"/],
   ])('%j is refused in words', (options, message) => {
     expect(() => audit(suite, options as never)).toThrow(message);
   });

@@ -14,7 +14,12 @@ function ofCells(cells: readonly (number | string)[]): Suite {
 describe('substitute', () => {
   const suite = ofCells(['<0.4', 2, 3]);
 
-  it.each([['half-limit', 0.2], ['limit', 0.4], ['zero', 0], ['limit-over-root-two', 0.4 / Math.SQRT2]] as const)('by %s gives %d, derived, with its limit and in the lineage', (rule, value) => {
+  it.each([
+    ['half-limit', 0.2],
+    ['limit', 0.4],
+    ['zero', 0],
+    ['limit-over-root-two', 0.4 / Math.SQRT2],
+  ] as const)('by %s gives %d, derived, with its limit and in the lineage', (rule, value) => {
     const { columns, lineage } = substitute(suite, ['Ta'], rule);
     const ta = columns.get('Ta')!;
     expect(ta.values[0]).toBeCloseTo(value, 12);
@@ -41,20 +46,31 @@ describe('Kaplan–Meier', () => {
   it('agrees with the product-limit estimate worked by hand', () => {
     // From the top: 8 of 6 at risk → 5/6; 5 of 5 → 4/6; <4 drops out; 3 of 3 at risk → 2/3·(1 − 1/3) = 4/9; 2 of 2 → 2/9; <1 remains.
     const summary = censoredSummary(ofCells([8, 5, '<4', 3, 2, '<1']), 'Ta', 'kaplan-meier');
-    const weights = [[8, 1 / 6], [5, 1 / 6], [3, 2 / 9], [2, 2 / 9], [1, 2 / 9]];
-    expect(summary.mean).toBeCloseTo(weights.reduce((sum, [value, weight]) => sum + value * weight, 0), 12);
+    const weights = [
+      [8, 1 / 6],
+      [5, 1 / 6],
+      [3, 2 / 9],
+      [2, 2 / 9],
+      [1, 2 / 9],
+    ];
+    expect(summary.mean).toBeCloseTo(
+      weights.reduce((sum, [value, weight]) => sum + value * weight, 0),
+      12,
+    );
     expect(summary.median).toBe(3);
     expect(summary).toMatchObject({ n: 6, below: 2 });
     expect(summary.note).toContain('22 %');
   });
 
   it('is the ordinary mean where nothing is below detection', () => {
-    fc.assert(fc.property(fc.array(fc.double({ min: 0.1, max: 100, noNaN: true }), { minLength: 3, maxLength: 30 }), (values) => {
-      const mean = values.reduce((sum, value) => sum + value, 0) / values.length;
-      const { mean: found, standardDeviation } = censoredSummary(ofCells(values), 'Ta');
-      expect(found).toBeCloseTo(mean, 8);
-      expect(standardDeviation).toBeCloseTo(Math.sqrt(values.reduce((sum, value) => sum + (value - mean) ** 2, 0) / (values.length - 1)), 6);
-    }));
+    fc.assert(
+      fc.property(fc.array(fc.double({ min: 0.1, max: 100, noNaN: true }), { minLength: 3, maxLength: 30 }), (values) => {
+        const mean = values.reduce((sum, value) => sum + value, 0) / values.length;
+        const { mean: found, standardDeviation } = censoredSummary(ofCells(values), 'Ta');
+        expect(found).toBeCloseTo(mean, 8);
+        expect(standardDeviation).toBeCloseTo(Math.sqrt(values.reduce((sum, value) => sum + (value - mean) ** 2, 0) / (values.length - 1)), 6);
+      }),
+    );
   });
 });
 

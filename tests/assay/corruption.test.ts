@@ -11,7 +11,14 @@ const sampleNames = Array.from({ length: 9 }, (_, i) => `KE-${101 + i}`);
 
 /** Every number of the sheet stands in it once, so that a number tells where it came from. */
 const number = (row: number, column: number) => `${[0, 0, 50, 5, 200, 400, 1, 2][column]}.${row + 1}${column}7`;
-const original = [heads, ...sampleNames.map((name, row) => [name, row === 4 ? '"tuff, grey"' : 'lava', ...[2, 3, 4, 5, 6, 7].map((column) => ((row + column) % 7 === 0 ? `<${number(row, column)}` : number(row, column)))])];
+const original = [
+  heads,
+  ...sampleNames.map((name, row) => [
+    name,
+    row === 4 ? '"tuff, grey"' : 'lava',
+    ...[2, 3, 4, 5, 6, 7].map((column) => ((row + column) % 7 === 0 ? `<${number(row, column)}` : number(row, column))),
+  ]),
+];
 const sheet = `${original.map((row) => row.join(',')).join('\n')}\n`;
 
 /** One way of damaging a text each. */
@@ -77,10 +84,16 @@ function movedSilently({ suite, report }: Assays, damaged: string): string[] {
     for (const [symbol, { values, states, limits }] of suite.columns) {
       const shown = states[i] === cellState.belowDetection ? (limits?.[i] ?? NaN) : values[i];
       if (!Number.isFinite(shown) || rowTold) continue;
-      const origin = original.findIndex((cells, k) => k > 0 && cells.some((cell, j) => symbols[j] === symbol && Number(cell.replace('<', '')) === shown));
+      const origin = original.findIndex(
+        (cells, k) => k > 0 && cells.some((cell, j) => symbols[j] === symbol && Number(cell.replace('<', '')) === shown),
+      );
       if (origin > 0 && sampleNames[origin - 1] === suite.samples[i]) continue;
       const cell = row < 0 ? undefined : grid[row][letters.get(place.get(symbol) ?? '') ?? -1];
-      const sits = cell !== undefined && Number(cell.replace(/^\s*<\s*/, '').replace(/\s|\*$/g, '')) === shown && grid[row].length >= width && grid[row].slice(width).every((each) => each.trim() === '');
+      const sits =
+        cell !== undefined &&
+        Number(cell.replace(/^\s*<\s*/, '').replace(/\s|\*$/g, '')) === shown &&
+        grid[row].length >= width &&
+        grid[row].slice(width).every((each) => each.trim() === '');
       // A damaged head may name another analyte; then the head itself must be told.
       const head = headOf.get(symbol) ?? '';
       const columnTold = !heads.includes(head) && told.includes(`"${head}"`);

@@ -40,15 +40,24 @@ function zip(parts: readonly { name: string; content: Buffer; claimed?: number; 
 }
 
 const types = { name: '[Content_Types].xml', content: Buffer.from('<Types/>') };
-const book = (sheets = '<sheet name="Data" sheetId="1" r:id="rId1"/>') => ({ name: 'xl/workbook.xml', content: Buffer.from(`<workbook xmlns:r="r"><sheets>${sheets}</sheets></workbook>`) });
-const links = { name: 'xl/_rels/workbook.xml.rels', content: Buffer.from('<Relationships><Relationship Id="rId1" Target="worksheets/sheet1.xml"/></Relationships>') };
+const book = (sheets = '<sheet name="Data" sheetId="1" r:id="rId1"/>') => ({
+  name: 'xl/workbook.xml',
+  content: Buffer.from(`<workbook xmlns:r="r"><sheets>${sheets}</sheets></workbook>`),
+});
+const links = {
+  name: 'xl/_rels/workbook.xml.rels',
+  content: Buffer.from('<Relationships><Relationship Id="rId1" Target="worksheets/sheet1.xml"/></Relationships>'),
+};
 const sheet = (rows: string) => ({ name: 'xl/worksheets/sheet1.xml', content: Buffer.from(`<worksheet><sheetData>${rows}</sheetData></worksheet>`) });
 const inline = (text: string) => `<c t="inlineStr"><is><t>${text}</t></is></c>`;
 const heads = `<row r="1">${inline('Sample')}${inline('SiO2 (wt%)')}${inline('Ba (ppm)')}</row>`;
 
 async function refused(content: Buffer, name: string, message: RegExp): Promise<void> {
   const before = process.memoryUsage().rss;
-  const problem = await readText(content, name).then(() => undefined, (error: unknown) => error);
+  const problem = await readText(content, name).then(
+    () => undefined,
+    (error: unknown) => error,
+  );
   expect(problem).toBeInstanceOf(AssayError);
   expect((problem as Error).message).toMatch(message);
   expect((process.memoryUsage().rss - before) / 1e6).toBeLessThan(150);
@@ -58,7 +67,11 @@ describe('workbooks made to harm', () => {
   it('refuses a zip bomb by the sizes it claims, and by the sizes it hides', async () => {
     const zeros = Buffer.alloc(60_000_000, ' ');
     await refused(zip([types, book(), links, { name: 'xl/worksheets/sheet1.xml', content: zeros }]), 'bomb.xlsx', /would unpack from/);
-    await refused(zip([types, book(), links, { name: 'xl/worksheets/sheet1.xml', content: zeros, claimed: 2000 }]), 'liar.xlsx', /larger than it claims/);
+    await refused(
+      zip([types, book(), links, { name: 'xl/worksheets/sheet1.xml', content: zeros, claimed: 2000 }]),
+      'liar.xlsx',
+      /larger than it claims/,
+    );
     await refused(zip([types, { name: 'xl/worksheets/sheet1.xml', content: Buffer.from('x'), claimed: 0xfffffff0 }]), 'huge.xlsx', /would unpack/);
   }, 30_000);
 
@@ -73,7 +86,10 @@ describe('workbooks made to harm', () => {
 
   it('never evaluates formulas: a cell has its saved value, or none', async () => {
     const row = `<row r="2">${inline('A')}<c><f>1+1</f><v>52.5</v></c><c><f>WEBSERVICE("http://example.invalid")</f></c></row><row r="3">${inline('B')}<c><v>60</v></c><c t="e"><f>1/0</f><v>#DIV/0!</v></c></row>`;
-    const { suite, report } = await readText(zip([types, book(), links, sheet(heads + row), { name: 'xl/externalLinks/externalLink1.xml', content: Buffer.from('<x/>') }]), 'formula.xlsx');
+    const { suite, report } = await readText(
+      zip([types, book(), links, sheet(heads + row), { name: 'xl/externalLinks/externalLink1.xml', content: Buffer.from('<x/>') }]),
+      'formula.xlsx',
+    );
     expect(cells(suite, 'SiO2')).toEqual([52.5, 60]);
     expect(cells(suite, 'Ba')).toEqual(['', '']);
     expect(report.pleaseCheck.some((text) => /3 cells hold formulas: their saved values are used, 1 have none/.test(text))).toBe(true);
@@ -91,12 +107,24 @@ describe('workbooks made to harm', () => {
   it('refuses a sheet of 20,000 columns and a cell beyond the last row', async () => {
     const wide = `<row r="1">${Array.from({ length: 20_000 }, (_, i) => `<c><v>${i}</v></c>`).join('')}</row>`;
     await refused(zip([types, book(), links, sheet(wide)]), 'wide.xlsx', /more than 10000 columns/);
-    await refused(zip([types, book(), links, sheet(`<row r="99999999"><c r="A99999999"><v>1</v></c></row>`)]), 'far.xlsx', /beyond what a sheet can have/);
+    await refused(
+      zip([types, book(), links, sheet(`<row r="99999999"><c r="A99999999"><v>1</v></c></row>`)]),
+      'far.xlsx',
+      /beyond what a sheet can have/,
+    );
   });
 
   it('refuses an .ods whose repeat counts stand for millions of cells', async () => {
-    const content = '<office><table:table><table:table-row table:number-rows-repeated="1000000"><table:table-cell office:value-type="float" table:number-columns-repeated="16000" office:value="1"/></table:table-row></table:table></office>';
-    await refused(zip([{ name: 'mimetype', content: Buffer.from('application/vnd.oasis.opendocument.spreadsheet') }, { name: 'content.xml', content: Buffer.from(content) }]), 'repeat.ods', /repeat counts/);
+    const content =
+      '<office><table:table><table:table-row table:number-rows-repeated="1000000"><table:table-cell office:value-type="float" table:number-columns-repeated="16000" office:value="1"/></table:table-row></table:table></office>';
+    await refused(
+      zip([
+        { name: 'mimetype', content: Buffer.from('application/vnd.oasis.opendocument.spreadsheet') },
+        { name: 'content.xml', content: Buffer.from(content) },
+      ]),
+      'repeat.ods',
+      /repeat counts/,
+    );
   });
 });
 
@@ -137,7 +165,9 @@ describe('text files made to harm', () => {
   });
 
   it('escapes HTML and scripts in names, heads and the report', async () => {
-    const { suite, report, toMimeBundle } = await readText('Sample,"<img src=x onerror=alert(1)>",SiO2 (wt%)\n<script>alert(1)</script>,a,52\nB,b,<b>53</b>\n');
+    const { suite, report, toMimeBundle } = await readText(
+      'Sample,"<img src=x onerror=alert(1)>",SiO2 (wt%)\n<script>alert(1)</script>,a,52\nB,b,<b>53</b>\n',
+    );
     expect(suite.samples[0]).toBe('<script>alert(1)</script>');
     for (const bundle of [toMimeBundle(), report.toMimeBundle(), suite.toMimeBundle()] as { 'text/html': string; 'text/markdown': string }[]) {
       expect(bundle['text/html']).not.toMatch(/<(script|img|b)[ >]/);
@@ -174,8 +204,12 @@ describe('sheets that cannot be right get one error or a state', () => {
   });
 
   it.each([
-    [{ decimal: ';' }, /decimal must be/], [{ sheets: 'x' }, /no option "sheets"/], [{ headerRow: 0 }, /headerRow/], [{ columns: { Bq: 'Ba' } }, /no column is headed "Bq"/],
-    [{ columns: { 'SiO2 (wt%)': { as: 'SiO9' } } }, /cannot become "SiO9"/], [{ columns: { 'SiO2 (wt%)': { unit: 'furlong' } } }, /unit "furlong"/],
+    [{ decimal: ';' }, /decimal must be/],
+    [{ sheets: 'x' }, /no option "sheets"/],
+    [{ headerRow: 0 }, /headerRow/],
+    [{ columns: { Bq: 'Ba' } }, /no column is headed "Bq"/],
+    [{ columns: { 'SiO2 (wt%)': { as: 'SiO9' } } }, /cannot become "SiO9"/],
+    [{ columns: { 'SiO2 (wt%)': { unit: 'furlong' } } }, /unit "furlong"/],
   ])('options %j are refused in words', async (options, message) => {
     await expect(readText('Sample,SiO2 (wt%)\nA,52\n', 'x.csv', options as never)).rejects.toThrow(message);
   });

@@ -30,18 +30,27 @@ describe('sheets as laboratories and papers give them', () => {
 
   it.each(sheets)('%s', async (name) => {
     const expected = JSON.parse(readFileSync(join(folder, name.replace(/\.\w+$/, '.expected.json')), 'utf8')) as Expected;
-    const { suite, report } = await readAssays(join(folder, name), { ...(expected.readIron === true ? {} : { iron: 'as-given' }), ...expected.options });
+    const { suite, report } = await readAssays(join(folder, name), {
+      ...(expected.readIron === true ? {} : { iron: 'as-given' }),
+      ...expected.options,
+    });
     expect(Object.fromEntries(suite.labels)).toEqual(expected.labels);
     const found = Object.fromEntries([...suite.columns.keys()].map((symbol) => [symbol, cells(suite, symbol)]));
     if (expected.close === undefined) expect(found).toEqual(expected.columns);
     else {
       expect(Object.keys(found)).toEqual(Object.keys(expected.columns));
       for (const [symbol, wanted] of Object.entries(expected.columns)) {
-        wanted.forEach((cell, i) => (typeof cell === 'number' ? expect(Math.abs((found[symbol][i] as number) / cell - 1)).toBeLessThan(expected.close!) : expect(found[symbol][i]).toBe(cell)));
+        wanted.forEach((cell, i) =>
+          typeof cell === 'number'
+            ? expect(Math.abs((found[symbol][i] as number) / cell - 1)).toBeLessThan(expected.close!)
+            : expect(found[symbol][i]).toBe(cell),
+        );
       }
     }
     for (const [symbol, wanted] of Object.entries(expected.sigma ?? {})) {
-      wanted.forEach((sigma, i) => (sigma === null ? expect(suite.column(symbol).sigma![i]).toBeNaN() : expect(suite.column(symbol).sigma![i]).toBeCloseTo(sigma, 12)));
+      wanted.forEach((sigma, i) =>
+        sigma === null ? expect(suite.column(symbol).sigma![i]).toBeNaN() : expect(suite.column(symbol).sigma![i]).toBeCloseTo(sigma, 12),
+      );
     }
     expect(report.samplesIn).toBe(expected.samplesIn ?? 'rows');
     if (expected.iron !== undefined) expect(report.iron).toEqual(expected.iron);

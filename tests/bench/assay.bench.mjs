@@ -73,7 +73,9 @@ process.exit(wrong > 0 ? 1 : 0);
 /** The sheet as a workbook, numbers as numbers. */
 function writeWorkbook(from, to) {
   const sheets = createRequire(join(here, '../../kernel-lib/package.json'))('@e965/xlsx');
-  const rows = Papa.parse(readFileSync(from, 'utf8'), { skipEmptyLines: true }).data.map((row) => row.map((cell) => (cell === '' ? null : /^-?[\d.]+$/.test(cell) ? Number(cell) : cell)));
+  const rows = Papa.parse(readFileSync(from, 'utf8'), { skipEmptyLines: true }).data.map((row) =>
+    row.map((cell) => (cell === '' ? null : /^-?[\d.]+$/.test(cell) ? Number(cell) : cell)),
+  );
   const book = sheets.utils.book_new();
   sheets.utils.book_append_sheet(book, sheets.utils.aoa_to_sheet(rows), 'assays');
   writeFileSync(to, sheets.write(book, { type: 'buffer', bookType: 'xlsx', compression: true }));
@@ -103,7 +105,9 @@ function compare(name, sheet, py, target) {
   }
   const theirs = best(process.env.PYTHON ?? 'python3', [py, sheet]);
   if (theirs === undefined) {
-    console.log(`${name}: ${ours.seconds.toFixed(2)} s, ${Math.round(ours.peak)} MB (no Python with pandas at hand) / at least ${target} times faster`);
+    console.log(
+      `${name}: ${ours.seconds.toFixed(2)} s, ${Math.round(ours.peak)} MB (no Python with pandas at hand) / at least ${target} times faster`,
+    );
     return;
   }
   for (const [symbol, sum, below] of theirs.sums) {

@@ -44,8 +44,16 @@ export interface AlterationOptions {
 
 const file = 'alteration-screen.csv';
 const rowSchema = z.strictObject({
-  key: field.text, expression: field.text, low: field.optionalNumber, high: field.optionalNumber, weight: z.enum(['decisive', 'hint']), applies: field.optionalText,
-  reason: field.text, source: field.text, standing: field.standing, note: field.optionalText,
+  key: field.text,
+  expression: field.text,
+  low: field.optionalNumber,
+  high: field.optionalNumber,
+  weight: z.enum(['decisive', 'hint']),
+  applies: field.optionalText,
+  reason: field.text,
+  source: field.text,
+  standing: field.standing,
+  note: field.optionalText,
 });
 
 /** @internal The rules of reference-tables/alteration-screen.csv. */
@@ -100,7 +108,9 @@ export function screenAlteration(suite: Suite, options: AlterationOptions): Alte
     }
   }
   mobileOutOfLine(suite, options.group, hints, reasons);
-  const verdict = Array.from({ length: size }, (_, i) => (decisive[i] > 0 || hints[i] > 1 ? 'altered' : hints[i] === 1 ? 'suspect' : asked[i] < 3 ? 'not determined' : 'fresh'));
+  const verdict = Array.from({ length: size }, (_, i) =>
+    decisive[i] > 0 || hints[i] > 1 ? 'altered' : hints[i] === 1 ? 'suspect' : asked[i] < 3 ? 'not determined' : 'fresh',
+  );
   return { verdict, reason: reasons.map((each) => each.join('; ')), asked, quantities, alkaliShare, alkalis, rulesNotAsked };
 }
 
@@ -182,7 +192,8 @@ const mostForSlopes = 300;
 function robustResiduals(x: readonly number[], y: readonly number[]): number[] {
   const stride = Math.max(1, Math.ceil(x.length / mostForSlopes));
   const slopes: number[] = [];
-  for (let i = 0; i < x.length; i += stride) for (let j = i + stride; j < x.length; j += stride) if (x[i] !== x[j]) slopes.push((y[j] - y[i]) / (x[j] - x[i]));
+  for (let i = 0; i < x.length; i += stride)
+    for (let j = i + stride; j < x.length; j += stride) if (x[i] !== x[j]) slopes.push((y[j] - y[i]) / (x[j] - x[i]));
   const slope = slopes.length === 0 ? 0 : median(slopes);
   const rest = x.map((each, i) => y[i] - slope * each);
   const level = median(rest);

@@ -79,7 +79,10 @@ export function audit(suite: Suite, options: AuditOptions = {}): Audit {
   const groups = duplicateGroups(roles.base, isControl);
   const unlike = unlikePairs(suite, groups);
   const suspect = new Set(unlike.map(({ rows }) => rows.join()));
-  const duplicates = duplicatePrecision(suite, groups.filter((rows) => !rows.some((row) => suspect.has(`${rows[0]},${row}`))));
+  const duplicates = duplicatePrecision(
+    suite,
+    groups.filter((rows) => !rows.some((row) => suspect.has(`${rows[0]},${row}`))),
+  );
   const blanks = blankLimits(suite, roles.blank);
   const { columns, sigmas } = columnSigmas(suite, duplicates, runs, options.sigma ?? {});
   const totals = analysisTotals(suite, window);
@@ -95,7 +98,18 @@ export function audit(suite: Suite, options: AuditOptions = {}): Audit {
     audited = audited.rows(left, step('audit: samples only', { takenOut: takenOut.map(({ sample, as }) => `${sample} (${as})`), kept: left.length }));
   }
   const found = {
-    suite: audited, totals, recoveries: runs, accuracy: verdicts, mixUps, unlikePairs: unlike, duplicates, blanks, sigmas, alteration: screen, takenOut, pleaseCheck,
+    suite: audited,
+    totals,
+    recoveries: runs,
+    accuracy: verdicts,
+    mixUps,
+    unlikePairs: unlike,
+    duplicates,
+    blanks,
+    sigmas,
+    alteration: screen,
+    takenOut,
+    pleaseCheck,
     lineage: audited.lineage,
   };
   return showAs(found, () => auditView(found, suite.size));
@@ -130,14 +144,35 @@ function attention({ suite, totals, verdicts, mixUps, unlike, blanks, screen, is
     if (verdict === 'biased') list.push(`${analyte} is ${words} against the reference materials`);
     for (const signal of chart) list.push(`${analyte}: ${signal}`);
   }
-  for (const { analyte, samplesBelow, limit } of blanks) if (samplesBelow > 0) list.push(`${analyte}: ${samplesBelow} values lie below the blanks' detection limit of ${Number(limit.toPrecision(3))}`);
+  for (const { analyte, samplesBelow, limit } of blanks)
+    if (samplesBelow > 0) list.push(`${analyte}: ${samplesBelow} values lie below the blanks' detection limit of ${Number(limit.toPrecision(3))}`);
   const say = (what: string, rows: readonly number[], words: (row: number) => string) => {
-    if (rows.length > 0) list.push(`${rows.length} ${what}: ${rows.slice(0, mostListed).map((row) => `${suite.samples[row]} (${words(row)})`).join(', ')}${rows.length > mostListed ? ' …' : ''}`);
+    if (rows.length > 0)
+      list.push(
+        `${rows.length} ${what}: ${rows
+          .slice(0, mostListed)
+          .map((row) => `${suite.samples[row]} (${words(row)})`)
+          .join(', ')}${rows.length > mostListed ? ' …' : ''}`,
+      );
   };
   const rows = Array.from({ length: suite.size }, (_, row) => row).filter((row) => !isControl(row));
-  say('totals outside the window', rows.filter((row) => totals.verdict[row] === 'low' || totals.verdict[row] === 'high'), (row) => totals.words[row]);
-  say('samples are altered', rows.filter((row) => screen.verdict[row] === 'altered'), (row) => screen.reason[row]);
-  if (takenOut.length > 0) list.push(`taken out of the suite: ${takenOut.slice(0, mostListed).map(({ sample, as }) => `${sample} (${as})`).join(', ')}${takenOut.length > mostListed ? ` and ${takenOut.length - mostListed} more` : ''}`);
+  say(
+    'totals outside the window',
+    rows.filter((row) => totals.verdict[row] === 'low' || totals.verdict[row] === 'high'),
+    (row) => totals.words[row],
+  );
+  say(
+    'samples are altered',
+    rows.filter((row) => screen.verdict[row] === 'altered'),
+    (row) => screen.reason[row],
+  );
+  if (takenOut.length > 0)
+    list.push(
+      `taken out of the suite: ${takenOut
+        .slice(0, mostListed)
+        .map(({ sample, as }) => `${sample} (${as})`)
+        .join(', ')}${takenOut.length > mostListed ? ` and ${takenOut.length - mostListed} more` : ''}`,
+    );
   return list;
 }
 
@@ -156,17 +191,39 @@ interface StepParts {
 function auditStep(suite: Suite, options: AuditOptions, parts: StepParts) {
   const { materials, duplicates, sigmas, window, tolerance, label, takenOut } = parts;
   const used = new Map([...materials.values()].map(({ material, source }) => [material, source]));
-  const remembered = [...used].flatMap(([name, source]) => [...rockMaterial(name, source).values.values()].filter(({ standing, analyte }) => standing === 'from memory' && suite.has(analyte)).map(({ analyte, value }) => `${analyte} in ${name} ${value} (${source})`));
+  const remembered = [...used].flatMap(([name, source]) =>
+    [...rockMaterial(name, source).values.values()]
+      .filter(({ standing, analyte }) => standing === 'from memory' && suite.has(analyte))
+      .map(({ analyte, value }) => `${analyte} in ${name} ${value} (${source})`),
+  );
   const altered = label.filter(Boolean).length;
   return step(
     'audit',
     {
-      totals: { ...window }, tolerance, materials: [...used].map(([material, source]) => ({ material, source, runs: [...materials.values()].filter((each) => each.material === material).length })),
-      duplicates: duplicates.reduce((most, { groups }) => Math.max(most, groups), 0), sigma: Object.fromEntries(sigmas.map(({ analyte, words }) => [analyte, words])),
-      altered, takenOut: takenOut.length, limits: JSON.parse(JSON.stringify(options.alteration ?? {})) as Record<string, null>,
+      totals: { ...window },
+      tolerance,
+      materials: [...used].map(([material, source]) => ({
+        material,
+        source,
+        runs: [...materials.values()].filter((each) => each.material === material).length,
+      })),
+      duplicates: duplicates.reduce((most, { groups }) => Math.max(most, groups), 0),
+      sigma: Object.fromEntries(sigmas.map(({ analyte, words }) => [analyte, words])),
+      altered,
+      takenOut: takenOut.length,
+      limits: JSON.parse(JSON.stringify(options.alteration ?? {})) as Record<string, null>,
     },
     {
-      sources: ['thompson_howarth_1976', 'long_winefordner_1983', 'le_maitre_2002', 'large_2001', 'nesbitt_young_1982', 'taylor_mclennan_1985', ...(options.spectrum === undefined ? [] : ['hughes_1973']), ...new Set(used.values())],
+      sources: [
+        'thompson_howarth_1976',
+        'long_winefordner_1983',
+        'le_maitre_2002',
+        'large_2001',
+        'nesbitt_young_1982',
+        'taylor_mclennan_1985',
+        ...(options.spectrum === undefined ? [] : ['hughes_1973']),
+        ...new Set(used.values()),
+      ],
       tables: ['reference-materials.csv', 'alteration-screen.csv'],
       fromMemory: remembered,
       says: `Accuracy was checked on ${materials.size} runs of reference materials${used.size === 0 ? '' : ` (${[...used.keys()].join(', ')})`}, precision on duplicates; ${altered} samples were flagged as altered by volatile content, alteration indices, Ce anomaly and mobile against immobile elements.`,
@@ -184,10 +241,18 @@ function auditView(found: Omit<Audit, 'toMimeBundle'>, size: number): TableView 
     title: 'Audit',
     columns: ['analyte', 'accuracy', 'runs', 'precision %', 'duplicates', 'blank limit', '1σ typical', '1σ from'],
     mostRows: Infinity,
-    rows: sigmas.filter(({ analyte }) => findAnalyte(analyte) !== undefined).map(({ analyte, typical, words }): TableCell[] => [
-      analyte, bySymbol.get(analyte)?.words ?? 'not covered', bySymbol.get(analyte)?.runs ?? 0, precision.has(analyte) ? Number(precision.get(analyte)!.relative.toPrecision(3)) : null,
-      precision.get(analyte)?.groups ?? 0, limits.has(analyte) ? Number(limits.get(analyte)!.limit.toPrecision(3)) : null, Number.isNaN(typical) ? null : Number(typical.toPrecision(2)), words,
-    ]),
+    rows: sigmas
+      .filter(({ analyte }) => findAnalyte(analyte) !== undefined)
+      .map(({ analyte, typical, words }): TableCell[] => [
+        analyte,
+        bySymbol.get(analyte)?.words ?? 'not covered',
+        bySymbol.get(analyte)?.runs ?? 0,
+        precision.has(analyte) ? Number(precision.get(analyte)!.relative.toPrecision(3)) : null,
+        precision.get(analyte)?.groups ?? 0,
+        limits.has(analyte) ? Number(limits.get(analyte)!.limit.toPrecision(3)) : null,
+        Number.isNaN(typical) ? null : Number(typical.toPrecision(2)),
+        words,
+      ]),
     notes: [
       `${size} rows: totals from ${totals.window.from} to ${totals.window.to} wt %: ${totals.verdict.filter((each) => each === 'in window').length} in the window, ${totals.verdict.filter((each) => each === 'low').length} low, ${totals.verdict.filter((each) => each === 'high').length} high, ${totals.verdict.filter((each) => each === 'not determined').length} not determined.`,
       `Alteration: ${count('fresh')} fresh, ${count('suspect')} suspect, ${count('altered')} altered, ${count('not determined')} not determined.`,
@@ -198,14 +263,17 @@ function auditView(found: Omit<Audit, 'toMimeBundle'>, size: number): TableView 
 
 function checkAuditOptions(suite: Suite, options: AuditOptions): void {
   const names = ['totals', 'certificates', 'tolerance', 'duplicates', 'sigma', 'alteration', 'spectrum', 'group', 'keep'];
-  for (const name of Object.keys(options)) if (!names.includes(name)) throw new RangeError(`audit: there is no option "${name}". Options: ${names.join(', ')}.`);
+  for (const name of Object.keys(options))
+    if (!names.includes(name)) throw new RangeError(`audit: there is no option "${name}". Options: ${names.join(', ')}.`);
   const { keep, tolerance, duplicates, sigma = {} } = options;
-  if (keep !== undefined && keep !== 'samples' && keep !== 'all') throw new RangeError(`audit: keep must be "samples" or "all", not ${JSON.stringify(keep)}.`);
+  if (keep !== undefined && keep !== 'samples' && keep !== 'all')
+    throw new RangeError(`audit: keep must be "samples" or "all", not ${JSON.stringify(keep)}.`);
   if (tolerance !== undefined && !(tolerance >= 0)) throw new RangeError(`audit: tolerance must be a percentage from 0, not ${String(tolerance)}.`);
   if (duplicates !== undefined) suite.label(duplicates);
   for (const [symbol, stated] of Object.entries(sigma)) {
     suite.column(symbol);
     const size = 'percent' in stated ? stated.percent : stated.absolute;
-    if (!(size > 0)) throw new RangeError(`audit: sigma of ${symbol} must be { percent: … } or { absolute: … } above 0, not ${JSON.stringify(stated)}.`);
+    if (!(size > 0))
+      throw new RangeError(`audit: sigma of ${symbol} must be { percent: … } or { absolute: … } above 0, not ${JSON.stringify(stated)}.`);
   }
 }

@@ -23,7 +23,9 @@ const factors: Readonly<Record<string, number>> = { 'half-limit': 0.5, 'limit-ov
  */
 export function substitute(suite: Suite, symbols: readonly string[], rule: SubstitutionRule): Suite {
   if (rule !== 'order-statistics' && !Object.hasOwn(factors, rule)) {
-    throw new RangeError(`substitute: rule must be ${[...Object.keys(factors), 'order-statistics'].map((each) => `"${each}"`).join(', ')}, not ${JSON.stringify(rule)}.`);
+    throw new RangeError(
+      `substitute: rule must be ${[...Object.keys(factors), 'order-statistics'].map((each) => `"${each}"`).join(', ')}, not ${JSON.stringify(rule)}.`,
+    );
   }
   if (!Array.isArray(symbols) || symbols.length === 0) throw new RangeError('substitute: symbols must be a list of column names, e.g. ["Ta"].');
   const made: Record<string, number> = {};
@@ -42,10 +44,19 @@ export function substitute(suite: Suite, symbols: readonly string[], rule: Subst
     }
     return column({ ...from, values, states });
   });
-  return suite.with(columns, step('substitute', { rule, cells: made }, {
-    sources: ['helsel_2012', ...(rule === 'order-statistics' ? ['helsel_cohn_1988'] : [])],
-    says: `Results below detection were replaced by ${rule.replaceAll('-', ' ')} (${Object.entries(made).map(([symbol, cells]) => `${cells} in ${symbol}`).join(', ')}).`,
-  }));
+  return suite.with(
+    columns,
+    step(
+      'substitute',
+      { rule, cells: made },
+      {
+        sources: ['helsel_2012', ...(rule === 'order-statistics' ? ['helsel_cohn_1988'] : [])],
+        says: `Results below detection were replaced by ${rule.replaceAll('-', ' ')} (${Object.entries(made)
+          .map(([symbol, cells]) => `${cells} in ${symbol}`)
+          .join(', ')}).`,
+      },
+    ),
+  );
 }
 
 /** Summary of a column that holds below-detection cells, in the column's unit. */
@@ -76,10 +87,15 @@ export interface CensoredSummary extends Traced, Showable {
  * @example censoredSummary(suite, 'Ta', 'kaplan-meier').median
  */
 export function censoredSummary(suite: Suite, symbol: string, method: 'order-statistics' | 'kaplan-meier' = 'kaplan-meier'): CensoredSummary {
-  if (method !== 'order-statistics' && method !== 'kaplan-meier') throw new RangeError(`censoredSummary: method must be "order-statistics" or "kaplan-meier", not ${JSON.stringify(method)}.`);
+  if (method !== 'order-statistics' && method !== 'kaplan-meier')
+    throw new RangeError(`censoredSummary: method must be "order-statistics" or "kaplan-meier", not ${JSON.stringify(method)}.`);
   const of = suite.column(symbol);
   const summary = method === 'kaplan-meier' ? kaplanMeier(of) : ofOrderStatistics(of);
-  const because: Step = step('censoredSummary', { symbol, method, n: summary.n, below: summary.below }, { sources: method === 'kaplan-meier' ? ['kaplan_meier_1958', 'helsel_2012'] : ['helsel_cohn_1988', 'helsel_2012'] });
+  const because: Step = step(
+    'censoredSummary',
+    { symbol, method, n: summary.n, below: summary.below },
+    { sources: method === 'kaplan-meier' ? ['kaplan_meier_1958', 'helsel_2012'] : ['helsel_cohn_1988', 'helsel_2012'] },
+  );
   const result = { symbol, unit: of.unit, method, ...summary, lineage: [...suite.lineage, because] };
   return showAs(result, () => ({
     title: `${symbol}${of.unit === '' ? '' : ` (${of.unit})`}, ${summary.below} of ${summary.n} below detection, by ${method.replace('-', ' ')}`,
@@ -114,8 +130,12 @@ function orderStatistics(of: Column): { predicted: Map<number, number>; cells: C
   const cells = cellsOf(of);
   const measured = cells.filter(({ below }) => !below).sort((a, b) => a.value - b.value);
   const below = cells.filter((cell) => cell.below);
-  if (measured.length < 5 || measured.some(({ value }) => !(value > 0))) throw new RangeError(`${of.symbol}: regression on order statistics needs five measured values above zero; there are ${measured.filter(({ value }) => value > 0).length}.`);
-  if (below.length > 4 * measured.length) throw new RangeError(`${of.symbol}: more than 80 % of the cells are below detection, too many for regression on order statistics (Helsel 2012).`);
+  if (measured.length < 5 || measured.some(({ value }) => !(value > 0)))
+    throw new RangeError(
+      `${of.symbol}: regression on order statistics needs five measured values above zero; there are ${measured.filter(({ value }) => value > 0).length}.`,
+    );
+  if (below.length > 4 * measured.length)
+    throw new RangeError(`${of.symbol}: more than 80 % of the cells are below detection, too many for regression on order statistics (Helsel 2012).`);
   const limits = [...new Set(below.map(({ value }) => value))].sort((a, b) => a - b);
   // exceed[j]: probability of exceeding limit j, from the highest limit down.
   const exceed = new Array<number>(limits.length + 1).fill(0);
@@ -126,12 +146,17 @@ function orderStatistics(of: Column): { predicted: Map<number, number>; cells: C
     exceed[j] = exceed[j + 1] + (a + under(j) === 0 ? 0 : (a / (a + under(j))) * (1 - exceed[j + 1]));
   }
   const position = new Map<number, number>();
-  const spread = (group: readonly Cell[], from: number, to: number) => group.forEach(({ row }, k) => position.set(row, from + ((to - from) * (k + 1)) / (group.length + 1)));
+  const spread = (group: readonly Cell[], from: number, to: number) =>
+    group.forEach(({ row }, k) => position.set(row, from + ((to - from) * (k + 1)) / (group.length + 1)));
   const first = measured.filter(({ value }) => limits.length === 0 || value < limits[0]);
   spread(first, 0, limits.length === 0 ? 1 : 1 - exceed[0]);
   limits.forEach((limit, j) => {
     spread(inBand(j), 1 - exceed[j], 1 - exceed[j + 1]);
-    spread(below.filter(({ value }) => value === limit), 0, 1 - exceed[j]);
+    spread(
+      below.filter(({ value }) => value === limit),
+      0,
+      1 - exceed[j],
+    );
   });
   const x = measured.map(({ row }) => normalQuantile(position.get(row)!));
   const y = measured.map(({ value }) => Math.log(value));
@@ -151,7 +176,15 @@ function ofOrderStatistics(of: Column): Summary {
     const low = Math.floor(place);
     return values[low] + (place - low) * ((values[low + 1] ?? values[low]) - values[low]);
   };
-  return { n: values.length, below: predicted.size, mean, standardDeviation, median: median(values), quartiles: [at(0.25), at(0.75)], note: 'a lognormal distribution is assumed for the cells below detection' };
+  return {
+    n: values.length,
+    below: predicted.size,
+    mean,
+    standardDeviation,
+    median: median(values),
+    quartiles: [at(0.25), at(0.75)],
+    note: 'a lognormal distribution is assumed for the cells below detection',
+  };
 }
 
 /** Kaplan–Meier for values known only to lie below a limit: the survival curve of the flipped data. */
@@ -185,8 +218,12 @@ function kaplanMeier(of: Column): Summary {
     return NaN;
   };
   return {
-    n: cells.length, below: cells.length - measured.length, mean, standardDeviation: Math.sqrt((variance * cells.length) / (cells.length - 1)),
-    median: quantile(0.5), quartiles: [quantile(0.25), quantile(0.75)],
+    n: cells.length,
+    below: cells.length - measured.length,
+    mean,
+    standardDeviation: Math.sqrt((variance * cells.length) / (cells.length - 1)),
+    median: quantile(0.5),
+    quartiles: [quantile(0.25), quantile(0.75)],
     note: rest > 1e-12 ? `${(100 * rest).toFixed(0)} % lie below the lowest measured value; the mean takes them at ${lowest}` : '',
   };
 }
@@ -198,10 +235,13 @@ export function normalQuantile(probability: number): number {
   const b = [-54.47609879822406, 161.5858368580409, -155.6989798598866, 66.80131188771972, -13.28068155288572];
   const c = [-0.007784894002430293, -0.3223964580411365, -2.400758277161838, -2.549732539343734, 4.374664141464968, 2.938163982698783];
   const d = [0.007784695709041462, 0.3224671290700398, 2.445134137142996, 3.754408661907416];
-  const tail = (q: number) => (((((c[0] * q + c[1]) * q + c[2]) * q + c[3]) * q + c[4]) * q + c[5]) / ((((d[0] * q + d[1]) * q + d[2]) * q + d[3]) * q + 1);
+  const tail = (q: number) =>
+    (((((c[0] * q + c[1]) * q + c[2]) * q + c[3]) * q + c[4]) * q + c[5]) / ((((d[0] * q + d[1]) * q + d[2]) * q + d[3]) * q + 1);
   if (probability < 0.02425) return tail(Math.sqrt(-2 * Math.log(probability)));
   if (probability > 0.97575) return -tail(Math.sqrt(-2 * Math.log(1 - probability)));
   const q = probability - 0.5;
   const r = q * q;
-  return ((((((a[0] * r + a[1]) * r + a[2]) * r + a[3]) * r + a[4]) * r + a[5]) * q) / (((((b[0] * r + b[1]) * r + b[2]) * r + b[3]) * r + b[4]) * r + 1);
+  return (
+    ((((((a[0] * r + a[1]) * r + a[2]) * r + a[3]) * r + a[4]) * r + a[5]) * q) / (((((b[0] * r + b[1]) * r + b[2]) * r + b[3]) * r + b[4]) * r + 1)
+  );
 }

@@ -22,15 +22,26 @@ const fewestRuns = 2;
  * least three), else from the reference materials (root mean square of recovery − 1 over at least two runs), else what the user states,
  * else what the sheet states, else none.
  */
-export function columnSigmas(suite: Suite, duplicates: readonly DuplicatePrecision[], runs: readonly Recovery[], stated: Readonly<Record<string, StatedSigma>>): { columns: Column[]; sigmas: ColumnSigma[] } {
+export function columnSigmas(
+  suite: Suite,
+  duplicates: readonly DuplicatePrecision[],
+  runs: readonly Recovery[],
+  stated: Readonly<Record<string, StatedSigma>>,
+): { columns: Column[]; sigmas: ColumnSigma[] } {
   const columns: Column[] = [];
   const sigmas: ColumnSigma[] = [];
   const precision = new Map(duplicates.map((each) => [each.analyte, each]));
   for (const each of suite.columns.values()) {
-    const chosen = choose(each, precision.get(each.symbol), runs.filter(({ analyte }) => analyte === each.symbol), Object.hasOwn(stated, each.symbol) ? stated[each.symbol] : undefined);
+    const chosen = choose(
+      each,
+      precision.get(each.symbol),
+      runs.filter(({ analyte }) => analyte === each.symbol),
+      Object.hasOwn(stated, each.symbol) ? stated[each.symbol] : undefined,
+    );
     if (chosen === undefined) {
       if (each.sigma !== undefined) sigmas.push({ analyte: each.symbol, from: 'stated in the sheet', typical: NaN, words: 'as stated in the sheet' });
-      else if (each.kind !== 'quantity') sigmas.push({ analyte: each.symbol, from: 'none', typical: NaN, words: 'no duplicates, no reference material, nothing stated' });
+      else if (each.kind !== 'quantity')
+        sigmas.push({ analyte: each.symbol, from: 'none', typical: NaN, words: 'no duplicates, no reference material, nothing stated' });
       continue;
     }
     const sigma = each.values.map((value) => (Number.isFinite(value) ? chosen.at(value) : NaN));
@@ -46,19 +57,37 @@ interface Chosen {
   at(value: number): number;
 }
 
-function choose({ unit }: Column, duplicates: DuplicatePrecision | undefined, runs: readonly Recovery[], stated: StatedSigma | undefined): Chosen | undefined {
+function choose(
+  { unit }: Column,
+  duplicates: DuplicatePrecision | undefined,
+  runs: readonly Recovery[],
+  stated: StatedSigma | undefined,
+): Chosen | undefined {
   if (duplicates?.line !== undefined && duplicates.line.slope > 0) {
     const { intercept, slope, pairs } = duplicates.line;
     const floor = Math.max(0, intercept);
-    return { from: 'duplicates', words: `${round(floor)} ${unit} + ${round(100 * slope)} % of the value, from ${pairs} pairs`, at: (value) => floor + slope * Math.abs(value) };
+    return {
+      from: 'duplicates',
+      words: `${round(floor)} ${unit} + ${round(100 * slope)} % of the value, from ${pairs} pairs`,
+      at: (value) => floor + slope * Math.abs(value),
+    };
   }
   if (duplicates !== undefined && duplicates.degreesOfFreedom >= fewestDuplicates && duplicates.relative > 0) {
     const share = duplicates.relative / 100;
-    return { from: 'duplicates', words: `${round(duplicates.relative)} %, pooled from ${duplicates.groups} groups`, at: (value) => share * Math.abs(value) };
+    return {
+      from: 'duplicates',
+      words: `${round(duplicates.relative)} %, pooled from ${duplicates.groups} groups`,
+      at: (value) => share * Math.abs(value),
+    };
   }
   if (runs.length >= fewestRuns) {
     const share = Math.sqrt(runs.reduce((sum, { recovery }) => sum + (recovery / 100 - 1) ** 2, 0) / runs.length);
-    if (share > 0) return { from: 'reference materials', words: `${round(100 * share)} %, from ${runs.length} runs of reference materials, bias included`, at: (value) => share * Math.abs(value) };
+    if (share > 0)
+      return {
+        from: 'reference materials',
+        words: `${round(100 * share)} %, from ${runs.length} runs of reference materials, bias included`,
+        at: (value) => share * Math.abs(value),
+      };
   }
   if (stated === undefined) return undefined;
   return 'percent' in stated

@@ -48,7 +48,10 @@ export function duplicateGroups(base: readonly string[], left: (row: number) => 
 
 /** Precision of every measured quantity from groups of duplicates. */
 export function duplicatePrecision(suite: Suite, groups: readonly (readonly number[])[]): DuplicatePrecision[] {
-  return [...suite.columns.values()].filter(({ symbol }) => findAnalyte(symbol) !== undefined).map((column) => precisionOf(suite, column, groups)).filter(({ groups: count }) => count > 0);
+  return [...suite.columns.values()]
+    .filter(({ symbol }) => findAnalyte(symbol) !== undefined)
+    .map((column) => precisionOf(suite, column, groups))
+    .filter(({ groups: count }) => count > 0);
 }
 
 function precisionOf(suite: Suite, { symbol, values }: Column, groups: readonly (readonly number[])[]): DuplicatePrecision {
@@ -79,7 +82,13 @@ function precisionOf(suite: Suite, { symbol, values }: Column, groups: readonly 
   }
   const line = precisionLine(pairs);
   return {
-    analyte: symbol, groups: used, degreesOfFreedom: freedom, relative: 100 * Math.sqrt(relativeSquares / freedom), absolute: Math.sqrt(squares / freedom), worst, worstSample,
+    analyte: symbol,
+    groups: used,
+    degreesOfFreedom: freedom,
+    relative: 100 * Math.sqrt(relativeSquares / freedom),
+    absolute: Math.sqrt(squares / freedom),
+    worst,
+    worstSample,
     ...(line === undefined ? {} : { line }),
   };
 }
@@ -121,7 +130,9 @@ export function precisionLine(pairs: readonly { readonly centre: number; readonl
 
 /** Pairs that disagree in most analytes at once, which no laboratory does: a name stands on the wrong row. */
 export function unlikePairs(suite: Suite, groups: readonly (readonly number[])[]): UnlikePair[] {
-  const columns = [...suite.columns.values()].filter(({ symbol }) => findAnalyte(symbol)?.kind === 'oxide' || findAnalyte(symbol)?.kind === 'element');
+  const columns = [...suite.columns.values()].filter(
+    ({ symbol }) => findAnalyte(symbol)?.kind === 'oxide' || findAnalyte(symbol)?.kind === 'element',
+  );
   const distance = (a: number, b: number): number => {
     const offs: number[] = [];
     for (const { values } of columns) if (values[a] > 0 && values[b] > 0) offs.push(Math.abs(Math.log(values[a] / values[b])));
@@ -132,22 +143,26 @@ export function unlikePairs(suite: Suite, groups: readonly (readonly number[])[]
     for (let j = 1; j < rows.length; j++) {
       const off = distance(rows[0], rows[j]);
       if (off < 0.1) continue;
-      const better = suite.size > 5_000 ? [] : [rows[0], rows[j]].flatMap((row) => {
-        let best = -1;
-        let least = off / 3;
-        for (let other = 0; other < suite.size; other++) {
-          if (other === rows[0] || other === rows[j]) continue;
-          const far = distance(row, other);
-          if (far > 0 && far < least) {
-            best = other;
-            least = far;
-          }
-        }
-        return best < 0 ? [] : [`row ${row + 1} is much closer to row ${best + 1} "${suite.samples[best]}"`];
-      });
+      const better =
+        suite.size > 5_000
+          ? []
+          : [rows[0], rows[j]].flatMap((row) => {
+              let best = -1;
+              let least = off / 3;
+              for (let other = 0; other < suite.size; other++) {
+                if (other === rows[0] || other === rows[j]) continue;
+                const far = distance(row, other);
+                if (far > 0 && far < least) {
+                  best = other;
+                  least = far;
+                }
+              }
+              return best < 0 ? [] : [`row ${row + 1} is much closer to row ${best + 1} "${suite.samples[best]}"`];
+            });
       const sample = suite.samples[rows[0]];
       unlike.push({
-        rows: [rows[0], rows[j]], sample,
+        rows: [rows[0], rows[j]],
+        sample,
         words: `rows ${rows[0] + 1} and ${rows[j] + 1} "${sample}" differ typically by ${Math.round(100 * (Math.exp(off) - 1))} %: not the same sample${better.length > 0 ? ` (${better.join('; ')})` : ''}`,
       });
     }

@@ -57,7 +57,11 @@ const shortName = (name: string) => name.replace(/[^A-Za-z0-9]/g, '').length <= 
  *
  * A row is compared by the median of |ln(measured/certified)| over all analytes: a laboratory's bias moves one analyte, a mix-up all.
  */
-export function checkMaterials(suite: Suite, named: readonly string[], options: MaterialOptions): { rows: Map<number, RockMaterial>; mixUps: MixUp[] } {
+export function checkMaterials(
+  suite: Suite,
+  named: readonly string[],
+  options: MaterialOptions,
+): { rows: Map<number, RockMaterial>; mixUps: MixUp[] } {
   const rows = new Map<number, RockMaterial>();
   const mixUps: MixUp[] = [];
   const columns = comparable(suite);
@@ -73,7 +77,10 @@ export function checkMaterials(suite: Suite, named: readonly string[], options: 
     const fits = nearestRow(suite, columns, material, named);
     const sample = suite.samples[row];
     mixUps.push({
-      row, sample, expected: material.material, fits,
+      row,
+      sample,
+      expected: material.material,
+      fits,
       words: `row ${row + 1} "${sample}" does not have the composition of ${material.material} (typically off by ${Math.round(100 * (Math.exp(distance) - 1))} %)${fits < 0 ? '' : `, but row ${fits + 1} "${suite.samples[fits]}" has: were they exchanged?`}`,
     });
   }
@@ -117,8 +124,14 @@ export function recoveries(suite: Suite, rows: ReadonlyMap<number, RockMaterial>
       const own = sigma?.[row] ?? NaN;
       const spread = Math.hypot(certified.sigma, Number.isNaN(own) ? 0 : own);
       found.push({
-        row, sample: suite.samples[row], material: material.material, analyte: symbol, measured: values[row], certified: certified.value,
-        recovery: (100 * values[row]) / certified.value, z: spread > 0 ? (values[row] - certified.value) / spread : NaN,
+        row,
+        sample: suite.samples[row],
+        material: material.material,
+        analyte: symbol,
+        measured: values[row],
+        certified: certified.value,
+        recovery: (100 * values[row]) / certified.value,
+        z: spread > 0 ? (values[row] - certified.value) / spread : NaN,
       });
     }
   }
@@ -126,20 +139,38 @@ export function recoveries(suite: Suite, rows: ReadonlyMap<number, RockMaterial>
 }
 
 /** A verdict for every analyte of the suite. */
-export function accuracy(suite: Suite, rows: ReadonlyMap<number, RockMaterial>, runs: readonly Recovery[], options: MaterialOptions): AccuracyVerdict[] {
+export function accuracy(
+  suite: Suite,
+  rows: ReadonlyMap<number, RockMaterial>,
+  runs: readonly Recovery[],
+  options: MaterialOptions,
+): AccuracyVerdict[] {
   return comparable(suite).map(({ symbol }): AccuracyVerdict => {
     const own = runs.filter(({ analyte }) => analyte === symbol);
-    if (own.length === 0) return { analyte: symbol, runs: 0, bias: NaN, spread: NaN, biasSigma: NaN, verdict: 'not covered', words: 'not covered', chart: [] };
+    if (own.length === 0)
+      return { analyte: symbol, runs: 0, bias: NaN, spread: NaN, biasSigma: NaN, verdict: 'not covered', words: 'not covered', chart: [] };
     const offs = own.map(({ recovery }) => recovery - 100);
     const bias = mean(offs);
     const spread = own.length > 1 ? Math.sqrt(offs.reduce((sum, off) => sum + (off - bias) ** 2, 0) / (own.length - 1)) : NaN;
-    const certifiedSigma = mean(own.map(({ row, certified }) => (100 * (materialValue(rows.get(row)!, symbol)?.sigma ?? NaN)) / certified).map((each) => (Number.isNaN(each) ? 0 : each)));
+    const certifiedSigma = mean(
+      own
+        .map(({ row, certified }) => (100 * (materialValue(rows.get(row)!, symbol)?.sigma ?? NaN)) / certified)
+        .map((each) => (Number.isNaN(each) ? 0 : each)),
+    );
     const biasSigma = Math.hypot(certifiedSigma, Number.isNaN(spread) ? 0 : spread / Math.sqrt(own.length));
-    // A bias counts when it is real (beyond 2σ) and when it matters (beyond the tolerance).
-    const biased = Math.abs(bias) > 2 * biasSigma && Math.abs(bias) > options.tolerance;
+    // A bias counts when it is real (outside its 95 % interval, of few runs by Student's t) and when it matters (beyond the tolerance).
+    const biased = Math.abs(bias) > studentFactor(own.length - 1) * biasSigma && Math.abs(bias) > options.tolerance;
     const words = biased ? `biased by ${signed(bias)} %` : `fit (bias ${signed(bias)} %)`;
     return { analyte: symbol, runs: own.length, bias, spread, biasSigma, verdict: biased ? 'biased' : 'fit', words, chart: chartSignals(own) };
   });
+}
+
+/** Two-sided 95 % quantiles of Student's t for 1 to 10 degrees of freedom (standard tables). */
+const studentTable = [12.706, 4.303, 3.182, 2.776, 2.571, 2.447, 2.365, 2.306, 2.262, 2.228];
+
+/** For a single run nothing but the certified value's own 1σ is known: then the normal factor. */
+function studentFactor(freedom: number): number {
+  return freedom < 1 ? 2 : (studentTable[freedom - 1] ?? 2 + 2.3 / freedom);
 }
 
 /** Signals of a control chart by order of analysis (Shewhart's rules: one point beyond 3σ of the others; eight in a row on one side). */
@@ -150,7 +181,8 @@ function chartSignals(own: readonly Recovery[]): string[] {
       const others = own.filter((_, j) => j !== i).map(({ recovery }) => recovery);
       const centre = mean(others);
       const spread = Math.sqrt(others.reduce((sum, each) => sum + (each - centre) ** 2, 0) / (others.length - 1));
-      if (spread > 0 && Math.abs(run.recovery - centre) > 3 * spread * Math.sqrt(1 + 1 / others.length) && Math.abs(run.recovery - centre) > 1) signals.push(`row ${run.row + 1} "${run.sample}" recovers ${run.recovery.toFixed(1)} %, the others ${centre.toFixed(1)} %`);
+      if (spread > 0 && Math.abs(run.recovery - centre) > 3 * spread * Math.sqrt(1 + 1 / others.length) && Math.abs(run.recovery - centre) > 1)
+        signals.push(`row ${run.row + 1} "${run.sample}" recovers ${run.recovery.toFixed(1)} %, the others ${centre.toFixed(1)} %`);
     });
   }
   for (let i = 7; i < own.length; i++) {

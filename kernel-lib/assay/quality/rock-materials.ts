@@ -23,8 +23,17 @@ export interface RockMaterial {
 
 const file = 'reference-materials.csv';
 const rowSchema = z.strictObject({
-  material: field.text, issuer: field.text, rock_type: field.optionalText, analyte: field.text, value: field.number, uncertainty: field.optionalNumber,
-  coverage: field.optionalNumber, unit: field.text, kind: z.enum(['certified', 'recommended', 'information']), source: field.text, standing: field.standing,
+  material: field.text,
+  issuer: field.text,
+  rock_type: field.optionalText,
+  analyte: field.text,
+  value: field.number,
+  uncertainty: field.optionalNumber,
+  coverage: field.optionalNumber,
+  unit: field.text,
+  kind: z.enum(['certified', 'recommended', 'information']),
+  source: field.text,
+  standing: field.standing,
   note: field.optionalText,
 });
 
@@ -33,20 +42,31 @@ const all = once((): ReadonlyMap<string, readonly RockMaterial[]> => {
   for (const row of readCsvTable(file, rowSchema)) {
     const key = `${row.material}|${row.source}`;
     let entry = bySource.get(key);
-    if (entry === undefined) bySource.set(key, (entry = { material: row.material, issuer: row.issuer, rock: row.rock_type, source: row.source, values: new Map() }));
+    if (entry === undefined)
+      bySource.set(key, (entry = { material: row.material, issuer: row.issuer, rock: row.rock_type, source: row.source, values: new Map() }));
     const analyte = findAnalyte(row.analyte);
     if (analyte === undefined || entry.values.has(row.analyte)) continue;
     const factor = isMassUnit(row.unit) && isMassUnit(analyte.unit) ? massUnitFactor(row.unit, analyte.unit as MassUnit) : 1;
     entry.values.set(row.analyte, {
-      analyte: row.analyte, value: row.value * factor, sigma: row.uncertainty === undefined ? NaN : (row.uncertainty * factor) / (row.coverage ?? 1),
-      kind: row.kind, standing: row.standing,
+      analyte: row.analyte,
+      value: row.value * factor,
+      sigma: row.uncertainty === undefined ? NaN : (row.uncertainty * factor) / (row.coverage ?? 1),
+      kind: row.kind,
+      standing: row.standing,
     });
   }
   const byMaterial = new Map<string, RockMaterial[]>();
   for (const entry of bySource.values()) byMaterial.set(entry.material, [...(byMaterial.get(entry.material) ?? []), entry]);
   // The best supported source stands first: the compilation by ISO guidelines, then seen values before remembered ones, then more of them.
   const seen = ({ values }: RockMaterial) => [...values.values()].filter(({ standing }) => standing !== 'from memory').length;
-  for (const list of byMaterial.values()) list.sort((a, b) => Number(b.source === 'jochum_2016') - Number(a.source === 'jochum_2016') || Number(seen(b) >= 10) - Number(seen(a) >= 10) || seen(b) - seen(a) || b.values.size - a.values.size);
+  for (const list of byMaterial.values())
+    list.sort(
+      (a, b) =>
+        Number(b.source === 'jochum_2016') - Number(a.source === 'jochum_2016') ||
+        Number(seen(b) >= 10) - Number(seen(a) >= 10) ||
+        seen(b) - seen(a) ||
+        b.values.size - a.values.size,
+    );
   return byMaterial;
 });
 

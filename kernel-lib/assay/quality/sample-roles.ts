@@ -11,13 +11,17 @@ export interface SampleRoles {
 }
 
 const marks = 'STD|STANDARD|CRM|SRM|QC|REF|RUN|REP|REPLICATE|DUP|DUPLICATE|CHECK|MONITOR|RPT|REPEAT';
-const blankName = /^(?:(?:procedural|process|prep(?:aration)?|method|reagent|analytical|total|field|acid|lab(?:oratory)?)[\s_-]*)?(?:blank|blk)(?:$|[\s_#.:(-].*|\d+$)/i;
+const blankName =
+  /^(?:(?:procedural|process|prep(?:aration)?|method|reagent|analytical|total|field|acid|lab(?:oratory)?)[\s_-]*)?(?:blank|blk)(?:$|[\s_#.:(-].*|\d+$)/i;
 const duplicateMark = /[\s_.:(/-]*\(?(?:dup(?:licate)?|rep(?:licate|eat)?|rpt|dpl)\)?[\s_.#-]*\d{0,2}\)?$/i;
 
 const patterns = (): readonly (readonly [string, RegExp])[] =>
   rockMaterialNames().map((name) => {
     const loose = name.replace(/([A-Za-z])-?(\d)/g, '$1[\\s_-]*$2').replace(/-/g, '[\\s_-]*');
-    return [name, new RegExp(`^(?:(?:${marks}|USGS|GSJ)[\\s_:-]*)?${loose}(?:[\\s_:#(.-]+(?:${marks}|\\d{1,3}|[A-D])\\)?|(?:STD|CRM|QC))*$`, 'i')] as const;
+    return [
+      name,
+      new RegExp(`^(?:(?:${marks}|USGS|GSJ)[\\s_:-]*)?${loose}(?:[\\s_:#(.-]+(?:${marks}|\\d{1,3}|[A-D])\\)?|(?:STD|CRM|QC))*$`, 'i'),
+    ] as const;
   });
 
 /** Finds reference materials, blanks and duplicates by the sample names. */

@@ -39,7 +39,12 @@ export function analysisTotals(suite: Suite, window: { readonly from: number; re
   const verdict: Totals['verdict'][number][] = [];
   const words: string[] = [];
   for (let i = 0; i < size; i++) {
-    const lacking = needed.filter((oxide) => majors.get(oxide) === undefined || majors.get(oxide)!.states[i] === cellState.missing || majors.get(oxide)!.states[i] === cellState.aboveRange);
+    const lacking = needed.filter(
+      (oxide) =>
+        majors.get(oxide) === undefined ||
+        majors.get(oxide)!.states[i] === cellState.missing ||
+        majors.get(oxide)!.states[i] === cellState.aboveRange,
+    );
     if (Number.isNaN(iron[i])) lacking.push('iron' as 'SiO2');
     if (lacking.length > 0) {
       oxides[i] = withVolatiles[i] = NaN;
@@ -70,7 +75,8 @@ export function analysisTotals(suite: Suite, window: { readonly from: number; re
 function ironAsReported(suite: Suite): Float64Array {
   const [ferricTotal, ferrousTotal, ferrous, ferric] = ['Fe2O3T', 'FeOT', 'FeO', 'Fe2O3'].map((symbol) => suite.columns.get(symbol));
   const iron = new Float64Array(suite.size).fill(NaN);
-  const measured = (column: Column | undefined, i: number) => column !== undefined && Number.isFinite(column.values[i]) && column.states[i] === cellState.measured;
+  const measured = (column: Column | undefined, i: number) =>
+    column !== undefined && Number.isFinite(column.values[i]) && column.states[i] === cellState.measured;
   for (let i = 0; i < iron.length; i++) {
     if (measured(ferric, i) && measured(ferrous, i)) iron[i] = ferric!.values[i] + ferrous!.values[i];
     else if (measured(ferricTotal, i)) iron[i] = ferricTotal!.values[i];
