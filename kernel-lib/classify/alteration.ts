@@ -5,9 +5,12 @@ import type { Scheme } from './scheme';
 /** Elements that alteration moves easily; a scheme that reads one of them is set back where a sample is flagged. */
 const mobile = ['K2O', 'Na2O', 'CaO', 'Rb', 'Sr', 'Ba'];
 
+/** Texts that say a sample is fresh. */
+const fresh = /^\s*(|-|none|no|fresh|unaltered|false|0)\s*$/i;
+
 /** The audit's flag of every sample ('' = none), or undefined when the suite has no such label. */
 export function alterationFlags(suite: Suite): readonly string[] | undefined {
-  return suite.labels.get('alteration');
+  return suite.labels.get('alteration')?.map((text) => (fresh.test(text) ? '' : text));
 }
 
 /** Words by which a flag names the element that moved. */

@@ -76,7 +76,8 @@ export function nameWith(operands: Operands, normIron: IronSplitOptions, volatil
   const potassium = judge(operands, findScheme('potassium-silica'));
   const highMagnesium = screenMagnesium(operands);
   const asked = Int32Array.from({ length: size }, (_, i) => i).filter((i) => highMagnesium[i] === 0 && fieldsByNorm.has(tas.symbols[i]));
-  const made = norm(majorsOf(suite, asked), { iron: normIron });
+  const fieldOf = normIron.fields ?? tas.symbols;
+  const made = norm(majorsOf(suite, asked, normIron), { iron: { ...normIron, fields: Array.from(asked, (i) => fieldOf[i]) } });
   const normRow = new Int32Array(size).fill(-1);
   asked.forEach((i, row) => (normRow[i] = row));
   const volatileScreen = screenVolatiles(suite);
@@ -143,11 +144,10 @@ function join(known: Map<string, Map<string, string>>, prefix: string, root: str
 /** TAS fields whose names rest on the norm. */
 const fieldsByNorm = new Set(['B', 'U1', 'F', 'T']);
 
-/** The oxides of some rows. */
-function majorsOf(suite: Suite, rows: Int32Array): Suite {
-  const oxides = [...suite.columns.values()].filter(
-    ({ kind, symbol }) => kind === 'oxide' || symbol === 'Ti' || symbol === 'K' || symbol === 'Mn' || symbol === 'P',
-  );
+/** What the norm of some rows reads: their oxides, and the columns that the split of iron is told to read. */
+function majorsOf(suite: Suite, rows: Int32Array, { temperature, pressure }: IronSplitOptions): Suite {
+  const more = new Set<unknown>(['Ti', 'K', 'Mn', 'P', temperature, pressure]);
+  const oxides = [...suite.columns.values()].filter(({ kind, symbol }) => kind === 'oxide' || more.has(symbol));
   return suiteOf({
     columns: oxides.map((each) => gatherColumn(each, rows)),
     labels: { sample: Array.from(rows, (i) => suite.samples[i]) },

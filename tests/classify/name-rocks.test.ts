@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { nameRocks, namingChain, norm, type NormMineral } from 'wedgework';
+import { nameRocks, namingChain, norm, type IronSplitOptions, type NormMineral } from 'wedgework';
 import { read, rock, suiteFrom, type Cells } from './suites';
 
 const name = (cells: Cells) => nameRocks(suiteFrom([cells])).names[0];
@@ -118,6 +118,15 @@ describe('IUGS names, rule by rule', () => {
     const far = nameRocks(suiteFrom([rock({ SiO2: 75, K2O: 3, Na2O: 4, CaO: 1, FeOT: 1.5, MgO: 0.3 })]));
     expect(far.names[0]).toBe('medium-K rhyolite');
     expect(far.remarks[0]).toMatch(/beyond the published range/);
+  });
+
+  it('splits iron for the norm as it is told', () => {
+    const basalt = suiteFrom([{ ...rock({ SiO2: 47, Na2O: 2.2, CaO: 11, FeOT: 9, MgO: 8 }), T: 1180 }]);
+    const magnetite = (normIron: IronSplitOptions) => nameRocks(basalt, { normIron }).norm.weights.Mt.values[0];
+    expect(magnetite({ method: 'fixed', ratio: 0.1 })).toBeLessThan(magnetite({ method: 'fixed', ratio: 0.4 }));
+    // Middlemost (1989): Fe2O3/FeO of 0.20 in the basalt field, which the names themselves supply.
+    expect(magnetite({ method: 'middlemost-1989' })).toBeCloseTo(magnetite({ method: 'fixed', ratio: 0.2 }), 10);
+    expect(magnetite({ method: 'kress-carmichael-1991', temperature: 'T', oxygen: { buffer: 'NNO' } })).toBeGreaterThan(0);
   });
 
   it('says why there is no name, and refuses options it does not know', () => {

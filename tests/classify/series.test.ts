@@ -125,7 +125,7 @@ describe('consensus', () => {
   });
 
   it('reads the reasons of a flag: elements that are named, or every mobile one', () => {
-    const flags = ['Na2O 0.6 below 1', 'LOI 4 above 2.5', 'Na2O 0.6 below 1; LOI 4 above 2.5', 'CaO 0.5 below 1'];
+    const flags = ['Na2O 0.6 below 1', 'LOI 4 above 2.5', 'Na2O 0.6 below 1; LOI 4 above 2.5', 'CaO 0.5 below 1', 'FRESH'];
     const { because } = consensus(
       suiteFrom(
         flags.map(() => tholeiite),
@@ -136,6 +136,7 @@ describe('consensus', () => {
     expect(because[0]).not.toMatch(/K2O moved/);
     expect(because[1]).toMatch(/AFM \(Na2O, K2O moved\)/);
     expect(because[2]).toMatch(/AFM \(Na2O, K2O moved\)/);
+    expect(because[4]).not.toMatch(/altered/);
     expect(because[3]).toMatch(/flagged as altered \(CaO 0.5 below 1\)\.$/);
   });
 
