@@ -184,3 +184,17 @@ export function sourcesOf(used: Iterable<UsedCoefficient>): readonly string[] {
   for (const { source, standing } of used) if (standing !== 'supplied') keys.add(source);
   return [...keys];
 }
+
+/** @internal Coefficients as a step of the lineage records them: mineral, element, melt type, value, range, source, standing. */
+export function recordCoefficients(used: Iterable<UsedCoefficient>): readonly (readonly (string | number)[])[] {
+  return Array.from(used, ({ mineral, analyte, meltType, value, low, high, source, standing }) => [
+    mineral,
+    analyte,
+    meltType,
+    value,
+    low,
+    high,
+    source,
+    standing,
+  ]);
+}

@@ -7,6 +7,7 @@ import { readPhaseColumns, type BalanceMinerals, type PhaseColumn } from './bala
 import { checkOwnCoefficients, gatherCoefficients, readMeltTypes, sourcesOf, type OwnCoefficients, type UsedCoefficient } from './coefficients';
 import { descentOfAssemblage, type AssemblageProblem, type AssemblageState } from './assemblage-solver';
 import { settledLabel } from './mass-balance';
+import { describeCoefficients } from './path';
 import { readNumber } from './trace-setup';
 
 /** What `fitAssemblage` takes. */
@@ -220,6 +221,7 @@ export function fitAssemblage(suite: Suite, options: FitAssemblageOptions): Asse
       `F: ${it.samples.map(({ sample, F }) => `${sample} ${F.toFixed(2)}`).join(', ')}.`,
       `Root mean square residual in σ: ${it.quantities.map(({ analyte, rms }) => `${analyte} ${rms.toFixed(1)}`).join(', ')}.`,
       ...it.notes,
+      ...describeCoefficients(it.coefficients),
     ],
   }));
 }

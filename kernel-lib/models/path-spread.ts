@@ -1,10 +1,10 @@
 import { equilibriumLiquid, rayleighLiquid, seededRandom } from '../chemistry';
 import { showAs, type Showable, type TableCell } from '../display';
 import { derivedColumn, step, suiteOf, type Suite, type Traced } from '../suite';
-import { sourcesOf, type UsedCoefficient } from './coefficients';
+import { recordCoefficients, sourcesOf, type UsedCoefficient } from './coefficients';
 import type { CrystalliseOptions } from './crystallise';
 import { errorOf } from './one-analysis';
-import { evenly } from './path';
+import { describeCoefficients, evenly } from './path';
 import { readNumber, setUpTrace } from './trace-setup';
 
 /** What `spreadOfPath` takes besides what `crystallise` does. */
@@ -106,16 +106,7 @@ export async function spreadOfPath(options: PathSpreadOptions): Promise<PathSpre
       startError,
       shareError,
       leastSpread,
-      coefficients: setup.used.map(({ mineral, analyte, meltType, value, low, high, source, standing }) => [
-        mineral,
-        analyte,
-        meltType,
-        value,
-        low,
-        high,
-        source,
-        standing,
-      ]),
+      coefficients: recordCoefficients(setup.used),
     },
     {
       sources: [...new Set([...(mode === 'rayleigh' ? ['neumann_1954', 'gast_1968'] : ['shaw_1970']), ...sourcesOf(setup.used)])],
@@ -160,6 +151,7 @@ export async function spreadOfPath(options: PathSpreadOptions): Promise<PathSpre
     ]),
     notes: [
       ...it.notes,
+      ...describeCoefficients(it.coefficients),
       `Coefficients over their published ranges, at least ±${100 * leastSpread} %; start ±${100 * startError} % where it has no 1σ of its ` +
         `own; shares ±${shareError}.`,
     ],

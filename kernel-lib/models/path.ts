@@ -2,7 +2,7 @@ import { findAnalyte } from '../chemistry';
 import { showAs, type Showable, type TableCell } from '../display';
 import { derivedColumn, step, suiteOf, type Column, type Step, type StepDetail, type Suite, type Traced } from '../suite';
 import { shortSource } from '../tables';
-import { sourcesOf, type UsedCoefficient } from './coefficients';
+import { recordCoefficients, sourcesOf, type UsedCoefficient } from './coefficients';
 
 /**
  * A forward model: what the liquid becomes, step by step (n steps). `liquid` is a suite like any other, so every diagram and every
@@ -65,19 +65,7 @@ export function buildPath(parts: PathParts): ModelPath {
   const { who, process, F, meaning, coefficients, notes } = parts;
   const because = step(
     who,
-    {
-      process,
-      ...parts.detail,
-      steps: F.length - 1,
-      coefficients: coefficients.map(({ mineral, analyte, meltType, value, source, standing }) => [
-        mineral,
-        analyte,
-        meltType,
-        value,
-        source,
-        standing,
-      ]),
-    },
+    { process, ...parts.detail, steps: F.length - 1, coefficients: recordCoefficients(coefficients) },
     {
       sources: [...new Set([...(parts.sources ?? []), ...sourcesOf(coefficients)])],
       tables: [...new Set([...(coefficients.length > 0 ? ['partition-coefficients.csv'] : []), ...(parts.tables ?? [])])],

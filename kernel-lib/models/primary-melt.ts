@@ -7,7 +7,7 @@ import { checkRedox, ferricShareOf, type LiquidRedox } from './liquid-properties
 import { majors, majorMasses, place } from './liquid-state';
 import { thermometers } from './melt-tables';
 import { amountOf, type Composition } from './one-analysis';
-import { buildPath, type ModelPath } from './path';
+import { buildPath, describeCoefficients, type ModelPath } from './path';
 import { equilibriumOlivine, liquidTemperature, olivineLiquidTemperature } from './thermometry';
 import { chooseElements, readNumber } from './trace-setup';
 import { olivineOxides } from './whole-rock-majors';
@@ -221,7 +221,7 @@ export function primaryMelt(options: PrimaryMeltOptions): PrimaryMelt {
       ['lava', ...it.melt.analytes.map((symbol): TableCell => path.liquid.values(symbol)[0])],
       ['primary melt', ...it.melt.analytes.map((symbol): TableCell => it.melt.values(symbol)[0])],
     ],
-    notes: it.notes,
+    notes: [...it.notes, ...describeCoefficients(it.path.coefficients)],
   }));
 }
 

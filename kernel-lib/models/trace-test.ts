@@ -7,6 +7,7 @@ import {
   findCoefficient,
   MissingCoefficientsError,
   readMeltTypes,
+  recordCoefficients,
   sourcesOf,
   type MissingCoefficient,
   type OwnCoefficients,
@@ -15,6 +16,7 @@ import {
 import type { MassBalance } from './mass-balance';
 import { compareRatios, judgeTraces } from './trace-verdict';
 import { amountOf, errorOf } from './one-analysis';
+import { describeCoefficients } from './path';
 import { readNumber } from './trace-setup';
 
 /** What `testTraces` takes. */
@@ -267,23 +269,7 @@ export function testTraces(balance: MassBalance, options: TraceTestOptions = {})
   ];
   const because = step(
     who,
-    {
-      mode,
-      meltTypes: [...sets],
-      relativeError,
-      leastSpread,
-      verdict,
-      coefficients: used.map(({ mineral, analyte, meltType, value, low, high, source, standing }) => [
-        mineral,
-        analyte,
-        meltType,
-        value,
-        low,
-        high,
-        source,
-        standing,
-      ]),
-    },
+    { mode, meltTypes: [...sets], relativeError, leastSpread, verdict, coefficients: recordCoefficients(used) },
     { sources: [...new Set([mode === 'rayleigh' ? 'neumann_1954' : 'shaw_1970', ...sourcesOf(used)])], tables: ['partition-coefficients.csv'] },
   );
   return showAs({ verdict, why, elements, ratios, coefficients: used, missing, notes, lineage: [...balance.lineage, because] }, (it) => ({
@@ -308,6 +294,7 @@ export function testTraces(balance: MassBalance, options: TraceTestOptions = {})
         ? [`Isotope ratios, daughter less parent: ${it.ratios.map(({ ratio, off }) => `${ratio} ${off.toFixed(1)}σ`).join(', ')}.`]
         : []),
       ...it.notes,
+      ...describeCoefficients(it.coefficients),
     ],
   }));
 }

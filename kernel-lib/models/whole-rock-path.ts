@@ -152,6 +152,7 @@ export function wholeRockPath(options: WholeRockOptions): ModelPath {
     notes.push(`Not modelled, because a coefficient is missing: ${elements.filter((symbol) => !traces.analytes.includes(symbol)).join(', ')}.`);
   const carried = followTraces(traces, found, sets, start, hasZircon ? zirconModel : undefined, width, phases);
   notes.push(...found.notes, ...carried.notes);
+  if (traces.analytes.length > 0) notes.push(`Coefficient sets in force: ${changesOf(sets, F)}.`);
 
   const liquid = new Map<string, Float64Array>();
   const solid = new Map<string, Float64Array>();
@@ -224,6 +225,11 @@ export function wholeRockPath(options: WholeRockOptions): ModelPath {
       ...(apatite || hasZircon ? ['saturation.json'] : []),
     ],
   });
+}
+
+/** Where a label changes along the path: `basalt from F = 1, andesite from F = 0.86`. */
+function changesOf(labels: readonly string[], F: Float64Array): string {
+  return labels.flatMap((label, i) => (i === 0 || labels[i - 1] !== label ? [`${label} from F = ${Number(F[i].toFixed(3))}`] : [])).join(', ');
 }
 
 /** Whether zircon could be at saturation at a state, with Zr as enriched as it can be: none of it in any crystal so far. */

@@ -126,6 +126,23 @@ describe('crystallise', () => {
     );
   });
 
+  it('agrees with numerical integration of the mass balance', () => {
+    // Rayleigh: an increment of mass dF leaves with D times the liquid's concentration; the crystals so far are what left.
+    for (const D of [0.05, 0.8, 1.7, 6]) {
+      const steps = 200_000;
+      let [mass, left] = [1, 0];
+      for (let i = 0; i < steps; i++) {
+        const F = 1 - (0.6 * i) / steps;
+        const out = (0.6 / steps) * D * (mass / F) * (1 - (0.3 / steps) * (D - 1) * (1 / F));
+        mass -= out;
+        left += out;
+      }
+      const path = crystallise({ from: { Ba: 1 }, ...bulk(D), downTo: 0.4, steps: 1 });
+      expect(last(path.liquid.values('Ba')) / (mass / 0.4)).toBeCloseTo(1, 4);
+      expect(last(path.cumulate!.values('Ba')) / (left / 0.6)).toBeCloseTo(1, 4);
+    }
+  });
+
   it('agrees between Rayleigh and equilibrium to first order as F goes to 1', () => {
     for (const D of [0, 0.1, 0.5, 2, 8]) {
       const gap = (removed: number) => {

@@ -72,6 +72,7 @@ describe('wholeRockPath', () => {
     const sets = path.liquid.label('coefficient set');
     expect(sets[0]).toBe('basalt');
     expect(new Set(sets).size).toBeGreaterThan(1);
+    expect(path.notes.join(' ')).toMatch(/Coefficient sets in force: basalt from F = 1, andesite from F = 0\.\d+/);
     const value = (mineral: string, analyte: string, set: string) =>
       path.coefficients.filter((each) => each.mineral === mineral && each.analyte === analyte).find((each) => each.meltType === set)?.value;
     // Euler steps on the element's mass, 50 to a step of the path.
