@@ -45,7 +45,7 @@ export function slabFromDepths(points: SlabPoints, options: PublishedSlabOptions
     throw new RangeError('slabFromDepths: all points lie on one line, so there is no surface through them. Give at least two contours.');
   const at = (longitudes: ArrayLike<number>, latitudes: ArrayLike<number>) => below(surface, plane, { longitudes, latitudes, sigma, reach });
   const found = options.trench ?? shallowestLine(points);
-  const trench = found === undefined ? undefined : orientedTrench(found, at, points, plane);
+  const trench = found === undefined ? undefined : orientedTrench(found, points, plane);
   const extent = extentOf(points.longitude, points.latitude, plane.centre.longitude);
   const depthRange = [points.depth.reduce((a, b) => Math.min(a, b), Infinity), points.depth.reduce((a, b) => Math.max(a, b), -Infinity)] as const;
   const notes = [...points.notes];
@@ -131,7 +131,6 @@ export function setAttitude(
 /** @internal The line turned so that most of the slab's deeper data lie on its right: along-arc position then grows along strike. */
 export function orientedTrench(
   line: TrenchLine,
-  _at: unknown,
   points: { longitude: Float64Array; latitude: Float64Array; depth: Float64Array },
   plane: Plane,
 ): TrenchLine {

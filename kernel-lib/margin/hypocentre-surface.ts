@@ -209,7 +209,7 @@ function finish(made: Finish): HypocentreSlab & Showable {
     latitude: Float64Array.from(chosen, (i) => events.latitude[i]),
     depth: Float64Array.from(chosen, (i) => events.depth[i]),
   };
-  const trench = options.trench === undefined ? undefined : orientedTrench(options.trench, at, onSlab, plane);
+  const trench = options.trench === undefined ? undefined : orientedTrench(options.trench, onSlab, plane);
   const extent = extentOf(onSlab.longitude, onSlab.latitude, plane.centre.longitude);
   const depthRange = [onSlab.depth.reduce((a, b) => Math.min(a, b), Infinity), onSlab.depth.reduce((a, b) => Math.max(a, b), -Infinity)] as const;
   const separation = fit.doublePlane && fit.mixture.share[1] > 0.02 ? fit.mixture.lowerAt : undefined;
