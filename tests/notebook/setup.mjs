@@ -63,6 +63,8 @@ if (!existsSync(stamp) || readFileSync(stamp, 'utf8') !== wanted || !tried(pytho
 if (['chromium', 'chromium-browser', 'google-chrome'].every((name) => onPath(name) === undefined)) debian('chromium');
 // For nbconvert's LaTeX.
 if (onPath('pandoc') === undefined) debian('pandoc');
+// Opens written workbooks.
+if (onPath('soffice') === undefined) debian('libreoffice-calc');
 
 run(process.execPath, [join(root, 'kernel-lib', 'dist', 'kernel', 'cli.js'), 'kernel', 'install', '--venv', venv], { stdio: ['ignore', 'ignore', 'inherit'] });
 const stock = join(venv, 'share', 'jupyter', 'kernels', 'tslab');
