@@ -3,7 +3,7 @@ export { AssayError } from './errors';
 export type { ColumnSetting } from './plan-columns';
 export { readAssays, type Assays } from './read-assays';
 export type { ReadAssaysOptions } from './read-options';
-export type { ImportedColumn, ImportReport, SheetSummary } from './report';
+export { writeImportReport, type ImportedColumn, type ImportReport, type SheetSummary } from './report';
 export * from './sheet-grids';
 export { writeAssays } from './write-assays';
 export { writeTable, type TableColumn, type TableLabels } from './write-table';

@@ -275,7 +275,9 @@ function demoteText(layout: Layout, drafts: Draft[], notes: PlanNotes): void {
         else words++;
       }
     }
-    if (words > numbers) {
+    // A head with a unit of mass means the analyte, and its odd cells are faults; unless there is nothing but words.
+    const sure = made.role === 'analyte' && made.knownUnit && made.sheetUnit !== '';
+    if (sure ? numbers === 0 && words >= 5 : words > numbers) {
       notes.pleaseCheck.push(`"${made.head}" reads like ${made.name === '' ? 'an uncertainty' : made.name} but holds words: kept as a label`);
       Object.assign(made, { role: 'label', name: headKey(made.head), unit: '', sheetUnit: '', factor: 1, knownUnit: true, method: '' } as const);
     }

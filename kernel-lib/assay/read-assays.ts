@@ -71,6 +71,7 @@ export async function readAssays(path: string, options: ReadAssaysOptions = {}):
       samplesIn: first.layout.samplesIn,
       rows: whole.labels.get('sample')?.length ?? columns[0].values.length,
       columns: read.flatMap(({ decoded }) => decoded.imported),
+      sheetRows: first.layout.body.map((row) => row + 1),
       ...(iron === undefined ? {} : { iron }),
       inferred,
       ignored: read.flatMap((each) => each.ignored),

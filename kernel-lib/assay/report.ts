@@ -1,5 +1,6 @@
-import type { TableView } from '../display';
+import { escapeSpreadsheet, writeWhole, type TableView } from '../display';
 import type { TotalIronCounts } from '../recast';
+import { csvText } from './csv-text';
 
 /** What one source column became, and what its cells were. */
 export interface ImportedColumn {
@@ -47,6 +48,8 @@ export interface ImportReport {
   readonly samplesIn: 'rows' | 'columns';
   readonly rows: number;
   readonly columns: readonly ImportedColumn[];
+  /** Row in the first sheet read (column, where samples stand in columns), counted from 1, of each of its samples. */
+  readonly sheetRows: ArrayLike<number>;
   /** How the total iron of each row was found; undefined when the sheet has no iron. */
   readonly iron?: TotalIronCounts;
   /** What was concluded without the sheet saying so. */
@@ -87,4 +90,20 @@ export function reportView(report: ImportReport): TableView {
     ]),
     notes,
   };
+}
+
+/**
+ * Writes the import report as .csv beside the results: one row a source column, then what was inferred, left out and should be checked.
+ *
+ * @param report of `readAssays`
+ * @param path of the .csv file; folders are made
+ * @example writeImportReport(assays.report, 'results/import-report.csv')
+ */
+export function writeImportReport(report: ImportReport, path: string): void {
+  if (!Array.isArray(report?.columns) || !Array.isArray(report?.pleaseCheck)) {
+    throw new TypeError('writeImportReport: report must be the report of readAssays, as in (await readAssays(path)).report.');
+  }
+  const { columns, rows, notes = [] } = reportView(report);
+  const line = (cells: readonly unknown[]) => cells.map((cell) => csvText(escapeSpreadsheet(cell === null || cell === undefined ? '' : String(cell)))).join(',');
+  writeWhole(path, `${[line(columns), ...rows.map(line), ...notes.map((note) => line([note]))].join('\n')}\n`);
 }

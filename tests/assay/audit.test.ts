@@ -177,6 +177,21 @@ describe('duplicates', () => {
   });
 });
 
+describe('compilations', () => {
+  it('do not take names that many papers reuse as duplicates, and say so in one line', () => {
+    const made = batch({ runs: 2, samples: 30 });
+    const again = made.names.flatMap((name, row) => (name.startsWith('KE-') ? [row] : [])).slice(0, 12);
+    for (const row of again) {
+      made.names.push(made.names[row]);
+      made.rows.push(made.rows[row].map((value, j) => value * (j % 2 === 0 ? 1.8 : 0.5)));
+    }
+    const checked = audit(suiteFrom(made));
+    expect(checked.duplicates).toEqual([]);
+    expect(checked.pleaseCheck.filter((text) => /equal names are not taken as duplicates/.test(text))).toHaveLength(1);
+    expect(checked.pleaseCheck.length).toBeLessThan(10);
+  });
+});
+
 describe('uncertainty of the columns', () => {
   const named = (found: ReturnType<typeof audit>, symbol: string) => found.sigmas.find(({ analyte }) => analyte === symbol)!;
 

@@ -1,8 +1,8 @@
-import { readdirSync, readFileSync } from 'node:fs';
+import { readdirSync, readFileSync, writeFileSync } from 'node:fs';
 import { dirname } from 'node:path';
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { cellState, column, readAssays, suiteOf, writeAssays, writeTable, type Column, type Suite } from 'wedgework';
+import { cellState, column, readAssays, suiteOf, writeAssays, writeImportReport, writeTable, type Column, type Suite } from 'wedgework';
 import { temporary } from './helpers';
 
 const positive = fc.oneof(
@@ -166,6 +166,22 @@ describe('writeAssays', () => {
     };
     await expect(writeTable(path, [broken], { sample: ['A'] })).rejects.toThrow('lost');
     expect(readdirSync(dirname(path)).filter((name) => name.includes('broken'))).toEqual([]);
+  });
+});
+
+describe('writeImportReport', () => {
+  it('writes every column and every line to check, texts inert', async () => {
+    const source = temporary('source.csv');
+    writeFileSync(source, 'Sample,=odd,SiO2 (wt%),Ba (ppm)\nA,x,51,oops\n');
+    const path = temporary('report.csv');
+    const { report } = await readAssays(source);
+    writeImportReport(report, path);
+    const lines = readFileSync(path, 'utf8').trim().split('\n');
+    expect(lines[0]).toBe('column,head,became,name,unit,converted,measured,below,above,missing,unreadable,note');
+    expect(lines[2]).toContain("B,'=odd,label,'=odd");
+    expect(lines.at(-1)).toContain('Please check: ""Ba (ppm)"": 1 unreadable (first: D2 ""oops"", not a number)');
+    expect([...(report.sheetRows as Uint32Array)]).toEqual([2]);
+    expect(() => writeImportReport({} as never, path)).toThrow(/report of readAssays/);
   });
 });
 

@@ -114,7 +114,7 @@ export function screenAlteration(suite: Suite, options: AlterationOptions): Alte
   return { verdict, reason: reasons.map((each) => each.join('; ')), asked, quantities, alkaliShare, alkalis, rulesNotAsked };
 }
 
-const short = (value: number) => String(Number(value.toPrecision(3)));
+const short = (value: number) => String(Number(value.toPrecision(4)));
 
 function quantity(suite: Suite, expression: string): Float64Array | undefined {
   const chondrite = reservoir('chondrite-c1-1989');

@@ -1,10 +1,10 @@
 import { findAnalyte } from '../../chemistry';
 import { showAs, type Showable, type TableCell, type TableView } from '../../display';
 import { step, type Suite, type Traced } from '../../suite';
-import { screenAlteration, type AlterationScreen } from './alteration';
+import { alterationRules, screenAlteration, type AlterationScreen } from './alteration';
 import { blankLimits, type BlankLimit } from './blanks';
 import { columnSigmas, type ColumnSigma, type StatedSigma } from './column-sigma';
-import { duplicateGroups, duplicatePrecision, unlikePairs, type DuplicatePrecision, type UnlikePair } from './duplicates';
+import { duplicateGroups, duplicatePrecision, namesAreReused, unlikePairs, type DuplicatePrecision, type UnlikePair } from './duplicates';
 import { accuracy, checkMaterials, recoveries, type AccuracyVerdict, type MixUp, type Recovery } from './recoveries';
 import { rockMaterial, type RockMaterial } from './rock-materials';
 import { sampleRoles } from './sample-roles';
@@ -78,10 +78,11 @@ export function audit(suite: Suite, options: AuditOptions = {}): Audit {
   const verdicts = accuracy(suite, materials, runs, materialOptions);
   const groups = duplicateGroups(roles.base, isControl);
   const unlike = unlikePairs(suite, groups);
+  const reused = namesAreReused(unlike, groups);
   const suspect = new Set(unlike.map(({ rows }) => rows.join()));
   const duplicates = duplicatePrecision(
     suite,
-    groups.filter((rows) => !rows.some((row) => suspect.has(`${rows[0]},${row}`))),
+    reused ? [] : groups.filter((rows) => !rows.some((row) => suspect.has(`${rows[0]},${row}`))),
   );
   const blanks = blankLimits(suite, roles.blank);
   const { columns, sigmas } = columnSigmas(suite, duplicates, runs, options.sigma ?? {});
@@ -89,7 +90,7 @@ export function audit(suite: Suite, options: AuditOptions = {}): Audit {
   const screen = screenAlteration(suite, { limits, spectrum, group });
   const label = screen.verdict.map((verdict, row) => (verdict === 'altered' && !isControl(row) ? screen.reason[row] : ''));
   const takenOut = keep === 'all' ? [] : takenOutOf(suite, materials, misnamed, roles);
-  const pleaseCheck = attention({ suite, totals, verdicts, mixUps, unlike, blanks, screen, isControl, takenOut });
+  const pleaseCheck = attention({ suite, totals, verdicts, mixUps, unlike, reused, blanks, screen, isControl, takenOut });
   const because = auditStep(suite, options, { materials, runs, duplicates, sigmas, screen, takenOut, window, tolerance, label });
   let audited = suite.with(columns, because).withLabels({ alteration: label }, step('audit: label', { alteration: label.filter(Boolean).length }));
   if (takenOut.length > 0) {
@@ -130,6 +131,7 @@ interface Findings {
   readonly verdicts: readonly AccuracyVerdict[];
   readonly mixUps: readonly MixUp[];
   readonly unlike: readonly UnlikePair[];
+  readonly reused: boolean;
   readonly blanks: readonly BlankLimit[];
   readonly screen: AlterationScreen;
   readonly isControl: (row: number) => boolean;
@@ -138,8 +140,11 @@ interface Findings {
 
 const mostListed = 20;
 
-function attention({ suite, totals, verdicts, mixUps, unlike, blanks, screen, isControl, takenOut }: Findings): string[] {
-  const list: string[] = [...mixUps.map(({ words }) => words), ...unlike.map(({ words }) => words)];
+function attention({ suite, totals, verdicts, mixUps, unlike, reused, blanks, screen, isControl, takenOut }: Findings): string[] {
+  const names = new Set(unlike.map(({ sample }) => sample)).size;
+  const list: string[] = mixUps.map(({ words }) => words);
+  if (reused) list.push(`${names} sample names stand on unlike rows, as in a compilation of many papers: equal names are not taken as duplicates`);
+  else list.push(...unlike.map(({ words }) => words));
   for (const { analyte, words, verdict, chart } of verdicts) {
     if (verdict === 'biased') list.push(`${analyte} is ${words} against the reference materials`);
     for (const signal of chart) list.push(`${analyte}: ${signal}`);
@@ -149,7 +154,7 @@ function attention({ suite, totals, verdicts, mixUps, unlike, blanks, screen, is
   const say = (what: string, rows: readonly number[], words: (row: number) => string) => {
     if (rows.length > 0)
       list.push(
-        `${rows.length} ${what}: ${rows
+        `${what} (${rows.length}): ${rows
           .slice(0, mostListed)
           .map((row) => `${suite.samples[row]} (${words(row)})`)
           .join(', ')}${rows.length > mostListed ? ' …' : ''}`,
@@ -162,7 +167,12 @@ function attention({ suite, totals, verdicts, mixUps, unlike, blanks, screen, is
     (row) => totals.words[row],
   );
   say(
-    'samples are altered',
+    'no total, because a major oxide is missing',
+    rows.filter((row) => totals.verdict[row] === 'not determined' && totals.measured[row] > 0),
+    (row) => totals.words[row].replace('total not determined: ', ''),
+  );
+  say(
+    'altered samples',
     rows.filter((row) => screen.verdict[row] === 'altered'),
     (row) => screen.reason[row],
   );
@@ -196,6 +206,11 @@ function auditStep(suite: Suite, options: AuditOptions, parts: StepParts) {
       .filter(({ standing, analyte }) => standing === 'from memory' && suite.has(analyte))
       .map(({ analyte, value }) => `${analyte} in ${name} ${value} (${source})`),
   );
+  const left = options.alteration ?? {};
+  for (const { key, reason, low, high, source, standing } of alterationRules()) {
+    if (standing !== 'from memory' || left[key] !== undefined || parts.screen.rulesNotAsked.includes(key)) continue;
+    remembered.push(`alteration screen: ${reason} ${low === undefined ? `above ${high}` : `below ${low}`}${low !== undefined && high !== undefined ? ` or above ${high}` : ''} (${source})`);
+  }
   const altered = label.filter(Boolean).length;
   return step(
     'audit',

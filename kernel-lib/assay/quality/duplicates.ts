@@ -128,6 +128,16 @@ export function precisionLine(pairs: readonly { readonly centre: number; readonl
   return { intercept: meanY - slope * meanX, slope, pairs: pairs.length, groups: x.length };
 }
 
+/** Names that stand on unlike rows this often are reused, as compilations of many papers do: they do not mark duplicates. */
+const mostUnlike = 5;
+const mostUnlikeShare = 0.3;
+
+/** Whether equal names mark duplicates in this suite at all. */
+export function namesAreReused(unlike: readonly UnlikePair[], groups: readonly (readonly number[])[]): boolean {
+  const names = new Set(unlike.map(({ sample }) => sample)).size;
+  return names > mostUnlike && names > mostUnlikeShare * groups.length;
+}
+
 /** Pairs that disagree in most analytes at once, which no laboratory does: a name stands on the wrong row. */
 export function unlikePairs(suite: Suite, groups: readonly (readonly number[])[]): UnlikePair[] {
   const columns = [...suite.columns.values()].filter(
@@ -144,7 +154,7 @@ export function unlikePairs(suite: Suite, groups: readonly (readonly number[])[]
       const off = distance(rows[0], rows[j]);
       if (off < 0.1) continue;
       const better =
-        suite.size > 5_000
+        suite.size > 5_000 || unlike.length > 20
           ? []
           : [rows[0], rows[j]].flatMap((row) => {
               let best = -1;

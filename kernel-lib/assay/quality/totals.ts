@@ -9,6 +9,8 @@ export interface Totals {
   readonly withVolatiles: Float64Array;
   /** Oxygen that F and Cl stand for. */
   readonly oxygenOfHalogens: Float64Array;
+  /** How many of the needed major oxides each sample has. */
+  readonly measured: Uint8Array;
   readonly verdict: readonly ('in window' | 'low' | 'high' | 'not determined')[];
   readonly words: readonly string[];
   readonly window: { readonly from: number; readonly to: number };
@@ -36,6 +38,7 @@ export function analysisTotals(suite: Suite, window: { readonly from: number; re
   const oxides = new Float64Array(size);
   const withVolatiles = new Float64Array(size);
   const oxygenOfHalogens = new Float64Array(size);
+  const measured = new Uint8Array(size);
   const verdict: Totals['verdict'][number][] = [];
   const words: string[] = [];
   for (let i = 0; i < size; i++) {
@@ -45,6 +48,7 @@ export function analysisTotals(suite: Suite, window: { readonly from: number; re
         majors.get(oxide)!.states[i] === cellState.missing ||
         majors.get(oxide)!.states[i] === cellState.aboveRange,
     );
+    measured[i] = needed.length - lacking.length;
     if (Number.isNaN(iron[i])) lacking.push('iron' as 'SiO2');
     if (lacking.length > 0) {
       oxides[i] = withVolatiles[i] = NaN;
@@ -68,7 +72,7 @@ export function analysisTotals(suite: Suite, window: { readonly from: number; re
     verdict.push(outcome);
     words.push(outcome === 'in window' ? '' : `total ${sum.toFixed(2)} wt % is ${outcome}`);
   }
-  return { oxides, withVolatiles, oxygenOfHalogens, verdict, words, window };
+  return { oxides, withVolatiles, oxygenOfHalogens, measured, verdict, words, window };
 }
 
 /** Iron in the form in which it was reported: that is the form that makes a laboratory's total. */
