@@ -43,8 +43,8 @@ describe('report', () => {
     expect(page).toContain('Le Bas M.J.');
   });
 
-  it('writes the same bytes again, as page and as PDF', async () => {
-    for (const kind of ['html', 'pdf']) {
+  it('writes the same bytes again, as page, PDF and workbook', async () => {
+    for (const kind of ['html', 'pdf', 'xlsx']) {
       const [one, two] = [join(folder, `one.${kind}`), join(folder, `two.${kind}`)];
       for (const path of [one, two]) await saveReport(await report(await parts()), path);
       expect(readFileSync(one).equals(readFileSync(two)), kind).toBe(true);

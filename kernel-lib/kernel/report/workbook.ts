@@ -1,4 +1,4 @@
-import { escapeSpreadsheet } from '../../display';
+import { escapeSpreadsheet, withoutZipTimes } from '../../display';
 import type { TableBlock } from './blocks';
 import { isNumeric } from './page';
 
@@ -22,11 +22,11 @@ interface Sheet {
 }
 type WriteWorkbook = (sheets: readonly Sheet[], options: { readonly fontFamily: string; readonly fontSize: number }) => { toBuffer(): Promise<Buffer> };
 
-/** The tables as an Excel workbook; numbers are numbers, and a text that a spreadsheet would take for a formula is made inert. */
+/** The tables as an Excel workbook; the same tables give the same bytes; numbers are numbers, and a text that a spreadsheet would take for a formula is made inert. */
 export async function workbookBytes(sheets: readonly WorkbookSheet[]): Promise<Uint8Array> {
   // eslint-disable-next-line @typescript-eslint/no-require-imports
   const write = (require('write-excel-file/node') as { default: WriteWorkbook }).default;
-  return write(sheets.map(sheetOf), { fontFamily: 'Arial', fontSize: 10 }).toBuffer();
+  return withoutZipTimes(await write(sheets.map(sheetOf), { fontFamily: 'Arial', fontSize: 10 }).toBuffer());
 }
 
 const cellOf = (text: string): Cell => (text === '' ? null : { value: isNumeric(text) && Number.isFinite(Number(text)) ? Number(text) : escapeSpreadsheet(text) });
