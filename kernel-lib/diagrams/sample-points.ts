@@ -101,14 +101,18 @@ export function samplePoints(who: string, suite: Suite, axes: PointAxes, options
   const side = new Uint8Array(size);
   let bounded = 0;
   for (let i = 0; i < size; i++) {
-    const limited = boundOf(xs, i) ?? boundOf(ys, i);
-    if (limited === undefined || (Number.isNaN(x[i]) && Number.isNaN(y[i]))) continue;
-    if (Number.isNaN(x[i])) {
+    // One limited value can be drawn as an arrow; where the other axis has no value either, nothing can.
+    const across = Number.isNaN(x[i]);
+    if (across === Number.isNaN(y[i])) continue;
+    const limited = boundOf(across ? xs : ys, i);
+    if (limited === undefined) continue;
+    const isBelow = limited === cellState.belowDetection;
+    if (across) {
       x[i] = xs.limits![i];
-      side[i] = limited === cellState.belowDetection ? pointSide.left : pointSide.right;
+      side[i] = isBelow ? pointSide.left : pointSide.right;
     } else {
       y[i] = ys.limits![i];
-      side[i] = limited === cellState.belowDetection ? pointSide.below : pointSide.above;
+      side[i] = isBelow ? pointSide.below : pointSide.above;
     }
     bounded++;
   }
@@ -144,6 +148,13 @@ function boundOf(of: Column, row: number): number | undefined {
   return (state === cellState.belowDetection || state === cellState.aboveRange) && Number.isFinite(of.limits?.[row]) ? state : undefined;
 }
 
+const errorNotes = { bars: 'Bars: 1σ.', ellipses: 'Ellipses: 1σ of each axis, taken as uncorrelated.' } as const;
+
+function hasSigma({ sigmaX, sigmaY }: SamplePoints, errors: 'bars' | 'ellipses'): boolean {
+  const known = [sigmaX, sigmaY].map((sigma) => sigma?.some((value) => value > 0) === true);
+  return errors === 'bars' ? known.includes(true) : known.every(Boolean);
+}
+
 function captionNotes(points: SamplePoints, grouping: Grouping | undefined, options: SampleOptions, bounded: number): string[] {
   const notes: string[] = [];
   const drawn = countDrawn(points);
@@ -152,8 +163,8 @@ function captionNotes(points: SamplePoints, grouping: Grouping | undefined, opti
   }
   if (points.open?.includes(1)) notes.push('Open symbols: flagged as altered.');
   if (bounded > 0) notes.push('Arrows: value only known to lie on that side of the detection or range limit drawn.');
-  if (options.errors === 'bars') notes.push('Bars: 1σ.');
-  if (options.errors === 'ellipses') notes.push('Ellipses: 1σ of each axis, taken as uncorrelated.');
+  const { errors = 'none' } = options;
+  if (errors !== 'none') notes.push(hasSigma(points, errors) ? errorNotes[errors] : 'No 1σ is known, so no errors are drawn.');
   if (grouping !== undefined && grouping.pooled > 0) notes.push(`The ${grouping.pooled} smallest groups are drawn as one.`);
   return notes;
 }

@@ -111,6 +111,21 @@ describe('samples on a diagram', () => {
     expect(rowsOf(markers(diagrams.xy(suite, 'SiO2', 'MgO')))[0].x).toBe(51.2346);
   });
 
+  it('say so when errors are asked for and none is known', () => {
+    const suite = ww.suiteOf({ columns: [ww.column({ symbol: 'SiO2', values: [50, 60] }), ww.column({ symbol: 'MgO', values: [8, 3] })] });
+    expect(captionOf(diagrams.xy(suite, 'SiO2', 'MgO', { errors: 'bars' }).spec)).toContain('No 1σ is known');
+  });
+
+  it('with a limit on one axis and nothing on the other are not drawn', () => {
+    const states = Uint8Array.of(cellState.belowDetection, cellState.measured);
+    const suite = ww.suiteOf({
+      columns: [ww.column({ symbol: 'Nb', values: [NaN, 3], states, limits: Float64Array.of(1, NaN) }), ww.column({ symbol: 'Yb', values: [NaN, 2] })],
+    });
+    const diagram = diagrams.xy(suite, 'Yb', 'Nb');
+    expect(diagram.counts).toEqual({ plotted: 1, notPlotted: 1, reasons: { 'without Yb': 1 } });
+    expect(captionOf(diagram.spec)).not.toContain('Arrows');
+  });
+
   it('draws errors where they are known', () => {
     const suite = ww.suiteOf({
       columns: [ww.column({ symbol: 'SiO2', values: [50, 60], sigma: [0.5, NaN] }), ww.column({ symbol: 'MgO', values: [8, 3], sigma: [0.2, 0.1] })],
