@@ -199,3 +199,28 @@ export function fitRivals(
   );
   return { fits, r: best!.r, notes };
 }
+
+/** Median misfit of the samples over their degrees of freedom, under the better of crystallisation and mixing. */
+function medianMisfit(input: DescentInput): number {
+  const medians = [crystallisationModel, mixingModel].map((make) => {
+    const { misfits, freedom } = fitRobustly(input, 0.01, (counted) => make(input, counted), 0);
+    const ratios = misfits.map((misfit, s) => misfit / Math.max(1, freedom[s])).sort();
+    return ratios[Math.floor(ratios.length / 2)];
+  });
+  return Math.min(...medians);
+}
+
+/**
+ * @internal The relative scatter of the lavas at which half of the samples misfit by more than their degrees of freedom: found by halving, between none
+ * and 100 %.
+ */
+export function estimateScatter(gather: (scatter: number) => DescentInput): number {
+  if (medianMisfit(gather(1e-6)) <= 1) return 0;
+  let [low, high] = [1e-3, 1];
+  for (let round = 0; round < 12 && high / low > 1.02; round++) {
+    const middle = Math.sqrt(low * high);
+    if (medianMisfit(gather(middle)) > 1) low = middle;
+    else high = middle;
+  }
+  return Math.sqrt(low * high);
+}

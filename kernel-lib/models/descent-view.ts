@@ -20,20 +20,32 @@ function offLine({ sample, excludedBy, off }: DescentSample): string {
   return `${sample} (${excludedBy}, ${Math.abs(off).toFixed(1)}σ too ${off > 0 ? 'high' : 'low'})`;
 }
 
+/** Whether even the best process leaves more than half of the samples unexplained. */
+export function mostUnexplained(rivals: readonly DescentRival[], samples: number): boolean {
+  return rivals[0].unexplained.length > samples / 2;
+}
+
 /** The finding in words: which process, how sure, and which samples are off the line by what. */
 export function descentFindings(rivals: readonly DescentRival[], samples: readonly DescentSample[]): string {
   const [best, ...others] = rivals;
   const lead = others[0].difference;
   const out = samples.filter(({ belongs }) => !belongs);
   const beaten = others.map((each) => `${each.process} (BIC ${each.difference.toFixed(1)} higher)`).join(' and ');
-  const sentences = [
-    lead < evidenceNeeded
-      ? `Not distinguished: ${best.process} and ${others[0].process} explain the suite equally well (BIC differs by ${lead.toFixed(1)}).`
-      : `${best.process[0].toUpperCase()}${best.process.slice(1)} is preferred over ${beaten}: ${strength(lead)} evidence.`,
-  ];
-  if (best.unexplained.length > 0.3 * samples.length) {
-    const left = `${best.unexplained.length} of ${samples.length} samples`;
-    sentences.push(`Yet it leaves ${left} unexplained, so no single process of these fits the whole suite.`);
+  const left = `${best.unexplained.length} of ${samples.length} samples`;
+  const sentences: string[] = [];
+  if (mostUnexplained(rivals, samples.length)) {
+    sentences.push(
+      `None of these: even ${best.process}, the best of them, leaves ${left} unexplained. The lavas scatter by more than their errors (see scatter ` +
+        `"estimate"), or the suite has more than one parent.`,
+    );
+  } else {
+    sentences.push(
+      lead < evidenceNeeded
+        ? `Not distinguished: ${best.process} and ${others[0].process} explain the suite equally well (BIC differs by ${lead.toFixed(1)}).`
+        : `${best.process[0].toUpperCase()}${best.process.slice(1)} is preferred over ${beaten}: ${strength(lead)} evidence.`,
+    );
+    if (best.unexplained.length > 0.3 * samples.length)
+      sentences.push(`Yet it leaves ${left} unexplained, so no single process of these fits the whole suite.`);
   }
   if (out.length === 0) sentences.push('All samples lie on one liquid line of descent within their errors.');
   else sentences.push(`Not on the line of descent: ${out.map(offLine).join(', ')}.`);

@@ -1,9 +1,9 @@
 import { jStat } from 'jstat';
 import { showAs, type Showable } from '../display';
 import { derivedColumn, step, suiteOf, Suite, type Traced } from '../suite';
-import { gatherDescent, excludingElement, fitRivals, type DescentInput, type FittedProcess } from './descent-fit';
+import { estimateScatter, gatherDescent, excludingElement, fitRivals, type DescentInput, type FittedProcess } from './descent-fit';
 import type { DescentProcess } from './descent-laws';
-import { descentFindings, descentView, evidenceNeeded } from './descent-view';
+import { descentFindings, descentView, evidenceNeeded, mostUnexplained } from './descent-view';
 import { joinLineage, oneAnalysis, type Composition } from './one-analysis';
 import { readNumber } from './trace-setup';
 
@@ -22,8 +22,11 @@ export interface FitDescentOptions {
   readonly assimilant?: Composition;
   /** Relative 1σ of elements without one of their own (default 0.05). */
   readonly relativeError?: number;
-  /** Relative scatter of the lavas themselves around one line, added in quadrature (default 0.03). */
-  readonly scatter?: number;
+  /**
+   * Relative scatter of the lavas themselves around one line, added in quadrature (default 0.03); `estimate` takes it from the data, so that the better of
+   * crystallisation and mixing leaves half of the samples above their expected misfit. Real suites often scatter by 10 % and more.
+   */
+  readonly scatter?: number | 'estimate';
   /** Relative 1σ of isotope ratios, at least (default 0.00003 for Sr, Nd and Hf, 0.001 for Pb and Os). */
   readonly ratioError?: number;
   /** Probability of flagging any sample at all when every one is in line (default 0.01). */
@@ -88,7 +91,10 @@ export interface DescentFit extends Traced, Showable {
   readonly parent: Suite;
   readonly incompatible: string;
   readonly rivals: readonly DescentRival[];
-  readonly preferred: DescentProcess | 'not distinguished';
+  /** `none of these` where even the best leaves more than half of the samples unexplained. */
+  readonly preferred: DescentProcess | 'not distinguished' | 'none of these';
+  /** The relative scatter of the lavas that was taken, or estimated. */
+  readonly scatter: number;
   /** Assimilated/crystallised of the best assimilation fit; NaN where none was made. */
   readonly r: number;
   readonly companion: CompanionTest;
@@ -228,11 +234,14 @@ export function fitDescent(suite: Suite, options: FitDescentOptions = {}): Desce
   const fraction = (value: number | undefined, name: string, usual: number) => readNumber(value ?? usual, who, name, { from: 0, to: 1, open: 'to' });
   const errors = {
     relative: fraction(options.relativeError, 'relativeError', 0.05),
-    scatter: fraction(options.scatter, 'scatter', 0.03),
+    scatter: options.scatter === 'estimate' ? 0 : fraction(options.scatter, 'scatter', 0.03),
     ratio: options.ratioError === undefined ? undefined : fraction(options.ratioError, 'ratioError', 0),
   };
-  if (errors.relative + errors.scatter === 0) throw new RangeError(`${who}: relativeError and scatter are both 0; something must be uncertain.`);
+  if (errors.relative + errors.scatter === 0 && options.scatter !== 'estimate')
+    throw new RangeError(`${who}: relativeError and scatter are both 0; something must be uncertain.`);
   const level = readNumber(options.level ?? 0.01, who, 'level', { from: 0, to: 1, open: 'both' });
+  if (options.scatter === 'estimate')
+    errors.scatter = estimateScatter((scatter) => gatherDescent(suite, options.analytes, options.isotopes, { ...errors, scatter }, who));
   const input = gatherDescent(suite, options.analytes, options.isotopes, errors, who);
   const assimilant = options.assimilant === undefined ? undefined : oneAnalysis(options.assimilant, who, 'assimilant');
   const { fits, r, notes } = fitRivals(input, level, assimilant, who);
@@ -252,10 +261,10 @@ export function fitDescent(suite: Suite, options: FitDescentOptions = {}): Desce
     )
     .sort((a, b) => a.bic - b.bic);
   const lead = rivals[1].difference;
-  const preferred = lead < evidenceNeeded ? 'not distinguished' : rivals[0].process;
+  const preferred = mostUnexplained(rivals, input.samples) ? 'none of these' : lead < evidenceNeeded ? 'not distinguished' : rivals[0].process;
   const companion = companionOf(input, line.elements);
   notes.push(
-    `Errors: elements ${100 * errors.relative} % where they have none of their own, with ${100 * errors.scatter} % scatter of the lavas. ` +
+    `Errors: elements ${100 * errors.relative} % where they have none of their own, with ${Number((100 * errors.scatter).toFixed(1))} % scatter of the lavas. ` +
       `F is by ${input.elements[line.reference]}, taken as D = ${options.incompatibleD ?? 0}.`,
   );
   const why = descentFindings(rivals, line.samples);
@@ -295,6 +304,7 @@ export function fitDescent(suite: Suite, options: FitDescentOptions = {}): Desce
     preferred,
     r,
     companion,
+    scatter: errors.scatter,
     why,
     notes,
     lineage,

@@ -58,6 +58,18 @@ describe('fitDescent', () => {
     expect(alarms).toBeLessThanOrEqual(2);
   });
 
+  it('estimates the scatter of the lavas, and prefers nothing where most samples are unexplained', () => {
+    const scattered = suite(line(30), 0.12, 8);
+    const estimated = fitDescent(scattered, { relativeError: 0.02, scatter: 'estimate' });
+    expect(estimated.scatter).toBeGreaterThan(0.09);
+    expect(estimated.scatter).toBeLessThan(0.15);
+    expect(estimated.preferred).toBe('crystallisation');
+    const strict = fitDescent(scattered, { relativeError: 0.02, scatter: 0 });
+    expect(strict.preferred).toBe('none of these');
+    expect(strict.why).toMatch(/^None of these/);
+    expect(fitDescent(suite(line(20), 0.02, 9), { relativeError: 0.05, scatter: 'estimate' }).scatter).toBe(0);
+  });
+
   it('prefers the process that made the suite', () => {
     const [crystallised, blended] = [fitDescent(suite(line(24), 0.03, 3), errors), fitDescent(suite(mixed(24), 0.03, 4), errors)];
     expect(crystallised.preferred).toBe('crystallisation');
