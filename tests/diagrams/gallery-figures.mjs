@@ -10,6 +10,8 @@ export function figures(ww) {
   const none = five.rows([]);
   const missing = ww.suiteOf({ columns: [...five.columns.values()].map((each) => ww.column({ symbol: each.symbol, unit: each.unit, values: new Float64Array(five.size).fill(NaN) })), labels: five.labels });
   const wide = madeSuite(ww, { samples: 1000, groups: 5, seed: 3 });
+  const uncertainty = Object.fromEntries(['Na2O', 'K2O', 'FeOT', 'MgO', 'Zr', 'Y', 'Rb', 'Nb'].map((symbol) => [symbol, { relative: 0.03 }]));
+  uncertainty.SiO2 = { relative: 0.008 };
   return {
     'tas-five': () => diagrams.tas(five, { group: 'volcano' }),
     'tas-whole': () => diagrams.tas(five, { group: 'volcano', window: 'whole', also: ['alkalinity'] }),
@@ -41,6 +43,8 @@ export function figures(ww) {
     'xy-none': () => diagrams.xy(none, 'SiO2', 'MgO', { group: 'volcano' }),
     'xy-many': () => diagrams.xy(madeSuite(ww, { samples: 10000, groups: 5 }), 'SiO2', 'MgO', { group: 'volcano' }),
     ...Object.fromEntries(ww.schemes.list().schemes.map(({ key }) => [`scheme-${key}`, () => diagrams.scheme(five, key, { group: 'volcano', window: 'whole' })])),
+    ...Object.fromEntries(['tas', 'potassium-silica', 'afm', 'affinity-zr-y', 'granite-rb-ynb'].map((key) => [`doubt-${key}`, () => diagrams.scheme(five, key, { group: 'volcano', shading: 'doubt', uncertainty })])),
+    'probability-bars': () => diagrams.probabilityBars(five, 'tas', { uncertainty }),
     'ree-five-groups': () => diagrams.rareEarths(five, { group: 'volcano' }),
     'ree-samples': () => diagrams.rareEarths(five.where({ volcano: ['Ketu', 'Ondrik'] }).rows([0, 1, 2, 3, 4, 5, 6, 7, 8, 9]), { group: 'volcano' }),
     'ree-thousand': () => diagrams.rareEarths(wide, { group: 'volcano', curves: 'samples' }),
