@@ -66,7 +66,7 @@ export function settle(
   const { value: Kd } = thermometers().exchange;
   for (let round = 0; round < 8; round++) {
     const next = olivineLiquidTemperature(oxides, equilibriumOlivine(oxides, ferric, Kd), pressure, water);
-    const done = Math.abs(next - temperature) < 1e-6;
+    const done = Math.abs(next - temperature) < 1e-4;
     temperature = next;
     ferric = ferricShareOf(oxides, redox, temperature, pressure);
     if (done) break;

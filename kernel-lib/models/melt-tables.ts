@@ -38,7 +38,6 @@ export const thermometers = once(() =>
         dP: number,
       }),
       exchange: z.strictObject({ ...from, value: number, sigma: number }),
-      waterDepression: z.strictObject({ ...from, a: number, b: number, c: number }),
       waterSolubility: z.strictObject({ ...from, a: number, power: number, b: number }),
     }),
   ),
