@@ -4,6 +4,7 @@ import { derivedColumn, resolveColumn, step, type Column, type Step, type Suite 
 import { checkCall } from './check-call';
 import { ionicRadius } from './ionic-radii';
 import { referenceComposition, usualReferences, type ReferenceComposition } from './reference';
+import { SmallSystem } from './small-system';
 
 /** How shapes of rare-earth patterns are fitted. */
 export interface ShapeOptions {
@@ -90,6 +91,7 @@ export function rareEarthShapes(suite: Suite, options: ShapeOptions = {}): RareE
   const size = suite.size;
   const terms = degree + 1;
   const basis = rareEarthPolynomials();
+  const rows = rareEarths.map((_, e) => Float64Array.from({ length: terms }, (_each, k) => basis[k][e]));
   const present = rareEarths
     .map((element, e) => ({ element, e, column: resolveColumn(suite, element), fitted: !exclude.includes(element) }))
     .filter(({ column }) => column !== undefined);
@@ -120,7 +122,7 @@ export function rareEarthShapes(suite: Suite, options: ShapeOptions = {}): RareE
       w[p] = 1 / (own > error ? own : error) ** 2;
       if (Number.isNaN(y[p]) || !present[p].fitted) continue;
       fitted++;
-      system.add(basis, e, w[p], y[p]);
+      system.add(rows[e], y[p], w[p]);
     }
     const freedom = fitted - terms;
     if (freedom < 1 || !system.solve()) {
@@ -131,11 +133,11 @@ export function rareEarthShapes(suite: Suite, options: ShapeOptions = {}): RareE
     for (let p = 0; p < count; p++) {
       if (Number.isNaN(y[p])) continue;
       const { e, element, fitted: takesPart } = present[p];
-      const residual = y[p] - system.value(basis, e);
+      const residual = y[p] - dot(system.solution, rows[e]);
       residuals[p][i] = residual;
       if (!takesPart) continue;
       chiSquare += residual * residual * w[p];
-      const leverage = w[p] * system.quadratic(basis, e);
+      const leverage = w[p] * system.quadratic(rows[e]);
       if (Math.abs(residual) * Math.sqrt(w[p]) > outlyingBeyond * Math.sqrt(Math.max(1e-9, 1 - leverage))) outlying[i].push(element);
     }
     misfit[i] = chiSquare / freedom;
@@ -177,92 +179,10 @@ export function rareEarthShapes(suite: Suite, options: ShapeOptions = {}): RareE
   return showAs(result, shapesView);
 }
 
-/** Normal equations of at most four unknowns, filled and solved in place: no allocation a sample. */
-class SmallSystem {
-  readonly solution: Float64Array;
-  private readonly matrix: Float64Array;
-  private readonly factor: Float64Array;
-  private readonly right: Float64Array;
-  private readonly work: Float64Array;
-
-  constructor(private readonly n: number) {
-    [this.matrix, this.factor] = [0, 1].map(() => new Float64Array(n * n));
-    [this.solution, this.right, this.work] = [0, 1, 2].map(() => new Float64Array(n));
-  }
-
-  clear(): void {
-    this.matrix.fill(0);
-    this.right.fill(0);
-  }
-
-  add(basis: readonly Float64Array[], e: number, weight: number, y: number): void {
-    const { n, matrix, right } = this;
-    for (let a = 0; a < n; a++) {
-      right[a] += weight * basis[a][e] * y;
-      for (let b = 0; b <= a; b++) matrix[a * n + b] += weight * basis[a][e] * basis[b][e];
-    }
-  }
-
-  /** Cholesky; false when the elements cannot tell the terms apart. */
-  solve(): boolean {
-    const { n, matrix, factor, right, solution } = this;
-    for (let a = 0; a < n; a++) {
-      for (let b = 0; b <= a; b++) {
-        let sum = matrix[a * n + b];
-        for (let k = 0; k < b; k++) sum -= factor[a * n + k] * factor[b * n + k];
-        if (a === b) {
-          if (!(sum > 1e-12 * matrix[a * n + a])) return false;
-          factor[a * n + a] = Math.sqrt(sum);
-        } else factor[a * n + b] = sum / factor[b * n + b];
-      }
-    }
-    this.forward(right, solution);
-    this.backward(solution);
-    return true;
-  }
-
-  /** fᵀ·(normal matrix)⁻¹·f of one element's basis values. */
-  quadratic(basis: readonly Float64Array[], e: number): number {
-    const { n, work } = this;
-    for (let a = 0; a < n; a++) work[a] = basis[a][e];
-    this.forward(work, work);
-    let sum = 0;
-    for (let a = 0; a < n; a++) sum += work[a] * work[a];
-    return sum;
-  }
-
-  variance(k: number): number {
-    const { n, work } = this;
-    for (let a = 0; a < n; a++) work[a] = a === k ? 1 : 0;
-    this.forward(work, work);
-    let sum = 0;
-    for (let a = 0; a < n; a++) sum += work[a] * work[a];
-    return sum;
-  }
-
-  value(basis: readonly Float64Array[], e: number): number {
-    let sum = 0;
-    for (let a = 0; a < this.n; a++) sum += this.solution[a] * basis[a][e];
-    return sum;
-  }
-
-  private forward(from: Float64Array, to: Float64Array): void {
-    const { n, factor } = this;
-    for (let a = 0; a < n; a++) {
-      let sum = from[a];
-      for (let k = 0; k < a; k++) sum -= factor[a * n + k] * to[k];
-      to[a] = sum / factor[a * n + a];
-    }
-  }
-
-  private backward(of: Float64Array): void {
-    const { n, factor } = this;
-    for (let a = n - 1; a >= 0; a--) {
-      let sum = of[a];
-      for (let k = a + 1; k < n; k++) sum -= factor[k * n + a] * of[k];
-      of[a] = sum / factor[a * n + a];
-    }
-  }
+function dot(a: Float64Array, b: Float64Array): number {
+  let sum = 0;
+  for (let k = 0; k < a.length; k++) sum += a[k] * b[k];
+  return sum;
 }
 
 function shapesView(result: Omit<RareEarthShapes, keyof Showable>): TableView {

@@ -95,7 +95,7 @@ describe('forward model', () => {
 describe('inverse model', () => {
   it('recovers 200 made lavas with 5 % noise: the truth lies in the 95 % interval in 90–98 % of cases', async () => {
     const { truth, suite } = madeLavas(200, 0.05, 7);
-    const { fits } = await ww.fitFluxedWedge(suite, { endMembers: members, draws: 80 });
+    const { fits } = await ww.fitFluxedWedge(suite, { endMembers: members, draws: 200 });
     for (const name of ['melt', 'fluid', 'sediment'] as const) {
       const inside = fits.filter(({ parameters }, i) => truth[i][name] >= parameters[name].low && truth[i][name] <= parameters[name].high).length;
       expect(inside, name).toBeGreaterThanOrEqual(180);
