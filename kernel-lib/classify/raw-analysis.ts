@@ -1,5 +1,6 @@
 import { isVolatileFree } from './axes';
 import { column, suiteOf, type Column, type Suite } from '../suite';
+import { equivalentSymbols } from '../tables';
 import type { Uncertainty } from './probability';
 
 /**
@@ -10,12 +11,39 @@ import type { Uncertainty } from './probability';
 export function rawAnalysis(suite: Suite, uncertainty: Uncertainty): Suite {
   const raw = isVolatileFree(suite) ? turnedBack(suite) : suite;
   if (Object.keys(uncertainty).length === 0) return raw;
+  const given = givenFor(raw, uncertainty);
   const columns = [...raw.columns.values()].map((each): Column => {
-    if (!Object.hasOwn(uncertainty, each.symbol)) return each;
-    const { relative = 0, absolute = 0 } = uncertainty[each.symbol];
+    const own = given.get(each.symbol);
+    if (own === undefined) return each;
+    const { relative = 0, absolute = 0 } = own;
     return { ...each, sigma: each.values.map((value) => Math.hypot(relative * value, absolute)) };
   });
   return suiteOf({ columns, labels: raw.labels, lineage: raw.lineage });
+}
+
+const ironForms = ['FeOT', 'Fe2O3T', 'FeO', 'Fe2O3'];
+
+/**
+ * The uncertainty of each column. One given for an analyte that the suite holds in another form (`TiO2` for `Ti`) goes to that form; one
+ * of total iron also to measured FeO and Fe2O3, which the sum may be made of. A relative error is the same in every form; an absolute one
+ * is not, so it stays with its own column.
+ */
+function givenFor(raw: Suite, uncertainty: Uncertainty): ReadonlyMap<string, { readonly relative?: number; readonly absolute?: number }> {
+  const given = new Map(Object.entries(uncertainty).filter(([symbol]) => raw.has(symbol)));
+  for (const [symbol, { relative, absolute }] of Object.entries(uncertainty)) {
+    const forms = symbol === 'FeOT' || symbol === 'Fe2O3T' ? ironForms : equivalentSymbols(symbol);
+    const others = forms.filter((form) => form !== symbol && raw.has(form));
+    if (!raw.has(symbol) && (others.length === 0 || relative === undefined)) {
+      const why =
+        others.length === 0
+          ? `the suite holds no ${symbol}`
+          : `the suite holds ${others.join(', ')}, for which ${absolute} would mean something else: give { relative }`;
+      throw new RangeError(`uncertainty of ${symbol}: ${why}. It holds: ${raw.analytes.join(', ')}.`);
+    }
+    if (relative === undefined) continue;
+    for (const form of others) if (!given.has(form) && raw.column(form).sigma === undefined) given.set(form, { relative });
+  }
+  return given;
 }
 
 /** Oxides that a volatile-free sum is made of. */

@@ -220,6 +220,16 @@ describe('probabilities', () => {
     expect(verdictOf(classify(bare, 'tas', { probability: 'none', uncertainty: { SiO2: { relative: 0.01 } } }), 'tas').probability).toBeUndefined();
   });
 
+  it('take 1σ of another form of an analyte, and refuse one of what is not there', () => {
+    const measured = suiteFrom([{ ...rock({ SiO2: 55.6, MgO: 4, FeOT: 8 }), FeO: 6, Fe2O3: 2.22 }]);
+    const withIron = classify(measured, 'iron-enrichment', { uncertainty: { FeOT: { relative: 0.05 } } });
+    // The sum is made of measured FeO and Fe2O3: an error of total iron reaches them.
+    expect(withIron.lineage.at(-1)!.detail.uncertain).toEqual(['FeOT', 'FeO', 'Fe2O3']);
+    expect(verdictOf(withIron, 'iron-enrichment').probability!.values[0][0]).toBeGreaterThan(0.1);
+    expect(() => classify(measured, 'tas', { uncertainty: { Si02: { relative: 0.01 } } })).toThrow(/holds no Si02/);
+    expect(() => classify(measured, 'tas', { uncertainty: { Ti: { absolute: 3 } } })).toThrow(/holds TiO2, for which 3 would mean something else/);
+  });
+
   it('the same seed gives the same numbers, another seed others', () => {
     const few = suiteFrom(strewn(5, 2), { sigma });
     const run = (seed: number) => [
