@@ -21,9 +21,17 @@ export function decodeText(bytes: Buffer): DecodedText {
   if (oddZeros > head.length / 8 && evenZeros === 0) return utf16(bytes, 'UTF-16LE');
   if (evenZeros > head.length / 8 && oddZeros === 0) return utf16(bytes, 'UTF-16BE');
   if (isUtf8(bytes)) return { bytes, encoding: 'UTF-8' };
-  return { bytes: Buffer.from(new TextDecoder('windows-1252').decode(bytes), 'utf8'), encoding: 'Windows-1252' };
+  return { bytes: Buffer.from(windows1252(bytes), 'utf8'), encoding: 'Windows-1252' };
 }
 
 function utf16(bytes: Buffer, encoding: 'UTF-16LE' | 'UTF-16BE'): DecodedText {
   return { bytes: Buffer.from(new TextDecoder(encoding).decode(bytes), 'utf8'), encoding };
+}
+
+/** The characters of Windows-1252 from 0x80 to 0x9f, where it differs from Latin-1 (WHATWG Encoding Standard, index windows-1252). */
+const betweenControls = '€\u0081‚ƒ„…†‡ˆ‰Š‹Œ\u008dŽ\u008f\u0090‘’“”•–—˜™š›œ\u009džŸ';
+
+/** The runtime's own decoder of this name passes these characters through as controls in some versions, so they are set here. */
+function windows1252(bytes: Buffer): string {
+  return bytes.toString('latin1').replace(/[\u0080-\u009f]/g, (control) => betweenControls[control.charCodeAt(0) - 0x80]);
 }

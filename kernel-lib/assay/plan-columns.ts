@@ -175,8 +175,12 @@ function draft(
         notes.pleaseCheck.push(`${place} "${head}": its unit "${unitText}" is not known`);
       return made;
     }
-    default:
+    default: {
+      // `SiO2 (anhydrous)`: a recast value must not pass for the measured one, nor be passed over in silence.
+      const oxide = /[/+]/.test(head) ? undefined : head.split(/[^A-Za-z0-9]+/).find((piece) => findAnalyte(piece)?.kind === 'oxide');
+      if (oxide !== undefined) notes.pleaseCheck.push(`${place} "${head}" names ${oxide} in a way that is not understood: kept as a label`);
       return made;
+    }
   }
 }
 

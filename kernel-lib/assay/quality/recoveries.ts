@@ -1,3 +1,4 @@
+import { mean as meanOf, median as medianOf } from 'simple-statistics';
 import { findAnalyte } from '../../chemistry';
 import type { Column, Suite } from '../../suite';
 import { materialValue, rockMaterial, type RockMaterial } from './rock-materials';
@@ -197,14 +198,12 @@ function chartSignals(own: readonly Recovery[]): string[] {
 
 const signed = (value: number) => `${value >= 0 ? '+' : '−'}${Math.abs(value).toFixed(1)}`;
 
+/** Mean; NaN of nothing. */
 export function mean(values: readonly number[]): number {
-  return values.reduce((sum, value) => sum + value, 0) / values.length;
+  return values.length === 0 ? NaN : meanOf(values as number[]);
 }
 
 /** Median; NaN of nothing. */
 export function median(values: readonly number[]): number {
-  if (values.length === 0) return NaN;
-  const sorted = [...values].sort((a, b) => a - b);
-  const half = sorted.length >> 1;
-  return sorted.length % 2 === 1 ? sorted[half] : (sorted[half - 1] + sorted[half]) / 2;
+  return values.length === 0 ? NaN : medianOf(values as number[]);
 }
