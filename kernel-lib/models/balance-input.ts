@@ -1,6 +1,6 @@
 import { majorOxides } from '../chemistry';
 import { volatileFree, withTotalIron } from '../recast';
-import type { Suite } from '../suite';
+import { step, type Suite } from '../suite';
 import type { BalanceProblem } from './balance-solver';
 import { chooseMineral, type ChosenMineral, type MineralChoice } from './minerals';
 import { amountOf, errorOf, oneAnalysis, type Composition } from './one-analysis';
@@ -27,7 +27,8 @@ export interface BalanceOptions {
   readonly assimilant?: Composition;
   /**
    * 1σ of both analyses: relative with a floor in wt %, or wt % by oxide, or `equal` weights (no chi-square, no intervals). Default: the
-   * columns' own 1σ, and where there is none 1 % of the value with a floor of 0.03 wt %.
+   * columns' own 1σ, and where there is none 1 % of the value with a floor of 0.03 wt %. Relative errors and the columns' own are those of the analyses as
+   * they were measured, and are carried through the recast; errors by oxide are those on the basis of the balance.
    */
   readonly errors?: BalanceErrors;
   /** `volatile-free` (default): both analyses to 100 % free of volatiles, all iron as FeO. `as given`: only the iron is put together. */
@@ -73,52 +74,63 @@ function onBasis(analysis: Suite, basis: BalanceOptions['basis'], who: string, a
   return recast;
 }
 
-function readErrors(
-  errors: BalanceErrors | undefined,
-  oxides: readonly string[],
-  analyses: readonly Suite[],
-  who: string,
-): { variances: Float64Array[]; model: string; hasErrors: boolean } {
-  const fill = (of: (analysis: Suite, oxide: string) => number) =>
-    analyses.map((analysis) => Float64Array.from(oxides, (oxide) => of(analysis, oxide) ** 2));
-  if (errors === 'equal')
-    return { variances: [new Float64Array(oxides.length).fill(1), new Float64Array(oxides.length)], model: 'equal weights', hasErrors: false };
-  if (errors === undefined) {
-    let assumed = 0;
-    const variances = fill((analysis, oxide) => {
-      const own = errorOf(analysis, oxide);
-      if (own > 0) return own;
-      assumed++;
-      return Math.max(usualFloor, usualRelative * amountOf(analysis, oxide));
-    });
-    const usual = `1σ of ${100 * usualRelative} % with a floor of ${usualFloor} wt %`;
-    return {
-      variances,
-      hasErrors: true,
-      model:
-        assumed === 0
-          ? 'the analyses’ own 1σ'
-          : assumed === 2 * oxides.length
-            ? `${usual} assumed`
-            : `the analyses’ own 1σ; ${usual} assumed for ${assumed} values without`,
-    };
-  }
-  if (typeof errors !== 'object' || errors === null)
+/** Every form in which an analysis may hold its majors. */
+const measuredForms = [...majorOxides, 'FeO', 'Fe2O3', 'Fe2O3T'];
+
+function isRelative(errors: BalanceErrors): errors is { readonly relative: number; readonly floor?: number } {
+  return typeof errors === 'object' && 'relative' in errors;
+}
+
+function checkErrors(errors: BalanceErrors | undefined, who: string): void {
+  if (errors === undefined || errors === 'equal') return;
+  if (typeof errors !== 'object' || errors === null) {
     throw new TypeError(`${who}: errors must be "equal", { relative, floor }, or 1σ in wt % by oxide.`);
-  if ('relative' in errors) {
-    const { relative, floor = usualFloor } = errors as { relative: number; floor?: number };
-    if (!(relative > 0 && relative < 1) || !(floor >= 0))
-      throw new RangeError(`${who}: errors.relative must be a fraction between 0 and 1 (0.01 is 1 %), floor a number of wt % of zero or more.`);
-    return {
-      variances: fill((analysis, oxide) => Math.max(floor, relative * amountOf(analysis, oxide), 1e-9)),
-      model: `1σ of ${100 * relative} % with a floor of ${floor} wt %`,
-      hasErrors: true,
-    };
   }
-  const given = errors as Readonly<Record<string, number>>;
-  const lacking = oxides.filter((oxide) => !(given[oxide] > 0));
+  if (!isRelative(errors)) return;
+  const { relative, floor = usualFloor } = errors;
+  if (!(relative > 0 && relative < 1) || !(floor >= 0)) {
+    throw new RangeError(`${who}: errors.relative must be a fraction between 0 and 1 (0.01 is 1 %), floor a number of wt % of zero or more.`);
+  }
+}
+
+/** The analysis with 1σ on its majors as they were measured, so that recasting carries them on; and how many of them were assumed. */
+function withErrors(analysis: Suite, errors: BalanceErrors | undefined): { analysis: Suite; assumed: number } {
+  if (errors !== undefined && (errors === 'equal' || !isRelative(errors))) return { analysis, assumed: 0 };
+  const { relative, floor = usualFloor } = errors ?? { relative: usualRelative };
+  let assumed = 0;
+  const columns = measuredForms.flatMap((symbol) => {
+    const column = analysis.columns.get(symbol);
+    if (column === undefined || !Number.isFinite(column.values[0])) return [];
+    const own = column.sigma?.[0] ?? NaN;
+    if (errors === undefined && own > 0) return [];
+    assumed++;
+    return [{ ...column, sigma: Float64Array.of(Math.max(floor, relative * column.values[0], 1e-9)) }];
+  });
+  return { analysis: analysis.with(columns, step('massBalance.errors', { relative, floor, on: columns.map(({ symbol }) => symbol) })), assumed };
+}
+
+function describeErrors(errors: BalanceErrors | undefined, assumed: number, measured: number): string {
+  if (errors === 'equal') return 'equal weights';
+  if (errors !== undefined && !isRelative(errors)) return '1σ as given by oxide';
+  const { relative, floor = usualFloor } = errors ?? { relative: usualRelative };
+  const usual = `1σ of ${Number((100 * relative).toPrecision(6))} % with a floor of ${floor} wt %`;
+  if (errors !== undefined) return usual;
+  return assumed === 0
+    ? 'the analyses’ own 1σ'
+    : assumed === measured
+      ? `${usual} assumed`
+      : `the analyses’ own 1σ; ${usual} assumed for ${assumed} values without`;
+}
+
+/** Variances of both analyses on the basis of the balance. */
+function variancesOf(errors: BalanceErrors | undefined, oxides: readonly string[], analyses: readonly Suite[], who: string): Float64Array[] {
+  if (errors === 'equal') return [new Float64Array(oxides.length).fill(1), new Float64Array(oxides.length)];
+  if (errors === undefined || isRelative(errors)) {
+    return analyses.map((analysis) => Float64Array.from(oxides, (oxide) => Math.max(1e-9, errorOf(analysis, oxide)) ** 2));
+  }
+  const lacking = oxides.filter((oxide) => !(errors[oxide] > 0));
   if (lacking.length > 0) throw new RangeError(`${who}: errors must hold a positive 1σ (wt %) for ${lacking.join(', ')}.`);
-  return { variances: fill((_, oxide) => given[oxide]), model: '1σ as given by oxide', hasErrors: true };
+  return analyses.map(() => Float64Array.from(oxides, (oxide) => errors[oxide] ** 2));
 }
 
 /** @internal The columns of the phases of a mass balance: two for a range. */
@@ -143,7 +155,14 @@ export function readBalance(options: BalanceOptions, minerals: BalanceMinerals, 
   if (basis !== 'volatile-free' && basis !== 'as given')
     throw new RangeError(`${who}: basis must be "volatile-free" or "as given", not "${String(basis)}".`);
   if (closure !== 'exact' && closure !== 'free') throw new RangeError(`${who}: closure must be "exact" or "free", not "${String(closure)}".`);
-  const read = (from: Composition, argument: string) => onBasis(oneAnalysis(from, who, argument), basis, who, argument);
+  checkErrors(options.errors, who);
+  let [assumed, measured] = [0, 0];
+  const read = (from: Composition, argument: string) => {
+    const known = withErrors(oneAnalysis(from, who, argument), options.errors);
+    assumed += known.assumed;
+    measured += measuredForms.filter((symbol) => Number.isFinite(known.analysis.columns.get(symbol)?.values[0])).length;
+    return onBasis(known.analysis, basis, who, argument);
+  };
   const parent = read(options.parent, 'parent');
   const daughter = read(options.daughter, 'daughter');
   const assimilant = options.assimilant === undefined ? undefined : read(options.assimilant, 'assimilant');
@@ -166,7 +185,7 @@ export function readBalance(options: BalanceOptions, minerals: BalanceMinerals, 
   if (assimilant !== undefined) oxides.forEach((oxide, i) => (phases[(k - 1) * n + i] = amountOf(assimilant, oxide)));
   const signs = new Float64Array(k).fill(1);
   if (assimilant !== undefined) signs[k - 1] = -1;
-  const { variances, model, hasErrors } = readErrors(options.errors, oxides, [parent, daughter], who);
+  const variances = variancesOf(options.errors, oxides, [parent, daughter], who);
   const values = (analysis: Suite) => Float64Array.from(oxides, (oxide) => amountOf(analysis, oxide));
   return {
     parent,
@@ -174,8 +193,8 @@ export function readBalance(options: BalanceOptions, minerals: BalanceMinerals, 
     assimilant,
     oxides,
     columns,
-    errorModel: model,
-    hasErrors,
+    errorModel: describeErrors(options.errors, assumed, measured),
+    hasErrors: options.errors !== 'equal',
     notes,
     problem: {
       n,
