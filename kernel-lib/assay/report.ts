@@ -104,6 +104,7 @@ export function writeImportReport(report: ImportReport, path: string): void {
     throw new TypeError('writeImportReport: report must be the report of readAssays, as in (await readAssays(path)).report.');
   }
   const { columns, rows, notes = [] } = reportView(report);
-  const line = (cells: readonly unknown[]) => cells.map((cell) => csvText(escapeSpreadsheet(cell === null || cell === undefined ? '' : String(cell)))).join(',');
+  const line = (cells: readonly unknown[]) =>
+    cells.map((cell) => csvText(escapeSpreadsheet(cell === null || cell === undefined ? '' : String(cell)))).join(',');
   writeWhole(path, `${[line(columns), ...rows.map(line), ...notes.map((note) => line([note]))].join('\n')}\n`);
 }

@@ -6,20 +6,26 @@ import { decodeText } from '../../kernel-lib/assay/encoding';
 import { CellGrid, cellAddress, cellLook, columnLetters } from '../../kernel-lib/assay/grid';
 
 const grid = (text: string, delimiter = ',') => new DelimitedGrid(Buffer.from(text), delimiter, { columns: 1000 });
-const cellsOf = (of: DelimitedGrid) => Array.from({ length: of.rows }, (_, row) => Array.from({ length: of.width(row) }, (_, column) => of.text(row, column)));
+const cellsOf = (of: DelimitedGrid) =>
+  Array.from({ length: of.rows }, (_, row) => Array.from({ length: of.width(row) }, (_, column) => of.text(row, column)));
 
 describe('cutting delimited text', () => {
   const field = fc.string({ unit: fc.constantFrom('a', '7', ',', '"', '\n', ' ', ';', 'é', '.', '\t'), maxLength: 6 });
 
   it('agrees with a general parser on any well-formed file (RFC 4180)', () => {
     fc.assert(
-      fc.property(fc.array(fc.array(field, { minLength: 1, maxLength: 5 }), { minLength: 1, maxLength: 6 }), fc.constantFrom(',', ';', '\t', '|'), fc.constantFrom('\n', '\r\n'), (rows, delimiter, newline) => {
-        const text = Papa.unparse(rows, { delimiter, newline, quotes: false });
-        const expected = Papa.parse<string[]>(text, { delimiter, newline }).data;
-        // A last row without any character is no row.
-        if (expected.length > 0 && expected.at(-1)!.join('') === '' && expected.at(-1)!.length === 1) expected.pop();
-        expect(cellsOf(grid(text, delimiter))).toEqual(expected.map((row) => row.map((cell) => cell.trim())));
-      }),
+      fc.property(
+        fc.array(fc.array(field, { minLength: 1, maxLength: 5 }), { minLength: 1, maxLength: 6 }),
+        fc.constantFrom(',', ';', '\t', '|'),
+        fc.constantFrom('\n', '\r\n'),
+        (rows, delimiter, newline) => {
+          const text = Papa.unparse(rows, { delimiter, newline, quotes: false });
+          const expected = Papa.parse<string[]>(text, { delimiter, newline }).data;
+          // A last row without any character is no row.
+          if (expected.length > 0 && expected.at(-1)!.join('') === '' && expected.at(-1)!.length === 1) expected.pop();
+          expect(cellsOf(grid(text, delimiter))).toEqual(expected.map((row) => row.map((cell) => cell.trim())));
+        },
+      ),
       { numRuns: 2000 },
     );
   });
@@ -58,11 +64,17 @@ describe('numbers read from bytes', () => {
 
   it('are the numbers of the language, to the last bit', () => {
     fc.assert(
-      fc.property(fc.oneof(fc.double({ noNaN: true, noDefaultInfinity: true }).filter((value) => !Object.is(value, -0)), fc.tuple(fc.integer(), fc.integer({ min: 0, max: 12 })).map(([whole, places]) => whole / 10 ** places)), (value) => {
-        expect(number(String(value))).toBe(value);
-        expect(number(value.toFixed(6))).toBe(Number(value.toFixed(6)));
-        expect(number(value.toExponential(12))).toBe(Number(value.toExponential(12)));
-      }),
+      fc.property(
+        fc.oneof(
+          fc.double({ noNaN: true, noDefaultInfinity: true }).filter((value) => !Object.is(value, -0)),
+          fc.tuple(fc.integer(), fc.integer({ min: 0, max: 12 })).map(([whole, places]) => whole / 10 ** places),
+        ),
+        (value) => {
+          expect(number(String(value))).toBe(value);
+          expect(number(value.toFixed(6))).toBe(Number(value.toFixed(6)));
+          expect(number(value.toExponential(12))).toBe(Number(value.toExponential(12)));
+        },
+      ),
       { numRuns: 3000 },
     );
   });
@@ -91,7 +103,13 @@ describe('numbers read from bytes', () => {
 });
 
 describe('delimiter, encoding, addresses', () => {
-  it.each([['a,b;c\n1,2;3\n', ','], ['a;b\n1,5;2,5\n3,5;4,5\n', ';'], ['a\tb\n1\t2\n', '\t'], ['a|b|c\n1|2|3\n', '|'], ['Sample\nA\n', ',']])('%j is cut at %j', (text, delimiter) => {
+  it.each([
+    ['a,b;c\n1,2;3\n', ','],
+    ['a;b\n1,5;2,5\n3,5;4,5\n', ';'],
+    ['a\tb\n1\t2\n', '\t'],
+    ['a|b|c\n1|2|3\n', '|'],
+    ['Sample\nA\n', ','],
+  ])('%j is cut at %j', (text, delimiter) => {
     expect(guessDelimiter(Buffer.from(text))).toBe(delimiter);
   });
 

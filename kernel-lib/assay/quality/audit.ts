@@ -80,10 +80,7 @@ export function audit(suite: Suite, options: AuditOptions = {}): Audit {
   const unlike = unlikePairs(suite, groups);
   const reused = namesAreReused(unlike, groups);
   const suspect = new Set(unlike.map(({ rows }) => rows.join()));
-  const duplicates = duplicatePrecision(
-    suite,
-    reused ? [] : groups.filter((rows) => !rows.some((row) => suspect.has(`${rows[0]},${row}`))),
-  );
+  const duplicates = duplicatePrecision(suite, reused ? [] : groups.filter((rows) => !rows.some((row) => suspect.has(`${rows[0]},${row}`))));
   const blanks = blankLimits(suite, roles.blank);
   const { columns, sigmas } = columnSigmas(suite, duplicates, runs, options.sigma ?? {});
   const totals = analysisTotals(suite, window);
@@ -209,7 +206,9 @@ function auditStep(suite: Suite, options: AuditOptions, parts: StepParts) {
   const left = options.alteration ?? {};
   for (const { key, reason, low, high, source, standing } of alterationRules()) {
     if (standing !== 'from memory' || left[key] !== undefined || parts.screen.rulesNotAsked.includes(key)) continue;
-    remembered.push(`alteration screen: ${reason} ${low === undefined ? `above ${high}` : `below ${low}`}${low !== undefined && high !== undefined ? ` or above ${high}` : ''} (${source})`);
+    remembered.push(
+      `alteration screen: ${reason} ${low === undefined ? `above ${high}` : `below ${low}`}${low !== undefined && high !== undefined ? ` or above ${high}` : ''} (${source})`,
+    );
   }
   const altered = label.filter(Boolean).length;
   return step(
