@@ -161,7 +161,7 @@ describe('massBalance', () => {
     }
   });
 
-  it.each(['as given', 'volatile-free'] as const)('recovers planted assemblages within the stated 95 %% intervals (%s)', (basis) => {
+  it.each(['as given', 'volatile-free'] as const)('recovers planted assemblages within the stated intervals, basis %s', (basis) => {
     const random = seededDraws(2026);
     let [inside, all, accepted] = [0, 0, 0];
     for (let i = 0; i < 300; i++) {
