@@ -47,6 +47,9 @@ const keys = ['tas', 'potassium-silica', 'potassium-silica-1976', 'iron-enrichme
 const series: Readonly<Record<string, Readonly<Record<string, number>>>> = { 'iron-enrichment': { TH: -1, CA: 1 }, afm: { TH: -1, CA: 1 } };
 const affinityVote: Readonly<Record<string, number>> = { tholeiitic: -1, transitional: 0, 'calc-alkaline': 1 };
 
+/** Names that rest on normative nepheline, and so can disagree with the dividing line. */
+const basaltKinds = new Set(['alkali basalt', 'subalkali basalt']);
+
 /** Weight of a scheme whose elements are flagged as moved, against 1: heard, but outvoted by any other. Our own choice. */
 const movedWeight = 0.25;
 /** Share of the weight that must be on one side for a reading: two of three. Our own choice. */
@@ -84,10 +87,11 @@ export function consensus(suite: Suite, options: ConsensusOptions = {}): Consens
   const weighed = all.some(({ probability }) => probability !== undefined);
   for (let i = 0; i < suite.size; i++) {
     // Rows that all schemes answer alike read alike; only probabilities make every row its own.
-    const key = weighed ? '' : situation(all, affinity, flags, i);
+    const root = basaltKinds.has(names.roots[i]) ? names.roots[i] : '';
+    const key = weighed ? '' : `${root}|${situation(all, affinity, flags, i)}`;
     let row = weighed ? undefined : readings.get(key);
     if (row === undefined) {
-      row = readRow(i, found, affinity, flags?.[i] ?? '');
+      row = readRow(i, found, affinity, flags?.[i] ?? '', root);
       if (!weighed) readings.set(key, row);
     }
     agree[i] = row.agree;
@@ -151,7 +155,7 @@ interface Voice {
   readonly weight: number;
 }
 
-function readRow(i: number, found: ReadonlyMap<string, SchemeVerdict>, affinity: ImmobileAffinity, flag: string): Reading {
+function readRow(i: number, found: ReadonlyMap<string, SchemeVerdict>, affinity: ImmobileAffinity, flag: string, basalt: string): Reading {
   const notAsked: string[] = [];
   const setBack: string[] = [];
   const voices: Voice[] = [];
@@ -197,7 +201,7 @@ function readRow(i: number, found: ReadonlyMap<string, SchemeVerdict>, affinity:
   const parts = isAlkaline ? ['alkaline'] : [potassiumMoved ? '' : potassic, sideName];
   const reading = parts.filter((part) => part !== '').join(', ');
   const written = { agree: agree.join(', '), against: against.join(', '), notAsked: notAsked.join('; ') };
-  return { ...written, reading, because: sentence({ isAlkaline, alkaline, voices, side, agree, against, setBack, flag, sideName }) };
+  return { ...written, reading, because: sentence({ isAlkaline, alkaline, voices, side, agree, against, setBack, flag, sideName, basalt }) };
 }
 
 const sideWords = ['tholeiitic', 'transitional', 'calc-alkaline'];
@@ -212,8 +216,9 @@ function sentence(from: {
   setBack: readonly string[];
   flag: string;
   sideName: string;
+  basalt: string;
 }): string {
-  const { isAlkaline, alkaline, voices, side, agree, against, setBack, flag, sideName } = from;
+  const { isAlkaline, alkaline, voices, side, agree, against, setBack, flag, sideName, basalt } = from;
   const parts: string[] = [];
   if (isAlkaline)
     parts.push(
@@ -225,6 +230,8 @@ function sentence(from: {
   else if (side === undefined) parts.push('no scheme of the subalkaline series could be asked');
   else if (side === 0) parts.push(`${voices.map(({ who, vote }) => `${who} ${sideWords[Math.sign(vote) + 1]}`).join(', ')}: no clear majority`);
   else parts.push(`${sideName} by ${agree.join(', ')}${against.length === 0 ? '' : `, against ${against.join(', ')}`}`);
+  if (basalt === 'alkali basalt' && !isAlkaline) parts.push('its norm has nepheline, so the IUGS name is alkali basalt all the same');
+  if (basalt === 'subalkali basalt' && isAlkaline) parts.push('its norm has no nepheline, so the IUGS name is subalkali basalt all the same');
   if (flag !== '') parts.push(`flagged as altered (${flag})${setBack.length === 0 ? '' : `; counted less: ${setBack.join(', ')}`}`);
   const [first] = parts;
   return `${first[0].toUpperCase()}${first.slice(1)}${parts.length > 1 ? `; ${parts.slice(1).join('; ')}` : ''}.`;

@@ -140,6 +140,13 @@ describe('consensus', () => {
     expect(because[3]).toMatch(/flagged as altered \(CaO 0.5 below 1\)\.$/);
   });
 
+  it('says where normative nepheline and the dividing line disagree', () => {
+    // SiO2 46.5, alkalis 3.2: below the line of Irvine & Baragar (3.4 there), yet short of silica.
+    const made = consensus(suiteFrom([rock({ SiO2: 46.5, Na2O: 2.9, K2O: 0.3, CaO: 12, MgO: 9, FeOT: 9 })]));
+    expect(made.names.names[0]).toBe('alkali basalt');
+    expect(made.because[0]).toMatch(/norm has nepheline, so the IUGS name is alkali basalt all the same/);
+  });
+
   it('an alkaline rock is not asked for the subalkaline series', () => {
     const made = consensus(suiteFrom([rock({ SiO2: 46, Na2O: 4.5, K2O: 2, CaO: 9 })]));
     expect(made.reading[0]).toBe('alkaline');
