@@ -77,9 +77,9 @@ export function wedgeCorner(fit: WedgeFit, options: WedgeCornerOptions = {}): Di
   });
 }
 
-/** About three round ticks: a panel is too small for the usual spacing. */
+/** Three or four round ticks: a panel is too small for the usual spacing. */
 function ticksOf([low, high]: readonly [number, number]): number[] {
-  const step = roundStep(high - low, 3);
+  const step = roundStep(high - low, 4);
   const ticks: number[] = [];
   for (let k = Math.ceil(low / step - 1e-9); k * step <= high * (1 + 1e-9); k++) ticks.push(tidy(k * step));
   return ticks;

@@ -39,3 +39,13 @@ export function quantileOfSorted(sorted: ArrayLike<number>, level: number): numb
   const part = at - below;
   return part === 0 ? sorted[below] : sorted[below] + part * (sorted[below + 1] - sorted[below]);
 }
+
+/** Turns the median absolute deviation of normal data into σ, and the 1σ of a mean into that of a median. */
+const madToSigma = 1.4826;
+const medianOverMean = 1.2533;
+
+/** 1σ of the median of some values, from their absolute deviations from it (in any order): scatter by the median deviation, over √n. */
+export function medianError(deviations: readonly number[]): number {
+  const sorted = [...deviations].sort((a, b) => a - b);
+  return (medianOverMean * madToSigma * quantileOfSorted(sorted, 0.5)) / Math.sqrt(sorted.length);
+}

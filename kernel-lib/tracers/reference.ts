@@ -103,7 +103,8 @@ function ofReservoir(found: Reservoir, caesiumAndLead: CaesiumLeadChoice): Refer
         .filter(({ entry }) => entry?.standing === 'from memory');
       if (recalled.length === 0) return [];
       const cited = [...new Set(recalled.map(({ entry }) => shortSource(entry!.source)))].join('; ');
-      const value = ({ analyte, value: number, unit }: ReservoirValue) => `${analyte.replace('_recommended', '')} ${number}${unit === 'ratio' ? '' : ` ${unit}`}`;
+      const value = ({ analyte, value: number, unit }: ReservoirValue) =>
+        `${analyte.replace('_recommended', '')} ${number}${unit === 'ratio' ? '' : ` ${unit}`}`;
       return [`${found.name}: ${recalled.map(({ entry }) => value(entry!)).join(', ')} (${cited})`];
     },
     notes,

@@ -2,7 +2,7 @@ import { showAs, type Showable, type TableCell, type TableView } from '../displa
 import { cellState, derivedColumn, resolveColumn, step, type Column, type Step, type Suite } from '../suite';
 import { checkCall } from './check-call';
 import { applyFilter, basaltFilter, type SampleFilter } from './basalt-filter';
-import { quantileOfSorted } from './censored-quantiles';
+import { medianError, quantileOfSorted } from './censored-quantiles';
 import { arrayBasis, mantleArray, type ArrayLine, type ArrayOptions } from './mantle-array';
 import { shownCell } from './shown-cell';
 
@@ -183,9 +183,6 @@ function shareColumn(of: Column, niobium: Column, ytterbium: Column, line: Array
   return limits === undefined ? column : { ...column, limits };
 }
 
-const madToSigma = 1.4826;
-const medianOverMean = 1.2533;
-
 function groupShares(
   labels: readonly string[],
   shares: ReadonlyMap<string, Column>,
@@ -209,10 +206,8 @@ function groupShares(
           .sort((a, b) => a - b);
         if (known.length === 0) return;
         const middle = quantileOfSorted(known, 0.5);
-        const deviations = known.map((value) => Math.abs(value - middle)).sort((a, b) => a - b);
-        const ofScatter = (medianOverMean * madToSigma * quantileOfSorted(deviations, 0.5)) / Math.sqrt(known.length);
         median[e] = middle;
-        sigma[e] = Math.hypot(ofScatter, (100 - middle) * Math.LN10 * arrays.get(element)!.scatter);
+        sigma[e] = Math.hypot(medianError(known.map((value) => Math.abs(value - middle))), (100 - middle) * Math.LN10 * arrays.get(element)!.scatter);
       });
       return { name, samples: members.length, median, sigma };
     });

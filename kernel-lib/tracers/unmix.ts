@@ -1,10 +1,10 @@
 import { setImmediate as nextTurn } from 'node:timers/promises';
+import { seededRandom } from '../chemistry';
 import { showAs, type Showable, type TableView } from '../display';
 import { resolveColumn, step, type Column, type Step, type Suite } from '../suite';
 import { checkCall } from './check-call';
 import { fitWithinBounds, type BoundedProblem } from './bounded-fit';
 import { quantileOfSorted } from './censored-quantiles';
-import { checkSeed, randomStream } from './random';
 import { referenceComposition, type ReferenceComposition } from './reference';
 
 /** One end member of a mixture. */
@@ -83,7 +83,7 @@ export async function unmix(suite: Suite, components: readonly MixingComponent[]
   if (!Array.isArray(components) || components.length < 2 || components.length > 4) throw new RangeError('unmix takes two to four components.');
   if (new Set(components.map(({ name }) => name)).size !== components.length) throw new RangeError('unmix: every component needs a name of its own.');
   if (!(Number.isInteger(draws) && draws >= 50)) throw new RangeError(`unmix: draws is ${String(draws)}; give a whole number of 50 or more.`);
-  checkSeed('unmix', seed);
+  const random = seededRandom(seed, 'unmix');
   const references = components.map(({ composition }) => referenceComposition(composition));
   const ratios = chooseRatios(suite, components, references, options.ratios);
   if (ratios.length < components.length - 1) {
@@ -101,7 +101,6 @@ export async function unmix(suite: Suite, components: readonly MixingComponent[]
     ratios.map((ratio) => references.map(({ valueOf }) => valueOf(ratio)!)),
     ratios.map((ratio) => references.map(({ valueOf }) => valueOf(elementOfRatio(ratio))!)),
   );
-  const random = randomStream(seed);
   const count = components.length;
   const blank = () => components.map(() => new Float64Array(suite.size).fill(NaN));
   const [shares, low, high] = [blank(), blank(), blank()];

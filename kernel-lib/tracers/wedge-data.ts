@@ -1,5 +1,5 @@
 import { cellState, resolveColumn, type Suite } from '../suite';
-import { quantileOfSorted } from './censored-quantiles';
+import { medianError, quantileOfSorted } from './censored-quantiles';
 
 /** What one fit is fitted to: concentrations and their errors, on the natural logarithm. */
 export interface WedgeObservation {
@@ -14,10 +14,6 @@ export interface WedgeObservation {
   /** Elements asked for that have no usable value here. */
   readonly unused: readonly string[];
 }
-
-/** Turns the median absolute deviation of normal data into σ, and σ of a mean into σ of a median. */
-const madToSigma = 1.4826;
-const medianOverMean = 1.2533;
 
 /**
  * Observations by sample, or by group as medians. The error of a value is its own 1σ, but never less than `error` (relative); that of a
@@ -49,8 +45,7 @@ export function wedgeObservations(suite: Suite, elements: readonly string[], err
         const own = (column!.sigma?.[usable[0]] ?? NaN) / middle;
         sigma.push(own > error ? own : error);
       } else {
-        const deviations = values.map((value) => Math.abs(Math.log(value / middle))).sort((a, b) => a - b);
-        sigma.push(Math.max(error, (medianOverMean * madToSigma * quantileOfSorted(deviations, 0.5)) / Math.sqrt(values.length)));
+        sigma.push(Math.max(error, medianError(values.map((value) => Math.abs(Math.log(value / middle))))));
       }
     });
     return { name, samples: rows.length, elements: used, observed: Float64Array.from(observed), sigma: Float64Array.from(sigma), unused };

@@ -1,10 +1,10 @@
 import { jStat } from 'jstat';
+import { seededRandom, type SeededRandom } from '../chemistry';
 import { showAs, type Showable, type TableView } from '../display';
 import { sampleCorrelation } from 'simple-statistics';
 import { fitWithinBounds, linearSigma, type BoundedProblem, type BoundedSolution } from './bounded-fit';
 import { quantileOfSorted } from './censored-quantiles';
 import { wedgeParameterNames, WedgeModel, type WedgeMeltingStyle, type WedgeParameterName } from './fluxed-wedge';
-import { randomStream, type RandomStream } from './random';
 import type { WedgeObservation } from './wedge-data';
 import type { MantleFacies, WedgeEndMembers } from './wedge-end-members';
 
@@ -73,7 +73,7 @@ export interface PreparedWedge {
   readonly problem: BoundedProblem;
   /** Scaled parameters of the solver to the four of the model. */
   readonly unscale: (scaled: ArrayLike<number>, whole: Float64Array) => void;
-  readonly random: RandomStream;
+  readonly random: SeededRandom;
   readonly draws: number[][];
 }
 
@@ -115,7 +115,7 @@ export function prepareWedge(observation: WedgeObservation, setup: WedgeFitSetup
     lower: free.map((name) => scaledBound(name, 0)),
     upper: free.map((name) => scaledBound(name, 1)),
   };
-  return { observation, setup, model, free, problem, unscale, random: randomStream(seed), draws: [] };
+  return { observation, setup, model, free, problem, unscale, random: seededRandom(seed, 'fitFluxedWedge'), draws: [] };
 }
 
 /** The best of several starts; undefined when there are not more elements than parameters. */

@@ -1,9 +1,9 @@
 import { setImmediate as nextTurn } from 'node:timers/promises';
+import { seededRandom } from '../chemistry';
 import { showAs, type Showable, type TableView } from '../display';
 import { step, type Step, type Suite } from '../suite';
 import { checkCall } from './check-call';
 import { checkedWedgeOptions, wedgeParameterNames, type FluxedWedgeOptions, type WedgeParameterName } from './fluxed-wedge';
-import { checkSeed } from './random';
 import { wedgeObservations } from './wedge-data';
 import type { WedgeEndMembers } from './wedge-end-members';
 import { bestWedge, drawWedge, finishWedge, prepareWedge, type OneWedgeFit, type WedgeEstimate } from './wedge-fit-one';
@@ -71,7 +71,8 @@ export async function fitFluxedWedge(suite: Suite, options: WedgeFitOptions = {}
   if (!(error > 0 && error < 1)) throw new RangeError(`${caller}: error is ${String(error)}; give a relative 1σ above 0 and below 1.`);
   if (!(Number.isInteger(draws) && draws >= 50)) throw new RangeError(`${caller}: draws is ${String(draws)}; give a whole number of 50 or more.`);
   if (!(resolvedWithin > 1)) throw new RangeError(`${caller}: resolvedWithin is ${String(resolvedWithin)}; give a factor above 1.`);
-  checkSeed(caller, seed);
+  // Each fit starts its own stream; this one only asks whether the seed is one, before any work is done.
+  seededRandom(seed, caller);
   const bounds = wedgeBounds(caller, endMembers, facies, options.bounds);
   const fixed = options.fixed ?? {};
   for (const [name, value] of Object.entries(fixed)) {

@@ -65,6 +65,14 @@ export function figures(ww) {
     'vsc-five': () => diagrams.vanadiumScandium(five, { group: 'volcano', names: 'all' }),
     'sry-silica-single': () => diagrams.strontiumYttriumSilica(single, { group: 'volcano' }),
     'sry-silica-twelve': () => diagrams.strontiumYttriumSilica(twelve, { group: 'volcano' }),
+    ...Object.fromEntries(diagrams.tracerPlotNames.map((name) => [`tracer-${name}`, () => diagrams.tracerPlot(five, name, { group: 'volcano' })])),
+    'tracer-many': () => diagrams.tracerPlot(madeSuite(ww, { samples: 8000, groups: 5 }), 'thorium-niobium'),
+    'tracer-single': () => diagrams.tracerPlot(single, 'barium-thorium', { group: 'volcano', names: 'all' }),
+    'tracer-none': () => diagrams.tracerPlot(none, 'cerium-lead', { group: 'volcano' }),
+    'slab-share-five': () => diagrams.slabShareBars(five, { group: 'volcano' }),
+    'slab-share-all': () => diagrams.slabShareBars(five),
+    'slab-share-twelve': () => diagrams.slabShareBars(twelve, { group: 'volcano', elements: ['Ba', 'Th', 'La', 'Zr'] }),
+    'wedge-corner': async () => diagrams.wedgeCorner(await ww.fitFluxedWedge(five, { group: 'volcano' }), { name: 'Ketu' }),
     'xy-path': () => diagrams.xy(five, 'Yb', 'Sr', { group: 'volcano', paths: [crystallisation(ww, five)] }),
   };
 }
