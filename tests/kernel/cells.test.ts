@@ -175,6 +175,14 @@ describe('an interrupt', () => {
     expect((await run('await new Promise((resolve) => setTimeout(resolve, 5));\nkept + 1')).text).toBe('42');
   });
 
+  it('that comes before the cell is compiled stops it all the same', async () => {
+    for (const after of [0, 1, 5, 20]) {
+      const { reply } = await runAndInterrupt('while (true) {}', after);
+      expect(reply.interrupted).toBe(true);
+    }
+    expect((await run('kept')).text).toBe('41');
+  });
+
   it('reaches work that watches the signal', async () => {
     const { reply, outputs } = await runAndInterrupt(
       "const { signal } = ww.progress('Waiting');\nsignal.addEventListener('abort', () => console.log('told'));\nawait new Promise(() => {})",

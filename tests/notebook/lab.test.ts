@@ -1,3 +1,4 @@
+/// <reference lib="dom" />
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { gallery, Lab, type Cell, type LabNotebook } from './lab';
 
@@ -19,7 +20,7 @@ const figureSpecs = (cells: readonly Cell[]) => outputs(cells).flatMap(({ data }
 async function drawn(notebook: LabNotebook) {
   await notebook.page.waitForTimeout(500);
   return notebook.page.evaluate(() =>
-    [...document.querySelectorAll('.jp-OutputArea-output .vega-embed')].map((element) => {
+    Array.from(document.querySelectorAll('.jp-OutputArea-output .vega-embed')).map((element) => {
       const canvas = element.querySelector('canvas');
       const marks = element.querySelectorAll('svg .mark-symbol path, svg .mark-rule line, svg .mark-line path').length;
       // Ink on a canvas: pixels that are not the ground.

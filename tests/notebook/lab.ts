@@ -1,3 +1,4 @@
+/// <reference lib="dom" />
 import { spawn, type ChildProcess } from 'node:child_process';
 import { cpSync, mkdirSync, readdirSync, rmSync, writeFileSync } from 'node:fs';
 import { createServer } from 'node:net';

@@ -24,6 +24,8 @@ export class EngineProcess {
   readonly ended: Promise<{ readonly code: number | null; readonly signal: NodeJS.Signals | null }>;
   private readonly child: ChildProcess;
   private readonly waiting = new Map<number, { resolve: (answer: never) => void; reject: (error: Error) => void; output?: (output: CellOutput) => void }>();
+  /** Cells not answered yet, in the order they came: the first is the one that runs. */
+  private readonly cells = new Set<number>();
   private last = 0;
   private latestOutput: ((output: CellOutput) => void) | undefined;
   private said = '';
@@ -48,7 +50,10 @@ export class EngineProcess {
     this.ready.catch(() => {});
     this.child.on('message', (report: EngineReport) => {
       if (report.tell === 'ready') started(report);
-      else if (report.tell === 'output') (this.waiting.get(report.id)?.output ?? this.latestOutput)?.(report.output);
+      else if (report.tell === 'failed') {
+        this.waiting.get(report.id)?.reject(new Error(report.message));
+        this.waiting.delete(report.id);
+      } else if (report.tell === 'output') (this.waiting.get(report.id)?.output ?? this.latestOutput)?.(report.output);
       else {
         this.waiting.get(report.id)?.resolve(report.answer as never);
         this.waiting.delete(report.id);
@@ -93,9 +98,15 @@ export class EngineProcess {
   }
 
   /** Runs a cell. Its outputs come in order, all before the reply; what it prints later still comes to `output` until the next cell. */
-  execute(cell: Ask<'execute'>, output: (output: CellOutput) => void): Promise<CellReply> {
+  async execute(cell: Ask<'execute'>, output: (output: CellOutput) => void): Promise<CellReply> {
     this.latestOutput = output;
-    return this.ask<CellReply>({ ask: 'execute', id: ++this.last, ...cell }, output);
+    const id = ++this.last;
+    this.cells.add(id);
+    try {
+      return await this.ask<CellReply>({ ask: 'execute', id, ...cell }, output);
+    } finally {
+      this.cells.delete(id);
+    }
   }
 
   complete(request: Ask<'complete'>): Promise<CompleteReply> {
@@ -115,9 +126,12 @@ export class EngineProcess {
     return this.ask<RunFacts>({ ask: 'facts', id: ++this.last });
   }
 
-  /** Stops the running cell, if one runs. */
+  /** Stops the cell that runs or is about to, if there is one. */
   interrupt(): void {
-    this.lifeline.write('i');
+    for (const id of this.cells) {
+      this.lifeline.write(`${id}\n`);
+      return;
+    }
   }
 
   /** Ends the process at once. */

@@ -35,11 +35,14 @@ export interface IsCompleteReply {
   readonly indent: string;
 }
 
+export type EngineAnswer = CellReply | CompleteReply | InspectReply | IsCompleteReply | RunFacts;
+
 /** What the engine's process tells. */
 export type EngineReport =
   | { readonly tell: 'ready'; readonly compiler: string; readonly warning?: string }
   | { readonly tell: 'output'; readonly id: number; readonly output: CellOutput }
-  | { readonly tell: 'answer'; readonly id: number; readonly answer: CellReply | CompleteReply | InspectReply | IsCompleteReply | RunFacts };
+  | { readonly tell: 'answer'; readonly id: number; readonly answer: EngineAnswer }
+  | { readonly tell: 'failed'; readonly id: number; readonly message: string };
 
 /** What the engine needs to start, handed over in its first argument as JSON. */
 export interface EngineOptions {

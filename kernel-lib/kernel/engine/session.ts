@@ -3,6 +3,7 @@ import { richValues } from '../rich-value';
 import { openSessionLink } from '../session-link';
 import { callBefore } from './call-before';
 import { compilerError, scriptName, thrownError, type CompiledCell } from './cell-error';
+import type { InterruptWords } from './interrupt-words';
 import type { CellReply, CompleteReply, InspectReply, IsCompleteReply } from './messages';
 import { StreamGate } from './stream-gate';
 import { connectTslabDisplay, openExecutor, type CompilerFault } from './tslab-contract';
@@ -15,6 +16,7 @@ const mostDisplays = 300;
 export interface SessionOptions {
   readonly folder: string;
   readonly quiet: boolean;
+  readonly words: InterruptWords;
   /** Resolves modules as the library's own files do. */
   readonly libraryRequire: NodeJS.Require;
 }
@@ -29,7 +31,19 @@ const interruptedError: ErrorOutput = {
   traceback: ['\u001b[31mInterrupted\u001b[39m: the cell was stopped. Variables of the cells before it are kept.'],
 };
 
-const isSignalBreak = (error: unknown): boolean => (error as NodeJS.ErrnoException | null)?.code === 'ERR_SCRIPT_EXECUTION_INTERRUPTED';
+/** Thrown in place of running a cell whose interrupt came before it was compiled. */
+class CancelledCell extends Error {}
+
+const isBroken = (error: unknown): boolean => error instanceof CancelledCell || (error as NodeJS.ErrnoException | null)?.code === 'ERR_SCRIPT_EXECUTION_INTERRUPTED';
+
+interface RunningCell {
+  readonly number: number;
+  readonly code: string;
+  readonly label: string;
+  readonly faults: CompilerFault[];
+  readonly thrown: unknown[];
+  value: unknown;
+}
 
 /**
  * The state of one notebook: runs its cells one after the other and sends what they print, show and throw. There can be only one in a
@@ -42,11 +56,14 @@ export class Session {
   private send: Send = () => {};
   private displays = 0;
   private runs = 0;
-  private running: { code: string; label: string; faults: CompilerFault[]; thrown: unknown[]; value: unknown } | undefined;
+  private running: RunningCell | undefined;
   private abort = new AbortController();
   private stop: (() => void) | undefined;
 
+  private readonly words: InterruptWords;
+
   constructor(options: SessionOptions) {
+    this.words = options.words;
     Error.stackTraceLimit = 60;
     this.executor = openExecutor(options.folder, options.libraryRequire, {
       compiled: (output) => {
@@ -54,6 +71,8 @@ export class Session {
         const number = this.runs;
         this.cells.set(number, { label: this.running.label, source: this.running.code, output });
         this.cells.delete(number - cellsKept);
+        if (this.words.wanted === this.running.number) throw new CancelledCell();
+        this.words.running = this.running.number;
         return { scriptName: scriptName(number) };
       },
       value: (value) => {
@@ -75,18 +94,18 @@ export class Session {
 
   /** Loads the library as `ww`, out of sight. @returns what went wrong, if anything did */
   async preload(): Promise<string | undefined> {
-    const said: CellOutput[] = [];
-    const reply = await this.run("import * as ww from 'wedgework';", 'preload', (output) => said.push(output));
+    const reply = await this.run("import * as ww from 'wedgework';", 'preload', () => {}, -1);
     return reply.status === 'ok' ? undefined : `The library could not be loaded as ww: ${reply.evalue}`;
   }
 
-  async run(code: string, label: string, send: Send): Promise<CellReply> {
+  /** Runs a cell. @param number by which an interrupt means this cell; each cell has another */
+  async run(code: string, label: string, send: Send, number: number): Promise<CellReply> {
     this.gate.end();
     this.send = send;
     this.displays = 0;
     this.runs++;
     this.abort = new AbortController();
-    const running = (this.running = { code, label, faults: [], thrown: [], value: undefined });
+    const running: RunningCell = (this.running = { number, code, label, faults: [], thrown: [], value: undefined });
     const stopped = new Promise<'stopped'>((resolve) => (this.stop = () => resolve('stopped')));
     let failure: ErrorOutput | undefined;
     try {
@@ -95,6 +114,7 @@ export class Session {
     } finally {
       this.stop = undefined;
       this.running = undefined;
+      this.words.running = 0;
     }
     this.gate.end();
     if (this.displays > mostDisplays) {
@@ -107,12 +127,10 @@ export class Session {
   }
 
   /** Runs the cell and shows its value. @returns what went wrong */
-  private async attempt(running: NonNullable<Session['running']>): Promise<ErrorOutput | undefined> {
+  private async attempt(running: RunningCell): Promise<ErrorOutput | undefined> {
     const signal = this.abort.signal;
     try {
       const finished = await this.executor.execute(running.code);
-      // Broken by the signal: the word of the interrupt is on its way and must not hit the next cell.
-      if (running.thrown.some(isSignalBreak)) await new Promise((resolve) => setTimeout(resolve, 50));
       if (signal.aborted) return interruptedError;
       if (running.faults.length > 0) return compilerError(running.label, running.code, running.faults);
       if (!finished || running.thrown.length > 0) return this.explain(running.thrown[0]);
@@ -126,7 +144,7 @@ export class Session {
   }
 
   private explain(error: unknown): ErrorOutput {
-    return isSignalBreak(error) ? interruptedError : thrownError(error, this.cells);
+    return isBroken(error) ? interruptedError : thrownError(error, this.cells);
   }
 
   private show(output: CellOutput & { kind: 'result' | 'display' | 'update' }): void {
@@ -135,9 +153,9 @@ export class Session {
     this.send(output);
   }
 
-  /** Stops the running cell: code that waits is left, code that watches the signal ends. Does nothing between cells. */
-  interrupt(): void {
-    if (this.stop === undefined) return;
+  /** Stops a cell if it is the running one: code that waits is left, code that watches the signal ends. */
+  interrupt(number: number): void {
+    if (this.stop === undefined || this.running?.number !== number) return;
     this.abort.abort(new Error('The cell was interrupted.'));
     this.executor.interrupt();
     this.stop();
