@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { classify, column, findScheme, schemes, suiteOf, verdictOf, volatileFree } from 'wedgework';
+import { classify, column, findScheme, schemes, suiteOf, verdictOf, volatileFree, type MimeBundle } from 'wedgework';
 import { checkTiling } from '../../kernel-lib/classify/scheme-check';
 import { rock, suiteFrom } from './suites';
 
@@ -264,7 +264,7 @@ describe('classify', () => {
     expect(last.what).toBe('classify');
     expect(last.sources).toEqual(expect.arrayContaining(['le_bas_1986', 'irvine_baragar_1971']));
     expect(last.tables).toEqual(['schemes/tas.json', 'schemes/afm.json']);
-    expect(String(verdicts.toMimeBundle()['text/html'])).toContain('&lt;b&gt;A');
+    expect(String((verdicts.toMimeBundle() as MimeBundle)['text/html'])).toContain('&lt;b&gt;A');
   });
 
   it('an empty suite gives empty verdicts', () => {
@@ -296,7 +296,7 @@ describe('classify', () => {
     };
     const verdicts = classify(suiteFrom([everything]), all);
     for (const [key, { field, remarks }] of verdicts.schemes) if (field[0] < 0) expect(remarks[0], key).toMatch(/no recovered boundary|outside/);
-    expect(String(schemes.list().toMimeBundle()['text/plain'])).toContain('from memory');
+    expect(String((schemes.list().toMimeBundle() as MimeBundle)['text/plain'])).toContain('from memory');
   });
 });
 

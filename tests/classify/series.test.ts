@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { arcMagmaKinds, classify, consensus, explain, immobileAffinity, nameRocks, splitIron, suiteTrend, withVerdicts } from 'wedgework';
+import { arcMagmaKinds, classify, consensus, explain, immobileAffinity, nameRocks, splitIron, suiteTrend, withVerdicts, type MimeBundle } from 'wedgework';
 import { rock, suiteFrom, type Cells } from './suites';
 
 /** A suite on a straight trend of given rise of SiO2 for one unit of FeOT/MgO, with a little scatter. */
@@ -112,7 +112,7 @@ describe('consensus', () => {
     expect(made.because[2]).toBe('Calc-alkaline by FeO*/MgO, AFM, against immobile elements.');
     expect(made.reading[3]).toBe('');
     expect(made.notAsked[3]).toMatch(/AFM: needs MgO, FeOT, Na2O/);
-    expect(String(made.toMimeBundle()['text/plain'])).toContain('not audited');
+    expect(String((made.toMimeBundle() as MimeBundle)['text/plain'])).toContain('not audited');
   });
 
   it('counts mobile schemes less where K or Na is flagged as moved, and says why', () => {

@@ -41,7 +41,7 @@ describe('splitIron', () => {
   }
 
   const reached = melt.expected.filter(({ rock }: { rock: string }) => averages[rock] !== undefined);
-  it.each(reached)('$rock at $T_C °C, $P_bar bar, $buffer (Kress & Carmichael 1991, computed at 40 digits)', (each: any) => {
+  it.each(reached as any[])('$rock at $T_C °C, $P_bar bar, $buffer (Kress & Carmichael 1991, computed at 40 digits)', (each: any) => {
     const [name, offset] = each.buffer === 'NNO+1' ? ['NNO', 1] : [each.buffer === 'QFM' ? 'FMQ' : each.buffer, 0];
     expect(bufferFugacity(name as OxygenBuffer, each.T_C, each.P_bar, offset as number)).toBeCloseTo(each.log10fO2, 8);
     const made = split(averages[each.rock], {
