@@ -1,4 +1,4 @@
-import { column, cellState, type Column } from '../suite';
+import { column, cellState, fillMissing, type Column } from '../suite';
 import type { ReadSheet } from './read-sheet';
 
 /** Sheets put together: columns and labels of all samples, and what has to be said about it. */
@@ -31,20 +31,27 @@ export function matchSamples(first: readonly string[], second: readonly string[]
   return { to, size };
 }
 
-/** Joins a second sheet to what is there. A quantity that both hold is kept apart under the sheet's name. */
+/** The rows of a second table put below those that are there. */
+export function rowsBelow(known: readonly string[], names: readonly string[]): RowMatch {
+  return { to: Int32Array.from(names, (_, i) => known.length + i), size: known.length + names.length };
+}
+
+/** Joins a second sheet to what is there. A quantity that both hold is completed where they hold it for different samples, else kept apart. */
 export function joinSheet(whole: Joined, sheet: ReadSheet, match: { readonly to: Int32Array; readonly size: number }): Joined {
   const remarks = [...whole.remarks];
   const before = whole.labels.get('sample')!.length;
   const columns = whole.columns.map((each) => spread(each, undefined, match.size));
-  const taken = new Set(columns.map(({ symbol }) => symbol));
   for (const each of sheet.decoded.columns) {
-    let { symbol } = each;
-    if (taken.has(symbol)) {
-      symbol = `${symbol} (${sheet.name})`;
+    const placed = spread(each, match.to, match.size);
+    const at = columns.findIndex(({ symbol }) => symbol === each.symbol);
+    if (at < 0) columns.push(placed);
+    else if (columns[at].unit === each.unit && columns[at].states.every((state, i) => state === cellState.missing || placed.states[i] === cellState.missing)) {
+      columns[at] = fillMissing(columns[at], placed);
+    } else {
+      const symbol = `${each.symbol} (${sheet.name})`;
       remarks.push(`${each.symbol} stands in two sheets: that of "${sheet.name}" is kept as "${symbol}"`);
+      columns.push({ ...placed, symbol, kind: 'quantity' });
     }
-    taken.add(symbol);
-    columns.push(spread({ ...each, symbol, kind: symbol === each.symbol ? each.kind : 'quantity' }, match.to, match.size));
   }
   const labels = new Map([...whole.labels].map(([name, texts]) => [name, spreadTexts(texts, undefined, match.size)]));
   for (const [name, texts] of sheet.decoded.labels) {
@@ -58,7 +65,7 @@ export function joinSheet(whole: Joined, sheet: ReadSheet, match: { readonly to:
       );
     else labels.set(`${name} (${sheet.name})`, placed);
   }
-  if (match.size > before) remarks.push(`${match.size - before} samples stand only in sheet "${sheet.name}"`);
+  if (match.size > before && match.size < before + sheet.layout.body.length) remarks.push(`${match.size - before} samples stand only in sheet "${sheet.name}"`);
   return { columns, labels, remarks };
 }
 

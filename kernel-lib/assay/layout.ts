@@ -28,6 +28,8 @@ export interface Layout {
   readonly prose: readonly string[];
   /** The head row is in capitals throughout. */
   readonly upperCase: boolean;
+  /** The row where another table starts below this one. */
+  readonly next?: number;
 }
 
 /** Number columns of written sheets. */
@@ -59,25 +61,37 @@ interface HeadRow {
 }
 
 /**
- * Finds the table in a sheet: the head row is the row (or column, where the samples stand side by side) that names the most analytes.
+ * Finds the tables in a sheet, one below the other: each starts with a row (or column, where the samples stand side by side) that names
+ * analytes, and ends where a row names others.
  *
- * @returns undefined when no row and no column names an analyte
+ * @returns none when no row and no column names an analyte
  */
-export function findLayout(sheet: Grid, options: LayoutOptions = {}): Layout | undefined {
+export function findLayouts(sheet: Grid, options: LayoutOptions = {}): Layout[] {
   const { settings = {} } = options;
+  const first = findFirst(sheet, settings, options);
+  if (first === undefined) return [];
+  const layouts = [first];
+  for (let next = first.next; next !== undefined; next = layouts[layouts.length - 1].next) {
+    layouts.push(layOut(sheet, headRow(sheet, settings, next, next + 1)!, settings, 'rows', next));
+  }
+  return layouts;
+}
+
+function findFirst(sheet: Grid, settings: Readonly<Record<string, unknown>>, options: LayoutOptions): Layout | undefined {
   const turned = new TurnedGrid(sheet);
-  const inRows = options.samplesIn === 'columns' ? undefined : bestHeadRow(sheet, settings, options.headerRow);
-  const inColumns = options.samplesIn === 'rows' || options.headerRow !== undefined ? undefined : bestHeadRow(turned, settings);
+  const inRows = options.samplesIn === 'columns' ? undefined : headRow(sheet, settings, options.headerRow ?? 0, options.headerRow === undefined ? searchRows : options.headerRow + 1);
+  const inColumns = options.samplesIn === 'rows' || options.headerRow !== undefined ? undefined : headRow(turned, settings, 0, searchRows);
   if (inRows === undefined && inColumns === undefined) return undefined;
   // Sample names can look like analytes (`B`, `V-51`), so a column must name clearly more of them than any row does.
   if (inColumns !== undefined && inColumns.analytes > 1.5 * (inRows?.analytes ?? 0)) return layOut(turned, inColumns, settings, 'columns');
   return layOut(sheet, inRows!, settings, 'rows');
 }
 
-function bestHeadRow(grid: Grid, settings: Readonly<Record<string, unknown>>, only?: number): HeadRow | undefined {
-  let best: HeadRow | undefined;
+/** The first row that names about as many analytes as any: a second table further down may name more. */
+function headRow(grid: Grid, settings: Readonly<Record<string, unknown>>, from: number, to: number): HeadRow | undefined {
+  const found: HeadRow[] = [];
   const columns = Math.min(grid.columns, searchColumns);
-  for (let row = only ?? 0; row < Math.min(grid.rows, only === undefined ? searchRows : only + 1); row++) {
+  for (let row = from; row < Math.min(grid.rows, to); row++) {
     const texts: string[] = [];
     for (let column = 0; column < columns; column++) {
       const look = grid.look(row, column);
@@ -95,12 +109,29 @@ function bestHeadRow(grid: Grid, settings: Readonly<Record<string, unknown>>, on
     // A sheet of places without any analyte is known by two heads such as latitude and sample.
     const named = [...analytes.values()].reduce((sum, weight) => sum + weight, 0);
     const count = named > 0 ? named + (labels > 0 ? 0.5 : 0) : labels > 1 ? 0.01 * labels : 0;
-    if (count > 0 && count > (best?.analytes ?? 0)) best = { row, analytes: count, upperCase };
+    if (count > 0) found.push({ row, analytes: count, upperCase });
   }
-  return best;
+  const most = found.reduce((best, { analytes }) => Math.max(best, analytes), 0);
+  return found.find(({ analytes }) => analytes === most || (analytes >= 2 && analytes >= 0.5 * most));
 }
 
-function layOut(grid: Grid, head: HeadRow, settings: Readonly<Record<string, unknown>>, samplesIn: 'rows' | 'columns'): Layout {
+/** Whether a row below a table starts another one: it names analytes, and not the same ones in the same columns as above. */
+function startsAnother(grid: Grid, row: number, heads: readonly string[], settings: Readonly<Record<string, unknown>>): boolean {
+  let texts = 0;
+  let analytes = 0;
+  let others = 0;
+  for (let column = 0; column < Math.min(grid.columns, searchColumns); column++) {
+    if (grid.look(row, column) !== cellLook.text) continue;
+    texts++;
+    const text = grid.text(row, column);
+    if (nameOf(text, false, settings) === undefined) continue;
+    analytes++;
+    if (text !== heads[column]) others++;
+  }
+  return others > 0 && analytes >= 2 && analytes >= 0.5 * texts;
+}
+
+function layOut(grid: Grid, head: HeadRow, settings: Readonly<Record<string, unknown>>, samplesIn: 'rows' | 'columns', start = 0): Layout {
   const columns = grid.columns;
   const words = vocabulary();
   const rowTexts = (row: number) => Array.from({ length: columns }, (_, column) => grid.text(row, column));
@@ -147,17 +178,20 @@ function layOut(grid: Grid, head: HeadRow, settings: Readonly<Record<string, unk
     }
   }
   const prose: string[] = [];
-  for (let row = 0; row < top; row++) for (const text of rowTexts(row)) if (text !== '') prose.push(text);
-  const { body, skipped, limit, upperLimit } = findBody(grid, bottom + 1, heads, isAnalyte, words);
+  const above = Array.from({ length: Math.max(0, top - start) }, (_, k) => ({ row: start + k, why: 'above the table', text: rowTexts(start + k).filter(Boolean).join(' ') }));
+  for (const { text } of above) if (text !== '') prose.push(text);
+  const isNext = (row: number) => samplesIn === 'rows' && startsAnother(grid, row, heads, settings);
+  const { body, skipped, limit, upperLimit, next } = findBody(grid, bottom + 1, heads, isAnalyte, words, isNext);
   for (const { why, text } of skipped) if (why === 'no analysis in it') prose.push(text);
   return {
     grid,
     samplesIn,
     heads,
     body,
-    skipped,
+    skipped: [...above.filter(({ text }) => text !== ''), ...skipped],
     prose,
     upperCase: head.upperCase,
+    next,
     header: { ...header, limit: header.limit ?? limit, upperLimit: header.upperLimit ?? upperLimit },
     units: heads.map((_, column) => unitTexts[column] ?? ''),
     methods: heads.map((_, column) => methodTexts[column] ?? ''),
@@ -226,7 +260,15 @@ function filled(texts: readonly string[], isAnalyte: readonly boolean[]): string
   });
 }
 
-function findBody(grid: Grid, from: number, heads: readonly string[], isAnalyte: readonly boolean[], words: Words) {
+function findBody(
+  grid: Grid,
+  from: number,
+  heads: readonly string[],
+  isAnalyte: readonly boolean[],
+  words: Words,
+  isNext: (row: number) => boolean,
+) {
+  let next: number | undefined;
   const body: number[] = [];
   const skipped: { row: number; why: string; text: string }[] = [];
   let limit: number | undefined;
@@ -271,12 +313,16 @@ function findBody(grid: Grid, from: number, heads: readonly string[], isAnalyte:
       longText = longText === '' ? text : `${longText} ${text}`;
     }
     if (texts === 0 && labels === 0) continue;
+    if (texts + labels > 2 && isNext(row)) {
+      next = row;
+      break;
+    }
     if (texts > 0 && same >= 0.5 * texts && same > 0) skipped.push({ row, why: 'the head row again', text: longText });
     else if (texts > 0 && unitCells >= 0.6 * texts) skipped.push({ row, why: 'the units again', text: longText });
     else if (texts > 0 || labels > 1 || (labels === 1 && labelColumns.length === 1 && !/\s/.test(longText) && longText.length <= 24)) body.push(row);
     else skipped.push({ row, why: 'no analysis in it', text: longText || grid.text(row, 0) });
   }
-  return { body: Uint32Array.from(body), skipped, limit, upperLimit };
+  return { body: Uint32Array.from(body), skipped, limit, upperLimit, next };
 }
 
 function firstText(grid: Grid, row: number, columns: readonly number[]): string {

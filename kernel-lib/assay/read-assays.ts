@@ -3,8 +3,8 @@ import { showAs, type Showable } from '../display';
 import { totalIron, type TotalIronCounts } from '../recast';
 import { step, suiteOf, type Column, type StepDetail, type Suite, type Traced } from '../suite';
 import { AssayError } from './errors';
-import { joinSheet, matchSamples, type Joined } from './join-sheets';
-import { findLayout, type Layout } from './layout';
+import { joinSheet, matchSamples, rowsBelow, type Joined, type RowMatch } from './join-sheets';
+import { findLayouts, type Layout } from './layout';
 import { openFile, type OpenFile, type OpenSheet } from './open-file';
 import { checkReadOptions, type ReadAssaysOptions } from './read-options';
 import { readSheet, type ReadSheet } from './read-sheet';
@@ -34,10 +34,7 @@ export async function readAssays(path: string, options: ReadAssaysOptions = {}):
   checkReadOptions(path, options);
   const opened = await openFile(path, { delimiter: options.delimiter });
   const headerRow = options.headerRow === undefined ? undefined : options.headerRow - 1;
-  const sheets = opened.sheets.map((sheet) => ({
-    sheet,
-    layout: findLayout(sheet.grid, { samplesIn: options.samplesIn, headerRow, settings: options.columns }),
-  }));
+  const sheets = opened.sheets.flatMap((sheet) => tablesOf(sheet, findLayouts(sheet.grid, { samplesIn: options.samplesIn, headerRow, settings: options.columns })));
   const { read, whole, remarks } = readSheets(opened, sheets, options);
   const noAnalyte = read.every(({ decoded }) =>
     decoded.imported.every(({ became, name }) => became !== 'analyte' && findAnalyte(name) === undefined),
@@ -121,6 +118,15 @@ function lineageStep(report: ImportReport, read: readonly ReadSheet[], options: 
 
 type LaidOut = { readonly sheet: OpenSheet; readonly layout: Layout | undefined };
 
+/** The tables of a sheet, each as a sheet of its own: the first under the sheet's name, the others under that and their head row. */
+function tablesOf(sheet: OpenSheet, layouts: readonly Layout[]): LaidOut[] {
+  if (layouts.length === 0) return [{ sheet, layout: undefined }];
+  return layouts.map((layout, at) => {
+    const name = at === 0 ? sheet.name : `${sheet.name === '' ? 'table' : sheet.name} from row ${layout.header.analyte + 1}`;
+    return { sheet: { ...sheet, name, remarks: at === 0 ? sheet.remarks : [`row ${layout.header.analyte + 1} names other analytes than the head row above it: read as a table of its own`] }, layout };
+  });
+}
+
 /** Reads the chosen sheet, and joins the others that hold more of its samples. */
 function readSheets(
   opened: OpenFile,
@@ -137,16 +143,19 @@ function readSheets(
   const read = [first];
   const remarks: string[] = [];
   let whole: Joined = { columns: first.decoded.columns, labels: first.decoded.labels, remarks: [] };
-  for (const { sheet, layout } of options.sheet === undefined ? sheets : []) {
-    if (sheet === chosen.sheet || layout === undefined || layout.body.length === 0) continue;
-    if (sheet.hidden) {
+  for (const { sheet, layout } of sheets) {
+    const below = sheet.grid === chosen.sheet.grid;
+    if (sheet === chosen.sheet || layout === undefined || layout.body.length === 0 || (options.sheet !== undefined && !below)) continue;
+    if (sheet.hidden && !below) {
       remarks.push(`the hidden sheet "${sheet.name}" (${holds(layout)}) is not read`);
       continue;
     }
     const next = readSheet(sheet, layout, sheetOptions, whereIs(opened, sheet), used);
     const names = next.decoded.labels.get('sample');
-    const match =
-      names === undefined || !whole.labels.has('sample') ? { refused: 'it has no sample names' } : matchSamples(whole.labels.get('sample')!, names);
+    const known = whole.labels.get('sample');
+    let match: RowMatch = names === undefined || known === undefined ? { refused: 'it has no sample names' } : matchSamples(known, names);
+    // A table below another in one sheet goes on with other samples.
+    if ('refused' in match && below && names !== undefined && known !== undefined) match = rowsBelow(known, names);
     if ('refused' in match)
       remarks.push(`sheet "${sheet.name}" (${holds(layout)}) is not read: ${match.refused}. Read it with { sheet: '${sheet.name}' }`);
     else {

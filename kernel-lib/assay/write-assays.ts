@@ -4,6 +4,7 @@ import { escapeSpreadsheet, writeWhole } from '../display';
 import { cellState, type Column, type Suite } from '../suite';
 import { ByteSink } from './byte-sink';
 import { csvText } from './csv-text';
+import { guarded } from './guarded';
 import { readHeading, ownTag } from './heading';
 
 /**
@@ -49,7 +50,7 @@ function labelPart(name: string, texts: readonly string[]): SheetPart {
       readHeading(name).role === 'unknown' &&
       readHeading(name, true).role === 'unknown' &&
       !ownTag.test(name));
-  return { head: plain ? name : tagged(name, '', 'text'), numbers: false, cell: (row) => escapeSpreadsheet(texts[row]) };
+  return { head: plain ? name : tagged(name, '', 'text'), numbers: false, cell: (row) => guarded(texts[row]) };
 }
 
 function columnParts(column: Column): SheetPart[] {

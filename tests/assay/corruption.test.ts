@@ -80,7 +80,7 @@ function movedSilently({ suite, report }: Assays, damaged: string): string[] {
     const sampleColumn = letters.get(place.get('sample') ?? '') ?? -1;
     const row = sampleColumn < 0 ? -1 : grid.findIndex((cells, k) => k >= from && (cells[sampleColumn] ?? '').trim() === suite.samples[i]);
     if (row >= 0) from = row + 1;
-    const rowTold = new RegExp(`\\brow ${row + 1}\\b|rows [\\d, ]*\\b${row + 1}\\b`).test(told) || /quotation mark/.test(told);
+    const rowTold = new RegExp(`\\brow ${row + 1}\\b|rows [\\d, ]*\\b${row + 1}\\b`).test(told) || /quotation mark|names other analytes/.test(told);
     for (const [symbol, { values, states, limits }] of suite.columns) {
       const shown = states[i] === cellState.belowDetection ? (limits?.[i] ?? NaN) : values[i];
       if (!Number.isFinite(shown) || rowTold) continue;

@@ -82,7 +82,7 @@ const nasty = fc.constantFrom(
   'µ-Ω',
   '<0.5',
   'n.d.',
-  'TRUE',
+  'TRUE', 'DL', 'units', "'LOD",
   '2015-12-01',
   ' ',
 );
