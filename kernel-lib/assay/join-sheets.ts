@@ -45,7 +45,10 @@ export function joinSheet(whole: Joined, sheet: ReadSheet, match: { readonly to:
     const placed = spread(each, match.to, match.size);
     const at = columns.findIndex(({ symbol }) => symbol === each.symbol);
     if (at < 0) columns.push(placed);
-    else if (columns[at].unit === each.unit && columns[at].states.every((state, i) => state === cellState.missing || placed.states[i] === cellState.missing)) {
+    else if (
+      columns[at].unit === each.unit &&
+      columns[at].states.every((state, i) => state === cellState.missing || placed.states[i] === cellState.missing)
+    ) {
       columns[at] = fillMissing(columns[at], placed);
     } else {
       const symbol = `${each.symbol} (${sheet.name})`;
@@ -65,7 +68,8 @@ export function joinSheet(whole: Joined, sheet: ReadSheet, match: { readonly to:
       );
     else labels.set(`${name} (${sheet.name})`, placed);
   }
-  if (match.size > before && match.size < before + sheet.layout.body.length) remarks.push(`${match.size - before} samples stand only in sheet "${sheet.name}"`);
+  if (match.size > before && match.size < before + sheet.layout.body.length)
+    remarks.push(`${match.size - before} samples stand only in sheet "${sheet.name}"`);
   return { columns, labels, remarks };
 }
 

@@ -79,7 +79,10 @@ export function findLayouts(sheet: Grid, options: LayoutOptions = {}): Layout[] 
 
 function findFirst(sheet: Grid, settings: Readonly<Record<string, unknown>>, options: LayoutOptions): Layout | undefined {
   const turned = new TurnedGrid(sheet);
-  const inRows = options.samplesIn === 'columns' ? undefined : headRow(sheet, settings, options.headerRow ?? 0, options.headerRow === undefined ? searchRows : options.headerRow + 1);
+  const inRows =
+    options.samplesIn === 'columns'
+      ? undefined
+      : headRow(sheet, settings, options.headerRow ?? 0, options.headerRow === undefined ? searchRows : options.headerRow + 1);
   const inColumns = options.samplesIn === 'rows' || options.headerRow !== undefined ? undefined : headRow(turned, settings, 0, searchRows);
   if (inRows === undefined && inColumns === undefined) return undefined;
   // Sample names can look like analytes (`B`, `V-51`), so a column must name clearly more of them than any row does.
@@ -178,7 +181,13 @@ function layOut(grid: Grid, head: HeadRow, settings: Readonly<Record<string, unk
     }
   }
   const prose: string[] = [];
-  const above = Array.from({ length: Math.max(0, top - start) }, (_, k) => ({ row: start + k, why: 'above the table', text: rowTexts(start + k).filter(Boolean).join(' ') }));
+  const above = Array.from({ length: Math.max(0, top - start) }, (_, k) => ({
+    row: start + k,
+    why: 'above the table',
+    text: rowTexts(start + k)
+      .filter(Boolean)
+      .join(' '),
+  }));
   for (const { text } of above) if (text !== '') prose.push(text);
   const isNext = (row: number) => samplesIn === 'rows' && startsAnother(grid, row, heads, settings);
   const { body, skipped, limit, upperLimit, next } = findBody(grid, bottom + 1, heads, isAnalyte, words, isNext);
@@ -260,14 +269,7 @@ function filled(texts: readonly string[], isAnalyte: readonly boolean[]): string
   });
 }
 
-function findBody(
-  grid: Grid,
-  from: number,
-  heads: readonly string[],
-  isAnalyte: readonly boolean[],
-  words: Words,
-  isNext: (row: number) => boolean,
-) {
+function findBody(grid: Grid, from: number, heads: readonly string[], isAnalyte: readonly boolean[], words: Words, isNext: (row: number) => boolean) {
   let next: number | undefined;
   const body: number[] = [];
   const skipped: { row: number; why: string; text: string }[] = [];

@@ -171,6 +171,8 @@ function draft(
       made.method = heading.method !== '' ? heading.method : layout.methods[index];
       made.note = heading.note ?? '';
       asAnalyte(made, heading.symbol, unit);
+      if (unit?.unit === 'ppt' && /ppt/i.test(heading.unitText || unitText))
+        notes.inferred.push(`"${head}": ppt is taken as parts per trillion (pg/g)`);
       if (unitText !== '' && rowUnit === undefined && findAnalyte(heading.symbol)!.unit !== '')
         notes.pleaseCheck.push(`${place} "${head}": its unit "${unitText}" is not known`);
       return made;

@@ -34,7 +34,9 @@ export async function readAssays(path: string, options: ReadAssaysOptions = {}):
   checkReadOptions(path, options);
   const opened = await openFile(path, { delimiter: options.delimiter });
   const headerRow = options.headerRow === undefined ? undefined : options.headerRow - 1;
-  const sheets = opened.sheets.flatMap((sheet) => tablesOf(sheet, findLayouts(sheet.grid, { samplesIn: options.samplesIn, headerRow, settings: options.columns })));
+  const sheets = opened.sheets.flatMap((sheet) =>
+    tablesOf(sheet, findLayouts(sheet.grid, { samplesIn: options.samplesIn, headerRow, settings: options.columns })),
+  );
   const { read, whole, remarks } = readSheets(opened, sheets, options);
   const noAnalyte = read.every(({ decoded }) =>
     decoded.imported.every(({ became, name }) => became !== 'analyte' && findAnalyte(name) === undefined),
@@ -123,7 +125,15 @@ function tablesOf(sheet: OpenSheet, layouts: readonly Layout[]): LaidOut[] {
   if (layouts.length === 0) return [{ sheet, layout: undefined }];
   return layouts.map((layout, at) => {
     const name = at === 0 ? sheet.name : `${sheet.name === '' ? 'table' : sheet.name} from row ${layout.header.analyte + 1}`;
-    return { sheet: { ...sheet, name, remarks: at === 0 ? sheet.remarks : [`row ${layout.header.analyte + 1} names other analytes than the head row above it: read as a table of its own`] }, layout };
+    return {
+      sheet: {
+        ...sheet,
+        name,
+        remarks:
+          at === 0 ? sheet.remarks : [`row ${layout.header.analyte + 1} names other analytes than the head row above it: read as a table of its own`],
+      },
+      layout,
+    };
   });
 }
 

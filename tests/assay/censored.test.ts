@@ -1,3 +1,4 @@
+import './helpers';
 import { describe, expect, it } from 'vitest';
 import fc from 'fast-check';
 import { cellState, censoredSummary, column, substitute, suiteOf, type Suite } from 'wedgework';

@@ -1,5 +1,6 @@
 import fc from 'fast-check';
 import Papa from 'papaparse';
+import './helpers';
 import { describe, expect, it } from 'vitest';
 import { DelimitedGrid, guessDelimiter } from '../../kernel-lib/assay/delimited';
 import { decodeText } from '../../kernel-lib/assay/encoding';

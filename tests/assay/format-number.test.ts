@@ -1,3 +1,4 @@
+import './helpers';
 import { describe, expect, it } from 'vitest';
 import fc from 'fast-check';
 import { significantDigits, sixDigits } from '../../kernel-lib/assay/format-number';

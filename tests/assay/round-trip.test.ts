@@ -82,7 +82,10 @@ const nasty = fc.constantFrom(
   'µ-Ω',
   '<0.5',
   'n.d.',
-  'TRUE', 'DL', 'units', "'LOD",
+  'TRUE',
+  'DL',
+  'units',
+  "'LOD",
   '2015-12-01',
   ' ',
 );

@@ -1,5 +1,6 @@
 import fc from 'fast-check';
 import readExcelFile from 'read-excel-file/node';
+import './helpers';
 import { describe, expect, it } from 'vitest';
 import { readWorkbook } from '../../kernel-lib/assay/workbook';
 import { xmlText } from '../../kernel-lib/assay/xml-text';
