@@ -2,7 +2,7 @@ import { stripVTControlCharacters } from 'node:util';
 import { escapeHtml } from '../../display';
 import { outputText, type Notebook, type NotebookCell, type NotebookOutput } from './document';
 import { pngSize } from '../rich-value';
-import { pageStyle } from './page-style';
+import { markdownRenderer, selfContainedPage } from '../page';
 
 /** Options of `notebookHtml`. */
 export interface HtmlOptions {
@@ -20,35 +20,13 @@ export interface HtmlOptions {
  */
 export function notebookHtml(notebook: Notebook, options: HtmlOptions = {}): string {
   // Loaded here, so that a notebook that imports the library does not load a page's tools.
-  /* eslint-disable @typescript-eslint/no-require-imports */
-  const MarkdownIt = require('markdown-it') as typeof import('markdown-it');
+  // eslint-disable-next-line @typescript-eslint/no-require-imports
   const sanitize = require('sanitize-html') as typeof import('sanitize-html');
-  /* eslint-enable @typescript-eslint/no-require-imports */
-  const markdown = new MarkdownIt({ html: false, linkify: false, typographer: false });
-  const clean = (html: string) => sanitize(html, allowed);
+  const markdown = markdownRenderer();
   const heading = firstHeading(notebook);
   const title = heading ?? options.title ?? 'Notebook';
-  const body = notebook.cells.map((cell) => cellHtml(cell, (text) => markdown.render(text), clean)).filter((html) => html !== '');
-  return [
-    '<!DOCTYPE html>',
-    '<html lang="en">',
-    '<head>',
-    '<meta charset="utf-8">',
-    '<meta name="viewport" content="width=device-width, initial-scale=1">',
-    // Nothing is fetched and nothing runs, whatever a cell's output holds.
-    `<meta http-equiv="Content-Security-Policy" content="default-src 'none'; img-src data:; style-src 'unsafe-inline'">`,
-    `<title>${escapeHtml(title)}</title>`,
-    `<style>${pageStyle}</style>`,
-    '</head>',
-    '<body>',
-    '<main>',
-    ...(heading === undefined ? [`<h1>${escapeHtml(title)}</h1>`] : []),
-    ...body,
-    '</main>',
-    '</body>',
-    '</html>',
-    '',
-  ].join('\n');
+  const cells = notebook.cells.map((cell) => cellHtml(cell, markdown, (html) => sanitize(html, allowed))).filter((html) => html !== '');
+  return selfContainedPage(title, heading === undefined ? [`<h1>${escapeHtml(title)}</h1>`, ...cells] : cells);
 }
 
 const allowed = {

@@ -1,31 +1,11 @@
 import { escapeHtml } from '../../display';
-import { pageStyle } from '../notebook/page-style';
+import { markdownRenderer, selfContainedPage } from '../page';
 import type { Block } from './blocks';
 
 /** The report as one HTML page that needs nothing else: pictures inside, no script, every text escaped. */
 export function reportPage(title: string, blocks: readonly Block[]): string {
-  // eslint-disable-next-line @typescript-eslint/no-require-imports
-  const MarkdownIt = require('markdown-it') as typeof import('markdown-it');
-  const markdown = new MarkdownIt({ html: false, linkify: false, typographer: false });
-  return [
-    '<!DOCTYPE html>',
-    '<html lang="en">',
-    '<head>',
-    '<meta charset="utf-8">',
-    '<meta name="viewport" content="width=device-width, initial-scale=1">',
-    `<meta http-equiv="Content-Security-Policy" content="default-src 'none'; img-src data:; style-src 'unsafe-inline'">`,
-    `<title>${escapeHtml(title)}</title>`,
-    `<style>${pageStyle}</style>`,
-    '</head>',
-    '<body>',
-    '<main>',
-    `<h1>${escapeHtml(title)}</h1>`,
-    ...blocks.map((block) => blockHtml(block, (text) => markdown.render(text))),
-    '</main>',
-    '</body>',
-    '</html>',
-    '',
-  ].join('\n');
+  const markdown = markdownRenderer();
+  return selfContainedPage(title, [`<h1>${escapeHtml(title)}</h1>`, ...blocks.map((block) => blockHtml(block, markdown))]);
 }
 
 function blockHtml(block: Block, markdown: (text: string) => string): string {
