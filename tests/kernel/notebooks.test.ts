@@ -138,7 +138,7 @@ describe('a run', () => {
   };
 
   it('gives up a cell that takes too long, and one that cannot be stopped', async () => {
-    const run = await runNotebook(written('const a = 1', 'while (true) {}', 'a'), { timeout: 0.5 });
+    const run = await runNotebook(written('const a = 1', 'while (true) {}', 'a'), { timeout: 4 });
     expect(run).toMatchObject({ status: 'timed out', cellsRun: 2, failures: [{ ename: 'CellTimeout', cell: 2 }] });
     expect(run.notebook.cells[1].outputs).toHaveLength(1);
   });
