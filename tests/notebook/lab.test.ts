@@ -43,6 +43,7 @@ describe.each([...gallery, 'figures.ipynb'])('%s in JupyterLab', (name) => {
     expect(ran.map(({ execution_count }) => execution_count)).toEqual(ran.map((_, i) => i + 1));
     expect(outputs(cells).some(({ data }) => progressType in (data ?? {}) && /left/.test(String(data!['text/plain'])))).toBe(false);
     const pictures = await drawn(notebook);
+    expect(pictures.length).toBeGreaterThan(0);
     expect(pictures).toHaveLength(figureSpecs(cells).length);
     for (const { ink, marks, width } of pictures) {
       expect(ink + marks).toBeGreaterThan(100);
