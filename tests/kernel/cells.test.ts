@@ -63,6 +63,14 @@ describe('the value of a cell', () => {
     expect(shown.map(({ kind, data }) => [kind, Object.keys(data)])).toEqual([['display', ['text/plain']], ['display', ['text/html']]]);
   });
 
+  it('takes names of earlier cells in the short form of an object, too', async () => {
+    await run('const group = "volcano"; let most = 3;');
+    expect((await run('const options = { group, most, more: [{ group }] };\nJSON.stringify(options)')).text).toBe(`'{"group":"volcano","most":3,"more":[{"group":"volcano"}]}'`);
+    expect((await run('({ most } = { most: 8 });\nmost')).text).toBe('8');
+    const { reply } = await run('const bad = { group, most }; bad.nothing');
+    expect(reply.traceback![1]).toContain('column 34');
+  });
+
   it('compiles modules beside the notebook', async () => {
     writeFileSync(join(folder, 'helper.ts'), 'export const twice = (n: number): number => 2 * n;\n');
     expect((await run("import { twice } from './helper';\ntwice(21)")).text).toBe('42');

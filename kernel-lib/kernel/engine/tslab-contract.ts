@@ -69,7 +69,21 @@ interface CompilerSystem {
   realpath?(path: string): string;
   watchFile?(path: string, callback: (path: string, event: number) => void, interval?: number): { close(): void };
 }
-const compiler = createRequire(require.resolve('tslab/dist/converter'))('@tslab/typescript-for-tslab') as { sys: CompilerSystem; version: string };
+interface SyntaxNode {
+  readonly kind: number;
+  readonly name?: SyntaxNode;
+  readonly end: number;
+  readonly text?: string;
+}
+interface Compiler {
+  readonly sys: CompilerSystem;
+  readonly version: string;
+  readonly SyntaxKind: { readonly ShorthandPropertyAssignment: number };
+  readonly ScriptTarget: { readonly Latest: number };
+  createSourceFile(name: string, text: string, target: number, parents: boolean): SyntaxNode;
+  forEachChild(node: SyntaxNode, visit: (child: SyntaxNode) => void): void;
+}
+const compiler = createRequire(require.resolve('tslab/dist/converter'))('@tslab/typescript-for-tslab') as Compiler;
 /* eslint-enable @typescript-eslint/no-require-imports */
 
 /** Version of the compiler that reads the cells. */
@@ -130,7 +144,10 @@ export function openExecutor(folder: string, libraryRequire: NodeJS.Require, eve
   const announced: Converter = {
     ...converter,
     convert(previous, source) {
-      const conversion = converter.convert(previous, source);
+      const spelledOut = spellOutShorthand(source);
+      let conversion = converter.convert(previous, spelledOut);
+      // Faults are told at their place in the cell as written.
+      if (conversion.diagnostics.length > 0 && spelledOut !== source) conversion = converter.convert(previous, source);
       if (conversion.output) {
         const name = events.compiled(conversion.output)?.scriptName;
         // The engine names the script in stack frames by this comment; tslab itself gives all cells the same name.
@@ -169,6 +186,21 @@ export function openExecutor(folder: string, libraryRequire: NodeJS.Require, eve
     interrupt: () => executor.interrupt(),
     close: () => executor.close(),
   };
+}
+
+/**
+ * `{ name }` written as `{ name: name }`: tslab turns a name of an earlier cell into `exports.name`, which the short form has no place for.
+ */
+function spellOutShorthand(source: string): string {
+  if (!source.includes('{')) return source;
+  const places: { readonly at: number; readonly name: string }[] = [];
+  const visit = (node: SyntaxNode): void => {
+    const { name } = node;
+    if (node.kind === compiler.SyntaxKind.ShorthandPropertyAssignment && name?.text !== undefined) places.push({ at: name.end, name: name.text });
+    compiler.forEachChild(node, visit);
+  };
+  visit(compiler.createSourceFile('cell.ts', source, compiler.ScriptTarget.Latest, false));
+  return places.reduceRight((text, { at, name }) => `${text.slice(0, at)}: ${name}${text.slice(at)}`, source);
 }
 
 /** What `tslab.display` of a cell calls; the same shape as the content of a Jupyter display message. */
