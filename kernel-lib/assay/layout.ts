@@ -287,8 +287,12 @@ function findBody(grid: Grid, from: number, heads: readonly string[], isAnalyte:
       }
     }
     const first = firstText(grid, row, labelColumns);
+    const kind = first === '' ? undefined : words.headerRows.get(spellingKey(first));
+    if (kind === 'unit' || kind === 'method') {
+      skipped.push({ row, why: kind === 'unit' ? 'units' : 'methods', text: first });
+      continue;
+    }
     if (numbers > 0) {
-      const kind = first === '' ? undefined : words.headerRows.get(spellingKey(first));
       if (kind === 'limit' || kind === 'upperLimit') {
         if (kind === 'limit') limit ??= row;
         else upperLimit ??= row;

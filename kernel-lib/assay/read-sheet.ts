@@ -29,7 +29,9 @@ export interface SheetOptions extends PlanOptions {
 const mostSkippedListed = 40;
 
 /** Reads the body of a sheet whose layout is known. */
-export function readSheet(sheet: OpenSheet, layout: Layout, options: SheetOptions, where: string, used: Set<string>): ReadSheet {
+export function readSheet(sheet: OpenSheet, found: Layout, options: SheetOptions, where: string, used: Set<string>): ReadSheet {
+  const { withheld, remarks, body } = unevenRows(sheet, found, where);
+  const layout = { ...found, body };
   const decimal = options.decimal ?? decimalMark(layout);
   if (sheet.grid instanceof DelimitedGrid) sheet.grid.useDecimal(decimal);
   const columnsWithHeads = sheet.grid instanceof DelimitedGrid && layout.samplesIn === 'rows' ? sheet.grid.width(layout.header.analyte) : Infinity;
@@ -49,7 +51,6 @@ export function readSheet(sheet: OpenSheet, layout: Layout, options: SheetOption
     notDetermined: options.notDetermined ?? said.notDetermined?.means ?? 'missing',
     statedSigmas: options.statedSigmas ?? 1,
   };
-  const { withheld, remarks } = unevenRows(sheet, layout, where);
   const decoded = decodeColumns(layout, columns, conventions, sheet.name, withheld);
   const skipped = layout.skipped.filter(({ why }) => why !== 'detection limits' && why !== 'upper limits');
   const ignored = [
@@ -123,15 +124,22 @@ function legend(prose: readonly string[]): { negative?: string; notDetermined?: 
   return { negative, notDetermined };
 }
 
+/** What uneven rows mean for the sheet: whose numbers are not taken, and which rows of the body are samples. */
+interface Uneven {
+  readonly withheld: Withheld;
+  readonly remarks: readonly string[];
+  readonly body: Uint32Array;
+}
+
 /**
  * Rows of a text file that have more or fewer cells than the head: with a delimiter lost or added, every cell after it stands under the
  * wrong head, so their numbers are not taken. A file whose rows end early all over leaves off empty cells at the end, and is taken.
  */
-function unevenRows(sheet: OpenSheet, layout: Layout, where: string): { withheld: Withheld; remarks: string[] } {
-  const nothing = { withheld: { rows: new Set<number>(), columns: new Set<number>() }, remarks: [] };
+function unevenRows(sheet: OpenSheet, layout: Layout, where: string): Uneven {
+  const nothing: Uneven = { withheld: { rows: new Set(), columns: new Set() }, remarks: [], body: layout.body };
   if (!(sheet.grid instanceof DelimitedGrid)) return nothing;
   const { grid } = sheet;
-  if (layout.samplesIn === 'columns') return { ...nothing, withheld: { rows: new Set(), columns: longRows(grid, layout) } };
+  if (layout.samplesIn === 'columns') return unevenAnalytes(grid, layout);
   const wanted = grid.width(layout.header.analyte);
   const long: number[] = [];
   const short: number[] = [];
@@ -160,7 +168,7 @@ function unevenRows(sheet: OpenSheet, layout: Layout, where: string): { withheld
         .map((row) => row + 1)
         .join(', ')}${short.length > 20 ? ' …' : ''})`,
     );
-  return { withheld: { rows, columns: new Set() }, remarks };
+  return { withheld: { rows, columns: new Set() }, remarks, body: layout.body };
 }
 
 /** The short rows, if all are short by the same number of cells: then it is rather the head row that has one too many. */
@@ -173,9 +181,24 @@ function hasMore(grid: DelimitedGrid, row: number, from: number): boolean {
   return false;
 }
 
-function longRows(grid: DelimitedGrid, layout: Layout): Set<number> {
-  const last = layout.body.length === 0 ? 0 : layout.body[layout.body.length - 1];
-  const columns = new Set<number>();
-  for (let row = 0; row < grid.rows; row++) if (hasMore(grid, row, Math.max(last + 1, layout.body.length))) columns.add(row);
-  return columns;
+/** The same where samples stand in columns: a row of the file is an analyte, and one of another width has its values under wrong samples. */
+function unevenAnalytes(grid: DelimitedGrid, { body }: Layout): Uneven {
+  const rows = Array.from({ length: grid.rows }, (_, row) => row).filter((row) => body.some((column) => grid.look(row, column) === cellLook.number));
+  const counts = new Map<number, number>();
+  for (const row of rows) counts.set(grid.width(row), (counts.get(grid.width(row)) ?? 0) + 1);
+  const usual = [...counts].reduce((best, each) => (each[1] > best[1] ? each : best), [0, 0])[0];
+  const short = rows.filter((row) => grid.width(row) < usual);
+  const long = rows.filter((row) => grid.width(row) > usual && hasMore(grid, row, usual));
+  const trimmed = short.length >= 3 && short.length > 0.05 * rows.length;
+  const columns = new Set([...long, ...(trimmed ? [] : short)]);
+  const remarks = [...columns].map((row) => `row ${row + 1} has ${grid.width(row)} cells, the other rows ${usual}: its numbers are not taken`);
+  if (trimmed)
+    remarks.push(
+      `${short.length} rows end before the last sample: taken as empty cells left off (rows ${short
+        .slice(0, 20)
+        .map((row) => row + 1)
+        .join(', ')})`,
+    );
+  // What stands beyond the usual width belongs to the long rows, and is no sample.
+  return { withheld: { rows: new Set(), columns }, remarks, body: body.filter((column) => column < usual) };
 }
