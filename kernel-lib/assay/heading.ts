@@ -139,7 +139,7 @@ function takeUnit(text: string): { rest: string; unit?: SpelledUnit; unitText: s
     const first = units.get(spellingKey(pieces.slice(0, count).join(' ')));
     if (first !== undefined) return { rest: pieces.slice(count).join(' '), unit: first, unitText: pieces.slice(0, count).join(' ') };
   }
-  // `Sr_ppm_MS81`: a unit between the analyte and a code.
+  // `Sr_ppm_QP31`: a unit between the analyte and a code.
   for (let at = 1; at < pieces.length - 1; at++) {
     const unit = units.get(spellingKey(pieces[at]));
     if (unit !== undefined) return { rest: pieces.filter((_, i) => i !== at).join(' '), unit, unitText: pieces[at] };
@@ -162,7 +162,7 @@ function readAnalyte(text: string, upperCase: boolean): Heading | undefined {
   return split === undefined ? undefined : { role: 'analyte', unit, unitText, ...split };
 }
 
-/** `Zr XRF`, `ICP-MS_Ba`, `Ba-MS81`: one part names an analyte, every other part a method or a laboratory's code. */
+/** `Zr XRF`, `ICP-MS_Ba`, `Ba-QP31`: one part names an analyte, every other part a method or a laboratory's code. */
 function splitMethod(text: string, sure: boolean): { symbol: string; method: string } | undefined {
   const { methods } = vocabulary();
   const isMethod = (piece: string) => methods.has(spellingKey(piece)) || codeLike.test(piece);

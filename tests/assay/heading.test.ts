@@ -54,7 +54,7 @@ describe('column heads', () => {
     ['Zr XRF', 'Zr', '', 'XRF'],
     ['ICP-MS_Ba', 'Ba', '', 'ICP-MS'],
     ['Ba (ICP-MS, ppm)', 'Ba', 'ppm', 'ICP-MS'],
-    ['ME-20_Zr_ppm', 'Zr', 'ppm', 'ME-20'],
+    ['GR-20_Zr_ppm', 'Zr', 'ppm', 'GR-20'],
     ['Ba137', 'Ba', '', ''],
     ['Zr90 (ppm)', 'Zr', 'ppm', ''],
     ['S (%)', 'S', 'wt%', ''],
