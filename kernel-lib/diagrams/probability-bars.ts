@@ -100,14 +100,14 @@ export function probabilityBars(suite: Suite, which: string | Scheme, options: P
     probability.method === 'analytic'
       ? 'from the errors of the analysis, moved through the recasting'
       : `from ${options.draws ?? 2000} drawn analyses a sample`;
-  const which25 = samples === undefined && suite.size > rows.length ? ` The ${rows.length} samples least sure of ${suite.size}.` : '';
+  const others = suite.size - rows.length;
+  const leftOut = samples === undefined ? 'surer than these' : 'not asked for';
   return figure({
     name: `${chosen.title}: probabilities`,
     title,
     panels: [{ frame, layers: [layer] }],
-    caption: [`Probability of each field, ${how}. ${chosen.title}: ${cited}.${which25}`],
-    counts: { plotted: rows.length, notPlotted: suite.size - rows.length, reasons: {} },
-    showCounts: false,
+    caption: [`Probability of each field, ${how}. ${chosen.title}: ${cited}.`],
+    counts: { plotted: rows.length, notPlotted: others, reasons: others > 0 ? { [leftOut]: others } : {} },
     legendWidth: legendRoom('field', names),
     lineage: [...verdicts.lineage, step('diagrams.probabilityBars', { scheme: chosen.key, samples: rows.length })],
   });

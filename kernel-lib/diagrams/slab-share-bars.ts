@@ -48,12 +48,13 @@ export function slabShareBars(of: Suite | SlabShares, options: SlabShareBarOptio
   const sigmaNote =
     'Bars: median share of each element above the oceanic-basalt array at the Nb/Yb of the sample; whiskers 1σ (scatter and array). ' +
     'Pearce & Peate 1995; Pearce et al. 2005.';
+  const left = shares.samples.length - counted;
   return figure({
     name: 'Slab-derived share by element',
     title: options.title,
     panels: [{ frame, layers: [barsLayer(shares, known, single ? undefined : scale)] }],
     caption: [sigmaNote, ...shares.notes.filter((note) => /left out|Not asked/i.test(note))],
-    counts: { plotted: counted, notPlotted: shares.samples.length - counted, reasons: {} },
+    counts: { plotted: counted, notPlotted: left, reasons: left > 0 ? { 'left out by the filter, or not asked': left } : {} },
     legendWidth: single ? 0 : legendRoom(scale.title, scale.names),
     lineage: [...shares.lineage, step('diagrams.slabShareBars', { elements: drawn, groups: groups.map(({ name }) => name) })],
   });

@@ -2,7 +2,7 @@ import { Resvg } from '@resvg/resvg-js';
 import Ajv from 'ajv';
 import { readFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
-import { describe, expect, it } from 'vitest';
+import { beforeAll, describe, expect, it } from 'vitest';
 import * as ww from 'wedgework';
 import { canDraw } from '../../kernel-lib/diagrams/font';
 import { figures } from './gallery-figures.mjs';
@@ -11,7 +11,10 @@ import { axisTitles, captionOf, drawnSegments, labelBoxes, panelsOf, passesThrou
 
 const { diagrams } = ww;
 const gallery = figures(ww);
-const made = new Map(Object.entries(gallery).map(([name, draw]) => [name, draw()]));
+const made = new Map<string, ww.diagrams.Diagram>();
+beforeAll(async () => {
+  for (const [name, draw] of Object.entries(gallery)) made.set(name, await draw());
+});
 const schema = JSON.parse(readFileSync(createRequire(__filename).resolve('vega-lite/build/vega-lite-schema.json'), 'utf8'));
 const ajv = new Ajv({ strict: false, allErrors: false, logger: false });
 ajv.addFormat('color-hex', true);

@@ -50,7 +50,7 @@ export interface TextBox {
 export function labelBoxes(panel: Spec): TextBox[] {
   const place = pixelsOf(panel);
   return unitsOf(panel)
-    .filter(({ mark }) => mark.type === 'text' && mark.clip === true)
+    .filter(({ mark, encoding }) => mark.type === 'text' && mark.clip === true && encoding?.text?.field === 't')
     .flatMap(({ mark, data }) =>
       data.values.map((row: Spec): TextBox => {
         const lines = String(row.t).split('\n');

@@ -68,14 +68,15 @@ function tableParts(html: string): PlacedNumber[] {
   return parts;
 }
 
-/** Values of a figure's data, by their path; each data row is named by its sample where it has one. */
+/** Values of a figure's data, by their path; a data row that has a sample's name (its first tooltip) is called by it. */
 function figureParts(json: string): PlacedNumber[] {
   const parts: PlacedNumber[] = [];
   const walk = (value: unknown, place: string): void => {
     if (Array.isArray(value)) value.forEach((part, i) => walk(part, `${place}[${i + 1}]`));
     else if (typeof value === 'object' && value !== null) {
-      const { sample } = value as { sample?: unknown };
-      for (const [name, part] of Object.entries(value)) walk(part, `${place}${typeof sample === 'string' && !place.endsWith(`(${sample})`) ? ` (${sample})` : ''} ${name}`.trim());
+      const { sample, t0 = sample } = value as { sample?: unknown; t0?: unknown };
+      const named = typeof t0 === 'string' ? `${place} (${t0})` : place;
+      for (const [name, part] of Object.entries(value)) walk(part, `${named} ${name}`.trim());
     } else parts.push({ place, text: String(value) });
   };
   walk(JSON.parse(json), '');
