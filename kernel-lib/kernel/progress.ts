@@ -36,7 +36,9 @@ export function spanText(seconds: number): string {
  * @example const { signal, progress } = ww.progress('Counting'); for (let i = 1; i <= 10 && !signal.aborted; i++) progress(i, 10);
  */
 export function progress(label: string, options: { readonly quiet?: boolean } = {}): TaskProgress {
-  if (typeof label !== 'string' || label.trim() === '') throw new TypeError(`progress: the label must be a text that says what is being done, not ${JSON.stringify(label)}.`);
+  if (typeof label !== 'string' || label.trim() === '') {
+    throw new TypeError(`progress: the label must be a text that says what is being done, not ${JSON.stringify(label)}.`);
+  }
   const link = sessionLink();
   const signal = link?.signal() ?? new AbortController().signal;
   if (options.quiet ?? link?.quiet ?? false) return { signal, progress: () => {} };

@@ -38,7 +38,8 @@ interface DisplayConvention {
   [jupyterDisplay]?: () => MimeBundle | Promise<MimeBundle>;
 }
 
-const hasPicture = (value: unknown): boolean => isShowable(value) || isFrame(value) || typeof (value as DisplayConvention | null)?.[jupyterDisplay] === 'function';
+const hasPicture = (value: unknown): boolean =>
+  isShowable(value) || isFrame(value) || typeof (value as DisplayConvention | null)?.[jupyterDisplay] === 'function';
 
 async function bundleOf(value: unknown): Promise<MimeBundle> {
   noteShown(value);
@@ -88,7 +89,7 @@ function finish(bundle: MimeBundle): RichValue['data'] {
   const left: string[] = [];
   for (const [type, content] of Object.entries(bundle)) {
     if (content === undefined || content === null || !type.includes('/')) continue;
-    const plain: unknown = content instanceof Uint8Array ? Buffer.from(content).toString('base64') : typeof content === 'string' ? content : JSON.parse(JSON.stringify(content));
+    const plain: unknown = content instanceof Uint8Array ? Buffer.from(content).toString('base64') : plainJson(content);
     const size = typeof plain === 'string' ? plain.length : JSON.stringify(plain).length;
     if (size > mostEntry) left.push(`${type} (${(size / 1e6).toFixed(0)} MB)`);
     else data[type] = plain;
@@ -99,6 +100,8 @@ function finish(bundle: MimeBundle): RichValue['data'] {
   }
   return data;
 }
+
+const plainJson = (content: unknown): unknown => (typeof content === 'string' ? content : JSON.parse(JSON.stringify(content)));
 
 /** Width and height from a PNG's first chunk. */
 export function pngSize(base64: string): { width: number; height: number } | undefined {

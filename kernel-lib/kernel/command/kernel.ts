@@ -5,7 +5,8 @@ import { installedKernels, installKernel, removeKernel, type Place } from '../pr
 const orphanCheck = 2_000;
 
 function place(options: Place): Place {
-  return { ...(options.prefix !== undefined && { prefix: resolve(options.prefix) }), ...(options.venv !== undefined && { venv: options.venv === true ? true : resolve(options.venv) }) };
+  const { prefix, venv } = options;
+  return { ...(prefix !== undefined && { prefix: resolve(prefix) }), ...(venv !== undefined && { venv: venv === true ? true : resolve(venv) }) };
 }
 
 export function installCommand(options: Place): number {

@@ -11,7 +11,10 @@ const demoSheet = join('data', 'oruvai-arc.xlsx');
 function notebookFolder(): string {
   for (let at = __dirname; ; at = dirname(at)) {
     if (existsSync(join(at, 'notebooks', mainNotebook))) return join(at, 'notebooks');
-    if (dirname(at) === at) throw new RangeError(`The notebook ${mainNotebook} was not found beside the library. "wedgework start" works in a clone of the repository; elsewhere use "wedgework run your-notebook.ipynb".`);
+    if (dirname(at) === at) {
+      const instead = '"wedgework start" works in a clone of the repository; elsewhere use "wedgework run your-notebook.ipynb".';
+      throw new RangeError(`The notebook ${mainNotebook} was not found beside the library. ${instead}`);
+    }
   }
 }
 
@@ -24,7 +27,9 @@ function notebookFolder(): string {
 export async function startCommand(sheet: string | undefined, options: { readonly quiet?: boolean }): Promise<number> {
   const folder = notebookFolder();
   const path = sheet === undefined ? join(folder, demoSheet) : resolve(sheet);
-  if (!existsSync(path) || !statSync(path).isFile()) throw new RangeError(`There is no sheet ${sheet ?? path}. Give the path of a .csv, .tsv or .xlsx file.`);
+  if (!existsSync(path) || !statSync(path).isFile()) {
+    throw new RangeError(`There is no sheet ${sheet ?? path}. Give the path of a .csv, .tsv or .xlsx file.`);
+  }
   const results = resolve('results', basename(path, extname(path)));
   mkdirSync(results, { recursive: true });
   const progress = new TerminalProgress(process.stderr, options.quiet ?? false);

@@ -204,7 +204,10 @@ function spellOutShorthand(source: string): string {
 }
 
 /** What `tslab.display` of a cell calls; the same shape as the content of a Jupyter display message. */
-export type WriteDisplay = (content: { data: Record<string, unknown>; metadata: Record<string, unknown>; transient?: { display_id?: string } }, update?: boolean) => void;
+export type WriteDisplay = (
+  content: { data: Record<string, unknown>; metadata: Record<string, unknown>; transient?: { display_id?: string } },
+  update?: boolean,
+) => void;
 
 /** Sends what a cell shows through tslab's own display functions the engine's way. */
 export function connectTslabDisplay(write: WriteDisplay): void {
@@ -230,7 +233,9 @@ function shareLibraryWithCompiler(folder: string, libraryRequire: NodeJS.Require
   const { watchFile } = sys;
   // Only files a user edits are watched; the watch of every declaration file in node_modules would poll the disk for nothing.
   if (watchFile !== undefined) {
-    sys.watchFile = (path, callback, interval) => (path.includes('/node_modules/') || path.includes('/dist/') ? { close: () => {} } : watchFile(path, callback, interval));
+    const own = slashes(join(__dirname, '..', '..'));
+    const still = (path: string) => path.includes('/node_modules/') || path.startsWith(own);
+    sys.watchFile = (path, callback, interval) => (still(path) ? { close: () => {} } : watchFile(path, callback, interval));
   }
   if (homes.size === 0) return;
   const moved = (path: string): string => {

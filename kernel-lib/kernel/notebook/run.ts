@@ -177,7 +177,13 @@ export async function runNotebook(path: string, options: RunOptions = {}): Promi
 }
 
 /** Runs one cell, but not for ever. The engine's end is an error of the cell like any other. */
-async function runCell(engine: EngineProcess, code: string, label: string, take: (output: CellOutput) => void, timeout: number | undefined): Promise<{ reply: CellReply; timedOut: boolean }> {
+async function runCell(
+  engine: EngineProcess,
+  code: string,
+  label: string,
+  take: (output: CellOutput) => void,
+  timeout: number | undefined,
+): Promise<{ reply: CellReply; timedOut: boolean }> {
   let timedOut = false;
   let last: NodeJS.Timeout | undefined;
   const first = timeout === undefined ? undefined : setTimeout(() => {

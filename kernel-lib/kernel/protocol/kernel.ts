@@ -106,7 +106,8 @@ export class Kernel {
         const code = String(content.code);
         const { found } = await this.engine.inspect({ code, cursor: unitsFromCharacters(code, Number(content.cursor_pos)) });
         const text = found === null ? undefined : symbolText(found);
-        return reply('inspect_reply', { found: text !== undefined, data: text === undefined ? {} : { 'text/plain': text.plain, 'text/markdown': text.markdown }, metadata: {} });
+        const data = text === undefined ? {} : { 'text/plain': text.plain, 'text/markdown': text.markdown };
+        return reply('inspect_reply', { found: text !== undefined, data, metadata: {} });
       }
       case 'is_complete_request': {
         const { complete, indent } = await this.engine.isComplete({ code: String(content.code) });

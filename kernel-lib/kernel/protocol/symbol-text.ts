@@ -1,6 +1,13 @@
 import type { SymbolInfo } from '../engine/tslab-contract';
 
-const tagTitles: Readonly<Record<string, string>> = { returns: 'Returns', return: 'Returns', throws: 'Throws', source: 'Source', example: 'Example', deprecated: 'Deprecated' };
+const tagTitles: Readonly<Record<string, string>> = {
+  returns: 'Returns',
+  return: 'Returns',
+  throws: 'Throws',
+  source: 'Source',
+  example: 'Example',
+  deprecated: 'Deprecated',
+};
 
 /** What is known of a name, as plain text and as Markdown, with its doc comment. */
 export function symbolText({ signature, documentation, tags }: SymbolInfo): { plain: string; markdown: string } {
