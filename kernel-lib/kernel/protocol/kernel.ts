@@ -7,7 +7,7 @@ import { KernelSockets, type Channel } from './sockets';
 import { symbolText } from './symbol-text';
 import { protocolVersion, type Message } from './wire';
 
-/** How long a kernel waits, after a failed cell, for cells sent at the same time as it: they are not run. In milliseconds. */
+/** How long a kernel waits, after a failed cell, for cells sent together with it that are still on their way. In milliseconds. */
 const abortWindow = 20;
 
 /**
@@ -163,23 +163,25 @@ export class Kernel {
     }
     const { ename, evalue, traceback } = answer;
     if (ename === 'KernelEnded') this.publishOutput(message, { kind: 'error', ename, evalue: evalue ?? '', traceback: traceback ?? [] }, count);
+    const stopped = content.stop_on_error === false ? [] : await this.takeCellsSentTogether();
     this.sockets.reply('shell', message, 'execute_reply', { status: 'error', execution_count: count, ename, evalue, traceback });
-    if (content.stop_on_error !== false) await this.abortQueued();
+    for (const cell of stopped) {
+      this.sockets.publish(cell, 'status', { execution_state: 'busy' });
+      this.sockets.reply('shell', cell, 'execute_reply', { status: 'aborted', execution_count: this.count });
+      this.sockets.publish(cell, 'status', { execution_state: 'idle' });
+    }
   }
 
-  /** Cells that were sent together with a failed one are not run, since they count on it. */
-  private async abortQueued(): Promise<void> {
+  /**
+   * Cells that were sent together with a failed one are not run, since they count on it. They are taken before the failure is told, so
+   * that a cell sent as an answer to it is none of them.
+   */
+  private async takeCellsSentTogether(): Promise<Message[]> {
     await new Promise((resolve) => setTimeout(resolve, abortWindow));
-    const rest = this.queue.splice(0);
-    for (const message of rest) {
-      if (message.header.msg_type !== 'execute_request') {
-        this.queue.push(message);
-        continue;
-      }
-      this.sockets.publish(message, 'status', { execution_state: 'busy' });
-      this.sockets.reply('shell', message, 'execute_reply', { status: 'aborted', execution_count: this.count });
-      this.sockets.publish(message, 'status', { execution_state: 'idle' });
-    }
+    const waiting = this.queue.splice(0);
+    const isCell = ({ header }: Message) => header.msg_type === 'execute_request';
+    this.queue.push(...waiting.filter((entry) => !isCell(entry)));
+    return waiting.filter(isCell);
   }
 
   private publishOutput(parent: Message, output: CellOutput, count: number): void {
