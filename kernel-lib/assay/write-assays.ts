@@ -1,7 +1,7 @@
 import { extname } from 'node:path';
 import { findAnalyte } from '../chemistry';
 import { escapeSpreadsheet, writeWhole } from '../display';
-import { cellState, type Column, type Suite } from '../suite';
+import { cellState, writeLineageBeside, type Column, type Suite } from '../suite';
 import { ByteSink } from './byte-sink';
 import { csvText } from './csv-text';
 import { guarded } from './guarded';
@@ -15,7 +15,7 @@ import { readHeading, ownTag } from './heading';
  * `readAssays` takes off again.
  *
  * @param suite n samples
- * @param path ending in .csv or .xlsx; folders are made
+ * @param path ending in .csv or .xlsx; folders are made; the lineage goes beside it, as `<path>.lineage.json`
  * @throws RangeError for another ending
  * @example await writeAssays(suite, 'checked.csv')
  */
@@ -26,6 +26,7 @@ export async function writeAssays(suite: Suite, path: string): Promise<void> {
   const bare = bareRows(suite);
   if (ending === '.csv') await writeCsv(suite.size, parts, bare, path);
   else writeWhole(path, workbookBytes(suite.size, parts, bare));
+  writeLineageBeside(path, suite.lineage);
 }
 
 /** One column of the written sheet: its head, and the cell of a row ('' where there is none). */

@@ -1,5 +1,5 @@
 import { escapeSpreadsheet } from '../display';
-import type { Column } from '../suite';
+import { joinLineages, writeLineageBeside, type Column, type Traced } from '../suite';
 import { ByteSink } from './byte-sink';
 import { csvText } from './csv-text';
 
@@ -22,10 +22,11 @@ const newline = 0x0a;
  * @param path of the .csv file; folders are made
  * @param columns n values each
  * @param labels n texts each; `sample` names
+ * @param of results that the table was made of: their lineage then stands beside the file, as `<path>.lineage.json`
  * @throws RangeError when the lengths differ or a name is used twice
  * @example await writeTable('results.csv', [dry.column('SiO2')], { sample: dry.samples })
  */
-export async function writeTable(path: string, columns: readonly TableColumn[], labels: TableLabels = {}): Promise<void> {
+export async function writeTable(path: string, columns: readonly TableColumn[], labels: TableLabels = {}, of: readonly Traced[] = []): Promise<void> {
   const texts: [string, readonly string[]][] =
     labels instanceof Map ? [...labels] : Object.entries(labels as Readonly<Record<string, readonly string[]>>);
   const numbers = columns.map((each): [string, ArrayLike<number>] => ['symbol' in each ? each.symbol : each.name, each.values]);
@@ -59,6 +60,7 @@ export async function writeTable(path: string, columns: readonly TableColumn[], 
       if (row % 8192 === 8191) await new Promise(setImmediate);
     }
     sink.finish();
+    if (of.length > 0) writeLineageBeside(path, joinLineages(...of.map(({ lineage }) => lineage)));
   } catch (error) {
     sink.abandon();
     throw error;

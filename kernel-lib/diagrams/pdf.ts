@@ -20,7 +20,7 @@ const pointsPerPixel = 0.75;
 /**
  * Draws SVG text as a PDF of one page that just holds it: vectors, with the shipped font embedded. The same SVG gives the same bytes.
  */
-export async function renderPdf(svg: string, title: string): Promise<Uint8Array> {
+export async function renderPdf(svg: string, title: string, lineage = ''): Promise<Uint8Array> {
   const PDFDocument = load('pdfkit') as new (options: object) => PdfDocument;
   const svgToPdf = load('svg-to-pdfkit') as SvgToPdf;
   const size = /<svg[^>]*\bwidth="([\d.]+)"[^>]*\bheight="([\d.]+)"/.exec(svg);
@@ -30,7 +30,7 @@ export async function renderPdf(svg: string, title: string): Promise<Uint8Array>
   const document = new PDFDocument({
     size: [width, height],
     margin: 0,
-    info: { Title: title, Creator: 'wedgework', Producer: 'wedgework', CreationDate: new Date(0), ModDate: new Date(0) },
+    info: { Title: title, Keywords: lineage, Creator: 'wedgework', Producer: 'wedgework', CreationDate: new Date(0), ModDate: new Date(0) },
   });
   const chunks: Uint8Array[] = [];
   document.on('data', (chunk: Uint8Array) => chunks.push(chunk));

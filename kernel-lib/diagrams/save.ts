@@ -1,5 +1,7 @@
 import { resolve } from 'node:path';
 import { writeWhole } from '../display';
+import { lineageJson } from '../suite';
+import { pageWith, pngWith, svgWith } from './carry-lineage';
 import { isDiagram, type Diagram } from './diagram';
 import { diagramPage } from './page';
 import { renderPdf } from './pdf';
@@ -13,7 +15,7 @@ function check(who: string, diagram: Diagram, path: string, ending: string): str
 }
 
 /**
- * Writes a diagram as SVG. Text stays text, in the family Source Sans 3 with common sans-serif faces behind it.
+ * Writes a diagram as SVG, with its lineage in the file's metadata (as all saved figures carry it). Text stays text, in the family Source Sans 3 with common sans-serif faces behind it.
  *
  * @param path file path ending in .svg, relative to the notebook; folders are made, a file of that name is replaced whole
  * @throws TypeError or RangeError for a wrong argument; the system's own error when the file cannot be written
@@ -21,7 +23,7 @@ function check(who: string, diagram: Diagram, path: string, ending: string): str
  */
 export async function saveSvg(diagram: Diagram, path: string): Promise<void> {
   const file = check('saveSvg', diagram, path, '.svg');
-  writeWhole(file, await diagram.svg());
+  writeWhole(file, svgWith(await diagram.svg(), lineageJson(diagram.lineage)));
 }
 
 /**
@@ -34,7 +36,7 @@ export async function saveSvg(diagram: Diagram, path: string): Promise<void> {
  */
 export async function savePng(diagram: Diagram, path: string, options: { readonly scale?: number } = {}): Promise<void> {
   const file = check('savePng', diagram, path, '.png');
-  writeWhole(file, await diagram.png({ scale: options.scale ?? 4 }));
+  writeWhole(file, pngWith(await diagram.png({ scale: options.scale ?? 4 }), lineageJson(diagram.lineage)));
 }
 
 /**
@@ -46,7 +48,7 @@ export async function savePng(diagram: Diagram, path: string, options: { readonl
  */
 export async function savePdf(diagram: Diagram, path: string): Promise<void> {
   const file = check('savePdf', diagram, path, '.pdf');
-  writeWhole(file, await renderPdf(await diagram.svg(), diagram.description));
+  writeWhole(file, await renderPdf(await diagram.svg(), diagram.description, lineageJson(diagram.lineage)));
 }
 
 /**
@@ -59,5 +61,5 @@ export async function savePdf(diagram: Diagram, path: string): Promise<void> {
  */
 export async function saveHtml(diagram: Diagram, path: string): Promise<void> {
   const file = check('saveHtml', diagram, path, '.html');
-  writeWhole(file, diagramPage(diagram, await diagram.svg()));
+  writeWhole(file, pageWith(diagramPage(diagram, await diagram.svg()), lineageJson(diagram.lineage)));
 }

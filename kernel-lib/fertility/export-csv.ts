@@ -1,4 +1,5 @@
 import { escapeSpreadsheet, writeWhole, type TableCell } from '../display';
+import { writeLineageBeside } from '../suite';
 import { exportTable, type FertilityRows } from './export-columns';
 import type { FertilityScreen } from './screen';
 
@@ -57,6 +58,7 @@ export function saveFertilityCsv(screen: FertilityScreen, path: string, options:
   }
   pieces.push(Buffer.from(piece));
   writeWhole(path, Buffer.concat(pieces));
+  writeLineageBeside(path, screen.lineage);
   return { path, rows: table.rows };
 }
 

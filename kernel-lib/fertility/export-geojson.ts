@@ -1,4 +1,5 @@
 import { writeWhole } from '../display';
+import type { Step } from '../suite';
 import { shortSource } from '../tables';
 import { checkSave, type SavedScreen } from './export-csv';
 import { exportTable, type FertilityRows } from './export-columns';
@@ -18,11 +19,13 @@ export interface FertilityFeature {
   readonly properties: Readonly<Record<string, string | number | boolean | null>>;
 }
 
-/** A screening as GeoJSON (RFC 7946), with the cautions and sources as foreign members. */
+/** A screening as GeoJSON (RFC 7946), with the cautions, sources and lineage as foreign members. */
 export interface FertilityGeoJson {
   readonly type: 'FeatureCollection';
   readonly bbox?: readonly [number, number, number, number];
   readonly cautions: readonly string[];
+  /** The steps that made the screening. */
+  readonly lineage: readonly Step[];
   readonly sources: readonly string[];
   readonly features: readonly FertilityFeature[];
 }
@@ -70,6 +73,7 @@ export function fertilityGeoJson(screen: FertilityScreen, options: { readonly ro
     ...(bbox === undefined ? {} : { bbox }),
     cautions: screen.cautions,
     sources: screen.sources.map(shortSource),
+    lineage: screen.lineage,
     features,
   };
 }

@@ -1,4 +1,5 @@
 import { escapeSpreadsheet, withoutZipTimes, writeWhole, type TableCell } from '../display';
+import { writeLineageBeside } from '../suite';
 import { findSource, formatSource } from '../tables';
 import { checkSave, type SavedScreen } from './export-csv';
 import { exportTable } from './export-columns';
@@ -86,6 +87,7 @@ export async function saveFertilityWorkbook(
   const write = (require('write-excel-file/node') as { default: WriteWorkbook }).default;
   const sheets = [verdictSheet(screen), evidenceSheet(screen), ...(samples ? [sampleSheet(screen)] : []), cautionSheet(screen), sourceSheet(screen)];
   writeWhole(path, withoutZipTimes(await write(sheets, { fontFamily: 'Arial', fontSize: 10, features: [fitPageWidth] }).toBuffer()));
+  writeLineageBeside(path, screen.lineage);
   return { path, rows: screen.groups.length };
 }
 

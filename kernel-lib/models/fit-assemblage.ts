@@ -3,6 +3,7 @@ import { volatileFree } from '../recast';
 import { showAs, type Showable, type TableCell } from '../display';
 import { derivedColumn, resolveColumn, step, Suite, suiteOf, type Traced } from '../suite';
 import type { MeltType } from '../tables';
+import { recalledCoefficients, recalledMinerals } from './in-words';
 import { readPhaseColumns, type BalanceMinerals, type PhaseColumn } from './balance-input';
 import { checkOwnCoefficients, gatherCoefficients, readMeltTypes, sourcesOf, type OwnCoefficients, type UsedCoefficient } from './coefficients';
 import { descentOfAssemblage, type AssemblageProblem, type AssemblageState } from './assemblage-solver';
@@ -193,6 +194,8 @@ export function fitAssemblage(suite: Suite, options: FitAssemblageOptions): Asse
     {
       sources: ['bryan_1969', 'gast_1968', 'allegre_1977', ...sourcesOf(used.flat())],
       tables: ['mineral-compositions.csv', 'atomic-weights.csv', ...(elements.length > 0 ? ['partition-coefficients.csv'] : [])],
+      fromMemory: [...recalledMinerals(columns.map(({ chosen }) => chosen)), ...recalledCoefficients(used.flat())],
+      says: `Parent, liquid fractions and assemblage were fitted to ${rows.length} samples at once (${draws} draws, seed ${options.seed ?? 1}).`,
     },
   );
   const lineage = [...suite.lineage, because];

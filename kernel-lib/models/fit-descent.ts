@@ -285,6 +285,7 @@ export function fitDescent(suite: Suite, options: FitDescentOptions = {}): Desce
     },
     {
       sources: ['allegre_1977', 'minster_allegre_1978', 'langmuir_1978', 'kass_raftery_1995', ...(assimilant === undefined ? [] : ['depaolo_1981'])],
+      says: `${input.samples} samples were held against one liquid line of descent, mixing and assimilation; preferred: ${preferred}.`,
     },
   );
   const lineage = [...joinLineage(suite.lineage, assimilant?.lineage ?? []), because];

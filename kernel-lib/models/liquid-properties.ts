@@ -156,7 +156,16 @@ export function withLiquidProperties(suite: Suite, conditions: LiquidConditions)
   const because = step(
     who,
     { temperature, pressure, water, redox: typeof redox === 'number' ? redox : { buffer: redox.buffer, offset: redox.offset ?? 0 } },
-    { sources, tables: ['thermometers.json', 'melt-density.json', 'melt-viscosity.json', 'iron-oxidation.json', 'atomic-weights.csv'] },
+    {
+      sources,
+      tables: ['thermometers.json', 'melt-density.json', 'melt-viscosity.json', 'iron-oxidation.json', 'atomic-weights.csv'],
+      fromMemory: [
+        ...(isThermometer ? [`constants of the thermometer ${String(temperature)} (thermometers.json)`] : []),
+        ...(densityTable().silicates.standing === 'from memory' ? ['partial volumes of melt density (melt-density.json)'] : []),
+        ...(viscosityTable().standing === 'from memory' ? ['constants of melt viscosity (melt-viscosity.json)'] : []),
+      ],
+      says: `Temperature, ferric share, density and viscosity of the liquids were computed at ${pressure} bar.`,
+    },
   );
   return suite
     .with(

@@ -5,6 +5,7 @@ import { step, type Suite, type Traced } from '../suite';
 import { molarMass } from '../tables';
 import { BalanceSolver, type BalanceProblem } from './balance-solver';
 import { readBalance, type BalanceInput, type BalanceMinerals, type BalanceOptions } from './balance-input';
+import { recalledMinerals } from './in-words';
 import type { ChosenMineral } from './minerals';
 import { joinLineage } from './one-analysis';
 import { readNumber } from './trace-setup';
@@ -269,6 +270,8 @@ export function massBalance(options: MassBalanceOptions): MassBalance {
         ...new Set(input.columns.filter(({ chosen }) => chosen.standing !== 'supplied').map(({ chosen }) => chosen.source)),
       ],
       tables: ['mineral-compositions.csv', 'atomic-weights.csv'],
+      fromMemory: recalledMinerals(input.columns.map(({ chosen }) => chosen)),
+      says: `The mass balance of ${oxides.join(', ')} was solved by non-negative weighted least squares, with intervals from ${hasErrors ? draws : 0} draws (seed ${seed}).`,
     },
   );
   const result = {

@@ -2,6 +2,7 @@ import { equilibriumLiquid, rayleighLiquid, seededRandom } from '../chemistry';
 import { showAs, type Showable, type TableCell } from '../display';
 import { derivedColumn, step, suiteOf, type Suite, type Traced } from '../suite';
 import { recordCoefficients, sourcesOf, type UsedCoefficient } from './coefficients';
+import { recalledCoefficients } from './in-words';
 import type { CrystalliseOptions } from './crystallise';
 import { errorOf } from './one-analysis';
 import { describeCoefficients, evenly } from './path';
@@ -111,6 +112,8 @@ export async function spreadOfPath(options: PathSpreadOptions): Promise<PathSpre
     {
       sources: [...new Set([...(mode === 'rayleigh' ? ['neumann_1954', 'gast_1968'] : ['shaw_1970']), ...sourcesOf(setup.used)])],
       tables: ['partition-coefficients.csv'],
+      fromMemory: recalledCoefficients(setup.used),
+      says: `The path was drawn ${draws} times with coefficients over their published ranges (seed ${options.seed ?? 1}).`,
     },
   );
   const lineage = [...setup.start.lineage, because];

@@ -3,6 +3,7 @@ import { showAs, type Showable, type TableCell } from '../display';
 import { derivedColumn, step, suiteOf, type Column, type Step, type StepDetail, type Suite, type Traced } from '../suite';
 import { shortSource } from '../tables';
 import { recordCoefficients, sourcesOf, type UsedCoefficient } from './coefficients';
+import { recalledCoefficients, sharesInWords } from './in-words';
 
 /**
  * A forward model: what the liquid becomes, step by step (n steps). `liquid` is a suite like any other, so every diagram and every
@@ -58,6 +59,14 @@ export function evenly(start: number, end: number, steps: number): Float64Array 
   return values;
 }
 
+/** The model in a sentence for a methods section. */
+function pathInWords({ process, F, meaning, detail }: PathParts): string {
+  const { assemblage } = detail;
+  const isShares = typeof assemblage === 'object' && assemblage !== null && Object.values(assemblage).every((share) => typeof share === 'number');
+  const of = isShares ? ` of ${sharesInWords(assemblage as Readonly<Record<string, number>>)}` : '';
+  return `${process}${of} was modelled from F = ${shortF(F[0])} to ${shortF(F[F.length - 1])} (F: ${meaning}).`;
+}
+
 const shortF = (value: number): string => String(Number(value.toFixed(4)));
 
 /** @internal Puts a path together: suites with lineage, and the table it shows itself as. */
@@ -69,6 +78,8 @@ export function buildPath(parts: PathParts): ModelPath {
     {
       sources: [...new Set([...(parts.sources ?? []), ...sourcesOf(coefficients)])],
       tables: [...new Set([...(coefficients.length > 0 ? ['partition-coefficients.csv'] : []), ...(parts.tables ?? [])])],
+      fromMemory: recalledCoefficients(coefficients),
+      says: pathInWords(parts),
     },
   );
   const lineage = [...parts.lineage, because];

@@ -1,6 +1,7 @@
 import { showAs, type Showable, type TableCell } from '../display';
 import { step, type Traced } from '../suite';
 import { readBalance, type BalanceMinerals, type BalanceOptions } from './balance-input';
+import { recalledMinerals } from './in-words';
 import { BalanceSolver, type BalanceProblem } from './balance-solver';
 import { freedom, joinColumns } from './mass-balance';
 import { joinLineage } from './one-analysis';
@@ -134,7 +135,12 @@ export function rankAssemblages(options: RankAssemblagesOptions): AssemblageRank
       oxides: [...base.oxides],
       phases: parts.flatMap((part) => part.columns.map(({ phase, chosen }) => [phase, chosen.label, chosen.source, chosen.standing])),
     },
-    { sources: ['burnham_anderson_2002', 'bryan_1969', 'bro_de_jong_1997'], tables: ['mineral-compositions.csv', 'atomic-weights.csv'] },
+    {
+      sources: ['burnham_anderson_2002', 'bryan_1969', 'bro_de_jong_1997'],
+      tables: ['mineral-compositions.csv', 'atomic-weights.csv'],
+      fromMemory: recalledMinerals(parts.flatMap((part) => part.columns.map(({ chosen }) => chosen))),
+      says: `${subsets.length - tooMany} subsets of ${names.join(', ')} were solved and ranked by ${criterion}.`,
+    },
   );
   const result = {
     ranked: all,

@@ -1,6 +1,6 @@
 import { derivedColumn, resolveColumn, step, type Suite } from '../suite';
 import { volatileFree } from '../recast';
-import { atomicWeight } from '../tables';
+import { atomicWeight, shortSource } from '../tables';
 import { celsius, cationFractions, majors, place } from './liquid-state';
 import { majorOxides } from '../chemistry';
 import { saturationTable } from './melt-tables';
@@ -118,7 +118,12 @@ export function withSaturationTemperatures(suite: Suite, options: { readonly mod
   const because = step(
     'withSaturationTemperatures',
     { model },
-    { sources: [table.source, apatite.source], tables: ['saturation.json', 'atomic-weights.csv'] },
+    {
+      sources: [table.source, apatite.source],
+      tables: ['saturation.json', 'atomic-weights.csv'],
+      fromMemory: [table, apatite].filter(({ standing }) => standing === 'from memory').map(({ source }) => `saturation constants (${shortSource(source)})`),
+      says: `Zircon saturation temperatures follow ${shortSource(table.source)}, apatite saturation ${shortSource(apatite.source)}.`,
+    },
   );
   return suite
     .with(

@@ -1,6 +1,7 @@
 import { findAnalyte } from '../chemistry';
 import { showAs, type Showable, type TableCell } from '../display';
 import { step, type Suite, type Traced } from '../suite';
+import { recalledCoefficients } from './in-words';
 import { coefficientRange, meltTypes, partitionMinerals, type MeltType } from '../tables';
 import {
   checkOwnCoefficients,
@@ -270,7 +271,7 @@ export function testTraces(balance: MassBalance, options: TraceTestOptions = {})
   const because = step(
     who,
     { mode, meltTypes: [...sets], relativeError, leastSpread, verdict, coefficients: recordCoefficients(used) },
-    { sources: [...new Set([mode === 'rayleigh' ? 'neumann_1954' : 'shaw_1970', ...sourcesOf(used)])], tables: ['partition-coefficients.csv'] },
+    { sources: [...new Set([mode === 'rayleigh' ? 'neumann_1954' : 'shaw_1970', ...sourcesOf(used)])], tables: ['partition-coefficients.csv'], fromMemory: recalledCoefficients(used), says: `Trace elements of the daughter were predicted from the mass balance and held against the analysis: ${verdict}.` },
   );
   return showAs({ verdict, why, elements, ratios, coefficients: used, missing, notes, lineage: [...balance.lineage, because] }, (it) => ({
     title: it.why,

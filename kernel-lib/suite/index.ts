@@ -4,6 +4,7 @@ export * from './expression';
 export * from './frame';
 export * from './inputs';
 export * from './lineage';
+export * from './lineage-file';
 export * from './resolve';
 export * from './sources';
 export * from './suite';

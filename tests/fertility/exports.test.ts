@@ -164,7 +164,7 @@ describe('saving', () => {
   it('writes whole files or none, and leaves no part behind', async () => {
     const path = join(folder, 'missing', 'x.csv');
     saveFertilityCsv(screen, path);
-    expect(readdirSync(join(folder, 'missing'))).toEqual(['x.csv']);
+    expect(readdirSync(join(folder, 'missing'))).toEqual(['x.csv', 'x.csv.lineage.json']);
     writeFileSync(join(folder, 'a-file'), '');
     expect(() => saveFertilityCsv(screen, join(folder, 'a-file', 'x.csv'))).toThrow();
     await expect(saveFertilityWorkbook(screen, join(folder, 'a-file', 'x.xlsx'))).rejects.toThrow();
