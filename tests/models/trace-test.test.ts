@@ -155,8 +155,8 @@ describe('testTraces', () => {
 
 describe('a published pair', () => {
   it('fits in the majors and fails in the isotopes and the heavy rare earths', () => {
-    // Salina, Fossa delle Felci: GEOROC compilation, Convergent Margins, doi:10.25625/PVFZCE, CC BY-SA 4.0 (notebooks/data/salina-pair.csv).
-    const text = readFileSync(join(__dirname, '../../notebooks/data/salina-pair.csv'), 'utf8');
+    // Salina, Fossa delle Felci: GEOROC compilation, Convergent Margins, doi:10.25625/PVFZCE, CC BY-SA 4.0 (tests/data/models/salina-pair.csv).
+    const text = readFileSync(join(__dirname, '../data/models/salina-pair.csv'), 'utf8');
     const [basalt, dacite] = Papa.parse<Record<string, string>>(text, { header: true, skipEmptyLines: true }).data.map((row) =>
       Object.fromEntries(
         Object.entries(row).flatMap(([head, cell]) =>
@@ -178,6 +178,34 @@ describe('a published pair', () => {
     expect(test.verdict).toBe('rejected');
     expect(test.ratios.find(({ ratio }) => ratio === '87Sr/86Sr')!.off).toBeGreaterThan(3);
     expect(test.why).toMatch(/not closed/);
+  });
+});
+
+describe('a published basalt and dacite of one volcano', () => {
+  it('fit by the rule of thumb, and not within the errors of the analyses', () => {
+    // Ambrym: GEOROC compilation, Convergent Margins, doi:10.25625/PVFZCE, CC BY-SA 4.0 (notebooks/data/ambrym-pair.csv).
+    const text = readFileSync(join(__dirname, '../../notebooks/data/ambrym-pair.csv'), 'utf8');
+    const [basalt, dacite] = Papa.parse<Record<string, string>>(text, { header: true, skipEmptyLines: true }).data.map((row) =>
+      Object.fromEntries(
+        Object.entries(row).flatMap(([head, cell]) => (/\((wt%|ppm)\)$/.test(head) && !head.startsWith('LOI') && cell !== '' ? [[head.split(' ')[0], Number(cell)]] : [])),
+      ),
+    );
+    expect(basalt.SiO2).toBeLessThan(52);
+    expect(dacite.SiO2).toBeGreaterThan(63);
+    const minerals = {
+      plagioclase: { between: ['An45', 'An92'] },
+      clinopyroxene: 'Wo42En42Fs16',
+      olivine: 'Fo70',
+      magnetite: 'Usp30',
+      apatite: 'fluorapatite Ca5(PO4)3F',
+    } as const;
+    const balance = massBalance({ parent: basalt, daughter: dacite, minerals });
+    // Common practice: ΣR² below 1, better below 0.5, counts as a fit.
+    expect(balance.sumOfSquares).toBeLessThan(0.5);
+    expect(balance.probability).toBeLessThan(0.01);
+    const test = testTraces(balance);
+    expect(test.verdict).toBe('rejected');
+    expect(test.elements.filter(({ finding }) => finding === 'disagrees').map(({ element }) => element)).toEqual(['Er']);
   });
 });
 
