@@ -72,3 +72,4 @@ export { slabSection, type SlabSectionOptions } from './slab-section';
 export { arcTrendPlot, type ArcTrendPlotOptions } from './arc-trend-plot';
 export * from './balance-plots';
 export * from './path-plots';
+export * from './control-chart';
