@@ -61,8 +61,10 @@ export function diagramOf(parts: Pick<Diagram, 'name' | 'spec' | 'lineage' | 'co
       };
     },
   };
+  // Front ends that draw Vega draw vectors: sharp at any zoom of the page.
+  const toMimeMetadata = () => ({ [vegaLiteType]: { embed_options: { renderer: 'svg' } } });
   const diagram = { ...parts };
-  for (const [name, value] of Object.entries(hidden)) Object.defineProperty(diagram, name, { value, enumerable: false });
+  for (const [name, value] of Object.entries({ ...hidden, toMimeMetadata })) Object.defineProperty(diagram, name, { value, enumerable: false });
   Object.defineProperty(diagram, jupyterDisplay, { value: hidden.toMimeBundle, enumerable: false });
   Object.defineProperty(diagram, inspect.custom, { value: () => parts.description, enumerable: false });
   return diagram as Diagram;

@@ -35,6 +35,9 @@ export interface FigureParts {
   readonly lineage: readonly Step[];
 }
 
+/** A front end without the shipped font sets the caption in a wider one, and cuts what runs over: so the lines end well before the edge. */
+const captionShare = 0.84;
+
 const noCounts: DiagramCounts = { plotted: 0, notPlotted: 0, reasons: {} };
 
 /**
@@ -52,7 +55,7 @@ export function figure(parts: FigureParts): Diagram {
     ...parts.caption,
     ...(parts.counts === undefined || parts.showCounts === false ? [] : [countsText(parts.counts, parts.counted)]),
   ].filter((text) => text !== '');
-  const lines = wrapText(sentences.join(' '), Math.max(width, 380), { size: textSize.caption });
+  const lines = wrapText(sentences.join(' '), captionShare * Math.max(width, 380), { size: textSize.caption });
   const called = [parts.title, parts.name].filter(Boolean).join(' – ');
   const description = parts.counts === undefined ? called : `${called}: ${countsText(parts.counts, parts.counted)}`;
   const title =

@@ -82,7 +82,7 @@ function outputHtml(output: NotebookOutput, markdown: Render, clean: Render): st
   const html = outputText(data['text/html']);
   if (html !== undefined) {
     // A wide table scrolls inside its own frame, which the keyboard can reach.
-    return `<div class="shown" tabindex="0" role="region" aria-label="Shown table">${clean(html)}</div>`;
+    return `<div class="shown" tabindex="0" role="group" aria-label="Shown table">${clean(html)}</div>`;
   }
   const marked = outputText(data['text/markdown']);
   if (marked !== undefined) return `<div class="shown">${markdown(marked)}</div>`;

@@ -24,7 +24,7 @@ function blockHtml(block: Block, markdown: (text: string) => string): string {
       const rows = block.rows.map((cells) => `<tr>${cells.map((text) => `<td${isNumeric(text) ? ' align="right"' : ''}>${escapeHtml(text)}</td>`).join('')}</tr>`).join('\n');
       const caption = block.title === '' ? '' : `<caption>${escapeHtml(block.title)}</caption>`;
       // A wide table scrolls inside its own frame, which the keyboard can reach.
-      const frame = `<div class="shown" tabindex="0" role="region" aria-label="${escapeHtml(block.title || 'Table')}">`;
+      const frame = `<div class="shown" tabindex="0" role="group" aria-label="${escapeHtml(block.title || 'Table')}">`;
       return `${frame}<table>${caption}<thead><tr>${head}</tr></thead><tbody>\n${rows}\n</tbody></table></div>${block.notes.map((note) => `<p>${escapeHtml(note)}</p>`).join('')}`;
     }
   }
