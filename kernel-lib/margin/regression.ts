@@ -1,6 +1,6 @@
-import { uniformFloat64 } from 'pure-rand/distribution/uniformFloat64';
-import { xoroshiro128plus } from 'pure-rand/generator/xoroshiro128plus';
-import { gammaln, medianSorted, quantileSorted } from 'simple-statistics';
+import { jStat } from 'jstat';
+import { seededRandom } from '../chemistry';
+import { medianSorted, quantileSorted } from 'simple-statistics';
 
 /** A straight line y = intercept + slope·x. */
 export interface Line {
@@ -119,26 +119,10 @@ function exactKendall(n: number, observed: number): number {
 
 /** A seeded source of numbers in [0, 1). */
 export function randomSource(seed: number): () => number {
-  const generator = xoroshiro128plus(seed);
-  return () => uniformFloat64(generator);
+  return seededRandom(seed, 'seed').uniform;
 }
 
-/** Student's t that is exceeded in size with probability α, ν ≥ 1 degrees of freedom: the density integrated (Simpson) and bisected. */
+/** Student's t that is exceeded in size with probability α, ν ≥ 1 degrees of freedom. */
 export function studentT(alpha: number, freedom: number): number {
-  const scale = Math.exp(gammaln((freedom + 1) / 2) - gammaln(freedom / 2)) / Math.sqrt(freedom * Math.PI);
-  // With t = √ν·tan θ the density becomes cos^(ν-1) θ, which is smooth and bounded whatever t is.
-  const share = (t: number): number => {
-    const end = Math.atan(t / Math.sqrt(freedom));
-    const cells = 200;
-    let sum = 0;
-    for (let k = 0; k <= cells; k++) sum += (k === 0 || k === cells ? 1 : k % 2 === 1 ? 4 : 2) * Math.cos((end * k) / cells) ** (freedom - 1);
-    return 2 * scale * Math.sqrt(freedom) * (end / cells / 3) * sum;
-  };
-  let [low, high] = [0, 1e4];
-  for (let round = 0; round < 100; round++) {
-    const middle = (low + high) / 2;
-    if (share(middle) < 1 - alpha) low = middle;
-    else high = middle;
-  }
-  return (low + high) / 2;
+  return jStat.studentt.inv(1 - alpha / 2, freedom);
 }

@@ -1,3 +1,4 @@
+import { jStat } from 'jstat';
 import { mean as meanOf, median as medianOf } from 'simple-statistics';
 import { findAnalyte } from '../../chemistry';
 import type { Column, Suite } from '../../suite';
@@ -166,12 +167,9 @@ export function accuracy(
   });
 }
 
-/** Two-sided 95 % quantiles of Student's t for 1 to 10 degrees of freedom (standard tables). */
-const studentTable = [12.706, 4.303, 3.182, 2.776, 2.571, 2.447, 2.365, 2.306, 2.262, 2.228];
-
-/** For a single run nothing but the certified value's own 1σ is known: then the normal factor. */
+/** Two-sided 95 % factor of Student's t. For a single run nothing but the certified value's own 1σ is known: then the usual 2. */
 function studentFactor(freedom: number): number {
-  return freedom < 1 ? 2 : (studentTable[freedom - 1] ?? 2 + 2.3 / freedom);
+  return freedom < 1 ? 2 : jStat.studentt.inv(0.975, freedom);
 }
 
 /** Signals of a control chart by order of analysis (Shewhart's rules: one point beyond 3σ of the others; eight in a row on one side). */

@@ -1,4 +1,4 @@
-import { tableText, type MimeBundle, type TableCell } from '../../display';
+import type { MimeBundle, TableCell } from '../../display';
 import { outputText } from '../notebook/document';
 import { pngSize } from '../rich-value';
 
@@ -105,6 +105,3 @@ export function tableBlocks(html: string): TableBlock[] {
 export function tableBlock(title: string, columns: readonly string[], rows: readonly (readonly TableCell[])[], notes: readonly string[] = []): TableBlock {
   return { kind: 'table', title, columns, rows: rows.map((cells) => cells.map((each) => (each === null || each === undefined || Number.isNaN(each) ? '' : String(each)))), notes };
 }
-
-/** A table as plain text, for a reader of the report's source. */
-export const blockText = (block: TableBlock): string => tableText(block);
